@@ -1,0 +1,253 @@
+"""Working expressions out: exact rationals where the operations allow it, floats behind roots and functions.
+
+A dimension fault and a doubt are different things: the first is an error of the sheet, the second makes a claim unchecked.
+"""
+
+from __future__ import annotations
+
+import math
+from collections.abc import Callable
+from dataclasses import dataclass, replace
+from fractions import Fraction
+
+from calccheck.formula import Binary, Call, Group, Node, Number, Range, Reference, Unary
+from calccheck.source import Span
+from calccheck.units import AMPERE, FARAD, HENRY, NONE, OHM, SECOND, VOLT, Dimension, unit_of, words
+
+Real = Fraction | float
+_ROOM = 4000  # bits of a rational before it is carried on as a float
+_ICE = Fraction(27315, 100)  # 0 °C in kelvin (SI Brochure, 9th edition, 2.3.1)
+
+
+class Doubt(Exception):
+    """Something that cannot be read, resolved or solved: the claim is unchecked, for this reason."""
+
+    def __init__(self, reason: str, span: Span | None = None, suggestion: str = "") -> None:
+        super().__init__(reason)
+        self.reason, self.span, self.suggestion = reason, span, suggestion
+
+
+class DimensionFault(Exception):
+    """Dimensions that do not fit: an error of the sheet, said as a finding of its own."""
+
+    def __init__(self, reason: str, span: Span) -> None:
+        super().__init__(reason)
+        self.reason, self.span = reason, span
+
+
+@dataclass(frozen=True, slots=True)
+class Amount:
+    """A value in coherent SI units with its dimension. ``point``: a temperature on the scale, not a difference."""
+
+    value: Real
+    dimension: Dimension = NONE
+    point: bool = False
+
+
+Lookup = Callable[[Reference], Amount]
+Literal = Callable[[Number], Amount]
+
+
+def literal(number: Number) -> Amount:
+    """A printed number in SI."""
+    value = Fraction(number.digits) * number.unit.factor
+    if number.unit.celsius:
+        return Amount(value + _ICE, number.unit.dimension, point=True)
+    return Amount(value, number.unit.dimension)
+
+
+def evaluate(node: Node, lookup: Lookup, number: Literal = literal) -> Amount:
+    """The amount of an expression.
+
+    ``lookup`` gives the amount of a name or quantity and may raise ``Doubt``; ``number`` that of a printed number.
+    Raises ``Doubt`` for what two engineers would read differently, for division by zero and for powers out of range;
+    ``DimensionFault`` for sums of unlike dimensions.
+    """
+
+    def work(n: Node) -> Amount:
+        match n:
+            case Number():
+                return number(n)
+            case Reference():
+                return lookup(n)
+            case Unary():
+                return _unary(n, work(n.operand))
+            case Group():
+                inner = work(n.inner)
+                if not n.unit.text:
+                    return inner
+                return _product(inner, Amount(n.unit.factor, n.unit.dimension), n.span)
+            case Binary():
+                return _binary(n, work(n.left), work(n.right))
+            case Call():
+                return _call(n, [work(a) for a in n.arguments])
+            case Range():
+                raise Doubt("a range stands only as the value of a claim", n.span)
+
+    return work(node)
+
+
+def trimmed(value: Real) -> Real:
+    """A rational grown out of bounds carried on as a float; anything not finite is a doubt."""
+    if isinstance(value, Fraction):
+        if value.numerator.bit_length() + value.denominator.bit_length() < _ROOM:
+            return value
+        try:
+            value = value.numerator / value.denominator
+        except OverflowError:
+            value = math.inf
+    if not math.isfinite(value):
+        raise Doubt("the value does not fit a floating-point number")
+    return value
+
+
+def _binary(n: Binary, a: Amount, b: Amount) -> Amount:
+    match n.operator:
+        case "+" | "-":
+            return _sum(a, b, -1 if n.operator == "-" else 1, n)
+        case "×" | "·":
+            _refuse_two_readings(n, a, b)
+            return _product(a, b, n.span)
+        case "÷":
+            _refuse_two_readings(n, a, b)
+            return _product(a, reciprocal(b, n.right.span), n.span)
+        case "∥":
+            return parallel(a, b, n.span)
+        case "^":
+            return power(a, b, n.span)
+        case "∠":
+            raise Doubt("phasors are not read in this version", n.span)
+
+
+def _sum(a: Amount, b: Amount, sign: int, n: Binary) -> Amount:
+    if a.dimension != b.dimension:
+        word = "added to" if sign > 0 else "taken from"
+        first, second = (
+            (words(a.dimension), words(b.dimension)) if sign > 0 else (words(b.dimension), words(a.dimension))
+        )
+        raise DimensionFault(f"{first} cannot be {word} {second}", n.span)
+    if a.point and b.point:
+        if sign > 0:
+            raise Doubt("two temperatures are added; write the difference in K", n.span)
+        return Amount(_add(a.value, -b.value), a.dimension)
+    if b.point and not a.point and sign < 0:
+        raise Doubt("a temperature is taken from a difference; write the difference in K", n.span)
+    return Amount(_add(a.value, b.value if sign > 0 else -b.value), a.dimension, a.point or b.point)
+
+
+def _add(a: Real, b: Real) -> Real:
+    return trimmed(a + b)
+
+
+def _product(a: Amount, b: Amount, span: Span) -> Amount:
+    if a.point or b.point:
+        raise Doubt("a temperature in °C is multiplied; write a difference in K", span)
+    dimension = tuple(x + y for x, y in zip(a.dimension, b.dimension, strict=True))
+    return Amount(trimmed(a.value * b.value), dimension)
+
+
+def reciprocal(a: Amount, span: Span) -> Amount:
+    """1/a."""
+    if a.point:
+        raise Doubt("something is divided by a temperature in °C; write K", span)
+    if a.value == 0:
+        raise Doubt("division by zero", span)
+    return Amount(1 / a.value, tuple(-x for x in a.dimension))
+
+
+def parallel(a: Amount, b: Amount, span: Span) -> Amount:
+    """a·b/(a + b): two resistances, impedances or like quantities side by side."""
+    if a.dimension != b.dimension:
+        raise DimensionFault(f"{words(a.dimension)} cannot stand parallel to {words(b.dimension)}", span)
+    total = a.value + b.value
+    if total == 0:
+        if a.value == 0:
+            return a  # two shorts side by side
+        raise Doubt("the two sides of ∥ cancel: no finite value", span)
+    return Amount(trimmed(a.value * b.value / total), a.dimension)
+
+
+def power(a: Amount, b: Amount, span: Span) -> Amount:
+    """a to the b; the exponent is a plain number."""
+    if b.dimension != NONE:
+        raise DimensionFault(f"an exponent is a plain number, not {words(b.dimension)}", span)
+    if a.point:
+        raise Doubt("a temperature in °C is raised to a power", span)
+    exponent = Fraction(b.value).limit_denominator(1000)
+    if a.dimension != NONE and abs(float(exponent) - float(b.value)) > 1e-12:
+        raise Doubt("a quantity with a unit is raised to a power that is no simple fraction", span)
+    dimension = tuple(_half(x * exponent) for x in a.dimension)
+    return Amount(_raised(a.value, b.value, span), dimension)
+
+
+def _half(x: Fraction | int) -> Fraction | int:
+    return int(x) if x == int(x) else x
+
+
+def _raised(base: Real, exponent: Real, span: Span) -> Real:
+    if base == 0 and exponent <= 0:
+        raise Doubt("zero to the power of zero or less", span)
+    size = 0.0 if base == 0 else abs(float(exponent) * math.log10(abs(float(base))))
+    if size > 300:
+        raise Doubt("the power does not fit a floating-point number", span)
+    if exponent == int(exponent) and abs(exponent) <= 64 and isinstance(base, Fraction):
+        return trimmed(base ** int(exponent))
+    if base < 0 and exponent != int(exponent):
+        raise Doubt("a root of a negative number", span)
+    return float(base) ** float(exponent)
+
+
+def _unary(n: Unary, a: Amount) -> Amount:
+    if n.sign == "√":
+        return power(a, Amount(Fraction(1, 2)), n.span)
+    if n.sign == "-":
+        return replace(a, value=-a.value) if not a.point else Amount(2 * _ICE - a.value, a.dimension, True)
+    return a
+
+
+def _bare(node: Node, operator: str) -> Binary | None:
+    return node if isinstance(node, Binary) and node.operator == operator else None
+
+
+def _refuse_two_readings(n: Binary, a: Amount, b: Amount) -> None:
+    """``2 × R1 ∥ R2``: where both readings have a right dimension, engineers differ; so nobody guesses."""
+    left, right = _bare(n.left, "∥"), _bare(n.right, "∥")
+    twofold = False
+    if right is not None:
+        shifted = tuple(x - y if n.operator == "÷" else x + y for x, y in zip(a.dimension, b.dimension, strict=True))
+        twofold = shifted == b.dimension
+    if left is not None:
+        twofold = twofold or b.dimension == NONE
+    if twofold:
+        raise Doubt("∥ beside × or ÷ can be read two ways here; put brackets around the parallel parts", n.span)
+
+
+_FUNCTIONS: dict[str, Callable[[float], float]] = {
+    "exp": math.exp, "ln": math.log, "log10": math.log10, "sin": math.sin, "cos": math.cos, "tan": math.tan,
+    "asin": math.asin, "acos": math.acos, "atan": math.atan,
+}  # fmt: skip
+
+
+def _call(n: Call, arguments: list[Amount]) -> Amount:
+    first = arguments[0]
+    if n.function == "dB":
+        raise Doubt("dB is not read in this version", n.span)
+    if n.function in ("min", "max"):
+        if any(x.dimension != first.dimension for x in arguments):
+            raise DimensionFault(f"{n.function}() compares unlike quantities", n.span)
+        return (min if n.function == "min" else max)(arguments, key=lambda x: x.value)
+    if len(arguments) != 1:
+        raise Doubt(f"{n.function}() takes one value", n.span)
+    if n.function == "abs":
+        return replace(first, value=abs(first.value))
+    if n.function == "sqrt":
+        return power(first, Amount(Fraction(1, 2)), n.span)
+    if first.dimension != NONE:
+        raise DimensionFault(f"{n.function}() takes a plain number, not {words(first.dimension)}", n.span)
+    try:
+        return Amount(trimmed(_FUNCTIONS[n.function](float(first.value))))
+    except (ValueError, OverflowError):
+        raise Doubt(f"{n.function}() has no value there", n.span) from None
+
+
+COHERENT: dict[Dimension, str] = {d: unit_of(d) for d in (VOLT, AMPERE, OHM, FARAD, HENRY, SECOND)}

@@ -1,0 +1,155 @@
+"""The expression language as frozen nodes; each keeps its place in the sheet.
+
+``read.expression`` makes them from text, ``arithmetic`` works them out, the outputs set them as mathematics.
+"""
+
+from __future__ import annotations
+
+from collections.abc import Iterator
+from dataclasses import dataclass, field
+from decimal import Decimal
+from typing import Literal
+
+from calccheck.source import Span
+from calccheck.units import PLAIN, Unit
+
+Prefix = Literal["", "min", "max", "worst", "rss", "mag", "arg", "re", "im", "rms", "sigma", "yield"]
+
+
+@dataclass(frozen=True, slots=True)
+class Number:
+    """A number as printed, with the unit behind it (``PLAIN`` where none stands).
+
+    ``digits`` keeps the printed places: ``Decimal('9.195')``, ``Decimal('1.20E+3')``. ``unit_words``: each word of the unit,
+    because a word that is also a name of the sheet makes the literal doubtful.
+    """
+
+    digits: Decimal
+    span: Span
+    unit: Unit = PLAIN
+    unit_words: tuple[str, ...] = ()
+
+
+@dataclass(frozen=True, slots=True)
+class Change:
+    """One change of a circuit: a part taken out, opened, shorted, or given another value."""
+
+    part: str
+    what: Literal["without", "open", "shorted", "as"]
+    span: Span
+    value: Node | None = None
+
+
+@dataclass(frozen=True, slots=True)
+class Qualifiers:
+    """What stands behind a quantity: ``due to Vb and Ia``, ``without RL``, ``in case hot``, ``at 50 Hz``, ``of bridge``."""
+
+    due_to: tuple[str, ...] = ()
+    changes: tuple[Change, ...] = ()
+    case: str = ""
+    frequency: str = ""
+    circuit: str = ""
+
+
+NO_QUALIFIERS = Qualifiers()
+
+
+@dataclass(frozen=True, slots=True)
+class Reference:
+    """A name or a quantity: ``Rb``, ``Rp2``, ``V_bus due to Vb``, ``R_{a,b} without RL``.
+
+    ``letter`` and ``subscripts`` are the parts of a name with a subscript (``V`` and ``('bus',)``), else ``word`` and ``()``.
+    ``braced``: the subscript stood in braces. What the name means is decided where circuits and definitions are known.
+    """
+
+    word: str
+    span: Span
+    letter: str = ""
+    subscripts: tuple[str, ...] = ()
+    braced: bool = False
+    qualifiers: Qualifiers = NO_QUALIFIERS
+    prefix: Prefix = ""
+    text: str = ""
+
+
+@dataclass(frozen=True, slots=True)
+class Unary:
+    """``−x``, ``+x``, or ``√x``."""
+
+    sign: Literal["-", "+", "√"]
+    operand: Node
+    span: Span
+
+
+@dataclass(frozen=True, slots=True)
+class Binary:
+    """Two operands: ``+ − × ÷ ^ ∥``; ``·`` stands for juxtaposition (``2 R1``), ``∠`` for a phasor by magnitude and angle."""
+
+    operator: Literal["+", "-", "×", "÷", "^", "∥", "·", "∠"]
+    left: Node
+    right: Node
+    span: Span
+
+
+@dataclass(frozen=True, slots=True)
+class Group:
+    """A bracketed expression, with the unit that multiplies it where one stands behind: ``(3/16) mA``."""
+
+    inner: Node
+    span: Span
+    unit: Unit = PLAIN
+    unit_words: tuple[str, ...] = ()
+
+
+@dataclass(frozen=True, slots=True)
+class Call:
+    """A function of one or more arguments; ``abs`` also for ``|x|``."""
+
+    function: str
+    arguments: tuple[Node, ...]
+    span: Span
+
+
+@dataclass(frozen=True, slots=True)
+class Range:
+    """``a … b`` or ``x ± d``; never part of a larger expression."""
+
+    low: Node
+    high: Node
+    span: Span
+    centred: bool = False
+    text: str = field(default="", compare=False)
+
+
+Node = Number | Reference | Unary | Binary | Group | Call | Range
+
+
+def children(node: Node) -> tuple[Node, ...]:
+    """The nodes directly under one."""
+    match node:
+        case Unary(operand=inner) | Group(inner=inner):
+            return (inner,)
+        case Binary(left=left, right=right):
+            return (left, right)
+        case Range(low=left, high=right):
+            return (left, right)
+        case Call(arguments=arguments):
+            return arguments
+    return ()
+
+
+def walk(node: Node) -> Iterator[Node]:
+    """The node and all below it, outer first, in reading order."""
+    yield node
+    for child in children(node):
+        yield from walk(child)
+
+
+def numbers(node: Node) -> list[Number]:
+    """The printed numbers in an expression."""
+    return [n for n in walk(node) if isinstance(n, Number)]
+
+
+def references(node: Node) -> list[Reference]:
+    """The names and quantities in an expression (not those inside qualifiers)."""
+    return [n for n in walk(node) if isinstance(n, Reference)]

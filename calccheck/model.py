@@ -1,0 +1,327 @@
+"""The nouns that the stages hand on: circuits, claims, solutions, verdicts, findings, reports. Frozen records, no rules."""
+
+from __future__ import annotations
+
+from collections.abc import Mapping
+from dataclasses import dataclass, field
+from datetime import date
+from fractions import Fraction
+from typing import Literal
+
+from calccheck.arithmetic import Amount, Real
+from calccheck.document import Block
+from calccheck.formula import Node
+from calccheck.rules import Severity
+from calccheck.source import Sheet, Span
+from calccheck.units import Dimension
+
+# --- circuits -------------------------------------------------------------------------------------------------------
+
+Kind = Literal[
+    "resistor", "voltage source", "current source", "controlled voltage source", "controlled current source",
+    "short", "open", "capacitor", "inductor", "impedance", "op-amp", "transformer", "transistor", "diode",
+]  # fmt: skip
+
+
+@dataclass(frozen=True, slots=True)
+class Control:
+    """What steers a controlled source: the voltage from node ``plus`` to node ``minus``, or the current of ``part``."""
+
+    plus: str = ""
+    minus: str = ""
+    part: str = ""
+
+
+@dataclass(frozen=True, slots=True)
+class Tolerance:
+    """``±5 %`` (relative fractions), ``±0.1 V`` (absolute, SI), ``+10/−5 %``, ``±50 ppm/K`` (relative, per kelvin)."""
+
+    plus: Fraction
+    minus: Fraction
+    relative: bool
+    per_kelvin: bool
+    text: str
+    span: Span
+
+
+@dataclass(frozen=True, slots=True)
+class Rating:
+    """``max 0.25 W``: the most that a part stands, in SI."""
+
+    value: Fraction
+    dimension: Dimension
+    text: str
+    span: Span
+
+
+@dataclass(frozen=True, slots=True)
+class Element:
+    """A part between two nodes. Current counts from ``plus`` through the part to ``minus`` (IEC 60375).
+
+    ``value``: ohms of a resistor (whether written as a resistance or a conductance), volts or amperes of a source, the gain
+    of a controlled source in SI, farads, henries; ``None`` for short, open, and what this version does not solve.
+    ``stated``: the value as written, with the dimension it was written in, for claims that restate it.
+    ``terminals``: of a part with more than two, word and node.
+    """
+
+    name: str
+    kind: Kind
+    plus: str
+    minus: str
+    span: Span
+    value: Fraction | None = None
+    stated: Amount | None = None
+    written: str = ""
+    control: Control | None = None
+    tolerance: Tolerance | None = None
+    ratings: tuple[Rating, ...] = ()
+    terminals: tuple[tuple[str, str], ...] = ()
+
+
+@dataclass(frozen=True, slots=True)
+class Circuit:
+    """One circuit block as read.
+
+    ``problems``: findings that make every claim on this circuit unchecked (a line that does not parse, a part of a kind that
+    this version does not solve). ``span``: the fence's content.
+    """
+
+    name: str
+    elements: tuple[Element, ...]
+    reference: str
+    span: Span
+    problems: tuple[Finding, ...] = ()
+
+    def element(self, name: str) -> Element | None:
+        """The part of that name."""
+        return next((e for e in self.elements if e.name == name), None)
+
+    def nodes(self) -> tuple[str, ...]:
+        """All nodes, in the order in which the block names them, the reference wherever it stands."""
+        names: dict[str, None] = {}
+        for e in self.elements:
+            for node in (e.plus, e.minus, *(n for _, n in e.terminals)):
+                if node:
+                    names.setdefault(node)
+        return tuple(names)
+
+    def sources(self) -> tuple[Element, ...]:
+        """The independent sources."""
+        return tuple(e for e in self.elements if e.kind in ("voltage source", "current source"))
+
+
+@dataclass(frozen=True, slots=True)
+class State:
+    """Potentials by node (reference 0) in volts and currents by part in amperes, from ``plus`` to ``minus``."""
+
+    potentials: Mapping[str, Real]
+    currents: Mapping[str, Real]
+
+
+@dataclass(frozen=True, slots=True)
+class Solution:
+    """A circuit solved twice.
+
+    ``nodal``: the whole circuit in floating point. ``parts``: each independent source alone, by name; rationals where
+    ``exact``. ``gap``: largest difference of the two routes relative to the circuit's scale; ``residual``: largest sum of
+    currents at a node relative to the largest current; ``balance``: sum of all powers relative to the largest.
+    """
+
+    nodal: State
+    parts: Mapping[str, State]
+    exact: bool
+    gap: float
+    residual: float
+    balance: float
+    volts: float
+    amperes: float
+    watts: float
+
+
+# --- claims ---------------------------------------------------------------------------------------------------------
+
+Relation = Literal["", "=", "≈", "<", "≤", ">", "≥"]
+Place = Literal["code", "working", "table", "math", "prose", "circuit"]
+Verdict = Literal["agrees", "rounded", "differs", "unchecked", "accepted", "given"]
+Basis = Literal["circuit", "working", ""]
+
+
+@dataclass(frozen=True, slots=True)
+class Member:
+    """One member of a chain and the relation before it (none before the first)."""
+
+    relation: Relation
+    node: Node
+    text: str
+    span: Span
+
+
+@dataclass(frozen=True, slots=True)
+class Waiver:
+    """``accept 2.71 A for 2.66 A "reason" by QD until 2027-03-01``: the claim's printed value and the computed one."""
+
+    printed: Node
+    computed: Node
+    reason: str
+    by: str
+    until: date | None
+    span: Span
+    text: str
+
+
+@dataclass(frozen=True, slots=True)
+class Problem:
+    """Why something could not be read: the reason, its place, and the corrected text where one can be offered."""
+
+    reason: str
+    span: Span
+    suggestion: str = ""
+
+
+@dataclass(frozen=True, slots=True)
+class Claim:
+    """Something that the sheet states, as read.
+
+    ``members``: empty when ``problem`` says why it could not be read. ``circuit``: index of the nearest circuit above, −1
+    above the first. ``given``: an assumption; ``from_sheet`` names its source. ``limit_only``: a column of limits, which
+    prints no value.
+    """
+
+    text: str
+    span: Span
+    place: Place
+    circuit: int
+    members: tuple[Member, ...] = ()
+    given: bool = False
+    tolerance: Tolerance | None = None
+    from_sheet: str = ""
+    waiver: Waiver | None = None
+    problem: Problem | None = None
+
+
+@dataclass(frozen=True, slots=True)
+class Step:
+    """The judgement of one ``=`` (or bound) of a chain. ``amount``: what that member comes to."""
+
+    text: str
+    span: Span
+    relation: Relation
+    verdict: Verdict
+    amount: Amount | None = None
+    message: str = ""
+
+
+@dataclass(frozen=True, slots=True)
+class Slip:
+    """A mistake that would give the printed number: its key in the table of slips and one sentence."""
+
+    key: str
+    text: str
+
+
+@dataclass(frozen=True, slots=True)
+class Judged:
+    """A claim with its verdict.
+
+    ``quantity``: the first member as written. ``claimed``: the printed value in SI, ``claimed_unit`` the unit it was printed
+    in. ``computed``: the truth in SI. ``low``, ``high``: of a bound or range. ``deviation``: relative to the truth.
+    ``message``: one sentence. ``cautions``: said beside a verdict that stands.
+    """
+
+    claim: Claim
+    verdict: Verdict
+    basis: Basis = ""
+    quantity: str = ""
+    claimed: Amount | None = None
+    claimed_unit: str = ""
+    computed: Amount | None = None
+    low: Amount | None = None
+    high: Amount | None = None
+    deviation: float | None = None
+    message: str = ""
+    steps: tuple[Step, ...] = ()
+    cautions: tuple[str, ...] = ()
+    slips: tuple[Slip, ...] = ()
+
+
+# --- findings and reports -------------------------------------------------------------------------------------------
+
+
+@dataclass(frozen=True, slots=True)
+class Finding:
+    """Something to be said about the sheet that is not the verdict of a claim. ``kind``: a key of ``rules.RULES``."""
+
+    kind: str
+    severity: Severity
+    message: str
+    span: Span
+    suggestion: str = ""
+
+
+@dataclass(frozen=True, slots=True)
+class CircuitFigures:
+    """How well the two routes agree on a circuit; ``None`` where it could not be solved."""
+
+    name: str
+    line: int
+    nodes: int
+    elements: int
+    route_gap: float | None
+    kcl_residual: float | None
+    power_balance: float | None
+
+
+@dataclass(frozen=True, slots=True)
+class Settings:
+    """The sheet's and repository's settings, section 7 of the language."""
+
+    carry: Fraction = Fraction(5, 1000)
+    approx: Fraction = Fraction(5, 100)
+    on: date | None = None
+
+
+@dataclass(frozen=True, slots=True)
+class Reading:
+    """A sheet as read: what the first stage hands on. ``title``: front matter fields as text, in the order written."""
+
+    sheet: Sheet
+    page: tuple[Block, ...]
+    is_calc: bool
+    title: Mapping[str, str]
+    settings: Settings
+    circuits: tuple[Circuit, ...]
+    claims: tuple[Claim, ...]
+    findings: tuple[Finding, ...]
+    not_read: int = 0
+
+
+@dataclass(frozen=True, slots=True)
+class Report:
+    """Everything the program has to say about one sheet."""
+
+    reading: Reading
+    claims: tuple[Judged, ...] = ()
+    findings: tuple[Finding, ...] = ()
+    figures: tuple[CircuitFigures, ...] = ()
+    solutions: tuple[Solution | None, ...] = field(default=(), repr=False)
+
+    @property
+    def counts(self) -> dict[Verdict, int]:
+        """Number of claims by verdict, every verdict named."""
+        names: tuple[Verdict, ...] = ("agrees", "rounded", "differs", "unchecked", "accepted", "given")
+        return {name: sum(j.verdict == name for j in self.claims) for name in names}
+
+    @property
+    def clean(self) -> bool:
+        """Whether nothing is to be mended: no claim differs or is unchecked, no finding is an error."""
+        return not (
+            any(j.verdict in ("differs", "unchecked") for j in self.claims)
+            or any(f.severity == "error" for f in self.findings)
+        )
+
+    @property
+    def verdict(self) -> Verdict:
+        """The worst verdict in the sheet."""
+        if any(j.verdict == "differs" for j in self.claims):
+            return "differs"
+        return "agrees" if self.clean else "unchecked"

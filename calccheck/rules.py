@@ -1,0 +1,39 @@
+"""Every finding that the program can make beside the verdicts of claims: key, severity, what it is, where the docs tell more.
+
+One row a kind; the reading and judging stages take severity from here, the outputs the title and anchor.
+"""
+
+from __future__ import annotations
+
+from dataclasses import dataclass
+from typing import Literal
+
+Severity = Literal["error", "caution", "note"]
+
+
+@dataclass(frozen=True, slots=True)
+class Rule:
+    """A kind of finding. ``anchor``: heading in docs/sheet-language.md or docs/how-it-checks.md."""
+
+    severity: Severity
+    title: str
+    anchor: str
+
+
+RULES: dict[str, Rule] = {
+    "front-matter": Rule("error", "The front matter cannot be read", "sheet-language.md#front-matter"),
+    "setting": Rule("error", "A setting is unknown or has no such value", "sheet-language.md#settings"),
+    "circuit-line": Rule("error", "A line of a circuit block cannot be read", "sheet-language.md#the-circuit-block"),
+    "circuit-name": Rule("error", "A name in a circuit block is not allowed or used twice", "sheet-language.md#names"),
+    "not-solved-here": Rule("error", "A part that this version reads but does not solve", "limits.md#not-solved"),
+    "structure": Rule("error", "The circuit has no single solution", "how-it-checks.md#structure"),
+    "routes": Rule("error", "The two routes disagree", "how-it-checks.md#two-routes"),
+    "letter": Rule("caution", "A part's first letter contradicts its unit", "sheet-language.md#the-circuit-block"),
+    "letter-case": Rule("caution", "Two names differ only in upper and lower case", "sheet-language.md#names"),
+    "negative-resistance": Rule("caution", "A resistance below zero", "how-it-checks.md#structure"),
+    "dimension": Rule("error", "The dimensions do not fit", "sheet-language.md#expressions-and-units"),
+    "untraced": Rule("caution", "A printed number stands for nothing in the sheet", "sheet-language.md#chains"),
+    "waiver": Rule("error", "A waiver that cannot be read, has lapsed, or waives nothing", "sheet-language.md#waivers"),
+    "fence": Rule("error", "A fence is not closed", "sheet-language.md#a-sheet"),
+    "mark": Rule("error", "A mark of an earlier run stands where it does not belong", "reviewing.md#marked-copies"),
+}
