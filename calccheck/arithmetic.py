@@ -194,7 +194,7 @@ def _raised(base: Real, exponent: Real, span: Span) -> Real:
         return trimmed(base ** int(exponent))
     if base < 0 and exponent != int(exponent):
         raise Doubt("a root of a negative number", span)
-    return float(base) ** float(exponent)
+    return math.pow(float(base), float(exponent))
 
 
 def _unary(n: Unary, a: Amount) -> Amount:
@@ -235,11 +235,12 @@ def _call(n: Call, arguments: list[Amount]) -> Amount:
     if n.function in ("min", "max"):
         if any(x.dimension != first.dimension for x in arguments):
             raise DimensionFault(f"{n.function}() compares unlike quantities", n.span)
-        return (min if n.function == "min" else max)(arguments, key=lambda x: x.value)
+        ordered = sorted(arguments, key=lambda x: float(x.value))
+        return ordered[0 if n.function == "min" else -1]
     if len(arguments) != 1:
         raise Doubt(f"{n.function}() takes one value", n.span)
     if n.function == "abs":
-        return replace(first, value=abs(first.value))
+        return replace(first, value=-first.value if first.value < 0 else first.value)
     if n.function == "sqrt":
         return power(first, Amount(Fraction(1, 2)), n.span)
     if first.dimension != NONE:

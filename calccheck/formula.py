@@ -13,6 +13,7 @@ from typing import Literal
 from calccheck.source import Span
 from calccheck.units import PLAIN, Unit
 
+Operator = Literal["+", "-", "×", "÷", "^", "∥", "·", "∠"]
 Prefix = Literal["", "min", "max", "worst", "rss", "mag", "arg", "re", "im", "rms", "sigma", "yield"]
 
 
@@ -85,7 +86,7 @@ class Unary:
 class Binary:
     """Two operands: ``+ − × ÷ ^ ∥``; ``·`` stands for juxtaposition (``2 R1``), ``∠`` for a phasor by magnitude and angle."""
 
-    operator: Literal["+", "-", "×", "÷", "^", "∥", "·", "∠"]
+    operator: Operator
     left: Node
     right: Node
     span: Span

@@ -136,7 +136,7 @@ def beyond_table(word: str) -> Unit | None:
     import pint  # late: 0.1 s
 
     try:
-        quantity = pint.get_application_registry().Quantity(1, word).to_base_units()
+        quantity = pint.UnitRegistry().Quantity(1, word).to_base_units()
     except Exception:  # pint raises its own and the standard library's errors alike for a word it cannot read
         return None
     dimension = _from_pint(dict(quantity.dimensionality))

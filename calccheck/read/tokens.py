@@ -1,0 +1,115 @@
+"""Tokens of the expression language, each with its place in the piece it was cut from."""
+
+from __future__ import annotations
+
+import re
+from dataclasses import dataclass
+from typing import Literal
+
+from calccheck.arithmetic import Doubt
+from calccheck.source import Piece
+from calccheck.units import LOOKALIKES, UNITS
+
+TokenKind = Literal["number", "word", "braced", "operator", "superscript", "end"]
+LONGEST = 10_000  # characters of one statement; a longer one is no formula that a person wrote
+
+SUPERSCRIPTS = "⁰¹²³⁴⁵⁶⁷⁸⁹"
+_LETTER = rf"[^\W\d_{SUPERSCRIPTS}]"
+_WORD = rf"{_LETTER}(?:[^\W{SUPERSCRIPTS}])*[′″']*"
+_GROUPS = "[\u2009\u202f\u00a0]"
+_NUMBER = rf"(?:\d{{1,3}}(?:{_GROUPS}\d{{3}})+(?!\d)|\d+)(?:\.\d+(?:{_GROUPS}\d{{3}}(?!\d))*)?|\.\d+"
+_TOKEN = re.compile(
+    rf"""(?P<space>\s+)
+    |(?P<number>(?:{_NUMBER})(?:[eE][+-]?\d+|\s?[×*]\s?10(?:⁻?[{SUPERSCRIPTS}]+|\^[+-]?\d+))?)
+    |(?P<braced>{_LETTER}[^\W_{SUPERSCRIPTS}]*_\{{[^{{}}]*\}})
+    |(?P<word>°C(?!\w)|{_WORD})
+    |(?P<superscript>⁻?[{SUPERSCRIPTS}]+)
+    |(?P<operator>//|~=|<=|>=|\.\.\.|[-+×·*/÷^√∥()\[\]|=≈<≤>≥,±∠…°%])""",
+    re.VERBOSE,
+)
+_SAME = {"//": "∥", "*": "×", "/": "÷", "~=": "≈", "<=": "≤", ">=": "≥", "...": "…", "[": "(", "]": ")"}
+_UP = str.maketrans(SUPERSCRIPTS + "⁻", "0123456789-")
+_GAPS = str.maketrans("", "", "\u2009\u202f\u00a0")
+RELATIONS = {"=", "≈", "<", "≤", ">", "≥"}
+
+
+@dataclass(frozen=True, slots=True)
+class Token:
+    """``text`` is normalised (one sign for each operator, plain digits); ``start`` and ``end`` count in the piece."""
+
+    kind: TokenKind
+    text: str
+    start: int
+    end: int
+
+
+def tokens(piece: Piece) -> list[Token]:
+    """The tokens of a statement, an ``end`` token last. Raises ``Doubt`` at the first character that means nothing."""
+    text = piece.text.translate(LOOKALIKES)
+    if len(text) > LONGEST:
+        raise Doubt(f"longer than {LONGEST} characters; part it", piece.span(0, 40))
+    found: list[Token] = []
+    at = 0
+    while at < len(text):
+        m = _TOKEN.match(text, at)
+        if m is None:
+            raise _strange(piece, text, at)
+        kind = m.lastgroup
+        if kind == "number":
+            _refuse_comma_and_point(piece, text, m)
+            found.append(Token("number", _plain(m.group()), at, m.end()))
+        elif kind == "operator":
+            found.append(Token("operator", _SAME.get(m.group(), m.group()), at, m.end()))
+        elif kind == "superscript":
+            found.append(Token("superscript", m.group().translate(_UP), at, m.end()))
+        elif kind == "braced":
+            found.append(Token("braced", m.group(), at, m.end()))
+        elif kind == "word":
+            found.append(Token("word", m.group(), at, m.end()))
+        at = m.end()
+    found.append(Token("end", "", at, at))
+    return found
+
+
+def superscript(text: str) -> int:
+    """The whole number that superscript digits show."""
+    return int(text.translate(_UP))
+
+
+def _plain(text: str) -> str:
+    """Digits without grouping, the exponent in one form: ``1.6×10⁻¹⁹`` is ``1.6e-19``."""
+    mantissa, ten, exponent = re.sub(r"\s?[×*]\s?10", "x", text.translate(_GAPS)).partition("x")
+    return f"{mantissa}e{exponent.translate(_UP).lstrip('^')}" if ten else mantissa
+
+
+def _refuse_comma_and_point(piece: Piece, text: str, m: re.Match[str]) -> None:
+    follows = text[m.end() : m.end() + 2]
+    if len(follows) == 2 and follows[1].isdigit() and follows[0] in ",.":
+        end = m.end() + 1
+        while end < len(text) and (text[end].isdigit() or text[end] in ",."):
+            end += 1
+        written = text[m.start() : end]
+        if follows[0] == "," and written.count(",") == 1:
+            raise Doubt(
+                f"{written} has a decimal comma; a number is written with a point",
+                piece.span(m.start(), end),
+                piece.text[: m.start()] + written.replace(",", ".") + piece.text[end:],
+            )
+        raise Doubt(
+            f"{written} is no number: at most one point, groups parted by thin spaces", piece.span(m.start(), end)
+        )
+
+
+def _strange(piece: Piece, text: str, at: int) -> Doubt:
+    c = text[at]
+    if c in "–—":
+        return Doubt("a dash: write − for minus, or a range as 3.2 … 3.4", piece.span(at, at + 1))
+    if c == "{":
+        return Doubt("a brace: a subscript is written V_{a,b}, without blanks before the brace", piece.span(at, at + 1))
+    shown = c if c.isprintable() else f"U+{ord(c):04X}"
+    return Doubt(f"the character {shown} means nothing here", piece.span(at, at + 1))
+
+
+def is_unit(word: str) -> bool:
+    """Whether a word is a unit of the trade's table."""
+    return word in UNITS
