@@ -1,0 +1,165 @@
+"""The Markdown parser's inline tokens as inlines of our own, with their places.
+
+The tokens of a paragraph cover its content from end to end, one behind the other; only their lengths are not told.
+Those follow from token and content, so that adding them up gives every place.
+"""
+
+from __future__ import annotations
+
+import re
+from collections.abc import Iterator, Sequence
+from dataclasses import dataclass
+from itertools import groupby
+
+from markdown_it.token import Token
+
+from calccheck.document import Inline, InlineKind
+from calccheck.source import NOWHERE, Piece, Span
+
+DEEPEST = 60
+"""How deep inlines nest here; the mark-up of deeper ones is passed over, their text is not."""
+
+_Placed = tuple[Token, int, int]  # a token, and where it starts and ends in the content
+
+_KINDS: dict[str, InlineKind] = {
+    "code_inline": "code",
+    "math_inline": "math",
+    "math_inline_double": "math",
+    "html_inline": "html",
+    "softbreak": "softbreak",
+    "hardbreak": "break",
+    "footnote_ref": "note",
+    "image": "image",
+    "em_open": "emphasis",
+    "strong_open": "strong",
+    "s_open": "strike",
+    "link_open": "link",
+}
+_BREAK = re.compile(r" *\\?\n[ \t]*")
+
+
+@dataclass(slots=True)
+class _Open:
+    """An inline whose children are still being read."""
+
+    kind: InlineKind
+    start: int
+    target: str
+    children: list[Inline]
+
+
+def read_inlines(tokens: Sequence[Token], content: Piece) -> tuple[Inline, ...]:
+    """The inlines of ``content``; should the tokens not cover it, one run of text."""
+    placed = list(_placed(tokens, content.text))
+    if (placed[-1][2] if placed else 0) != len(content.text):
+        return (Inline("text", content.span(), content),)
+    stack = [_Open("text", 0, "", [])]
+    for is_text, group in groupby(placed, _is_text):
+        if is_text:
+            stack[-1].children.append(_text(list(group), content))
+            continue
+        for one in group:
+            _nest(stack, one, content)
+    return tuple(stack[0].children)
+
+
+def _is_text(one: _Placed) -> bool:
+    return one[0].type in ("text", "text_special")
+
+
+def _placed(tokens: Sequence[Token], source: str) -> Iterator[_Placed]:
+    """Each token with its place; those that stand for nothing (used-up marks of emphasis) left out."""
+    start = 0
+    in_autolink = False
+    for token in tokens:
+        # the text of an autolink is its address as shown, not as written
+        end = source.find(">", start) if in_autolink else _end(token, source, start)
+        in_autolink = token.markup == "autolink" and token.nesting > 0
+        if end > start:
+            yield token, start, end
+            start = end
+
+
+def _end(token: Token, source: str, start: int) -> int:
+    match token.type:
+        case "text" | "html_inline":
+            return start + len(token.content)
+        case "code_inline":
+            return _code_end(token, source, start)
+        case "softbreak" | "hardbreak":
+            found = _BREAK.match(source, start)
+            return found.end() if found else start
+        case "link_close" | "image" if "end" in token.meta:
+            return int(token.meta["end"])
+        case "link_open" | "link_close":
+            return start + 1
+        case "math_inline" | "math_inline_double":
+            return start + 2 * len(token.markup) + len(token.content)
+        case "footnote_ref":
+            return start + len(f"[^{token.meta['label']}]")
+        case _:  # marks of emphasis, escapes and entities
+            return start + len(token.markup)
+
+
+def _code_end(token: Token, source: str, start: int) -> int:
+    """One space at either end belongs to the mark-up, if both are there and the code is not all spaces."""
+    inner = start + len(token.markup)
+    bare = inner + len(token.content)
+    as_written = source[inner:bare].replace("\n", " ") == token.content and source.startswith(token.markup, bare)
+    return bare + len(token.markup) + (0 if as_written else 2)
+
+
+def _text(run: list[_Placed], content: Piece) -> Inline:
+    """A run of text; what an escape or entity stands for stands where that begins."""
+    start, end = run[0][1], run[-1][2]
+    piece = content.part(start, end)
+    if any(token.type != "text" and token.content != token.markup for token, _, _ in run):
+        text, at = "", list[int]()
+        for token, begin, stop in run:
+            if token.type == "text" or token.content == token.markup:
+                text += content.text[begin:stop]
+                at += content.at[begin:stop]
+            else:
+                text += token.content
+                at += [content.at[begin], *[NOWHERE] * (len(token.content) - 1)]
+        piece = Piece(text, [*at, content.at[end]])
+    return Inline("text", _span(content, start, end), piece)
+
+
+def _nest(stack: list[_Open], one: _Placed, content: Piece) -> None:
+    """Put an inline among the children of the one around it, or open or close one."""
+    token, start, end = one
+    around = stack[-1]
+    if token.nesting == 0:
+        around.children.append(_leaf(token, start, end, content))
+    elif token.nesting > 0:
+        children = around.children if len(stack) > DEEPEST else []
+        stack.append(_Open(_KINDS[token.type], start, str(token.attrs.get("href", "")), children))
+    else:
+        stack.pop()
+        if around.children is not stack[-1].children:
+            span = _span(content, around.start, end)
+            stack[-1].children.append(Inline(around.kind, span, None, tuple(around.children), around.target))
+
+
+def _leaf(token: Token, start: int, end: int, content: Piece) -> Inline:
+    kind, span = _KINDS[token.type], _span(content, start, end)
+    match kind:
+        case "code" | "math" | "html":
+            lead = start + (end - start - len(token.content)) // 2
+            return Inline(kind, span, Piece(token.content, content.part(lead, lead + len(token.content)).at))
+        case "image":
+            label = content.part(start + 2, start + 2 + len(token.content))
+            return Inline(kind, span, None, read_inlines(token.children or (), label), str(token.attrs["src"]))
+        case "note":
+            return Inline(kind, span, target=str(token.meta["label"]))
+        case _:
+            return Inline(kind, span)
+
+
+def _span(content: Piece, start: int, end: int) -> Span:
+    """The place of ``content[start:end]``; a line's break reaches from the end of the text before it to the text behind."""
+    at = content.at
+    first = at[start] if at[start] != NOWHERE or start == 0 else at[start - 1] + 1
+    last = at[end - 1] + 1 if at[end - 1] != NOWHERE else at[end]
+    return Span(first, last) if NOWHERE < first <= last else content.span(start, end)
