@@ -44,6 +44,11 @@ class Amount:
     point: bool = False
 
 
+def size(value: Real) -> Real:
+    """The magnitude of a value (``abs`` of a rational or a float, with a type that says so)."""
+    return -value if value < 0 else value
+
+
 Lookup = Callable[[Reference], Amount]
 Literal = Callable[[Number], Amount]
 
@@ -90,12 +95,12 @@ def evaluate(node: Node, lookup: Lookup, number: Literal = literal) -> Amount:
 def trimmed(value: Real) -> Real:
     """A rational grown out of bounds carried on as a float; anything not finite is a doubt."""
     if isinstance(value, Fraction):
-        if value.numerator.bit_length() + value.denominator.bit_length() < _ROOM:
+        over, under = value.numerator.bit_length(), value.denominator.bit_length()
+        if over - under > 1000:
+            raise Doubt("the value does not fit a floating-point number")
+        if over + under < _ROOM:
             return value
-        try:
-            value = value.numerator / value.denominator
-        except OverflowError:
-            value = math.inf
+        value = value.numerator / value.denominator
     if not math.isfinite(value):
         raise Doubt("the value does not fit a floating-point number")
     return value
@@ -187,12 +192,13 @@ def _half(x: Fraction | int) -> Fraction | int:
 def _raised(base: Real, exponent: Real, span: Span) -> Real:
     if base == 0 and exponent <= 0:
         raise Doubt("zero to the power of zero or less", span)
-    size = 0.0 if base == 0 else abs(float(exponent) * math.log10(abs(float(base))))
-    if size > 300:
+    decades = 0.0 if base == 0 else abs(float(exponent) * math.log10(abs(float(base))))
+    if decades > 300:
         raise Doubt("the power does not fit a floating-point number", span)
-    if exponent == int(exponent) and abs(exponent) <= 64 and isinstance(base, Fraction):
+    whole = float(exponent).is_integer()
+    if whole and size(exponent) <= 64 and isinstance(base, Fraction):
         return trimmed(base ** int(exponent))
-    if base < 0 and exponent != int(exponent):
+    if base < 0 and not whole:
         raise Doubt("a root of a negative number", span)
     return math.pow(float(base), float(exponent))
 

@@ -13,6 +13,7 @@ from typing import Literal
 from calccheck.source import Span
 from calccheck.units import PLAIN, Unit
 
+ChangeKind = Literal["without", "open", "shorted", "as"]
 Operator = Literal["+", "-", "×", "÷", "^", "∥", "·", "∠"]
 Prefix = Literal["", "min", "max", "worst", "rss", "mag", "arg", "re", "im", "rms", "sigma", "yield"]
 
@@ -36,7 +37,7 @@ class Change:
     """One change of a circuit: a part taken out, opened, shorted, or given another value."""
 
     part: str
-    what: Literal["without", "open", "shorted", "as"]
+    what: ChangeKind
     span: Span
     value: Node | None = None
 

@@ -34,6 +34,7 @@ RULES: dict[str, Rule] = {
     "dimension": Rule("error", "The dimensions do not fit", "sheet-language.md#expressions-and-units"),
     "untraced": Rule("caution", "A printed number stands for nothing in the sheet", "sheet-language.md#chains"),
     "waiver": Rule("error", "A waiver that cannot be read, has lapsed, or waives nothing", "sheet-language.md#waivers"),
+    "waiver-idle": Rule("caution", "A waiver whose claim stands without it", "sheet-language.md#waivers"),
     "fence": Rule("error", "A fence is not closed", "sheet-language.md#a-sheet"),
     "mark": Rule("error", "A mark of an earlier run stands where it does not belong", "reviewing.md#marked-copies"),
 }

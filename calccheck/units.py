@@ -139,16 +139,16 @@ def beyond_table(word: str) -> Unit | None:
         quantity = pint.UnitRegistry().Quantity(1, word).to_base_units()
     except Exception:  # pint raises its own and the standard library's errors alike for a word it cannot read
         return None
-    dimension = _from_pint(dict(quantity.dimensionality))
+    dimension = _from_pint({name: int(float(str(exponent))) for name, exponent in quantity.dimensionality.items()})
     return None if dimension is None else Unit(word, Fraction(float(quantity.magnitude)), dimension)
 
 
-def _from_pint(powers: dict[str, float]) -> Dimension | None:
+def _from_pint(powers: dict[str, int]) -> Dimension | None:
     """Mass, length, time, current, temperature exponents in terms of V, A, s, m, K: kg is V·A·s³/m²."""
     if set(powers) - {"[mass]", "[length]", "[time]", "[current]", "[temperature]"}:
         return None
     mass, length, time, current, heat = (
-        int(powers.get(k, 0)) for k in ("[mass]", "[length]", "[time]", "[current]", "[temperature]")
+        powers.get(k, 0) for k in ("[mass]", "[length]", "[time]", "[current]", "[temperature]")
     )
     return (mass, mass + current, 3 * mass + time, length - 2 * mass, heat)
 

@@ -1,0 +1,1 @@
+"""The third stage: from claims and solutions to verdicts."""

@@ -1,0 +1,35 @@
+"""Bounds: the exact quantity against the exact limit, with the margin between them."""
+
+from __future__ import annotations
+
+from calccheck.arithmetic import Amount, size
+from calccheck.judge import say
+from calccheck.judge.members import Names, Worked
+from calccheck.judge.rounding import SLACK
+from calccheck.model import Relation, Step
+
+BOUNDS: dict[Relation, Relation] = {"<": ">", "≤": "≥", ">": "<", "≥": "≤"}
+
+
+def judge_bound(left: Amount, right: Amount, first: Worked, subject: Worked, limit_right: bool, names: Names) -> Step:
+    """One bound. ``first``: the member behind the relation. ``subject``: the member before it.
+
+    ``limit_right``: whether the limit stands on the right. A limit above zero says nothing of a quantity below zero.
+    """
+    relation = first.relation
+    member = first.member
+    text = f"{relation} {member.text}"
+    if left.dimension != right.dimension:
+        return Step(text, member.span, relation, "differs", right, say.unlike(left, right))
+    q, limit, seen = (left, right, relation) if limit_right else (right, left, BOUNDS[relation])
+    label = subject.member.text if limit_right else member.text
+    if seen in ("<", "≤") and limit.value > 0 > q.value:
+        return Step(text, member.span, relation, "unchecked", limit, say.says_nothing(label, q, "below"))
+    if seen in (">", "≥") and limit.value < 0 < q.value:
+        return Step(text, member.span, relation, "unchecked", limit, say.says_nothing(label, q, "above"))
+    slack = SLACK * size(limit.value)
+    room = limit.value - q.value if seen in ("<", "≤") else q.value - limit.value
+    holds = room > 0 if seen in ("<", ">") else room >= -slack
+    return Step(
+        text, member.span, relation, "agrees" if holds else "differs", limit, say.margin(label, q, limit, room, holds)
+    )

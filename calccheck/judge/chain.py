@@ -1,0 +1,296 @@
+"""A claim judged: every ``=`` of its chain by itself against the one truth of the chain, every bound against the exact limit."""
+
+from __future__ import annotations
+
+from collections.abc import Sequence
+from dataclasses import dataclass, field, replace
+from fractions import Fraction
+from itertools import pairwise
+
+from calccheck.arithmetic import Amount, DimensionFault, Doubt
+from calccheck.formula import Node, Reference
+from calccheck.judge import say
+from calccheck.judge.bounds import BOUNDS, judge_bound
+from calccheck.judge.members import Names, Worked, work
+from calccheck.judge.rounding import Printed, deviation
+from calccheck.judge.scope import Defined, Key, Ledger, Result
+from calccheck.judge.steps import Ground, judge_member
+from calccheck.model import Basis, Claim, Finding, Judged, Step, Verdict
+from calccheck.rules import RULES
+
+_ORDER: dict[Verdict, int] = {"agrees": 0, "given": 0, "rounded": 1, "accepted": 2, "unchecked": 3, "differs": 4}
+
+
+@dataclass(slots=True)
+class Work:
+    """One claim while it is judged."""
+
+    claim: Claim
+    ledger: Ledger
+    names: Names
+    steps: list[Step] = field(default_factory=list)
+    cautions: list[str] = field(default_factory=list)
+    findings: list[Finding] = field(default_factory=list)
+
+
+@dataclass(frozen=True, slots=True)
+class Segment:
+    """The members between two bounds: one chain of ``=`` with one truth. ``at``: index of the member that is the truth."""
+
+    members: tuple[Worked, ...]
+    at: int
+    truth: Amount | None
+
+    @property
+    def basis(self) -> Basis:
+        """What the truth rests on."""
+        return self.members[self.at].basis or "working"
+
+    @property
+    def only_a_value(self) -> bool:
+        """Whether nothing but a printed value stands here, as a limit does."""
+        return all(w.sort == "value" for w in self.members)
+
+
+def judge_claim(claim: Claim, ledger: Ledger) -> tuple[Judged, tuple[Finding, ...]]:
+    """The verdict on one claim; names that it defines and values that it prints are entered in the ledger."""
+    if claim.problem is not None:
+        return Judged(claim, "unchecked", message=say.reason(claim.problem.reason, claim.problem.suggestion)), ()
+    job = Work(claim, ledger, Names(claim.circuit, ledger))
+    try:
+        judged = _given(job) if claim.given else _chain(job)
+    except Doubt as d:
+        judged = Judged(claim, "unchecked", quantity=claim.members[0].text, message=say.reason(d.reason, d.suggestion))
+    return judged, tuple(job.findings)
+
+
+# --- assumptions ----------------------------------------------------------------------------------------------------
+
+
+def _given(job: Work) -> Judged:
+    claim, name = job.claim, _bare_name(job.claim.members[0].node)
+    if name is None:
+        raise Doubt("an assumption gives a plain name a value: given NAME = VALUE UNIT", claim.members[0].span)
+    _refuse_taken(name, job)
+    members = [work(m, job.names) for m in claim.members[1:]]
+    for w in members:
+        if w.doubt is not None:
+            raise w.doubt
+        if w.fault is not None:
+            raise Doubt(w.fault.reason, w.fault.span)
+    last = members[-1]
+    amount = members[0].amount
+    assert amount is not None
+    shown = last.printed
+    spread = shown.half if shown is not None else Fraction(0)
+    job.ledger.names[name] = Defined(name, amount, shown, "working", True, claim.span.start, spread)
+    return Judged(
+        claim, "given", quantity=name, claimed=amount, claimed_unit=shown.unit_text if shown else "",
+        message=f"assumed, from {claim.from_sheet}" if claim.from_sheet else "assumed",
+    )  # fmt: skip
+
+
+def _bare_name(node: Node) -> str | None:
+    """The name that a member is, where it is nothing but a name."""
+    if not isinstance(node, Reference) or node.braced or node.prefix or node.qualifiers != type(node.qualifiers)():
+        return None
+    return node.word
+
+
+def _refuse_taken(name: str, job: Work) -> None:
+    ledger = job.ledger
+    known = ledger.names.get(name)
+    if known is not None:
+        word = "assumed" if known.given else "defined"
+        raise Doubt(f"{name} is {word} above already; a name has one value in a sheet", job.claim.members[0].span)
+    for c in ledger.circuits:
+        if c.element(name) is not None:
+            raise Doubt(f"{name} is a part of the circuit; give the assumption another name", job.claim.members[0].span)
+
+
+# --- chains ---------------------------------------------------------------------------------------------------------
+
+
+def _chain(job: Work) -> Judged:
+    workings = [work(m, job.names) for m in job.claim.members]
+    name = _new_name(workings, job)
+    if name is not None:
+        workings[0] = replace(workings[0], sort="new name", doubt=None)
+    segments = [_segment(part) for part in _parted(workings)]
+    main = next((s for s in segments if s.basis == "circuit" and not s.only_a_value), None) or next(
+        (s for s in segments if not s.only_a_value), segments[0]
+    )
+    key: Key | None = None
+    printings: list[tuple[Printed, Step]] = []
+    for segment in segments:
+        if segment.truth is None:
+            _no_truth(segment, job, segment is main)
+        else:
+            found = _judge_segment(segment, job)
+            if segment is main:
+                key, printings = segment.members[segment.at].key, found
+    _bounds(segments, job)
+    judged = _summed_up(main, printings, job, workings)
+    _enter(judged, main, name, key, printings, job)
+    return judged
+
+
+def _parted(workings: Sequence[Worked]) -> list[list[Worked]]:
+    parts: list[list[Worked]] = [[]]
+    for w in workings:
+        if w.relation in BOUNDS:
+            parts.append([])
+        parts[-1].append(w)
+    return parts
+
+
+def _new_name(workings: Sequence[Worked], job: Work) -> str | None:
+    """The name that the chain defines, if its first member is one that nothing has and a formula follows."""
+    first = workings[0]
+    if not isinstance(first.node, Reference) or job.names.meaning(first.node) is not None:
+        return None
+    name = _bare_name(first.node)
+    follows = any(w.sort in ("formula", "substitution") for w in workings[1:])
+    if name is None or not follows:
+        return None
+    ref = first.node
+    if ref.subscripts:
+        _refuse_near_quantity(ref, job)
+    return name
+
+
+def _refuse_near_quantity(ref: Reference, job: Work) -> None:
+    """A defined name shaped like a quantity differs from all in the circuit in more than a letter, and more than in case."""
+    sub = ref.subscripts[0]
+    for c in job.ledger.circuits:
+        for known in (*c.nodes(), *(e.name for e in c.elements)):
+            if sub.lower() == known.lower() or _one_letter_off(sub, known):
+                raise Doubt(
+                    f"{ref.word} may be a slip for {ref.letter}_{known}; to define a name, choose one less alike",
+                    ref.span,
+                )
+
+
+def _one_letter_off(a: str, b: str) -> bool:
+    """Whether two words differ in one letter put in, left out or changed (a single letter is no word)."""
+    if min(len(a), len(b)) < 2 or abs(len(a) - len(b)) > 1:
+        return len(a) == len(b) == 1 and a == b
+    if len(a) == len(b):
+        return sum(x != y for x, y in zip(a, b, strict=True)) <= 1
+    short, long = sorted((a, b), key=len)
+    return any(long[:k] + long[k + 1 :] == short for k in range(len(long)))
+
+
+def _segment(members: Sequence[Worked]) -> Segment:
+    """The segment with its truth: the first circuit quantity, else the first formula, else the first working in numbers."""
+
+    def rank(w: Worked) -> int:
+        if w.sort == "new name":
+            return 9
+        if w.basis == "circuit":
+            return 0
+        return {"formula": 1, "substitution": 2, "value": 3, "range": 4}.get(w.sort, 5)
+
+    at = min(range(len(members)), key=lambda k: (rank(members[k]), k))
+    return Segment(tuple(members), at, members[at].amount)
+
+
+def _no_truth(segment: Segment, job: Work, main: bool) -> None:
+    """A segment whose truth cannot be worked out: unchecked with the reason, or a fault of dimensions."""
+    w = segment.members[segment.at]
+    if w.fault is not None:
+        _fault(w.fault, w, job)
+    elif w.doubt is not None:
+        raise w.doubt
+    else:
+        raise Doubt("nothing here says what the value is to be held against", w.member.span)
+
+
+def _fault(fault: DimensionFault, w: Worked, job: Work) -> None:
+    job.findings.append(Finding("dimension", RULES["dimension"].severity, fault.reason, fault.span))
+    job.steps.append(Step(w.member.text, w.member.span, w.relation, "differs", None, fault.reason))
+
+
+def _judge_segment(segment: Segment, job: Work) -> list[tuple[Printed, Step]]:
+    """Every member but the truth held against it; the printed values among them with their steps."""
+    assert segment.truth is not None
+    w0 = segment.members[segment.at]
+    ground = Ground(segment.truth, segment.basis, w0, segment.members, job.names, job.ledger)
+    ground.trace_truth()
+    printings: list[tuple[Printed, Step]] = []
+    for k, w in enumerate(segment.members):
+        if k == segment.at or w.sort == "new name":
+            continue
+        relation = w.relation if k > segment.at else segment.members[k + 1].relation
+        if w.fault is not None:
+            _fault(w.fault, w, job)
+            continue
+        step = judge_member(w, relation, ground)
+        job.steps.append(step)
+        if w.printed is not None:
+            printings.append((w.printed, step))
+    job.cautions += ground.cautions
+    job.findings += ground.findings
+    return printings
+
+
+def _bounds(segments: Sequence[Segment], job: Work) -> None:
+    for left, right in pairwise(segments):
+        first = right.members[0]
+        if left.truth is None or right.truth is None or first.relation not in BOUNDS:
+            continue
+        limit_right = right.only_a_value or right.basis != "circuit"
+        job.steps.append(judge_bound(left.truth, right.truth, first, left.members[left.at], limit_right, job.names))
+        if left.truth.dimension != right.truth.dimension:
+            _dimension_of_bound(first, job)
+
+
+def _dimension_of_bound(first: Worked, job: Work) -> None:
+    step = job.steps[-1]
+    job.findings.append(Finding("dimension", RULES["dimension"].severity, step.message, first.member.span))
+
+
+def _summed_up(main: Segment, printings: list[tuple[Printed, Step]], job: Work, workings: Sequence[Worked]) -> Judged:
+    """The claim's verdict: that of its worst step; the first step of that kind gives the sentence."""
+    steps = sorted(job.steps, key=lambda s: s.span.start) if job.claim.place != "table" else job.steps
+    worst: Verdict = max((s.verdict for s in steps), key=lambda v: _ORDER[v], default="unchecked")
+    first = next((s for s in steps if s.verdict == worst), None)
+    if first is None:
+        raise Doubt("nothing follows the quantity that could be checked", job.claim.span)
+    shown = next((p for p, s in printings if s.verdict == worst), printings[-1][0] if printings else None)
+    truth = main.truth
+    comparable = shown is not None and truth is not None and shown.amount.dimension == truth.dimension
+    bound = next((w for w in workings if w.relation in BOUNDS), None)
+    limit = bound.amount if bound is not None else None
+    return Judged(
+        claim=job.claim,
+        verdict=worst,
+        basis=main.basis,
+        quantity=workings[0].member.text if workings[0].sort != "value" else main.members[main.at].member.text,
+        claimed=shown.amount if shown else None,
+        claimed_unit=shown.unit_text if shown else "",
+        computed=truth,
+        high=limit if bound is not None and bound.relation in ("<", "≤") else None,
+        low=limit if bound is not None and bound.relation in (">", "≥") else None,
+        deviation=deviation(shown.amount.value, truth.value) if comparable and shown and truth else None,
+        message=first.message or next((s.message for s in steps if s.message), ""),
+        steps=tuple(steps),
+        cautions=tuple(dict.fromkeys(job.cautions)),
+    )
+
+
+def _enter(
+    judged: Judged, main: Segment, name: str | None, key: Key | None, printings: list[tuple[Printed, Step]], job: Work
+) -> None:
+    """Put the chain's name and its printed values into the ledger, for what stands further down."""
+    if main.truth is None:
+        return
+    start = job.claim.span.start
+    if name is not None:
+        shown = printings[-1][0] if printings else None
+        spread = Fraction(0)
+        job.ledger.names[name] = Defined(name, main.truth, shown, main.basis, False, start, spread)
+        key = Key(-1, "name", (name,))
+    for p, step in printings:
+        if p.amount.dimension == main.truth.dimension:
+            job.ledger.results.append(Result(p, main.truth, step.verdict, start, key))

@@ -1,0 +1,192 @@
+"""The members of a chain worked out: what each one is, what it comes to, and on what it rests."""
+
+from __future__ import annotations
+
+from collections.abc import Sequence
+from dataclasses import dataclass, replace
+from typing import Literal
+
+from calccheck.arithmetic import Amount, DimensionFault, Doubt, evaluate
+from calccheck.formula import Binary, Node, Number, Range, Reference, numbers, references
+from calccheck.judge import hints, quantities
+from calccheck.judge.rounding import Printed, printed
+from calccheck.judge.scope import Key, Ledger, Meaning, meaning
+from calccheck.model import Basis, Member, Relation
+from calccheck.source import Span
+from calccheck.units import PLAIN, beyond_table
+
+Sort = Literal["value", "formula", "substitution", "range", "new name"]
+
+
+@dataclass(frozen=True, slots=True)
+class Worked:
+    """A member with what it comes to; ``doubt`` or ``fault`` say why it comes to nothing.
+
+    ``basis``: ``circuit`` where a quantity of a circuit or a name resting on one is in it, ``working`` where only names are.
+    ``key``: of a member that is one bare quantity or name. ``restates``: it is a part's own value and nothing else.
+    """
+
+    member: Member
+    node: Node
+    sort: Sort
+    basis: Basis = ""
+    amount: Amount | None = None
+    printed: Printed | None = None
+    key: Key | None = None
+    restates: bool = False
+    doubt: Doubt | None = None
+    fault: DimensionFault | None = None
+
+    @property
+    def relation(self) -> Relation:
+        """The relation before the member."""
+        return self.member.relation
+
+
+class Names:
+    """The meanings of the references in one claim, each worked out once."""
+
+    __slots__ = ("_amounts", "ledger", "nearest")
+
+    def __init__(self, nearest: int, ledger: Ledger) -> None:
+        self.nearest, self.ledger = nearest, ledger
+        self._amounts: dict[Reference, Amount] = {}
+
+    def meaning(self, ref: Reference) -> Meaning | None:
+        """What a reference means, or nothing."""
+        return meaning(ref, self.nearest, self.ledger)
+
+    def amount(self, ref: Reference) -> Amount:
+        """The exact amount of a reference. Raises ``Doubt`` where it has none."""
+        if ref not in self._amounts:
+            self._amounts[ref] = self._work(ref)
+        return self._amounts[ref]
+
+    def _work(self, ref: Reference) -> Amount:
+        if ref.prefix:
+            raise Doubt(f"{ref.prefix} before a quantity is not read in this version", ref.span)
+        if ref.qualifiers.case:
+            raise Doubt("cases are not read in this version", ref.span)
+        if ref.qualifiers.frequency not in ("", "dc"):
+            raise Doubt("frequencies are not read in this version", ref.span)
+        m = self.meaning(ref)
+        if m is None:
+            sentence, hint = hints.unknown(ref, self.nearest, self.ledger)
+            raise Doubt(sentence, ref.span, hint)
+        if m.sort == "quantity":
+            assert m.key is not None
+            return quantities.amount(m.key, self.ledger, ref.span)
+        q = ref.qualifiers
+        if q.due_to or q.changes:
+            raise Doubt(
+                f"{ref.word} has one value, whatever sources act: qualifiers belong to V, I, P, R and Isc", ref.span
+            )
+        if m.constant is not None:
+            return m.constant
+        if m.defined is not None:
+            return m.defined.exact
+        assert m.element is not None
+        if m.element.stated is None:
+            raise Doubt(f"{ref.word} is {m.element.kind} and has no value of its own", ref.span)
+        return m.element.stated
+
+
+def work(member: Member, names: Names) -> Worked:
+    """One member worked out."""
+    node = _with_rare_units(member.node, names)
+    if isinstance(node, Range):
+        return Worked(member, node, "range", doubt=_range_doubt(node))
+    value = printed(node)
+    found = references(node)
+    sort: Sort = "value" if value is not None else "substitution" if _has_printed(node) else "formula"
+    w = Worked(member, node, sort, printed=value)
+    try:
+        _refuse_units_that_are_names(node, names)
+        meanings = [names.meaning(r) for r in found]
+        w = replace(w, basis=_basis(meanings, node), key=_key(node, meanings), restates=_restates(node, meanings))
+        amount = value.amount if value is not None else evaluate(node, names.amount)
+        return replace(w, amount=amount)
+    except Doubt as d:
+        return replace(w, doubt=d)
+    except DimensionFault as f:
+        return replace(w, fault=f)
+
+
+def _range_doubt(node: Range) -> Doubt:
+    if node.centred:
+        return Doubt(
+            "a tolerance on a computed value: it belongs behind worst or rss, which this version does not read",
+            node.span,
+        )
+    return Doubt("a range belongs behind worst, which this version does not read", node.span)
+
+
+def _has_printed(node: Node) -> bool:
+    """Whether a printed value stands in the member: a number with a unit, or any number where no name stands."""
+    found = numbers(node)
+    return any(n.unit.text for n in found) or (bool(found) and not references(node))
+
+
+def _basis(meanings: Sequence[Meaning | None], node: Node) -> Basis:
+    bases: set[Basis] = set()
+    for m in meanings:
+        if m is None or m.sort == "constant":
+            continue
+        if m.sort == "quantity":
+            bases.add("circuit")
+        elif m.defined is not None:
+            bases.add(m.defined.basis or "working")
+        else:
+            bases.add("circuit" if isinstance(node, Reference) else "working")
+    return "circuit" if "circuit" in bases else "working" if bases else ""
+
+
+def _key(node: Node, meanings: Sequence[Meaning | None]) -> Key | None:
+    if not isinstance(node, Reference) or not meanings or meanings[0] is None:
+        return None
+    m = meanings[0]
+    return Key(-1, "name", (node.word,)) if m.sort == "name" else m.key
+
+
+def _restates(node: Node, meanings: Sequence[Meaning | None]) -> bool:
+    return isinstance(node, Reference) and bool(meanings) and meanings[0] is not None and meanings[0].sort == "part"
+
+
+def _refuse_units_that_are_names(node: Node, names: Names) -> None:
+    for n in numbers(node):
+        for word in n.unit_words:
+            if names.meaning(Reference(word, n.span)) is not None:
+                raise Doubt(
+                    f"{word} is a unit and a name here: for the product write {n.digits} × {word}, "
+                    f"for the unit give the name another spelling",
+                    n.span,
+                )
+
+
+def _with_rare_units(node: Node, names: Names) -> Node:
+    """``3 lbf``: a number before a word that nothing is called, but that pint knows as a unit."""
+    if not (isinstance(node, Binary) and node.operator == "·"):
+        if isinstance(node, Binary):
+            return replace(node, left=_with_rare_units(node.left, names), right=_with_rare_units(node.right, names))
+        return node
+    right = node.right
+    if (
+        isinstance(node.left, Number)
+        and not node.left.unit.text
+        and isinstance(right, Reference)
+        and not right.subscripts
+    ):
+        try:
+            known = names.meaning(right)
+        except Doubt:
+            return node
+        unit = beyond_table(right.word) if known is None else None
+        if unit is not None:
+            return Number(node.left.digits, Span(node.left.span.start, right.span.end), unit, (right.word,))
+    return node
+
+
+def without_unit(w: Worked) -> bool:
+    """Whether the member has numbers and none of them has a unit."""
+    found = numbers(w.node)
+    return bool(found) and all(n.unit == PLAIN for n in found)

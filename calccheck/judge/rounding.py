@@ -1,0 +1,110 @@
+"""How a printed value is held against the truth: decimal places, ties, cut-off digits, whole numbers with zeros at the end.
+
+Section "How a value is judged" of docs/sheet-language.md. Rounding half either way follows ISO 80000-1, annex B, which
+leaves the choice at a tie open.
+"""
+
+from __future__ import annotations
+
+from dataclasses import dataclass
+from decimal import Decimal
+from fractions import Fraction
+from typing import Literal
+
+from calccheck.arithmetic import Amount, Real, literal, size
+from calccheck.formula import Group, Node, Number, Unary
+
+SLACK = Fraction(1, 10**9)
+COARSE = Fraction(5, 100)
+
+
+@dataclass(frozen=True, slots=True)
+class Printed:
+    """A printed value: its amount in SI, the unit of its last place in SI, and its digits."""
+
+    amount: Amount
+    unit: Fraction
+    figures: int
+    digits: Decimal
+    unit_text: str = ""
+
+    @property
+    def half(self) -> Fraction:
+        """Half a unit of the last place."""
+        return self.unit / 2
+
+
+def printed(node: Node) -> Printed | None:
+    """The printed value that a node is: a number, signed or bracketed or not; else nothing."""
+    sign = 1
+    while isinstance(node, Unary | Group):
+        if isinstance(node, Unary):
+            if node.sign == "√":
+                return None
+            sign = -sign if node.sign == "-" else sign
+            node = node.operand
+        elif node.unit.text:
+            return None
+        else:
+            node = node.inner
+    if not isinstance(node, Number):
+        return None
+    signed = node.digits if sign > 0 else node.digits.copy_negate()
+    amount = literal(Number(signed, node.span, node.unit))
+    place = Fraction(10) ** int(node.digits.as_tuple().exponent)
+    return Printed(amount, place * abs(node.unit.factor), figures(node.digits), signed, node.unit.text)
+
+
+def figures(digits: Decimal) -> int:
+    """Significant figures as printed: leading zeros do not count, trailing zeros do."""
+    return len(str(abs(int(digits.scaleb(-int(digits.as_tuple().exponent)))))) if digits else 0
+
+
+Fit = Literal["exact place", "cut off", "whole zeros", "no"]
+
+
+def fit(p: Printed, truth: Real, carry: Fraction, scale: Real = 0) -> Fit:
+    """How a printed value stands to the truth (SI, same dimension).
+
+    ``exact place``: within half a unit of its last place. ``cut off``: three figures or more, cut toward zero.
+    ``whole zeros``: right to the figures before the zeros at its end, and within ``carry``. ``scale``: the largest like value
+    of the circuit, against which a bare zero is held.
+    """
+    x = p.amount.value
+    distance = size(x - truth)
+    slack = SLACK * size(truth)
+    if p.digits == 0 and int(p.digits.as_tuple().exponent) >= 0:
+        return "exact place" if size(truth) <= SLACK * scale else "no"
+    if distance <= p.half + slack:
+        return "exact place"
+    toward_zero = x * truth > 0 and abs(x) < size(truth)
+    if p.figures >= 3 and toward_zero and distance < p.unit - slack:
+        return "cut off"
+    zeros = _zeros_at_end(p.digits)
+    if zeros and distance <= carry * size(truth) and distance <= p.half * 10**zeros + slack:
+        return "whole zeros"
+    return "no"
+
+
+def _zeros_at_end(digits: Decimal) -> int:
+    """How many zeros end a whole number written without a point or an exponent."""
+    if int(digits.as_tuple().exponent) != 0 or digits == 0:
+        return 0
+    text = str(abs(int(digits)))
+    return len(text) - len(text.rstrip("0"))
+
+
+def coarse(p: Printed, truth: Real) -> bool:
+    """Whether the printed value says so little that half its last place exceeds 5 % of the truth."""
+    bare_zero = p.digits == 0 and int(p.digits.as_tuple().exponent) >= 0
+    return not bare_zero and p.half > COARSE * size(truth)
+
+
+def equal(a: Real, b: Real) -> bool:
+    """Whether two worked values are the same to 1e-9."""
+    return bool(size(a - b) <= SLACK * max(size(a), size(b)))
+
+
+def deviation(x: Real, truth: Real) -> float | None:
+    """How far a value is from the truth, as a fraction of the truth; ``None`` at a truth of zero."""
+    return None if truth == 0 else float((x - truth) / size(truth))

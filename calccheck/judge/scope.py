@@ -1,0 +1,167 @@
+"""What the sheet has established so far, and what a name in a claim means there."""
+
+from __future__ import annotations
+
+import math
+from collections.abc import Callable
+from dataclasses import dataclass, field
+from fractions import Fraction
+from typing import Literal
+
+from calccheck.arithmetic import Amount, Doubt, Real, evaluate
+from calccheck.component_code import component_code
+from calccheck.formula import Change, ChangeKind, Reference
+from calccheck.judge.rounding import Printed
+from calccheck.model import Basis, Circuit, Element, Settings, Solution, Verdict
+
+QUANTITY_LETTERS = {"V", "I", "P", "R", "Z", "Isc", "S", "Q"}
+_TWO_NODES = {"R", "Z", "Isc"}
+
+
+@dataclass(frozen=True, slots=True)
+class Defined:
+    """A name of the sheet: the exact value for formulas, the printed one, and where it comes from.
+
+    ``spread``: how far the exact value may be off because it was worked from rounded numbers (SI, either way).
+    """
+
+    name: str
+    exact: Amount
+    printed: Printed | None
+    basis: Basis
+    given: bool
+    offset: int
+    spread: Real = 0
+
+
+@dataclass(frozen=True, slots=True)
+class Key:
+    """What a quantity is, apart from how it is written: the same key, the same value."""
+
+    circuit: int
+    letter: str
+    subscripts: tuple[str, ...]
+    due_to: frozenset[str] = frozenset()
+    changes: tuple[tuple[str, ChangeKind, Amount | None], ...] = ()
+
+
+@dataclass(frozen=True, slots=True)
+class Result:
+    """A value printed earlier in the sheet, with the truth it was held against."""
+
+    printed: Printed
+    truth: Amount
+    verdict: Verdict
+    offset: int
+    key: Key | None
+
+    @property
+    def stands(self) -> bool:
+        """Whether it may be carried on."""
+        return self.verdict in ("agrees", "rounded", "accepted")
+
+
+@dataclass(slots=True)
+class Ledger:
+    """The sheet's circuits, and what its claims have established up to the present one."""
+
+    circuits: tuple[Circuit, ...]
+    solve: Callable[[Circuit], Solution]
+    settings: Settings
+    names: dict[str, Defined] = field(default_factory=dict)
+    results: list[Result] = field(default_factory=list)
+
+
+Sort = Literal["quantity", "part", "name", "constant"]
+
+
+@dataclass(frozen=True, slots=True)
+class Meaning:
+    """What a reference is: a quantity of a circuit, a part's own value, a name of the sheet, or a constant."""
+
+    sort: Sort
+    key: Key | None = None
+    element: Element | None = None
+    defined: Defined | None = None
+    constant: Amount | None = None
+
+
+_CONSTANTS = {"π": Amount(Fraction(math.pi)), "e": Amount(Fraction(math.e))}
+
+
+def circuit_index(ref: Reference, nearest: int, ledger: Ledger) -> int:
+    """The circuit that a reference belongs to. Raises ``Doubt`` where that is open."""
+    if ref.qualifiers.circuit:
+        for k, c in enumerate(ledger.circuits):
+            if c.name == ref.qualifiers.circuit:
+                return k
+        known = ", ".join(c.name for c in ledger.circuits if c.name) or "none is named"
+        raise Doubt(f"there is no circuit {ref.qualifiers.circuit}; named circuits: {known}", ref.span)
+    if len(ledger.circuits) == 1:
+        return 0
+    if not ledger.circuits:
+        return -1
+    if nearest < 0:
+        raise Doubt("several circuits stand below and none above: say which by of NAME", ref.span)
+    return nearest
+
+
+def meaning(ref: Reference, nearest: int, ledger: Ledger) -> Meaning | None:
+    """What a reference means, or ``None`` for a name that nothing has."""
+    if ref.word in ledger.names and not ref.braced:
+        return Meaning("name", defined=ledger.names[ref.word])
+    if ref.word in _CONSTANTS:
+        return Meaning("constant", constant=_CONSTANTS[ref.word])
+    if ref.word == "j":
+        raise Doubt("complex values are not read in this version", ref.span)
+    index = circuit_index(ref, nearest, ledger)
+    if index < 0:
+        return None
+    circuit = ledger.circuits[index]
+    key = quantity_key(ref, index, circuit, ledger)
+    if key is not None:
+        return Meaning("quantity", key=key)
+    element = circuit.element(ref.word)
+    if element is not None:
+        return Meaning("part", element=element, key=Key(index, "", (ref.word,)))
+    return None
+
+
+def quantity_key(ref: Reference, index: int, circuit: Circuit, ledger: Ledger) -> Key | None:
+    """The quantity that a reference names in this circuit, or ``None`` where it names none."""
+    if ref.letter not in QUANTITY_LETTERS:
+        return None
+    nodes = circuit.nodes()
+    subs = ref.subscripts
+    if ref.letter in _TWO_NODES:
+        fits = len(subs) == 2 and all(s in nodes for s in subs)
+    elif len(subs) == 2:
+        fits = (ref.letter == "V" and all(s in nodes for s in subs)) or (
+            ref.letter == "I" and circuit.element(subs[0]) is not None
+        )
+    else:
+        fits = circuit.element(subs[0]) is not None or (ref.letter == "V" and subs[0] in nodes)
+    if not fits:
+        return None
+    q = ref.qualifiers
+    changes = tuple((c.part, c.what, _replacement(c, ledger, circuit)) for c in q.changes)
+    return Key(index, ref.letter, subs, frozenset(q.due_to), changes)
+
+
+def _replacement(change: Change, ledger: Ledger, circuit: Circuit) -> Amount | None:
+    """The amount behind ``as``: a value, a value code, a part or a name."""
+    if change.value is None:
+        return None
+
+    def lookup(ref: Reference) -> Amount:
+        if ref.word in ledger.names:
+            return ledger.names[ref.word].exact
+        element = circuit.element(ref.word)
+        if element is not None and element.stated is not None:
+            return element.stated
+        coded = component_code(ref.word)
+        if coded is not None:
+            return Amount(*coded)
+        raise Doubt(f"{ref.word} is no value: write it with its unit", ref.span)
+
+    return evaluate(change.value, lookup)

@@ -1,0 +1,67 @@
+"""All claims of a sheet judged, in the order in which they stand."""
+
+from __future__ import annotations
+
+from collections.abc import Callable
+from dataclasses import replace
+from datetime import date
+from fractions import Fraction
+
+from calccheck.judge.chain import judge_claim
+from calccheck.judge.rounding import fit, printed
+from calccheck.judge.scope import Ledger
+from calccheck.model import Circuit, Finding, Judged, Reading, Solution, Waiver
+from calccheck.rules import RULES
+
+
+def judge_sheet(
+    reading: Reading, solve: Callable[[Circuit], Solution], on: date
+) -> tuple[tuple[Judged, ...], tuple[Finding, ...]]:
+    """The verdicts of a sheet's claims and the findings made on the way.
+
+    ``solve`` gives the solution of a circuit or raises ``Doubt``. ``on``: the day by which waivers are judged.
+    """
+    ledger = Ledger(reading.circuits, solve, reading.settings)
+    judged: list[Judged] = []
+    findings: list[Finding] = []
+    for claim in reading.claims:
+        j, more = judge_claim(claim, ledger)
+        j, waived = _waived(j, on)
+        judged.append(j)
+        findings += [*more, *waived]
+    return tuple(judged), tuple(findings)
+
+
+def _waived(j: Judged, on: date) -> tuple[Judged, tuple[Finding, ...]]:
+    """A claim that differs accepted under its waiver, where the waiver still stands for these two numbers and this day."""
+    waiver = j.claim.waiver
+    if waiver is None:
+        return j, ()
+    if j.verdict in ("agrees", "rounded"):
+        return j, (_finding("waiver-idle", "the claim stands without its waiver; take the waiver out", waiver),)
+    if j.verdict != "differs":
+        return j, (_finding("waiver", f"a waiver accepts a claim that differs; this one is {j.verdict}", waiver),)
+    why = _lapsed(waiver, j, on)
+    if why:
+        return j, (_finding("waiver", f"the waiver has lapsed: {why}", waiver),)
+    return replace(j, verdict="accepted", message=f"{j.message}; accepted by {waiver.by}: {waiver.reason}"), ()
+
+
+def _lapsed(waiver: Waiver, j: Judged, on: date) -> str:
+    if waiver.until is not None and on > waiver.until:
+        return f"it ran until {waiver.until.isoformat()}"
+    shown, truth = printed(waiver.printed), printed(waiver.computed)
+    if shown is None or truth is None:
+        return "its two numbers cannot be read"
+    if j.claimed is None or j.computed is None:
+        return "the claim prints no value"
+    if shown.amount.dimension != j.claimed.dimension or shown.amount.value != j.claimed.value:
+        return "the printed number is no longer the one that it accepts"
+    same = truth.amount.dimension == j.computed.dimension
+    if not same or fit(truth, j.computed.value, Fraction(0)) == "no":
+        return "the recomputed number is no longer the one that it names"
+    return ""
+
+
+def _finding(kind: str, message: str, waiver: Waiver) -> Finding:
+    return Finding(kind, RULES[kind].severity, message, waiver.span)

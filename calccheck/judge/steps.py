@@ -1,0 +1,303 @@
+"""One member of a chain held against the truth of the chain."""
+
+from __future__ import annotations
+
+from collections.abc import Iterator, Sequence
+from dataclasses import dataclass, field, replace
+
+from calccheck.arithmetic import COHERENT, Amount, DimensionFault, Doubt, Real, size
+from calccheck.formula import Number, references
+from calccheck.judge import quantities, say
+from calccheck.judge.laws import followed
+from calccheck.judge.members import Names, Worked, without_unit
+from calccheck.judge.rounding import SLACK, Printed, coarse, deviation, equal, fit
+from calccheck.judge.scope import Key, Ledger
+from calccheck.judge.trace import Traced, reach, trace, worked_pieces
+from calccheck.model import Basis, Finding, Relation, Step, Verdict
+from calccheck.rules import RULES
+from calccheck.units import NONE, WATT, words
+
+
+@dataclass(slots=True)
+class Ground:
+    """What the members of one segment are held against, and what was said on the way.
+
+    ``truth`` moves to a formula behind ``≈``. ``carried``: value of the last substitution that reaches the truth.
+    """
+
+    truth: Amount
+    basis: Basis
+    source: Worked
+    members: Sequence[Worked]
+    names: Names
+    ledger: Ledger
+    carried: Amount | None = None
+    cautions: list[str] = field(default_factory=list)
+    findings: list[Finding] = field(default_factory=list)
+
+    def trace_truth(self) -> None:
+        """A truth worked from printed numbers alone: say which of them stand for nothing."""
+        if self.source.sort == "substitution":
+            self.say_untraced(self.traced(self.source))
+
+    def traced(self, w: Worked) -> list[Traced]:
+        """What the printed numbers of a member stand for."""
+        return trace(w.node, self.pieces(w), self.exact_values(), self.ledger)
+
+    def exact_values(self) -> list[Amount]:
+        """Values of parts and givens, and of what ``with … as`` puts in their place."""
+        found = [d.exact for d in self.ledger.names.values() if d.given]
+        for c in self.ledger.circuits:
+            for e in c.elements:
+                if e.stated is not None:
+                    found.append(e.stated)
+        key = self.source.key
+        return [*found, *(v for _, _, v in key.changes if v is not None)] if key else found
+
+    def pieces(self, w: Worked) -> list[Amount]:
+        """Worked values that a number of this member may round: the pieces of the members before it, and the circuit's."""
+        found: list[Amount] = []
+        for other in self.members:
+            if other is w:
+                break
+            found += worked_pieces(other.node, self.names.amount)
+        return [*found, *self.circuit_values()]
+
+    def circuit_values(self) -> Iterator[Amount]:
+        """Voltages, currents and powers of the truth's circuit under its own qualifiers, printed or not."""
+        key = self.source.key
+        if key is None or key.circuit < 0 or key.letter not in ("V", "I", "P"):
+            return
+        try:
+            circuit = quantities.circuit_of(key, self.ledger, self.source.member.span)
+        except Doubt:
+            return
+        wanted = [("V", n) for n in circuit.nodes()] + [(x, e.name) for e in circuit.elements for x in ("V", "I", "P")]
+        for letter, name in wanted:
+            try:
+                yield quantities.amount(
+                    replace(key, letter=letter, subscripts=(name,)), self.ledger, self.source.member.span
+                )
+            except Doubt:
+                continue
+
+    def say_untraced(self, traced: Sequence[Traced]) -> None:
+        """The caution about numbers that stand for nothing."""
+        lost = [t.number for t in traced if not t.found]
+        if lost:
+            which = " and ".join(dict.fromkeys(_shown(n) for n in lost))
+            verb = "stands" if len({_shown(n) for n in lost}) == 1 else "stand"
+            self.cautions.append(
+                f"untraced: {which} {verb} for no part, given, earlier value or piece of the formula; taken as exact"
+            )
+
+
+def _shown(n: Number) -> str:
+    return f"{n.digits} {n.unit.text}".strip()
+
+
+def judge_member(w: Worked, relation: Relation, ground: Ground) -> Step:
+    """One ``=`` or ``≈``."""
+    if w.doubt is not None:
+        return _step(w, "unchecked", say.reason(w.doubt.reason, w.doubt.suggestion))
+    assert w.amount is not None
+    if w.amount.dimension != ground.truth.dimension:
+        return _other_dimension(w, relation, ground)
+    if w.printed is not None:
+        return _value(w, w.printed, relation, ground)
+    if relation == "≈":
+        return _approximate_formula(w, ground)
+    if w.sort == "substitution" or _rests_on_rounding(w, ground):
+        return _substitution(w, ground)
+    if equal(w.amount.value, ground.truth.value):
+        return _step(w, "agrees")
+    return _step(
+        w, "differs", f"{w.member.text} comes to {say.value(w.amount)}, {_subject(ground)} to {say.value(ground.truth)}"
+    )
+
+
+def _step(w: Worked, verdict: Verdict, message: str = "") -> Step:
+    return Step(w.member.text, w.member.span, w.relation, verdict, w.amount, message)
+
+
+def _subject(ground: Ground) -> str:
+    return ground.source.member.text
+
+
+# --- dimensions -----------------------------------------------------------------------------------------------------
+
+
+def _other_dimension(w: Worked, relation: Relation, ground: Ground) -> Step:
+    """A member in another dimension than the truth: numbers without units are read in coherent ones; the rest is a fault."""
+    assert w.amount is not None
+    bare_member = without_unit(w) and w.amount.dimension == NONE and ground.truth.dimension in _COHERENT
+    bare_truth = without_unit(ground.source) and ground.truth.dimension == NONE and w.amount.dimension in _COHERENT
+    if bare_member or bare_truth:
+        return _bare(w, relation, ground, bare_member)
+    if without_unit(w) or without_unit(ground.source):
+        return _step(w, "unchecked", "numbers without units among quantities: write the unit behind each number")
+    message = f"{_subject(ground)} is {words(ground.truth.dimension)}, {w.member.text} is {words(w.amount.dimension)}"
+    ground.findings.append(Finding("dimension", RULES["dimension"].severity, message, w.member.span))
+    return _step(w, "differs", message)
+
+
+_COHERENT = {*COHERENT, WATT}
+
+
+def _bare(w: Worked, relation: Relation, ground: Ground, bare_member: bool) -> Step:
+    """Numbers without units read in volts, amperes, ohms, farads, henries, seconds: right, or unchecked, never wrong."""
+    assert w.amount is not None
+    dimension = ground.truth.dimension if bare_member else w.amount.dimension
+    dressed = replace(w, amount=Amount(w.amount.value, dimension))
+    if w.printed is not None:
+        dressed = replace(dressed, printed=replace(w.printed, amount=Amount(w.printed.amount.value, dimension)))
+    before = ground.truth
+    ground.truth = Amount(ground.truth.value, dimension)
+    held = _bare_fits(dressed, relation, ground)
+    if held.verdict in ("agrees", "rounded"):
+        ground.cautions.append(
+            f"no units in {w.member.text if bare_member else _subject(ground)}: read in coherent units"
+        )
+        return held
+    ground.truth = before
+    return _step(w, "unchecked", f"no units: read in coherent units it does not fit ({held.message}); write the units")
+
+
+def _bare_fits(w: Worked, relation: Relation, ground: Ground) -> Step:
+    assert w.amount is not None
+    if w.printed is not None:
+        return _value(w, w.printed, relation, ground)
+    distance = size(w.amount.value - ground.truth.value)
+    if distance <= ground.ledger.settings.carry * size(
+        ground.truth.value
+    ):  # its numbers cannot be traced without units
+        ground.carried = w.amount
+        return _step(w, "agrees")
+    return _step(w, "differs", f"it comes to {say.value(w.amount)}, not {say.value(ground.truth)}")
+
+
+# --- formulas and substitutions -------------------------------------------------------------------------------------
+
+
+def _approximate_formula(w: Worked, ground: Ground) -> Step:
+    assert w.amount is not None
+    off = deviation(w.amount.value, ground.truth.value)
+    if equal(w.amount.value, ground.truth.value):
+        step = _step(w, "agrees")
+    elif off is not None and abs(off) <= ground.ledger.settings.approx:
+        step = _step(w, "rounded", f"neglects {say.percent(off)} of {_subject(ground)}")
+    else:
+        gap = "from zero" if off is None else f"by {say.percent(off)}"
+        message = f"{w.member.text} is {say.value(w.amount)}, off {gap} from {_subject(ground)} = {say.value(ground.truth)}: no approximation"
+        return _step(w, "differs", message)
+    ground.truth = w.amount  # what follows is held to the formula, not to the truth before it
+    return step
+
+
+def _spreads(w: Worked, ground: Ground) -> dict[str, Real]:
+    """How far the names in a member may be off: givens are rounded where the circuit knows better."""
+    found: dict[str, Real] = {}
+    for r in references(w.node):
+        d = ground.ledger.names.get(r.word)
+        if d is not None and d.spread and (not d.given or ground.basis == "circuit"):
+            found[r.word] = d.spread
+    return found
+
+
+def _rests_on_rounding(w: Worked, ground: Ground) -> bool:
+    return bool(_spreads(w, ground))
+
+
+def _substitution(w: Worked, ground: Ground) -> Step:
+    """A member with printed values in it: it reaches the truth within the rounding of its numbers."""
+    assert w.amount is not None
+    traced = ground.traced(w)
+    ground.say_untraced(traced)
+    truth = ground.truth.value
+    try:
+        low, high = reach(w.node, ground.names.amount, traced, _spreads(w, ground))
+    except (Doubt, DimensionFault):
+        low = high = w.amount.value
+    slack = SLACK * size(truth)
+    if low - slack <= truth <= high + slack:
+        ground.carried = w.amount
+        return _step(w, "agrees")
+    faulty = next((t.faulty for t in traced if t.faulty is not None), None)
+    message = f"{w.member.text} comes to {say.value(w.amount)}, {_subject(ground)} to {say.value(ground.truth)}"
+    if high > low:
+        message += f"; the rounding of its numbers allows {say.value(Amount(low, w.amount.dimension))} to {say.value(Amount(high, w.amount.dimension))}"
+    if faulty is not None:
+        message += f"; it carries on {say.value(faulty.printed.amount, faulty.printed.unit_text)}, which differs above"
+    return _step(w, "differs", message)
+
+
+# --- values ---------------------------------------------------------------------------------------------------------
+
+
+def _value(w: Worked, p: Printed, relation: Relation, ground: Ground) -> Step:
+    """A printed value: by its last place, then cut off, then carried rounding."""
+    truth, settings = ground.truth, ground.ledger.settings
+    if ground.source.restates and relation != "≈":
+        return _restated(w, p, ground)
+    largest = (
+        quantities.scale(ground.source.key, ground.ledger, truth.dimension) if p.digits == 0 and _circuit(ground) else 0
+    )
+    how = fit(p, truth.value, settings.carry, largest)
+    if how == "exact place":
+        if coarse(p, truth.value):
+            ground.cautions.append(
+                f"coarse: {w.member.text} says no more than ±{say.value(Amount(p.half, truth.dimension), p.unit_text, 3)}"
+            )
+        return _step(w, "agrees")
+    off = deviation(p.amount.value, truth.value)
+    near = say.near(truth, p)
+    if how == "cut off":
+        return _step(w, "rounded", f"cut off, not rounded: {near}")
+    if how == "whole zeros":
+        return _step(w, "rounded", f"rounded to its figures before the zeros: {near}")
+    if relation == "≈" and p.figures <= 2 and off is not None and abs(off) <= settings.approx:
+        return _step(w, "rounded", f"near {near} ({say.percent(off)})")
+    law = _carried(p, ground)
+    if law:
+        return _step(
+            w,
+            "rounded",
+            f"carried rounding: follows from {law}; exact {near}" + (f" ({say.percent(off)})" if off else ""),
+        )
+    shift = f" ({say.percent(off)})" if off is not None else ""
+    return _step(w, "differs", f"{_subject(ground)} comes to {near}, printed {w.member.text}{shift}")
+
+
+def _circuit(ground: Ground) -> bool:
+    return ground.basis == "circuit" and ground.source.key is not None and ground.source.key.circuit >= 0
+
+
+def _restated(w: Worked, p: Printed, ground: Ground) -> Step:
+    """A part's own value, repeated: it is the very value or it is wrong."""
+    if equal(p.amount.value, ground.truth.value):
+        return _step(w, "agrees")
+    return _step(
+        w,
+        "differs",
+        f"the circuit block has {_subject(ground)} = {say.value(ground.truth, p.unit_text)}, printed {w.member.text}",
+    )
+
+
+def _carried(p: Printed, ground: Ground) -> str:
+    """What printed values the value follows from, within the carry that the sheet allows; nothing where it does not."""
+    truth = ground.truth.value
+    if size(p.amount.value - truth) > ground.ledger.settings.carry * size(truth):
+        return ""
+    if any(m.sort == "substitution" for m in ground.members):
+        return "the working before it" if ground.carried is not None and _follows(p, ground.carried.value) else ""
+    key: Key | None = ground.source.key
+    if key is None or key.circuit < 0:
+        return ""
+    circuit = quantities.circuit_of(key, ground.ledger, ground.source.member.span)
+    return next(
+        (f"{law} with values printed above" for v, law in followed(key, ground.ledger, circuit) if _follows(p, v)), ""
+    )
+
+
+def _follows(p: Printed, v: Real) -> bool:
+    return size(p.amount.value - v) <= p.half + SLACK * size(v)

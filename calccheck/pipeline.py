@@ -1,0 +1,78 @@
+"""The whole program in one place: read, solve, judge, in that order."""
+
+from __future__ import annotations
+
+from collections.abc import Callable, Sequence
+from datetime import date
+
+from calccheck.arithmetic import Doubt
+from calccheck.edits import unmark
+from calccheck.judge.sheet import judge_sheet
+from calccheck.model import Circuit, CircuitFigures, Finding, Reading, Report, Settings, Solution
+from calccheck.read.sheet import read_sheet
+from calccheck.solve import Unsolvable, solve
+from calccheck.source import Sheet
+
+Solve = Callable[[Circuit], Solution]
+
+
+def check(sheet: Sheet, settings: Settings | None = None) -> Report:
+    """The report on one sheet. Marks of an earlier run are taken out first; no sheet makes this raise."""
+    reading = read_sheet(Sheet(sheet.name, unmark(sheet.text)), settings or Settings())
+    solve_once = solver()
+    solutions, faults = _solved(reading.circuits, solve_once)
+    judged, findings = judge_sheet(reading, solve_once, reading.settings.on or date.today())
+    every = sorted((*reading.findings, *faults, *findings), key=lambda f: f.span.start)
+    return Report(reading, judged, tuple(every), _figures(reading, solutions), solutions)
+
+
+def solver() -> Solve:
+    """A solver that solves each circuit once and raises ``Doubt`` where one cannot be solved."""
+    known: dict[Circuit, Solution | Doubt] = {}
+
+    def solve_once(circuit: Circuit) -> Solution:
+        if circuit not in known:
+            try:
+                known[circuit] = solve(circuit)
+            except Unsolvable as u:
+                known[circuit] = Doubt(f"its circuit cannot be solved: {u.findings[0].message}", u.findings[0].span)
+        found = known[circuit]
+        if isinstance(found, Doubt):
+            raise Doubt(found.reason, found.span)
+        return found
+
+    return solve_once
+
+
+def _solved(circuits: Sequence[Circuit], solve_once: Solve) -> tuple[tuple[Solution | None, ...], list[Finding]]:
+    """Each circuit as drawn, solved or not, with the findings that say why not."""
+    solutions: list[Solution | None] = []
+    faults: list[Finding] = []
+    for circuit in circuits:
+        try:
+            solutions.append(solve_once(circuit))
+        except Doubt:
+            solutions.append(None)
+            faults += _faults(circuit)
+    return tuple(solutions), faults
+
+
+def _faults(circuit: Circuit) -> tuple[Finding, ...]:
+    """Why a circuit has no solution; what its reader said already is not said twice."""
+    if circuit.problems:
+        return ()
+    try:
+        solve(circuit)
+    except Unsolvable as u:
+        return u.findings
+    return ()
+
+
+def _figures(reading: Reading, solutions: Sequence[Solution | None]) -> tuple[CircuitFigures, ...]:
+    return tuple(
+        CircuitFigures(
+            c.name, reading.sheet.line_column(c.span.start)[0], len(c.nodes()), len(c.elements),
+            s.gap if s else None, s.residual if s else None, s.balance if s else None,
+        )
+        for c, s in zip(reading.circuits, solutions, strict=True)
+    )  # fmt: skip

@@ -1,0 +1,60 @@
+"""Claims left in plain prose: a name of the circuit or a quantity, a relation and a value, outside of code.
+
+Nobody can tell where such a claim ends, so it is not guessed at: it is unchecked, with the line to copy.
+"""
+
+from __future__ import annotations
+
+import re
+from bisect import bisect_left
+from collections.abc import Sequence
+from functools import lru_cache
+from itertools import pairwise
+
+from calccheck.document import Block, inlines
+from calccheck.model import Claim, Problem
+from calccheck.source import NOWHERE
+
+_QUANTITY = r"(?:Isc|[VIPRZSQ])(?:\\?_\{[^{}]*\}|\\?_[A-Za-z0-9]\w*)|\|[VI]\\?_\w+\|"
+_VALUE = r"[-−+]?\s?(?:\d+(?:[.,]\d+)?|\.\d+)(?:\s?[a-zA-ZµμΩΩ%°][\w/·°%²³]*)?"
+_RELATION = r"(?:[=≈<≤>≥]|~=|\\?[<>]=?)"
+
+
+@lru_cache(maxsize=64)
+def _pattern(names: tuple[str, ...]) -> re.Pattern[str]:
+    known = "|".join(re.escape(n) for n in sorted(names, key=len, reverse=True))
+    subject = f"{_QUANTITY}|{known}" if known else _QUANTITY
+    return re.compile(rf"(?<![\w.])(?P<subject>{subject})[*_]*\s*(?P<relation>{_RELATION})\s*(?P<value>{_VALUE})")
+
+
+def prose_claims(block: Block, names: Sequence[str], circuit: int) -> list[Claim]:
+    """What reads as a claim in a block's plain text. Code, maths and HTML in it are left out."""
+    content = block.content
+    if content is None or not any(c in content.text for c in "=≈<≤>≥~"):
+        return []
+    text = list(content.text)
+    at = [p if p != NOWHERE else -1 for p in content.at]
+    if any(a > b for a, b in pairwise(at)):
+        at = _rising(at)
+    for inline in inlines(block.inlines):
+        if inline.kind in ("code", "math", "html"):
+            first, last = bisect_left(at, inline.span.start), bisect_left(at, inline.span.end)
+            text[first:last] = " " * (last - first)
+    claims = []
+    for m in _pattern(tuple(names)).finditer("".join(text)):
+        span = content.span(m.start(), m.end())
+        written = m["subject"].replace("\\", "").strip("*_")
+        problem = Problem(
+            "a claim in plain prose: put it in code", span, f"`{written} {m['relation'].strip(chr(92))} {m['value']}`"
+        )
+        claims.append(Claim(m.group().strip(), span, "prose", circuit, problem=problem))
+    return claims
+
+
+def _rising(at: list[int]) -> list[int]:
+    """Offsets with those of characters that stand nowhere filled in, so that they can be searched."""
+    last, filled = 0, []
+    for p in at:
+        last = max(last, p)
+        filled.append(last)
+    return filled

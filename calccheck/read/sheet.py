@@ -1,0 +1,99 @@
+"""A whole sheet read: page, title block, circuits, claims."""
+
+from __future__ import annotations
+
+from collections.abc import Sequence
+
+from calccheck.arithmetic import Amount, DimensionFault, Doubt, evaluate
+from calccheck.document import Block, blocks, inlines
+from calccheck.formula import Node, Range, Reference
+from calccheck.model import Circuit, Finding, Reading, Settings
+from calccheck.read.circuit_block import given_lines, read_circuit
+from calccheck.read.claims import assumption, read_claims
+from calccheck.read.markdown import read_page
+from calccheck.read.titleblock import read_titleblock
+from calccheck.source import Piece, Sheet
+
+
+def read_sheet(sheet: Sheet, repository: Settings) -> Reading:
+    """Everything that a sheet says, with its places. ``repository``: settings that the sheet's own ``check:`` overrides."""
+    page = read_page(sheet.text)
+    front = page[0] if page and page[0].kind == "front matter" else None
+    title, settings, findings = read_titleblock(front, repository)
+    fences = [b for b in blocks(page) if b.kind == "fence"]
+    circuit_fences = [f for f in fences if _word(f) == "circuit"]
+    is_calc = bool(circuit_fences) or any(_word(f) == "working" for f in fences) or "sheet" in title
+    if not is_calc:
+        return Reading(sheet, page, False, title, settings, (), (), ())
+    givens = _givens(page)
+    circuits: list[Circuit] = []
+    for fence in circuit_fences:
+        reading = read_circuit(fence, givens, sheet)
+        circuits.append(reading.circuit)
+        findings = (*findings, *reading.findings)
+    found = read_claims(page, _names(circuits), [given_lines(f) for f in circuit_fences])
+    every = sorted((*findings, *_same_names(circuits, sheet), *found.findings), key=lambda f: f.span.start)
+    return Reading(
+        sheet, page, True, title, settings, tuple(circuits), tuple(found.claims), tuple(every), found.not_read
+    )  # fmt: skip
+
+
+def _word(fence: Block) -> str:
+    return (fence.info.split() or [""])[0]
+
+
+def _names(circuits: Sequence[Circuit]) -> list[str]:
+    return [n for c in circuits for n in (*(e.name for e in c.elements), *c.nodes())]
+
+
+def _same_names(circuits: Sequence[Circuit], sheet: Sheet) -> list[Finding]:
+    """Two circuits of one sheet called alike, by which ``of NAME`` could mean either."""
+    seen: dict[str, Circuit] = {}
+    found = []
+    for c in circuits:
+        if c.name and c.name in seen:
+            line = sheet.line_column(seen[c.name].span.start)[0]
+            found.append(Finding("circuit-name", "error", f"a circuit called {c.name} stands in line {line} already", c.span))
+        seen.setdefault(c.name, c)
+    return found
+
+
+def _givens(page: tuple[Block, ...]) -> dict[str, Amount]:
+    """The sheet's assumptions that part values may be worked from, wherever in the sheet they stand."""
+    known: dict[str, Amount] = {}
+    for piece in _given_pieces(page):
+        claim = assumption(piece, "working", -1)
+        if claim.problem is not None or not isinstance(claim.members[0].node, Reference):
+            continue
+        amount = _worked(claim.members[1].node, known)
+        if amount is not None:
+            known.setdefault(claim.members[0].node.word, amount)
+    return known
+
+
+def _given_pieces(page: tuple[Block, ...]) -> list[Piece]:
+    found: list[Piece] = []
+    for block in blocks(page):
+        if block.kind == "fence" and _word(block) == "circuit":
+            found += given_lines(block)
+        elif block.kind == "fence" and _word(block) == "working":
+            lines = [line.part(0, len(line.text.partition("#")[0])).strip() for line in block.lines]
+            found += [line for line in lines if line.text.startswith("given ")]
+        elif block.inlines:
+            codes = [i.text for i in inlines(block.inlines) if i.kind == "code" and i.text is not None]
+            found += [c for c in codes if c.text.lstrip().startswith("given ")]
+    return found
+
+
+def _worked(node: Node, known: dict[str, Amount]) -> Amount | None:
+    def lookup(ref: Reference) -> Amount:
+        if ref.word not in known:
+            raise Doubt(ref.word)
+        return known[ref.word]
+
+    if isinstance(node, Range):
+        return None
+    try:
+        return evaluate(node, lookup)
+    except (Doubt, DimensionFault):
+        return None
