@@ -125,30 +125,29 @@ def tails(page: Page, content: str, first: int) -> tuple[Piece, ...]:
     return tuple(tail(page, first + k, text, page.starts[first + k]) for k, text in enumerate(texts))
 
 
-def trimmed(cell: Piece) -> Piece:
-    """The piece without blanks at its ends; nothing but blanks leaves nothing, at its start."""
-    text = cell.text.strip(BLANKS)
-    lead = cell.text.find(text)
-    return cell.part(lead, lead + len(text))
+def trimmed(text: Piece, start: int = 0, end: int | None = None) -> Piece:
+    """``text[start:end]`` without blanks at its ends; nothing but blanks leaves nothing, at its start."""
+    whole_part = text.text[start:end]
+    part = whole_part.strip(BLANKS)
+    start += whole_part.find(part)
+    return text.part(start, start + len(part))
 
 
 def cells(row: Piece) -> list[Piece]:
-    """A table row's cells, trimmed (GitHub Flavored Markdown 0.29, section 4.10): a pipe behind a backslash is none of
-    the borders and loses its backslash; the outermost borders may be left out.
+    """The cells, trimmed, of a trimmed table row (GitHub Flavored Markdown 0.29, section 4.10): a pipe behind a
+    backslash is no border and loses the backslash; the outermost borders may be left out.
     """
-    row = trimmed(row)
-    ends = [*(border.start() for border in _BORDER.finditer(row.text)), len(row.text)]
-    starts = [0, *(end + 1 for end in ends[:-1])]
-    parts = [row.part(start, end) for start, end in zip(starts, ends, strict=True)]
-    if not parts[0].text:
-        parts.pop(0)
-    if parts and not parts[-1].text:
-        parts.pop()
-    return [trimmed(_without_escapes(part)) for part in parts]
+    text = row.text
+    ends = [*(border.start() for border in _BORDER.finditer(text)), len(text)]
+    bounds = list(zip([0, *(end + 1 for end in ends)], ends, strict=False))
+    if ends[0] == 0:
+        bounds.pop(0)
+    if bounds and bounds[-1][0] == len(text):
+        bounds.pop()
+    found = [trimmed(row, start, end) for start, end in bounds]
+    return [_without_escapes(cell) if "\\|" in cell.text else cell for cell in found]
 
 
 def _without_escapes(cell: Piece) -> Piece:
-    if "\\|" not in cell.text:
-        return cell
     kept = [k for k in range(len(cell.text)) if not cell.text.startswith("\\|", k)]
     return Piece(cell.text.replace("\\|", "|"), [*(cell.at[k] for k in kept), cell.at[-1]])

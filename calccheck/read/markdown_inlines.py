@@ -7,9 +7,8 @@ Those follow from token and content, so that adding them up gives every place.
 from __future__ import annotations
 
 import re
-from collections.abc import Iterator, Sequence
+from collections.abc import Sequence
 from dataclasses import dataclass
-from itertools import groupby
 
 from markdown_it.token import Token
 
@@ -19,7 +18,7 @@ from calccheck.source import NOWHERE, Piece, Span
 DEEPEST = 60
 """How deep inlines nest here; the mark-up of deeper ones is passed over, their text is not."""
 
-_Placed = tuple[Token, int, int]  # a token, and where it starts and ends in the content
+_Placed = tuple[Token, int]  # a token, and where it starts in the content
 
 _KINDS: dict[str, InlineKind] = {
     "code_inline": "code",
@@ -50,42 +49,38 @@ class _Open:
 
 def read_inlines(tokens: Sequence[Token], content: Piece) -> tuple[Inline, ...]:
     """The inlines of ``content``; should the tokens not cover it, one run of text."""
-    placed = list(_placed(tokens, content.text))
-    if (placed[-1][2] if placed else 0) != len(content.text):
-        return (Inline("text", content.span(), content),)
+    if len(tokens) == 1 and tokens[0].content == content.text and tokens[0].type == "text":
+        return (Inline("text", _span(content, 0, len(content.text)), content),)  # the most common by far
     stack = [_Open("text", 0, "", [])]
-    for is_text, group in groupby(placed, _is_text):
-        if is_text:
-            stack[-1].children.append(_text(list(group), content))
-            continue
-        for one in group:
-            _nest(stack, one, content)
-    return tuple(stack[0].children)
-
-
-def _is_text(one: _Placed) -> bool:
-    return one[0].type in ("text", "text_special")
-
-
-def _placed(tokens: Sequence[Token], source: str) -> Iterator[_Placed]:
-    """Each token with its place; those that stand for nothing (used-up marks of emphasis) left out."""
-    start = 0
-    in_autolink = False
+    start = here = 0  # a run of text begins and ends there
+    escapes: list[_Placed] = []
     for token in tokens:
-        # the text of an autolink is its address as shown, not as written
-        end = source.find(">", start) if in_autolink else _end(token, source, start)
-        in_autolink = token.markup == "autolink" and token.nesting > 0
-        if end > start:
-            yield token, start, end
-            start = end
+        if token.type == "text":
+            here += len(token.content)
+            continue
+        if token.type == "text_special":
+            escapes.append((token, here))
+            here += len(token.markup)
+            continue
+        if start < here:
+            stack[-1].children.append(_text(content, start, here, escapes))
+            escapes = []
+        start, here = here, min(_end(token, content.text, here), len(content.text))
+        _nest(stack, token, content, start, here)
+        start = here
+    if here != len(content.text):
+        return (Inline("text", content.span(), content),)
+    if start < here:
+        stack[-1].children.append(_text(content, start, here, escapes))
+    return tuple(stack[0].children)
 
 
 def _end(token: Token, source: str, start: int) -> int:
     match token.type:
-        case "text" | "html_inline":
-            return start + len(token.content)
         case "code_inline":
             return _code_end(token, source, start)
+        case "html_inline":
+            return start + len(token.content)
         case "softbreak" | "hardbreak":
             found = _BREAK.match(source, start)
             return found.end() if found else start
@@ -97,7 +92,7 @@ def _end(token: Token, source: str, start: int) -> int:
             return start + 2 * len(token.markup) + len(token.content)
         case "footnote_ref":
             return start + len(f"[^{token.meta['label']}]")
-        case _:  # marks of emphasis, escapes and entities
+        case _:  # marks of emphasis
             return start + len(token.markup)
 
 
@@ -109,29 +104,28 @@ def _code_end(token: Token, source: str, start: int) -> int:
     return bare + len(token.markup) + (0 if as_written else 2)
 
 
-def _text(run: list[_Placed], content: Piece) -> Inline:
+def _text(content: Piece, start: int, end: int, escapes: Sequence[_Placed]) -> Inline:
     """A run of text; what an escape or entity stands for stands where that begins."""
-    start, end = run[0][1], run[-1][2]
     piece = content.part(start, end)
-    if any(token.type != "text" and token.content != token.markup for token, _, _ in run):
-        text, at = "", list[int]()
-        for token, begin, stop in run:
-            if token.type == "text" or token.content == token.markup:
-                text += content.text[begin:stop]
-                at += content.at[begin:stop]
+    if escapes:
+        text, at, here = "", list[int](), start
+        for token, begin in escapes:
+            text += content.text[here:begin] + token.content
+            at += content.at[here:begin]
+            here = begin + len(token.markup)
+            if token.content == token.markup:  # a backslash before a letter is itself
+                at += content.at[begin:here]
             else:
-                text += token.content
                 at += [content.at[begin], *[NOWHERE] * (len(token.content) - 1)]
-        piece = Piece(text, [*at, content.at[end]])
+        piece = Piece(text + content.text[here:end], [*at, *content.at[here : end + 1]])
     return Inline("text", _span(content, start, end), piece)
 
 
-def _nest(stack: list[_Open], one: _Placed, content: Piece) -> None:
+def _nest(stack: list[_Open], token: Token, content: Piece, start: int, end: int) -> None:
     """Put an inline among the children of the one around it, or open or close one."""
-    token, start, end = one
     around = stack[-1]
     if token.nesting == 0:
-        around.children.append(_leaf(token, start, end, content))
+        around.children.append(_leaf(token, content, start, end))
     elif token.nesting > 0:
         children = around.children if len(stack) > DEEPEST else []
         stack.append(_Open(_KINDS[token.type], start, str(token.attrs.get("href", "")), children))
@@ -142,12 +136,12 @@ def _nest(stack: list[_Open], one: _Placed, content: Piece) -> None:
             stack[-1].children.append(Inline(around.kind, span, None, tuple(around.children), around.target))
 
 
-def _leaf(token: Token, start: int, end: int, content: Piece) -> Inline:
+def _leaf(token: Token, content: Piece, start: int, end: int) -> Inline:
     kind, span = _KINDS[token.type], _span(content, start, end)
     match kind:
         case "code" | "math" | "html":
             lead = start + (end - start - len(token.content)) // 2
-            return Inline(kind, span, Piece(token.content, content.part(lead, lead + len(token.content)).at))
+            return Inline(kind, span, Piece(token.content, content.at[lead : lead + len(token.content) + 1]))
         case "image":
             label = content.part(start + 2, start + 2 + len(token.content))
             return Inline(kind, span, None, read_inlines(token.children or (), label), str(token.attrs["src"]))
