@@ -273,10 +273,18 @@ class CircuitFigures:
 
 @dataclass(frozen=True, slots=True)
 class Settings:
-    """The sheet's and repository's settings, section 7 of the language."""
+    """The sheet's and repository's settings, section 7 of the language.
+
+    ``phasors``: ``rms`` or ``peak``; ``derate``: fraction of every rating; ``preferred``: an IEC 60063 series or nothing;
+    ``frequency``: of unmarked AC parts, as written.
+    """
 
     carry: Fraction = Fraction(5, 1000)
     approx: Fraction = Fraction(5, 100)
+    phasors: str = "rms"
+    derate: Fraction = Fraction(1)
+    preferred: str = ""
+    frequency: str = ""
     on: date | None = None
 
 
