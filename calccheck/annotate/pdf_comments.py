@@ -1,0 +1,207 @@
+"""Real PDF comments: links that typst set around claims become highlight annotations with words (ISO 32000-1, 12.5.6.10).
+
+The file is read by pypdf and lengthened by an incremental update (ISO 32000-1, 7.5.6): what typst wrote stays as it is, the
+changed objects follow behind it. That keeps the file's version, identity and archive marks, and costs a tenth of rewriting it.
+"""
+
+from __future__ import annotations
+
+from dataclasses import dataclass
+from datetime import date
+from hashlib import sha256
+from io import BytesIO
+
+from pypdf import PdfReader
+from pypdf.generic import (
+    ArrayObject,
+    ByteStringObject,
+    DictionaryObject,
+    FloatObject,
+    IndirectObject,
+    NameObject,
+    NumberObject,
+    PdfObject,
+    StreamObject,
+    TextStringObject,
+)
+
+SCHEME = "annot:"
+_AUTHOR = "calccheck"
+
+Box = tuple[float, float, float, float]
+
+
+@dataclass(frozen=True, slots=True)
+class Comment:
+    """The words of one comment and the colour of its highlight as RGB hex."""
+
+    subject: str
+    text: str
+    colour: str
+
+
+def add_comments(pdf: bytes, comments: dict[str, Comment], day: date) -> bytes:
+    """The file with every link to ``annot:KEY`` (or ``annot:KEY+KEY``) turned into a highlight with those comments."""
+    reader = PdfReader(BytesIO(pdf))
+    parents = _structure_parents(reader)
+    size = int(reader.trailer["/Size"])
+    changed: dict[int, PdfObject] = {}
+    names: set[str] = set()
+    for page in reader.pages:
+        for reference in page.get("/Annots", ()):
+            link = reference.get_object()
+            keys = _keys(link)
+            if not keys:
+                continue
+            boxes = _lines_of(link)
+            look = size + sum(number >= size for number in changed)
+            changed[look] = _appearance(boxes, comments[keys[0]].colour)
+            name = _unused("+".join(keys), names)
+            note = _highlight([comments[k] for k in keys], boxes, look, reader, day, name)
+            if "/StructParent" in link:
+                note[NameObject("/StructParent")] = link["/StructParent"]
+            changed[reference.idnum] = note
+            element = parents.get(int(link.get("/StructParent", -1)))
+            if element is not None:  # in the tagged text, too, it is an annotation now and no link
+                tag = DictionaryObject(element.get_object())
+                tag[NameObject("/S")] = NameObject("/Annot")
+                changed[element.idnum] = tag
+    return _updated(pdf, reader, changed)
+
+
+def _keys(link: DictionaryObject) -> list[str]:
+    action = link.get("/A")
+    address = str(action.get_object().get("/URI", "")) if action is not None else ""
+    return address.removeprefix(SCHEME).split("+") if address.startswith(SCHEME) else []
+
+
+def _unused(name: str, names: set[str]) -> str:
+    """An annotation's name, unique in the file: a claim that runs over a page's end has two."""
+    k = 2
+    whole = name
+    while whole in names:
+        whole, k = f"{name}-{k}", k + 1
+    names.add(whole)
+    return whole
+
+
+def _structure_parents(reader: PdfReader) -> dict[int, IndirectObject]:
+    """From the number that an annotation bears to its element in the structure tree (ISO 32000-1, 14.7.4.4)."""
+    found: dict[int, IndirectObject] = {}
+    root = reader.trailer["/Root"].get("/StructTreeRoot")
+    waiting = [] if root is None else [root.get_object()["/ParentTree"]]
+    while waiting:
+        node = waiting.pop().get_object()
+        numbers = node.get("/Nums", [])
+        found.update((int(numbers[k]), list.__getitem__(numbers, k + 1)) for k in range(0, len(numbers), 2))
+        waiting += node.get("/Kids", [])
+    return {k: v for k, v in found.items() if isinstance(v, IndirectObject)}
+
+
+def _lines_of(link: DictionaryObject) -> list[Box]:
+    """The boxes of a link, one for each line of text: pieces that a change of font has parted are joined."""
+    flat = [float(v) for v in link.get("/QuadPoints") or ()]
+    quads = [flat[k : k + 8] for k in range(0, len(flat), 8)]
+    x0, y0, x1, y1 = (float(v) for v in link["/Rect"])
+    parts = [(min(q[::2]), min(q[1::2]), max(q[::2]), max(q[1::2])) for q in quads] or [(x0, y0, x1, y1)]
+    lines: list[Box] = []
+    for part in sorted(parts, key=lambda b: (b[1] - b[3], b[0])):  # the tallest first: it tells the line
+        for k, line in enumerate(lines):
+            shared = min(line[3], part[3]) - max(line[1], part[1])
+            if shared > 0.4 * (part[3] - part[1]):
+                lines[k] = (min(line[0], part[0]), min(line[1], part[1]), max(line[2], part[2]), max(line[3], part[3]))
+                break
+        else:
+            lines.append(part)
+    return sorted(lines, key=lambda b: -b[3])
+
+
+def _rgb(colour: str) -> list[float]:
+    return [int(colour[k : k + 2], 16) / 255 for k in (1, 3, 5)]
+
+
+def _reals(*values: float) -> ArrayObject:
+    return ArrayObject(FloatObject(round(v, 3)) for v in values)
+
+
+def _around(boxes: list[Box]) -> Box:
+    return (min(b[0] for b in boxes), min(b[1] for b in boxes), max(b[2] for b in boxes), max(b[3] for b in boxes))
+
+
+def _names(**entries: PdfObject) -> DictionaryObject:
+    return DictionaryObject({NameObject(f"/{key}"): value for key, value in entries.items()})
+
+
+def _appearance(boxes: list[Box], colour: str) -> StreamObject:
+    """The highlight as drawn: the boxes filled, darkening what lies below."""
+    red, green, blue = _rgb(colour)
+    fills = " ".join(f"{x0:.3f} {y0:.3f} {x1 - x0:.3f} {y1 - y0:.3f} re f" for x0, y0, x1, y1 in boxes)
+    blend = _names(Type=NameObject("/ExtGState"), BM=NameObject("/Multiply"))
+    form = StreamObject()
+    form.set_data(f"/G gs {red:.3f} {green:.3f} {blue:.3f} rg {fills}".encode("ascii"))
+    form.update(
+        _names(
+            Type=NameObject("/XObject"),
+            Subtype=NameObject("/Form"),
+            BBox=_reals(*_around(boxes)),
+            Group=_names(S=NameObject("/Transparency"), CS=NameObject("/DeviceRGB")),
+            Resources=_names(ExtGState=_names(G=blend)),
+        )
+    )
+    return form
+
+
+def _highlight(
+    comments: list[Comment], boxes: list[Box], look: int, reader: PdfReader, day: date, name: str
+) -> DictionaryObject:
+    quads = [v for x0, y0, x1, y1 in boxes for v in (x0, y1, x1, y1, x0, y0, x1, y0)]
+    when = TextStringObject(f"D:{day:%Y%m%d}000000Z")
+    return _names(
+        Type=NameObject("/Annot"),
+        Subtype=NameObject("/Highlight"),
+        Rect=_reals(*_around(boxes)),
+        QuadPoints=_reals(*quads),
+        Contents=TextStringObject("\n\n".join(c.text for c in comments)),
+        T=TextStringObject(_AUTHOR),
+        Subj=TextStringObject(comments[0].subject),
+        NM=TextStringObject(name),
+        M=when,
+        CreationDate=when,
+        C=_reals(*_rgb(comments[0].colour)),
+        F=NumberObject(4),  # print
+        AP=_names(N=IndirectObject(look, 0, reader)),
+    )
+
+
+def _updated(pdf: bytes, reader: PdfReader, changed: dict[int, PdfObject]) -> bytes:
+    """The file with these objects behind it, in the form of an incremental update."""
+    out = BytesIO()
+    out.write(pdf if pdf.endswith(b"\n") else pdf + b"\n")
+    offsets: dict[int, int] = {}
+    for number in sorted(changed):
+        offsets[number] = out.tell()
+        out.write(f"{number} 0 obj\n".encode("ascii"))
+        changed[number].write_to_stream(out)
+        out.write(b"\nendobj\n")
+    table = out.tell()
+    out.write(b"xref\n")
+    for number in sorted(offsets):
+        out.write(f"{number} 1\n{offsets[number]:010d} 00000 n \n".encode("ascii"))
+    old = reader.trailer
+    first = old["/ID"][0]
+    second = ByteStringObject(sha256(out.getvalue()).digest()[:16])
+    trailer = _names(
+        Size=NumberObject(max(int(old["/Size"]), max(offsets, default=0) + 1)),
+        Root=old.raw_get("/Root"),
+        Info=old.raw_get("/Info"),
+        ID=ArrayObject([first, second]),
+        Prev=NumberObject(_start_of_table(pdf)),
+    )
+    out.write(b"trailer\n")
+    trailer.write_to_stream(out)
+    out.write(f"\nstartxref\n{table}\n%%EOF\n".encode("ascii"))
+    return out.getvalue()
+
+
+def _start_of_table(pdf: bytes) -> int:
+    return int(pdf[pdf.rindex(b"startxref") + 9 :].split()[0])

@@ -1,0 +1,227 @@
+"""The check record in words: one entry for every claim and finding, and what else a reviewer signs for.
+
+Both printed outputs (page and PDF) set these rows; neither words anything by itself.
+"""
+
+from __future__ import annotations
+
+from dataclasses import dataclass
+
+from calccheck.annotate.marks import MARKS
+from calccheck.arithmetic import Amount
+from calccheck.formula import Number, Range
+from calccheck.model import Claim, CircuitFigures, Finding, Judged, Member, Report
+from calccheck.rules import RULES
+from calccheck.source import Span
+from calccheck.units import digits, printed
+
+NOTED = ("differs", "unchecked", "error")  # what is to be mended: margin note and comment
+BESIDE = (*NOTED, "caution", "accepted")  # what a reviewer should see where it stands
+
+TITLE_FIELDS = {
+    "project": "Project", "subject": "Subject", "sheet": "Sheet", "revision": "Revision", "by": "By", "date": "Date",
+    "checked": "Checked", "approved": "Approved",
+}  # fmt: skip
+"""Front matter fields of the title block, in the trade's order, and how they are lettered."""
+
+BASES = {"circuit": "circuit", "working": "working", "": "none"}
+"""What a claim's truth rests on: the solved circuit, the sheet's own working, nothing that could be computed."""
+
+LIMITS = (
+    "Every claim listed as agreeing was recomputed from the circuit and the working as they stand in this sheet. Such a "
+    "check cannot show:",
+    (
+        "that the circuit in the sheet is the circuit that is built or will be built;",
+        "that the inputs are right: source and part values, tolerances, and everything listed as given;",
+        "that the models fit: ideal sources, linear parts and a steady state, in the range where they are used;",
+        "that the criteria are the right ones: limits, ratings, margins and the cases that were chosen;",
+        "what the sheet leaves out: loads, faults, environments and hazards of which it says nothing.",
+    ),
+    "This is a check of arithmetic and circuit laws. It is not an approval. Local codes and the judgement of licensed "
+    "practice decide.",
+)
+"""What such a check cannot show: an opening sentence, the points, and a closing one."""
+
+_RAISED = str.maketrans("0123456789-", "⁰¹²³⁴⁵⁶⁷⁸⁹⁻")
+SIGNATORIES = ("Originator", "Checker", "Approver")
+
+
+@dataclass(frozen=True, slots=True)
+class Entry:
+    """One row of the record.
+
+    ``key``: its anchor, unique in the sheet; ``number``: as printed beside the mark; ``kind``: a key of ``MARKS``.
+    ``size``: the deviation without its sign. ``told``: ``message`` and what else is to be said, a sentence or two each. ``cautions``: said beside a verdict that stands.
+    """
+
+    key: str
+    number: str
+    kind: str
+    span: Span
+    line: int
+    text: str
+    message: str
+    told: tuple[str, ...] = ()
+    cautions: tuple[str, ...] = ()
+    printed: str = ""
+    computed: str = ""
+    deviation: str = ""
+    size: float = 0.0
+    basis: str = ""
+
+    @property
+    def beside(self) -> bool:
+        """Whether a note stands beside the mark."""
+        return self.kind in BESIDE or bool(self.cautions)
+
+
+def entries(report: Report) -> tuple[Entry, ...]:
+    """An entry for each claim, numbered in the order of the sheet, then for each finding."""
+    claims = tuple(_claim(report, k, judged) for k, judged in enumerate(report.claims, 1))
+    return claims + tuple(_finding(report, k, finding) for k, finding in enumerate(report.findings, 1))
+
+
+def _claim(report: Report, k: int, judged: Judged) -> Entry:
+    claim = judged.claim
+    told = [judged.message, *(slip.text for slip in judged.slips)]
+    if claim.problem and claim.problem.suggestion and claim.problem.suggestion not in judged.message:
+        told.append(f"Write: {claim.problem.suggestion}")
+    if claim.waiver and judged.verdict == "accepted":
+        told.append(waiver_line(claim))
+    return Entry(
+        key=f"c{k}",
+        number=str(k),
+        kind=judged.verdict,
+        span=claim.span,
+        line=report.reading.sheet.line_column(claim.span.start)[0],
+        text=" ".join(claim.text.split()),
+        message=judged.message,
+        told=tuple(t for t in told if t),
+        cautions=judged.cautions,
+        printed=_printed(judged),
+        computed=_computed(judged),
+        deviation=_deviation(judged),
+        size=abs(judged.deviation or 0.0),
+        basis=judged.basis,
+    )
+
+
+def _finding(report: Report, k: int, finding: Finding) -> Entry:
+    title = RULES[finding.kind].title if finding.kind in RULES else finding.kind
+    line = report.reading.sheet.line_column(finding.span.start)[0]
+    told = (finding.message, f"Write: {finding.suggestion}") if finding.suggestion else (finding.message,)
+    return Entry(f"f{k}", f"F{k}", finding.severity, finding.span, line, title, finding.message, told)
+
+
+def comment_text(entry: Entry) -> str:
+    """An entry in a few lines of plain text, for a comment."""
+    found = f"recomputed {entry.computed}" if entry.computed else ""
+    off = f"deviation {entry.deviation}" if entry.deviation else ""
+    lines = [
+        f"{MARKS[entry.kind].label} (no. {entry.number}, line {entry.line})",
+        entry.text,
+        ", ".join(t for t in (found, off) if t),
+        *entry.told,
+        *entry.cautions,
+    ]
+    return "\n".join(line for line in lines if line)
+
+
+def _value_member(claim: Claim) -> Member | None:
+    """The member that prints the claim's value: the last literal behind ``=`` or ``≈``, else the last behind a bound."""
+    tail = [m for m in claim.members if isinstance(m.node, Number | Range)]
+    stated = [m for m in tail if m.relation in ("=", "≈")]
+    chosen = stated or tail
+    return chosen[-1] if chosen else None
+
+
+def _printed(judged: Judged) -> str:
+    member = _value_member(judged.claim)
+    if member is not None:
+        return member.text if member.relation in ("", "=") else f"{member.relation} {member.text}"
+    return _amount(judged.claimed, judged.claimed_unit)
+
+
+def _computed(judged: Judged) -> str:
+    if judged.low is not None and judged.high is not None:
+        return f"{_amount(judged.low, judged.claimed_unit)} … {_amount(judged.high, judged.claimed_unit)}"
+    return _amount(judged.computed or judged.low or judged.high, judged.claimed_unit)
+
+
+def _amount(amount: Amount | None, unit: str) -> str:
+    return "" if amount is None else printed(amount.value, amount.dimension, 6, unit)
+
+
+def _deviation(judged: Judged) -> str:
+    """Printed minus recomputed in percent of the recomputed value's size; without a sign where it is not known."""
+    if judged.deviation is None:
+        return ""
+    percent = abs(judged.deviation) * 100
+    if percent < 5e-4:
+        return "0 %" if percent == 0 else "< 0.001 %"
+    sign = ""
+    if judged.claimed is not None and judged.computed is not None:
+        sign = "+" if judged.claimed.value > judged.computed.value else "−"
+    return f"{sign}{digits(percent, 2 if percent < 0.1 else 3)} %"
+
+
+# --- the parts around the entries -----------------------------------------------------------------------------------
+
+
+def worst_first(rows: tuple[Entry, ...]) -> list[Entry]:
+    """What is to be mended or to be weighed, worst first; among what differs the largest deviation first."""
+    order = list(MARKS)
+    wanted = [e for e in rows if e.kind in (*BESIDE, "note") or e.cautions]
+    return sorted(wanted, key=lambda e: (order.index(e.kind), -e.size, e.line))
+
+
+def counts(report: Report) -> list[tuple[str, list[int]]]:
+    """Per verdict, worst first: the number of claims on each basis in the order of ``BASES``, then in all."""
+    table = []
+    for verdict in (name for name in MARKS if name in report.counts):
+        row = [sum(j.verdict == verdict and j.basis == basis for j in report.claims) for basis in BASES]
+        table.append((verdict, [*row, sum(row)]))
+    return table
+
+
+def headline(report: Report) -> str:
+    """The verdict in one sentence."""
+    n = report.counts
+    total = len(report.claims)
+    errors = sum(f.severity == "error" for f in report.findings)
+    parts = [f"{n['differs']} of {total} claims differ{'s' if n['differs'] == 1 else ''}"] if n["differs"] else []
+    if n["unchecked"]:
+        parts.append(f"{n['unchecked']} could not be checked")
+    if errors:
+        parts.append(f"{errors} error{'s' if errors > 1 else ''} in the sheet")
+    if parts:
+        return "; ".join(parts) + "."
+    return f"All {total} claims stand." if total else "The sheet makes no claims."
+
+
+def waiver_line(claim: Claim) -> str:
+    """A waiver as one line: who accepts what, why, until when."""
+    w = claim.waiver
+    if w is None:
+        return ""
+    until = f" until {w.until.isoformat()}" if w.until else ""
+    return f"Accepted by {w.by}{until}: {w.reason}"
+
+
+def given_notes(claim: Claim) -> str:
+    """What stands behind an assumption: the sheet it comes from."""
+    return f"from {claim.from_sheet}" if claim.from_sheet else "stated in this sheet"
+
+
+def figure_cells(figures: CircuitFigures) -> tuple[str, str, str]:
+    """Gap between the routes, current residual, power balance, two figures each."""
+    return (_figure(figures.route_gap), _figure(figures.kcl_residual), _figure(figures.power_balance))
+
+
+def _figure(value: float | None) -> str:
+    if value is None:
+        return "not solved"
+    if value == 0:
+        return "0"
+    mantissa, exponent = f"{value:.1e}".split("e")
+    return f"{mantissa} × 10{str(int(exponent)).translate(_RAISED)}"

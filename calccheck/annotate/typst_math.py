@@ -1,0 +1,111 @@
+"""Expression nodes set as mathematics: typst math source in which every name and number of the sheet is a string literal.
+
+What is written is what is set: nothing is simplified or reordered; only the bracket around a whole numerator, denominator,
+root or exponent gives way to the bar, the root sign or the raising.
+"""
+
+from __future__ import annotations
+
+import re
+from decimal import Decimal, InvalidOperation
+
+from calccheck.annotate.typst_text import literal, told
+from calccheck.formula import Binary, Call, Group, Node, Number, Range, Reference, Unary
+
+_RELATIONS = {"=": "=", "≈": "approx", "<": "<", "≤": "lt.eq", ">": ">", "≥": "gt.eq", "": ""}
+_OPERATORS = {"+": "+", "-": "minus", "×": "times", "∥": "parallel", "·": "thin"}
+_MOST_BARS = 2  # a fraction within a fraction within a fraction is set with a slash
+_NUMBER = re.compile(
+    r"(?P<digits>(?:\d[\d\u00a0\u2009\u202f]*)?\.?\d*)"
+    r"(?:[eE](?P<e>[-+−]?\d+)|\s*[×·*]\s*10(?:(?P<up>[⁺⁻]?[⁰¹²³⁴-⁹]+)|\^\(?(?P<hat>[-+−]?\d+)\)?))?"
+)
+_LOWERED = str.maketrans("⁰¹²³⁴⁵⁶⁷⁸⁹⁺⁻−", "0123456789+--")
+_RAISED = str.maketrans("0123456789-", "⁰¹²³⁴⁵⁶⁷⁸⁹⁻")
+
+
+def relation(sign: str) -> str:
+    """The typst symbol of a relation."""
+    return _RELATIONS[sign]
+
+
+def mathematics(node: Node, sheet: str, bars: int = 0) -> str:
+    """Typst math source of an expression.
+
+    ``sheet``: the sheet's text, from which numbers are set as written. ``bars``: fraction bars around the node.
+    """
+    match node:
+        case Number():
+            return _upright(_number(node, sheet))
+        case Reference():
+            return _name(node)
+        case Unary(sign="√"):
+            return f"sqrt({mathematics(_bare(node.operand), sheet, bars)})"
+        case Unary():
+            return f"{_OPERATORS[node.sign]} {mathematics(node.operand, sheet, bars)}"
+        case Binary():
+            return _binary(node, sheet, bars)
+        case Group():
+            unit = f" thin {_upright(node.unit.text)}" if node.unit.text else ""
+            return f"({mathematics(node.inner, sheet, bars)}){unit}"
+        case Call():
+            return _call(node, sheet, bars)
+        case Range():
+            middle = "plus.minus" if node.centred else "dots.h"
+            return f"{mathematics(node.low, sheet, bars)} {middle} {mathematics(node.high, sheet, bars)}"
+
+
+def _binary(node: Binary, sheet: str, bars: int) -> str:
+    if node.operator == "÷" and bars < _MOST_BARS:
+        over, under = (mathematics(_bare(side), sheet, bars + 1) for side in (node.left, node.right))
+        return f"frac({over}, {under})"
+    left = mathematics(node.left, sheet, bars)
+    if node.operator == "^":
+        return f"attach({left}, t: {mathematics(_bare(node.right), sheet, _MOST_BARS)})"
+    sign = {"÷": "slash", "∠": "angle"}.get(node.operator) or _OPERATORS[node.operator]
+    return f"{left} {sign} {mathematics(node.right, sheet, bars)}"
+
+
+def _call(node: Call, sheet: str, bars: int) -> str:
+    inner = " comma ".join(mathematics(a, sheet, bars) for a in node.arguments)
+    if node.function in ("sqrt", "abs"):
+        return f"{node.function}({inner})"
+    return f"op({literal(node.function)}) ({inner})"
+
+
+def _number(node: Number, sheet: str) -> str:
+    """Digits as written, where the sheet has them at the number's place, and the unit."""
+    m = _NUMBER.match(sheet, node.span.start, node.span.end)
+    digits = (_as_written(m, node.digits) if m else None) or str(node.digits)
+    return digits + ("" if node.unit.text in ("", "°") else " ") + node.unit.text
+
+
+def _as_written(m: re.Match[str], value: Decimal) -> str | None:
+    """The matched digits with the exponent raised, if that is the number indeed."""
+    power = (m["e"] or m["up"] or m["hat"] or "").translate(_LOWERED)
+    try:
+        plain = Decimal(re.sub(r"[\u00a0\u2009\u202f]", "", m["digits"])).scaleb(int(power or 0))
+    except InvalidOperation:
+        return None
+    if plain != value:
+        return None
+    return m["digits"] + (f" × 10{str(int(power)).translate(_RAISED)}" if power else "")
+
+
+def _bare(node: Node) -> Node:
+    """The inside of a plain bracket."""
+    return node.inner if isinstance(node, Group) and not node.unit.text else node
+
+
+def _upright(text: str) -> str:
+    return f"#upright({literal(told(text))})"
+
+
+def _name(node: Reference) -> str:
+    """A name in italics with its subscript lowered, its prefix before it and its qualifiers behind it in upright words."""
+    before, _, behind = node.text.partition(node.word)
+    if node.letter and node.subscripts:
+        core = f"attach(#slanted({literal(told(node.letter))}), b: {_upright(','.join(node.subscripts))})"
+    else:
+        core = f"#slanted({literal(told(node.word))})"
+    words = [_upright(w.strip()) if w.strip() else "" for w in (before, behind)]
+    return " space ".join(part for part in (words[0], core, words[1]) if part)

@@ -1,0 +1,190 @@
+"""The sheet as written, as typst source: every block of the page, every claim tinted and followed by its mark."""
+
+from __future__ import annotations
+
+from collections.abc import Callable, Iterator, Sequence
+from dataclasses import dataclass, replace
+
+from calccheck.annotate.places import Places, marks_in, runs
+from calccheck.annotate.typst_marks import line_number, run_source
+from calccheck.annotate.typst_text import literal, shown
+from calccheck.annotate.typst_working import math_row
+from calccheck.document import Block, Inline, blocks
+from calccheck.model import Judged
+from calccheck.source import Piece, Sheet
+
+_DEEPEST = 8  # lists and quotes nested deeper keep their words but gain no further indent
+_LONG_CELL = 900  # characters; a row with such a cell may break across pages, any other stands on one
+_SAFE_LINKS = ("http://", "https://", "mailto:")
+
+
+@dataclass(frozen=True, slots=True)
+class Setting:
+    """What the walk over the page needs at every step.
+
+    ``judged``: the judged claims by entry key. ``levels``: of each heading by its offset, such that none is skipped.
+    ``missing``: characters that no font has. ``below``: marks go under the text (in cells). ``deep``: containers around.
+    """
+
+    sheet: Sheet
+    where: Places
+    judged: dict[str, Judged]
+    levels: dict[int, int]
+    missing: frozenset[str]
+    below: bool = False
+    deep: int = 0
+
+    def deeper(self) -> Setting:
+        """The setting inside one more container."""
+        return replace(self, deep=self.deep + 1)
+
+
+def heading_levels(page: Sequence[Block]) -> dict[int, int]:
+    """Levels as tagged documents demand them (ISO 14289-1, 7.4.2): beginning at 1, none skipped on the way down."""
+    levels: dict[int, int] = {}
+    last = 0
+    for block in blocks(tuple(page)):
+        if block.kind == "heading":
+            last = levels[block.span.start] = min(block.level, last + 1)
+    return levels
+
+
+def typeset(s: Setting, children: Sequence[Block]) -> str:
+    """Blocks one behind the other."""
+    return "".join(_BLOCKS[b.kind](s, b) for b in children if b.kind in _BLOCKS)
+
+
+# --- blocks ---------------------------------------------------------------------------------------------------------
+
+
+def _heading(s: Setting, b: Block) -> str:
+    return f"#sheet-heading({s.levels[b.span.start]}, {max(1, min(6, b.level))})[{_inlines(s, b.inlines)}]\n\n"
+
+
+def _paragraph(s: Setting, b: Block) -> str:
+    return f"\n\n{_inlines(s, b.inlines)}\n\n"
+
+
+def _list(s: Setting, b: Block) -> str:
+    if s.deep >= _DEEPEST:
+        return typeset(s, b.children)
+    items = "".join(f"[{typeset(s.deeper(), item.children)}]," for item in b.children)
+    spaced = any(len(item.children) > 1 for item in b.children)
+    tight = f"tight: {'false' if spaced else 'true'}"
+    return f"\n\n#enum({tight}, start: {b.level}, {items})\n\n" if b.info == "ordered" else f"\n\n#list({tight}, {items})\n\n"
+
+
+def _item(s: Setting, b: Block) -> str:
+    return typeset(s, b.children)
+
+
+def _quote(s: Setting, b: Block) -> str:
+    if s.deep >= _DEEPEST:
+        return typeset(s, b.children)
+    return f"\n\n#quoted[{typeset(s.deeper(), b.children)}]\n\n"
+
+
+def _table(s: Setting, b: Block) -> str:
+    inside = replace(s, below=True)
+    head, *body = b.children
+    columns = len(head.children)
+    rows = "".join(f"({''.join(_cell(inside, c) for c in row.children[:columns])})," for row in body)
+    heads = "".join(f"[{_inlines(inside, c.inlines)}]," for c in head.children)
+    sides = "".join(f"{c.info or 'left'} + top," for c in head.children)
+    pieces = (i.text for c in head.children for i in _leaves(c.inlines) if i.text is not None)
+    repeat = "false" if marks_in(s.where, pieces) else "true"  # a mark is the target of a link and must stand once
+    return f"\n\n#sheet-table({columns}, ({sides}), {repeat}, ({heads}), ({rows}))\n\n"
+
+
+def _cell(s: Setting, c: Block) -> str:
+    content = f"[{_inlines(s, c.inlines)}]"
+    if c.span.end - c.span.start > _LONG_CELL:
+        return f"table.cell(breakable: true){content},"
+    return f"{content},"
+
+
+def _fence(s: Setting, b: Block) -> str:
+    word = (b.info.split() or [""])[0]
+    if word == "working":
+        rows = "".join(math_row(s.sheet, s.where, s.judged, s.missing, line) for line in b.lines)
+        return f"\n\n#working(({rows}))\n\n" if b.lines else ""
+    return _listing(s, b)
+
+
+def _listing(s: Setting, b: Block) -> str:
+    rows = "".join(f"({literal(line_number(s.sheet, line))}, [{_runs(s, line)}])," for line in b.lines)
+    return f"\n\n#listing(({rows}))\n\n" if rows else ""
+
+
+def _math(s: Setting, b: Block) -> str:
+    rows = "".join(math_row(s.sheet, s.where, s.judged, s.missing, line) for line in b.lines)
+    return f"\n\n#working(({rows}))\n\n" if rows else ""
+
+
+def _rule(s: Setting, b: Block) -> str:
+    return "\n\n#line(length: 100%, stroke: hair)\n\n"
+
+
+def _note(s: Setting, b: Block) -> str:
+    label = shown(f"[{b.info}]", s.missing)
+    return f"\n\n#small[#super[{label}] {typeset(s.deeper(), b.children)}]\n\n"
+
+
+_BLOCKS: dict[str, Callable[[Setting, Block], str]] = {
+    "heading": _heading,
+    "paragraph": _paragraph,
+    "list": _list,
+    "item": _item,
+    "quote": _quote,
+    "table": _table,
+    "fence": _fence,
+    "code": _listing,
+    "math": _math,
+    "html": _listing,
+    "rule": _rule,
+    "note": _note,
+}
+
+
+# --- inlines --------------------------------------------------------------------------------------------------------
+
+
+def _leaves(children: Sequence[Inline]) -> Iterator[Inline]:
+    for inline in children:
+        yield inline
+        yield from _leaves(inline.children)
+
+
+def _inlines(s: Setting, children: Sequence[Inline]) -> str:
+    return "".join(_inline(s, i) for i in children)
+
+
+def _inline(s: Setting, i: Inline) -> str:
+    match i.kind:
+        case "text":
+            return _runs(s, i.text) if i.text else ""
+        case "code" | "math" | "html":
+            return f"#code[{_runs(s, i.text)}];" if i.text else ""
+        case "emphasis" | "strong" | "strike" if s.deep < _DEEPEST:
+            name = {"emphasis": "emph", "strong": "strong", "strike": "strike"}[i.kind]
+            return f"#{name}[{_inlines(s.deeper(), i.children)}];"
+        case "link" | "image":
+            return _link(s, i)
+        case "break":
+            return "#linebreak();"
+        case "softbreak":
+            return " "
+        case "note":
+            return f"#super[{shown(f'[{i.target}]', s.missing)}];"
+    return _inlines(s, i.children)
+
+
+def _link(s: Setting, i: Inline) -> str:
+    """A link's words with its address behind them, an image's description with its file's name: paper has no links."""
+    words = _inlines(s, i.children) or (_runs(s, i.text) if i.text else "")
+    label = f"#address[{shown(' (' + ('image: ' if i.kind == 'image' else '') + i.target + ')', s.missing)}];"
+    return words + (label if i.target else "")
+
+
+def _runs(s: Setting, piece: Piece) -> str:
+    return "".join(run_source(run, shown(run.text, s.missing), s.below) for run in runs(s.where, piece))

@@ -1,0 +1,95 @@
+"""Working as mathematics: each line of a working fence or of display maths as one row, its relations one below the other.
+
+A line whose claim could not be read stands as written, in monospace.
+"""
+
+from __future__ import annotations
+
+import re
+from collections.abc import Iterable
+
+from calccheck.annotate.marks import MARKS
+from calccheck.annotate.places import Places, marks_in, runs
+from calccheck.annotate.record import NOTED
+from calccheck.annotate.typst_marks import line_number, mark_source, run_source
+from calccheck.annotate.typst_math import mathematics, relation
+from calccheck.annotate.typst_text import literal, shown, told
+from calccheck.formula import Reference
+from calccheck.model import Judged, Member
+from calccheck.source import NOWHERE, Piece, Sheet
+
+_RELATION_AT_END = re.compile(r"\s*(?:[=≈<≤>≥]|~=|<=|>=|&)+\s*$")
+_LONGEST_HEAD = 30
+
+
+def math_row(sheet: Sheet, where: Places, judged: dict[str, Judged], missing: frozenset[str], line: Piece) -> str:
+    """One line as a row of typst's grid ``working``."""
+    number = literal(line_number(sheet, line))
+    marks = marks_in(where, [line])
+    owners = {run.entry.key: run.entry for run in runs(where, line) if run.entry is not None}
+    entry = next(iter(owners.values()), None)
+    members = _members_on(line, judged[entry.key]) if entry is not None and entry.key in judged else []
+    if entry is None or len(owners) > 1 or not members:
+        body = "".join(run_source(run, shown(run.text, missing)) for run in runs(where, line))
+        return f"..wide-row({number}, \"\", [#code[{body}]], []),"
+    beside = "".join(mark_source(e) for e in marks) or _step_mark(line, judged[entry.key])
+    before, behind = _around(line, members, missing)
+    commented = [e.key for e in marks if e.kind in NOTED]
+    head = members[:1] if _is_head(members[0]) else []
+    left = before + _formula(sheet, head)
+    right = _commented(commented, _formula(sheet, members[len(head) :])) + behind
+    if not head and not members[0].relation:
+        return f"..wide-row({number}, {literal(entry.kind)}, [{left}{right}], [{beside}]),"
+    return f"..formula-row({number}, {literal(entry.kind)}, [{left}], [{right}], [{beside}]),"
+
+
+def _is_head(member: Member) -> bool:
+    """Whether a member stands left of the column of relations: a short name that begins its chain."""
+    return not member.relation and isinstance(member.node, Reference) and len(member.text) <= _LONGEST_HEAD
+
+
+def _places(line: Piece) -> list[int]:
+    return [at for at in line.at[: len(line.text)] if at != NOWHERE]
+
+
+def _members_on(line: Piece, judged: Judged) -> list[Member]:
+    """The members of a claim that begin on a line."""
+    on = _places(line)
+    return [m for m in judged.claim.members if on and on[0] <= m.span.start <= on[-1]]
+
+
+def _around(line: Piece, members: list[Member], missing: frozenset[str]) -> tuple[str, str]:
+    """What a line holds before its first member (``given``) and behind its last (a tolerance, a comment)."""
+    cut = [k for k, at in enumerate(line.at[: len(line.text)]) if at >= members[0].span.start or at == NOWHERE]
+    end = [k for k, at in enumerate(line.at[: len(line.text)]) if at >= members[-1].span.end]
+    before = line.text[: cut[0]] if cut else ""
+    behind = line.text[end[0] :] if end else ""
+    before = _RELATION_AT_END.sub("", before).strip() if members[0].relation else before.strip()
+    behind = behind.strip()
+    return (
+        f"{shown(before, missing)}#h(0.4em);" if before else "",
+        f"#h(0.8em);#aside[{shown(behind, missing)}];" if behind else "",
+    )
+
+
+def _formula(sheet: Sheet, members: Iterable[Member]) -> str:
+    """Members as one equation that may break behind its relations; the sheet's own characters are its alternative text."""
+    found = list(members)
+    if not found:
+        return ""
+    source = " ".join(f"{relation(m.relation)} {mathematics(m.node, sheet.text)}" for m in found)
+    alt = " ".join(f"{m.relation} {m.text}".strip() for m in found)
+    return f"#formula({literal(told(alt))}, ${source}$);"
+
+
+def _commented(keys: list[str], body: str) -> str:
+    return f"#comment({literal('+'.join(keys))})[{body}];" if keys and body else body
+
+
+def _step_mark(line: Piece, judged: Judged) -> str:
+    """A mark at a step that fails above the line where its chain's own mark stands."""
+    on = _places(line)
+    for step in judged.steps:
+        if step.verdict in NOTED and step.verdict in MARKS and on[0] <= step.span.start <= on[-1]:
+            return f"#step-mark({literal(step.verdict)});"
+    return ""
