@@ -189,6 +189,8 @@ def digits(value: float | Fraction, figures: int) -> str:
         return str(float(value))
     place = exact.adjusted() - figures + 1
     rounded = exact.quantize(Decimal(1).scaleb(place)) if abs(exact.adjusted()) < 25 else +exact
+    if rounded == exact and place < 0:
+        rounded = rounded.normalize()  # an exact value needs no zeros at its end
     if -5 <= exact.adjusted() < 7:
         return f"{rounded:f}"
     return f"{float(exact):.{figures - 1}e}"

@@ -7,13 +7,13 @@ from dataclasses import dataclass, replace
 from typing import Literal
 
 from calccheck.arithmetic import Amount, DimensionFault, Doubt, evaluate
-from calccheck.formula import Binary, Node, Number, Range, Reference, numbers, references
+from calccheck.formula import Node, Range, Reference, numbers, references
 from calccheck.judge import hints, quantities
 from calccheck.judge.rounding import Printed, printed
 from calccheck.judge.scope import Key, Ledger, Meaning, meaning
+from calccheck.loose_units import with_loose_units
 from calccheck.model import Basis, Member, Relation
-from calccheck.source import Span
-from calccheck.units import PLAIN, beyond_table
+from calccheck.units import PLAIN
 
 Sort = Literal["value", "formula", "substitution", "range", "new name"]
 
@@ -56,6 +56,13 @@ class Names:
         """What a reference means, or nothing."""
         return meaning(ref, self.nearest, self.ledger)
 
+    def known(self, ref: Reference) -> bool:
+        """Whether a reference means anything, or would if its circuit were told."""
+        try:
+            return self.meaning(ref) is not None
+        except Doubt:
+            return True
+
     def amount(self, ref: Reference) -> Amount:
         """The exact amount of a reference. Raises ``Doubt`` where it has none."""
         if ref not in self._amounts:
@@ -93,7 +100,7 @@ class Names:
 
 def work(member: Member, names: Names) -> Worked:
     """One member worked out."""
-    node = _with_rare_units(member.node, names)
+    node = with_loose_units(member.node, names.known)
     if isinstance(node, Range):
         return Worked(member, node, "range", doubt=_range_doubt(node))
     value = printed(node)
@@ -161,29 +168,6 @@ def _refuse_units_that_are_names(node: Node, names: Names) -> None:
                     f"for the unit give the name another spelling",
                     n.span,
                 )
-
-
-def _with_rare_units(node: Node, names: Names) -> Node:
-    """``3 lbf``: a number before a word that nothing is called, but that pint knows as a unit."""
-    if not (isinstance(node, Binary) and node.operator == "·"):
-        if isinstance(node, Binary):
-            return replace(node, left=_with_rare_units(node.left, names), right=_with_rare_units(node.right, names))
-        return node
-    right = node.right
-    if (
-        isinstance(node.left, Number)
-        and not node.left.unit.text
-        and isinstance(right, Reference)
-        and not right.subscripts
-    ):
-        try:
-            known = names.meaning(right)
-        except Doubt:
-            return node
-        unit = beyond_table(right.word) if known is None else None
-        if unit is not None:
-            return Number(node.left.digits, Span(node.left.span.start, right.span.end), unit, (right.word,))
-    return node
 
 
 def without_unit(w: Worked) -> bool:

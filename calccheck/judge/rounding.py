@@ -77,7 +77,7 @@ def fit(p: Printed, truth: Real, carry: Fraction, scale: Real = 0) -> Fit:
         return "exact place" if size(truth) <= SLACK * scale else "no"
     if distance <= p.half + slack:
         return "exact place"
-    toward_zero = x * truth > 0 and abs(x) < size(truth)
+    toward_zero = x * truth > 0 and size(x) < size(truth)
     if p.figures >= 3 and toward_zero and distance < p.unit - slack:
         return "cut off"
     zeros = _zeros_at_end(p.digits)

@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from calccheck.arithmetic import Amount, Real
+from calccheck.arithmetic import Amount, Real, size
 from calccheck.judge.rounding import Printed
 from calccheck.units import KELVIN, printed, words
 
@@ -49,7 +49,9 @@ def says_nothing(label: str, q: Amount, side: str) -> str:
 def margin(label: str, q: Amount, limit: Amount, room: Real, holds: bool) -> str:
     """A bound with its margin."""
     share = f" ({abs(float(room / limit.value)) * 100:.3g} % of the limit)" if limit.value else ""
-    apart = value(Amount(abs(room), q.dimension), figures=4)
+    apart = value(Amount(size(room), q.dimension), figures=4)
     if holds:
         return f"{label} is {value(q)}, {apart}{share} inside its limit"
+    if room == 0:
+        return f"{label} is {value(q)}, which is the limit itself: not below or above it"
     return f"{label} is {value(q)} and passes the limit of {value(limit)} by {apart}{share}"

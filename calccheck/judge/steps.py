@@ -251,12 +251,6 @@ def _value(w: Worked, p: Printed, relation: Relation, ground: Ground) -> Step:
         return _step(w, "agrees")
     off = deviation(p.amount.value, truth.value)
     near = say.near(truth, p)
-    if how == "cut off":
-        return _step(w, "rounded", f"cut off, not rounded: {near}")
-    if how == "whole zeros":
-        return _step(w, "rounded", f"rounded to its figures before the zeros: {near}")
-    if relation == "≈" and p.figures <= 2 and off is not None and abs(off) <= settings.approx:
-        return _step(w, "rounded", f"near {near} ({say.percent(off)})")
     law = _carried(p, ground)
     if law:
         return _step(
@@ -264,6 +258,12 @@ def _value(w: Worked, p: Printed, relation: Relation, ground: Ground) -> Step:
             "rounded",
             f"carried rounding: follows from {law}; exact {near}" + (f" ({say.percent(off)})" if off else ""),
         )
+    if how == "cut off":
+        return _step(w, "rounded", f"cut off, not rounded: {near}")
+    if how == "whole zeros":
+        return _step(w, "rounded", f"rounded to its figures before the zeros: {near}")
+    if relation == "≈" and p.figures <= 2 and off is not None and abs(off) <= settings.approx:
+        return _step(w, "rounded", f"near {near} ({say.percent(off)})")
     shift = f" ({say.percent(off)})" if off is not None else ""
     return _step(w, "differs", f"{_subject(ground)} comes to {near}, printed {w.member.text}{shift}")
 

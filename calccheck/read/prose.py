@@ -47,7 +47,9 @@ def prose_claims(block: Block, names: Sequence[str], circuit: int) -> list[Claim
         problem = Problem(
             "a claim in plain prose: put it in code", span, f"`{written} {m['relation'].strip(chr(92))} {m['value']}`"
         )
-        claims.append(Claim(m.group().strip(), span, "prose", circuit, problem=problem))
+        claims.append(
+            Claim(f"{written} {m['relation'].strip(chr(92))} {m['value']}", span, "prose", circuit, problem=problem)
+        )
     return claims
 
 

@@ -7,6 +7,7 @@ from collections.abc import Sequence
 from calccheck.arithmetic import Amount, DimensionFault, Doubt, evaluate
 from calccheck.document import Block, blocks, inlines
 from calccheck.formula import Node, Range, Reference
+from calccheck.loose_units import with_loose_units
 from calccheck.model import Circuit, Finding, Reading, Settings
 from calccheck.read.circuit_block import given_lines, read_circuit
 from calccheck.read.claims import assumption, read_claims
@@ -53,7 +54,9 @@ def _same_names(circuits: Sequence[Circuit], sheet: Sheet) -> list[Finding]:
     for c in circuits:
         if c.name and c.name in seen:
             line = sheet.line_column(seen[c.name].span.start)[0]
-            found.append(Finding("circuit-name", "error", f"a circuit called {c.name} stands in line {line} already", c.span))
+            found.append(
+                Finding("circuit-name", "error", f"a circuit called {c.name} stands in line {line} already", c.span)
+            )
         seen.setdefault(c.name, c)
     return found
 
@@ -94,6 +97,6 @@ def _worked(node: Node, known: dict[str, Amount]) -> Amount | None:
     if isinstance(node, Range):
         return None
     try:
-        return evaluate(node, lookup)
+        return evaluate(with_loose_units(node, lambda ref: ref.word in known), lookup)
     except (Doubt, DimensionFault):
         return None

@@ -109,7 +109,8 @@ def _claim(cell: Block, subject: Subject, edge: Edge, unit: str, circuit: int) -
         reason = f"the header {edge.text!r} says nothing of this value; a header is {HEADERS}"
         return Claim(piece.text, cell.span, "table", circuit, problem=Problem(reason, cell.span))
     relation: Relation = "≤" if edge.role == "limit" else "="
-    text = " ".join(f"{edge.prefix} {subject.text} {edge.text} {relation} {piece.text}".split())
+    shown = f"{piece.text} {unit}" if unit and not re.search(r"[^\W\d]|[%°]", piece.text) else piece.text
+    text = " ".join(f"{edge.prefix} {subject.text} {edge.text} {relation} {shown}".split())
     claim = Claim(text, cell.span, "table", circuit)
     if subject.node is None or edge.role == "doubt":
         reason = subject.reason or edge.reason
@@ -120,7 +121,7 @@ def _claim(cell: Block, subject: Subject, edge: Edge, unit: str, circuit: int) -
     except Doubt as d:
         return replace(claim, problem=Problem(d.reason, d.span or cell.span, d.suggestion))
     label = text.partition(f" {relation} ")[0]
-    return replace(claim, members=(Member("", first, label, cell.span), Member(relation, value, piece.text, cell.span)))
+    return replace(claim, members=(Member("", first, label, cell.span), Member(relation, value, shown, cell.span)))
 
 
 def _with_unit(node: Node, text: str) -> Node:
