@@ -25,9 +25,9 @@ def by_formula(size: int) -> list[int]:
     return [EXCEPTION.get(value, value) for value in values]
 
 
-# code letter in place of the point, and the power of ten that it stands for (kilo: K in the standard, k in common practice)
+# code letter in place of the point, and the power of ten that it stands for (k beside K and u beside µ: common practice)
 RESISTOR_LETTERS = {"R": 0, "K": 3, "k": 3, "M": 6, "G": 9, "T": 12}
-CAPACITOR_LETTERS = {"p": -12, "n": -9, "µ": -6, "m": -3, "F": 0}
+CAPACITOR_LETTERS = {"p": -12, "n": -9, "µ": -6, "u": -6, "m": -3, "F": 0}
 PRINTED = {-15: "f", -12: "p", -9: "n", -6: "µ", -3: "m", 0: "", 3: "k", 6: "M", 9: "G", 12: "T"}
 
 
@@ -45,7 +45,9 @@ def restated(values: dict[str, Decimal], unit: str) -> str:
     """A sheet in which every code is a part and the part's value is stated in plain figures."""
     parts = [f"X{i}: {code}, a to com" for i, code in enumerate(values)]
     claims = [f"X{i} = {plain(value)} {unit}" for i, value in enumerate(values.values())]
-    return "\n".join(["```circuit", "reference com", *parts, "```", "", "```working", *claims, "```", ""])
+    return "\n".join(
+        ["```circuit", "reference com", "Rx: 1 Ω, a to com", *parts, "```", "", "```working", *claims, "```", ""]
+    )
 
 
 def plain(value: Decimal) -> str:
@@ -113,7 +115,7 @@ def test_prefixes(power: int, unit: str) -> None:
     """One unit with a prefix restates as a power of ten of the plain unit, and the other way round."""
     value = f"1{PRINTED[power]}{unit}"
     text = (
-        f"```circuit\nreference com\nX1: {value}, a to com\n```\n\n"
+        f"```circuit\nreference com\nRx: 1 Ω, a to com\nX1: {value}, a to com\n```\n\n"
         f"`X1 = 1e{power} {unit}`, `X1 = {plain(Decimal(10) ** power)} {unit}` and `X1 = 1 {PRINTED[power]}{unit}`.\n"
     )
     assert claims(text) == 3
