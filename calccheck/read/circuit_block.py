@@ -12,7 +12,6 @@ from calccheck.arithmetic import Amount, DimensionFault, Doubt
 from calccheck.document import Block
 from calccheck.model import Circuit, Element, Finding
 from calccheck.read.cases import Case, read_case
-from calccheck.read.mending import mended
 from calccheck.read.names import NODE, WORD, Named, check_names, plain_name
 from calccheck.read.part_lines import PartLine, split_line
 from calccheck.read.parts import read_part
@@ -140,6 +139,8 @@ def _trouble(fault: Doubt | DimensionFault, line: Piece, body: Piece, scope: Sco
     """What is wrong with a line, with the corrected line where a usual slip of the pen explains it."""
     if isinstance(fault, DimensionFault):
         return _finding("dimension", fault.reason, fault.span)
+    from calccheck.read.mending import mended  # late: its table costs more than reading a whole sheet
+
     mend = mended(line, lambda text: _reads(text, scope))
     if mend:
         return _finding("circuit-line", mend.reason, mend.span, mend.line)

@@ -50,10 +50,11 @@ def mended(line: Piece, reads: Callable[[Piece], bool]) -> Mend | None:
 
 
 def _within(m: re.Match[str], code: str) -> tuple[int, int]:
-    """The match without the blanks and commas at its ends."""
-    lead = len(m[0]) - len(m[0].lstrip(" \t,"))
-    end = m.start() + len(m[0].rstrip(" \t,"))
-    return min(m.start() + lead, len(code)), min(end, len(code))
+    """The place of a match, without the blanks and commas at its ends."""
+    start, end = m.span("at" if "at" in m.re.groupindex else 0)
+    shown = m.string[start:end]
+    lead = len(shown) - len(shown.lstrip(" \t,"))
+    return min(start + lead, len(code)), min(start + len(shown.rstrip(" \t,")), len(code))
 
 
 # --- units ----------------------------------------------------------------------------------------------------------
@@ -103,7 +104,7 @@ def _with_unit(m: re.Match[str]) -> str:
 
 def _nodes(m: re.Match[str]) -> str:
     """Node names without what may not stand in a name: ``3.3V`` as ``3V3``, ``bat pos`` as ``bat_pos``."""
-    return f"{m['lead']}{_node(m['first'])} to {_node(m['second'])}"
+    return f"{m['lead']} {_node(m['first'])} to {_node(m['second'])}"
 
 
 def _node(text: str) -> str:
@@ -112,7 +113,7 @@ def _node(text: str) -> str:
 
 
 def _decimal(m: re.Match[str]) -> str:
-    return f"max {int(m['over']) / int(m['under']):g} {m['unit']}" if int(m["under"]) else m[0]
+    return f" max {int(m['over']) / int(m['under']):g} {m['unit']}" if int(m["under"]) else m[0]
 
 
 # --- the table ------------------------------------------------------------------------------------------------------
@@ -120,43 +121,46 @@ def _decimal(m: re.Match[str]) -> str:
 _NUMBER = r"[+\-−]?\d*\.?\d+"
 _END = r"(?=\s*(?:,|$))"
 _PAIR = rf"{NODE}\s+to\s+{NODE}"
+_VALUE = r"(?:[^,{]|\{[^}]*\})*"
+_TWO_ENDED = rf"^(?P<lead>\s*{WORD}\s*:(?!\s*(?:op-amp|npn|pnp|transformer)\b){_VALUE},)"
+_BETWEEN = r"(?:\s*(?:[-=]*>|--|[-–—→/:~,])\s*|\s+(?:and|To|TO)\s+|\s+)"
 
 
 def _slip(pattern: str, write: str | Callable[[re.Match[str]], str], reason: str) -> _Slip:
     return _Slip(re.compile(pattern), write if callable(write) else lambda m: m.expand(write), reason)
 
 
+# A group called at is the place to show; without one it is the whole match.
 _SLIPS = [
-    _slip(r"\d+,\d+(?!\d)(?<!\d,\d{3})(?<!\d,\d{3}\d)", lambda m: m[0].replace(",", "."),
+    _slip(r"(?<![\w{.])\d+,(?!\d{3}(?!\d))\d+", lambda m: m[0].replace(",", "."),
           "{found} has a decimal comma; a number is written with a point: {written}"),
-    _slip(r";\s*(?=.)", ", ", "a semicolon parts a case's changes; a part's line is parted by commas"),
-    _slip(r"^\s*(?:(?i:reference|ref|ground|node)\b)[\s:=]+(?P<node>\S+)$", r"reference \g<node>",
-          "the reference node is stated as {written}"),
+    _slip(r";\s*(?=.)", ", ", "a part's line is parted by commas"),
+    _slip(r"^\s*(?i:reference|ref|ground)\b[\s:=]+(?P<node>\S+)\s*$", r"reference \g<node>", "the reference is stated as {written}"),
     _slip(rf"^(?P<lead>\s*)(?P<first>{WORD})[\s\-.]+(?P<second>\w+)(?=\s*:)", r"\g<lead>\g<first>\g<second>",
           "{found} is no name; a name is letters, digits and _"),
     _slip(rf"^(?P<name>\s*{WORD})\s*=\s*", r"\g<name>: ", "a part's name is followed by a colon"),
-    _slip(rf"^(?P<name>\s*{WORD})\s+(?=[\d(]|short\b|open\b|op-amp\b|npn\b|pnp\b|diode\b|transformer\b)", r"\g<name>: ",
+    _slip(rf"^(?P<name>\s*{WORD})\s+(?=[\d(]|(?:short|open|op-amp|npn|pnp|diode|transformer)\b)", r"\g<name>: ",
           "there is no colon behind the name"),
     _slip(r"(?<=:)\s*(?i:op[ _-]?amp|opa)\b", " op-amp", "the word is op-amp"),
     _slip(r"(?<=:)\s*(?i:shorted|short|open|npn|pnp|diode)\b", lambda m: " " + m[0].strip().lower().replace("shorted", "short"),
           "{found} is written {written}"),
     _slip(rf"(?<=:)\s*(?P<nodes>{_PAIR})\s*,\s*(?P<value>[^,]+?)\s*{_END}", r" \g<value>, \g<nodes>",
           "the value stands before the nodes"),
-    _slip(r"(?P<number>\d)\s*(?P<prefix>[GMkKmµunp])\s+(?P<unit>Ω|[Oo]hms?|[VAFHS])\b", r"\g<number> \g<prefix>\g<unit>",
-          "a prefix and its unit are one word: {written}"),
-    _slip(r"(?P<number>\d)\s*(?P<unit>[^\W\d_]+)(?![\w:])(?!\s+to\b)", _unit, "{found} is written {written}"),
-    _slip(rf"^(?P<head>\s*(?P<letter>[^\W\d_])\w*\s*:\s*{_NUMBER})\s*(?P<prefix>[GMkKmµunp]?){_END}", _with_unit,
+    _slip(r"(?<![\w.])(?P<number>\d*\.?\d+)\s*(?P<prefix>[GMkKmµunp])\s+(?P<unit>Ω|[Oo]hms?|[VAFHS])\b",
+          r"\g<number> \g<prefix>\g<unit>", "a prefix and its unit are one word: {written}"),
+    _slip(r"(?<![\w.])(?P<number>\d*\.?\d+)\s*(?P<unit>[^\W\d_]+)(?![\w:])(?!\s+to\b)", _unit, "{found} is written {written}"),
+    _slip(rf"^(?P<head>\s*(?P<letter>[^\W\d_])\w*\s*:\s*(?P<at>{_NUMBER}))\s*(?P<prefix>[GMkKmµunp]?){_END}", _with_unit,
           "the value has no unit"),
-    _slip(rf"(?<=,)\s*(?P<first>{NODE})\s*(?:[-=]*>|[-–—→/:~]|--|,|\s(?:and|To|TO)\s|\s)\s*(?P<second>{NODE}){_END}",
-          lambda m: m[0] if " max" in m[0] or " to" in m[0] else f" {m['first']} to {m['second']}",
-          "two nodes are joined by to: {written}"),
-    _slip(r"(?P<lead>(?<=,)\s*)(?P<first>[^,±=]+?)\s+to\s+(?P<second>[^,±=]+?)(?=\s*(?:,|$))", _nodes,
-          "a node's name is letters, digits and _: {written}"),
-    _slip(rf"(?P<value>:[^,]*[^\s,])\s+(?P<nodes>{_PAIR}){_END}", r"\g<value>, \g<nodes>", "there is no comma before the nodes"),
-    _slip(rf"(?P<lead>:[^,]*(?:\d|\w))\s+(?P<size>\d*\.?\d+\s*%){_END}", r"\g<lead> ±\g<size>", "a tolerance is written ±5 %"),
+    _slip(rf"{_TWO_ENDED}(?P<at>\s*(?P<first>{NODE}){_BETWEEN}(?P<second>{NODE})){_END}", r"\g<lead> \g<first> to \g<second>",
+          "two nodes are joined by to"),
+    _slip(rf"{_TWO_ENDED}(?P<at>\s*(?P<first>[^,±=]+?)\s+to\s+(?P<second>[^,±=]+?)){_END}", _nodes,
+          "a node's name is letters, digits and _"),
+    _slip(rf"(?P<value>:{_VALUE}[^\s,])(?P<at>\s+(?P<nodes>{_PAIR})){_END}", r"\g<value>, \g<nodes>",
+          "there is no comma before the nodes"),
+    _slip(rf"(?P<lead>:{_VALUE}\w)(?P<at>\s+(?P<size>\d*\.?\d+\s*%)){_END}", r"\g<lead> ±\g<size>", "a tolerance is written ±5 %"),
     _slip(rf"(?<=,)\s*(?P<size>\d*\.?\d+\s*%){_END}", r" ±\g<size>", "a tolerance is written ±5 %"),
-    _slip(rf"(?<=,)\s*max\.?\s*(?P<over>\d+)\s*/\s*(?P<under>\d+)\s*(?P<unit>[kmµ]?[WVA]){_END}", lambda m: " " + _decimal(m),
+    _slip(rf"(?<=,)\s*(?:max\.?\s*)?(?P<over>\d+)\s*/\s*(?P<under>\d+)\s*(?P<unit>[kmµ]?[WVA]){_END}", _decimal,
           "a rating is written as one number: {written}"),
-    _slip(rf"(?<=,)\s*(?:(?i:max\.|rated|rating|maximum|limit)\s*)?(?P<size>\d*\.?\d+\s*[kmµ]?[WVA])(?:\s*max\.?)?{_END}",
+    _slip(rf"(?<=,)\s*(?:(?i:max\.|max|rated|rating|maximum|limit)\s*)?(?P<size>\d*\.?\d+\s*[kmµ]?[WVA])(?:\s*max\.?)?{_END}",
           r" max \g<size>", "a rating is written {written}"),
 ]  # fmt: skip

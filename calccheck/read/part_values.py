@@ -124,7 +124,7 @@ def _fraction(value: Real, what: Piece) -> Fraction:
 def _by_code(what: Piece, name: str, code: tuple[Fraction, Dimension], scope: Scope) -> Value:
     """A code carries no unit, so a name that stands in its way leaves it in doubt."""
     value, dimension = code
-    meant = printed(value, dimension)
+    meant = printed(value, dimension, figures=3)
     if what.text in scope.givens or what.text in scope.parts:
         raise Doubt(f"{what.text} is a name here and the code of {meant}; write the value with its unit", what.span())
     promised = customary(name)

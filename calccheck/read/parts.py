@@ -11,7 +11,7 @@ from calccheck.read.part_values import Value, read_value
 from calccheck.read.value_names import Scope
 from calccheck.rules import RULES
 from calccheck.source import Sheet, Span
-from calccheck.units import AMPERE, FARAD, HENRY, OHM, VOLT, Dimension, printed, words
+from calccheck.units import AMPERE, FARAD, HENRY, OHM, VOLT, Dimension, words
 
 _DIMENSIONS: dict[Kind, Dimension] = {
     "resistor": OHM, "impedance": OHM, "voltage source": VOLT, "controlled voltage source": VOLT, "current source": AMPERE,
@@ -70,7 +70,7 @@ def _cautions(part: PartLine, element: Element) -> list[Finding]:
         message = f"{element.name} is called like {words(promised[0])} and has the value of {words(dimension)}"
         found.append(_finding("letter", message, part.name_span))
     if element.kind == "resistor" and element.value is not None and element.value < 0:
-        message = f"{element.name} has a resistance below zero, {printed(element.value, OHM)}"
+        message = f"{element.name} has a resistance below zero, {element.written}"
         found.append(_finding("negative-resistance", message, part.what.span()))
     return found
 
