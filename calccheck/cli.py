@@ -1,0 +1,157 @@
+"""The command line: arguments, files in and out, exit status. PYTHON_ARGCOMPLETE_OK"""
+
+from __future__ import annotations
+
+import argparse
+import contextlib
+import os
+import sys
+from collections.abc import Sequence
+from datetime import date
+
+from calccheck import __version__
+from calccheck.batch import internal_fault
+from calccheck.commands import FAILED, check, complain, working
+from calccheck.files import Unusable
+
+_ABOUT = """\
+Recomputes every claim in calc sheets (Markdown with a circuit block and hand-worked values) by nodal
+solution and by superposition, and says which of them do not stand."""
+_STATUS = """\
+exit status:
+  0  every claim stands
+  1  something is to be mended: a claim differs or is unchecked, or the sheet has an error
+  2  the program could not do its work: wrong usage, a file that cannot be read, a bug
+
+This is a check of arithmetic and circuit laws. It is not an approval."""
+
+
+def entry() -> None:
+    """What the installed command runs."""
+    raise SystemExit(main())
+
+
+def main(argv: Sequence[str] | None = None) -> int:
+    """Run one command; the exit status. Wrong usage raises ``SystemExit(2)``, as argparse does."""
+    parser = arguments()
+    if "_ARGCOMPLETE" in os.environ:  # set by a shell that asks for completions, never otherwise
+        _complete(parser)
+    options = parser.parse_args(argv)
+    for stream in (sys.stdout, sys.stderr):
+        if hasattr(stream, "reconfigure"):  # a terminal that lacks a sign gets its code point, not a traceback
+            stream.reconfigure(errors="backslashreplace")
+    try:
+        status = _command(options)
+        sys.stdout.flush()
+    except KeyboardInterrupt:
+        return FAILED
+    except BrokenPipeError:  # the reader has seen enough; nothing more is to be written, not even at exit
+        os.dup2(os.open(os.devnull, os.O_WRONLY), sys.stdout.fileno())
+        return FAILED
+    return status
+
+
+def _command(options: argparse.Namespace) -> int:
+    try:
+        match options.command:
+            case "check":
+                return check(options)
+            case "mark":
+                from calccheck.marking import mark  # late: writing is not needed to check
+
+                return mark(options)
+            case _:
+                return working(options)
+    except (KeyboardInterrupt, BrokenPipeError):
+        raise
+    except Unusable as problem:
+        complain([str(problem)])
+    except Exception as fault:  # nothing below may show a traceback
+        complain([internal_fault(options.command, fault)])
+    return FAILED
+
+
+def _complete(parser: argparse.ArgumentParser) -> None:
+    import importlib  # late: only a shell that completes comes here
+
+    with contextlib.suppress(ImportError):  # optional: the extra `completion`
+        importlib.import_module("argcomplete").autocomplete(parser)
+
+
+# --- arguments ------------------------------------------------------------------------------------------------------
+
+
+def arguments() -> argparse.ArgumentParser:
+    """The commands and their options."""
+    layout = argparse.RawDescriptionHelpFormatter
+    parser = argparse.ArgumentParser("calccheck", description=_ABOUT, epilog=_STATUS, formatter_class=layout)
+    parser.add_argument("--version", action=_Version, nargs=0, help="print the version and stop")
+    commands = parser.add_subparsers(dest="command", metavar="COMMAND", required=True)
+    one = commands.add_parser(
+        "check", help="recompute every claim and print what is to be mended", epilog=_STATUS, formatter_class=layout,
+        description="Recompute every claim of the sheets and print what is to be mended. Writes no file.",
+    )  # fmt: skip
+    _paths(one, "sheets, or folders to search for *.md (default: this folder); - is standard input")
+    one.add_argument(
+        "--format", choices=("text", "json"), default="text", help="text to read (default) or the JSON report"
+    )
+    _common(one)
+    two = commands.add_parser(
+        "mark", help="write the sheets with every claim marked where it stands", epilog=_STATUS, formatter_class=layout,
+        description="Write the sheets with every claim marked where it stands: as Markdown for the author, as a page for "
+        "the screen, or as a PDF for the reviewer. A sheet itself is changed only with --in-place.",
+    )  # fmt: skip
+    _paths(two, "sheets, or folders to search for *.md (default: this folder)")
+    two.add_argument("--to", choices=("md", "html", "pdf"), required=True, help="what to write")
+    where = two.add_mutually_exclusive_group()
+    where.add_argument(
+        "-o", "--output", metavar="DIR", default="marked", help="folder for the copies (default: marked)"
+    )
+    where.add_argument("--in-place", action="store_true", help="put the marks into the sheets themselves (md only)")
+    two.add_argument("--remove", action="store_true", help="take the marks out of marked sheets instead (md only)")
+    two.add_argument("--replace", action="store_true", help="replace copies that exist")
+    _common(two)
+    three = commands.add_parser(
+        "working", help="show the independent working of one quantity",
+        description="Show the independent working of one quantity: each source alone, their sum, the nodal value, and the "
+        "gap between the two routes.",
+    )  # fmt: skip
+    three.add_argument("sheet", metavar="SHEET", help="the sheet; - is standard input")
+    three.add_argument("quantity", metavar="QUANTITY", help='as in a sheet: V_bus, "I_RL due to Vb", "R_{a,b}"')
+    three.add_argument("--on", metavar="DATE", type=_day, help=argparse.SUPPRESS)
+    return parser
+
+
+def _paths(parser: argparse.ArgumentParser, explained: str) -> None:
+    parser.add_argument("paths", metavar="PATH", nargs="*", default=["."], help=explained)
+
+
+def _common(parser: argparse.ArgumentParser) -> None:
+    parser.add_argument("--on", metavar="DATE", type=_day, help="judge waivers as on this day (2027-03-01), not today")
+    parser.add_argument(
+        "--jobs", metavar="N", type=_jobs, default=1, help="share the sheets among N processes (default 1)"
+    )
+    parser.add_argument(
+        "-v", "--verbose", action="store_true", help="also what stands, and files that are no calc sheets"
+    )
+
+
+class _Version(argparse.Action):
+    """Looks the version up only when asked for."""
+
+    def __call__(self, parser: argparse.ArgumentParser, *_: object, **__: object) -> None:
+        print(f"calccheck {__version__}")
+        parser.exit()
+
+
+def _day(text: str) -> date:
+    try:
+        return date.fromisoformat(text)
+    except ValueError:
+        raise argparse.ArgumentTypeError(f"{text!r} is no day; write it as 2027-03-01") from None
+
+
+def _jobs(text: str) -> int:
+    if not text.isdecimal() or not 1 <= int(text) <= 256:
+        raise argparse.ArgumentTypeError(f"{text!r} is no number of processes from 1 to 256")
+    return int(text)
