@@ -1,0 +1,125 @@
+"""First route: the whole circuit at once, in floating point."""
+
+from __future__ import annotations
+
+import math
+from collections import defaultdict
+from collections.abc import Sequence
+
+import numpy as np
+
+from calccheck.model import Circuit, State
+from calccheck.solve.stamps import Array, Layout, can_stamp, layout_of, stamp
+
+SINGULAR = 1e13  # condition of the levelled equations beyond which their solution says nothing
+
+
+def nodal_state(circuit: Circuit) -> State:
+    """The state of a circuit whose structure is sound; not finite where the equations are singular after all."""
+    at = layout_of(circuit)
+    matrix, right = _equations(circuit, at)
+    unit = _unit_current(circuit)
+    matrix, right = _levelled(matrix[None], right[None], len(at.nodes) - 1, unit)
+    with np.errstate(all="ignore"):
+        try:
+            x = np.linalg.solve(matrix, right[..., None])[0, :, 0]
+        except np.linalg.LinAlgError:
+            x = np.full(at.size - 1, np.nan)
+    return _state(at, x, unit)
+
+
+def condition(circuit: Circuit) -> float:
+    """Condition number (1-norm) of the levelled equations; infinite where they are singular."""
+    at = layout_of(circuit)
+    matrix, right = _equations(circuit, at)
+    matrix, _ = _levelled(matrix[None], right[None], len(at.nodes) - 1, _unit_current(circuit))
+    return float(_conditions(matrix)[0])
+
+
+def batch_states(circuits: Sequence[Circuit]) -> list[State | None]:
+    """The states of many variants of a circuit, in one ``numpy.linalg.solve`` for each size of equations.
+
+    Quickest when the variants share the names of nodes and parts and most of their ``Element`` objects. ``None`` for a
+    circuit that has problems, or whose equations are singular or too near to it.
+    """
+    states: list[State | None] = [None] * len(circuits)
+    for stacks in _by_size(circuits).values():
+        members = [(k, at, unit) for at, unit, indices, _, _ in stacks for k in indices]
+        matrices = np.concatenate([m for *_, m, _ in stacks])
+        rights = np.concatenate([r for *_, r in stacks])
+        sound = _conditions(matrices) < SINGULAR
+        solved = np.linalg.solve(matrices[sound], rights[sound][..., None])[..., 0]
+        for (k, at, unit), x in zip((m for m, good in zip(members, sound, strict=True) if good), solved, strict=True):
+            states[k] = _state(at, x, unit)
+    return states
+
+
+Stack = tuple[
+    Layout, float, list[int], Array, Array
+]  # with the unit of current, the circuits' indices, their equations
+
+
+def _by_size(circuits: Sequence[Circuit]) -> dict[int, list[Stack]]:
+    """The circuits' levelled equations, those with the same names in one stack, stacks by size."""
+    alike: dict[object, list[int]] = defaultdict(list)
+    for k, c in enumerate(circuits):
+        if can_stamp(c):
+            alike[c.reference, frozenset(c.nodes()), tuple(e.name for e in c.elements)].append(k)
+    sizes: dict[int, list[Stack]] = defaultdict(list)
+    for indices in alike.values():
+        first = circuits[indices[0]]
+        at, unit = layout_of(first), _unit_current(first)
+        equations = _variants([circuits[k] for k in indices], at)
+        sizes[at.size].append((at, unit, indices, *_levelled(*equations, len(at.nodes) - 1, unit)))
+    return sizes
+
+
+def _equations(circuit: Circuit, at: Layout) -> tuple[Array, Array]:
+    """Matrix and right side, the reference's row and column included."""
+    matrix, right = np.zeros((at.size, at.size)), np.zeros(at.size)
+    for e in circuit.elements:
+        stamp(matrix, right, e, at)
+    return matrix, right
+
+
+def _variants(circuits: Sequence[Circuit], at: Layout) -> tuple[Array, Array]:
+    """The equations of all circuits of one layout: those of the first, and over them what differs."""
+    matrix, right = _equations(circuits[0], at)
+    matrices, rights = np.repeat(matrix[None], len(circuits), axis=0), np.repeat(right[None], len(circuits), axis=0)
+    for k, c in enumerate(circuits):
+        for e, first in zip(c.elements, circuits[0].elements, strict=True):
+            if e is not first:
+                stamp(matrices[k], rights[k], e, at)
+    return matrices, rights
+
+
+def _unit_current(circuit: Circuit) -> float:
+    """One volt over the geometric mean of the resistances: currents counted in it are of the order of the voltages."""
+    sizes = [math.log(abs(e.value)) for e in circuit.elements if e.kind == "resistor" and e.value]
+    return math.exp(-sum(sizes) / len(sizes)) if sizes else 1.0
+
+
+def _levelled(matrices: Array, rights: Array, nodes: int, unit: float) -> tuple[Array, Array]:
+    """Without the reference, currents counted in ``unit``, and the largest coefficient of every row brought to one."""
+    matrices, rights = matrices[:, 1:, 1:].copy(), rights[:, 1:]
+    matrices[:, :, nodes:] *= unit
+    largest = np.abs(matrices).max(axis=2, initial=0.0)
+    largest[largest == 0.0] = 1.0
+    return matrices / largest[..., None], rights / largest
+
+
+def _conditions(matrices: Array) -> Array:
+    """Condition numbers of a stack of matrices; infinite for a singular one."""
+    singular = np.linalg.slogdet(matrices)[0] == 0.0
+    inverses = np.linalg.inv(np.where(singular[:, None, None], np.eye(matrices.shape[-1]), matrices))
+    norms = [np.abs(m).sum(axis=1).max(axis=1, initial=0.0) for m in (matrices, inverses)]
+    return np.where(singular, np.inf, norms[0] * norms[1])
+
+
+def _state(at: Layout, x: Array, unit: float) -> State:
+    nodes = len(at.nodes) - 1
+    volts, amperes = x[:nodes].tolist(), (x[nodes:] * unit).tolist()
+    return State(
+        dict(zip(at.nodes, [0.0, *volts], strict=True)),
+        dict(zip(at.parts, amperes, strict=True)),
+    )

@@ -1,0 +1,94 @@
+"""Circuits for tests, built without the reading stage, and hypothesis strategies for random ones that can be solved."""
+
+from __future__ import annotations
+
+from fractions import Fraction
+
+from hypothesis import reject
+from hypothesis import strategies as st
+
+from calccheck.model import Circuit, Control, Element
+from calccheck.solve import Unsolvable, solve
+from calccheck.source import Span
+
+KINDS = {
+    "R": "resistor", "V": "voltage source", "I": "current source", "E": "controlled voltage source",
+    "F": "controlled current source", "S": "short", "O": "open", "C": "capacitor", "L": "inductor",
+}  # fmt: skip
+
+
+def part(kind, name, plus, minus, value=None, by=None):
+    """One part, ``kind`` a letter of ``KINDS``. ``by``: the name of the controlling part, or the pair of controlling nodes."""
+    control = None if by is None else Control(part=by) if isinstance(by, str) else Control(plus=by[0], minus=by[1])
+    number = None if value is None else Fraction(value)
+    return Element(name, KINDS[kind], plus, minus, Span(0, 0), value=number, control=control)
+
+
+def circuit(*parts, reference="com", name=""):
+    """A circuit of such parts, each on a line of its own (10 code points a line)."""
+    placed = tuple(
+        Element(e.name, e.kind, e.plus, e.minus, Span(10 * k, 10 * k + 9), value=e.value, control=e.control)
+        for k, e in enumerate(parts)
+    )
+    return Circuit(name, placed, reference, Span(0, 10 * len(parts)))
+
+
+def scales(made, solution):
+    """Volts and amperes to measure rounding by: those of the solution, or where it has none what the other would cause."""
+    ohms = [abs(float(e.value)) for e in made.elements if e.kind == "resistor" and e.value] or [1.0]
+    return solution.volts or solution.amperes * max(ohms), solution.amperes or solution.volts / min(ohms)
+
+
+# --- random circuits ------------------------------------------------------------------------------------------------
+
+
+def decimals(low=-1, high=4):
+    """Values as engineers write them: three figures and a power of ten."""
+    return st.builds(lambda n, e: Fraction(n, 100) * Fraction(10) ** e, st.integers(100, 999), st.integers(low, high))
+
+
+def signed(strategy):
+    """Values of either sign."""
+    return st.builds(lambda x, sign: x * sign, strategy, st.sampled_from([1, -1]))
+
+
+VALUES = {"R": decimals(), "V": signed(decimals(0, 1)), "I": signed(decimals(-4, -1))}
+
+
+@st.composite
+def circuits(draw, kinds="RVIEFSOCL0", most_nodes=7, most_extra=8):
+    """A random circuit that has a single solution and an independent source.
+
+    ``kinds``: letters of ``KINDS`` and ``0`` for a resistance of zero. Voltages and links stand only on a tree that spans the
+    nodes, currents and gaps only off it, so that only controlled sources can spoil the solution; such draws are dropped.
+    """
+    names = ["com", *"abcdefghijklmnopqrstuvw"][: draw(st.integers(2, most_nodes))]
+    on_tree = ["R", "R", "R", *(k for k in kinds if k in "VSLE0")]
+    off_tree = ["R", "R", *(k for k in kinds if k in "IOCF")]
+    ends = [(draw(st.sampled_from(["V"] if k == 1 and "I" not in kinds else on_tree)), n, draw(st.sampled_from(names[:k])))
+            for k, n in enumerate(names) if k]  # fmt: skip
+    ends += [(draw(st.sampled_from(off_tree)), draw(st.sampled_from(names)), draw(st.sampled_from(names)))
+             for _ in range(draw(st.integers(0, most_extra)))]  # fmt: skip
+    if "I" in kinds:
+        ends.append(("I", *draw(st.permutations(names))[:2]))
+    flipped = [(k, b, a) if draw(st.booleans()) else (k, a, b) for k, a, b in ends]
+    labels = [f"{'R' if kind == '0' else kind}{n}" for n, (kind, *_) in enumerate(flipped)]
+    made = circuit(*(_drawn(draw, kind, label, a, b, names, labels)
+                     for label, (kind, a, b) in zip(labels, flipped, strict=True)))  # fmt: skip
+    try:
+        solve(made)
+    except Unsolvable:
+        if not any(e.control for e in made.elements):
+            raise
+        reject()
+    return made
+
+
+def _drawn(draw, kind, label, a, b, names, labels):
+    if kind == "0":
+        return part("R", label, a, b, 0)
+    if kind not in "EF":
+        return part(kind, label, a, b, draw(VALUES[kind]) if kind in VALUES else None)
+    by = draw(st.one_of(st.sampled_from(labels), st.tuples(st.sampled_from(names), st.sampled_from(names))))
+    exponents = {("E", True): (1, 3), ("E", False): (-1, 1), ("F", True): (-1, 1), ("F", False): (-4, -2)}
+    return part(kind, label, a, b, draw(signed(decimals(*exponents[kind, isinstance(by, str)]))), by)
