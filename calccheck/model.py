@@ -304,6 +304,21 @@ class Reading:
 
 
 @dataclass(frozen=True, slots=True)
+class WorkedQuantity:
+    """One quantity worked out both ways, in SI.
+
+    ``rows``: each source alone with the quantity's value; ``total``: their sum; ``nodal``: the value of the whole by nodal
+    analysis, ``None`` where only some of the sources act; ``gap``: of the two routes, relative to the circuit's scale.
+    """
+
+    quantity: str
+    rows: tuple[tuple[str, Amount], ...]
+    total: Amount
+    nodal: Amount | None
+    gap: float
+
+
+@dataclass(frozen=True, slots=True)
 class Report:
     """Everything the program has to say about one sheet."""
 

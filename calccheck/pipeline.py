@@ -7,11 +7,14 @@ from datetime import date
 
 from calccheck.arithmetic import Doubt
 from calccheck.edits import unmark
+from calccheck.judge.scope import Ledger
 from calccheck.judge.sheet import judge_sheet
-from calccheck.model import Circuit, CircuitFigures, Finding, Reading, Report, Settings, Solution
+from calccheck.judge.working import work_out as worked_out
+from calccheck.model import Circuit, CircuitFigures, Finding, Reading, Report, Settings, Solution, WorkedQuantity
+from calccheck.read.expression import parse
 from calccheck.read.sheet import read_sheet
 from calccheck.solve import Unsolvable, solve
-from calccheck.source import Sheet
+from calccheck.source import Sheet, whole
 
 Solve = Callable[[Circuit], Solution]
 
@@ -76,3 +79,11 @@ def _figures(reading: Reading, solutions: Sequence[Solution | None]) -> tuple[Ci
         )
         for c, s in zip(reading.circuits, solutions, strict=True)
     )  # fmt: skip
+
+
+def work_out(sheet: Sheet, quantity: str, settings: Settings | None = None) -> WorkedQuantity:
+    """The independent working of one quantity of a sheet's circuit. Raises ``Doubt`` with the reason where there is none."""
+    reading = read_sheet(Sheet(sheet.name, unmark(sheet.text)), settings or Settings())
+    ledger = Ledger(reading.circuits, solver(), reading.settings)
+    piece = whole(quantity)
+    return worked_out(parse(piece), piece.span(), ledger)

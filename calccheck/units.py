@@ -115,10 +115,13 @@ PLAIN = Unit("", Fraction(1), NONE)
 LOOKALIKES = str.maketrans({"\u2126": "Ω", "\u03bc": "µ", "\u2212": "-", "\u2010": "-", "\u2011": "-", "\u00ba": "°"})
 
 
+_RAISED = str.maketrans("0123456789-", "⁰¹²³⁴⁵⁶⁷⁸⁹⁻")
+
+
 def power(unit: Unit, exponent: int) -> Unit:
     """The unit, prefix and all, raised to a whole exponent: ``mm²`` is (mm)²."""
     dimension = tuple(d * exponent for d in unit.dimension)
-    mark = "" if exponent == 1 else str(exponent).translate(str.maketrans("0123456789-", "⁰¹²³⁴⁵⁶⁷⁸⁹⁻"))
+    mark = "" if exponent == 1 else str(exponent).translate(_RAISED)
     return Unit(unit.text + mark, unit.factor**exponent, dimension)
 
 
@@ -172,7 +175,9 @@ def unit_of(dimension: Dimension) -> str:
 
 
 def _factor(symbol: str, exponent: int | Fraction) -> str:
-    return symbol if exponent == 1 else f"{symbol}^{exponent}"
+    if exponent == int(exponent):
+        return symbol + ("" if exponent == 1 else str(exponent).translate(_RAISED))
+    return f"{symbol}^({exponent})"
 
 
 def words(dimension: Dimension) -> str:
@@ -196,11 +201,11 @@ def digits(value: float | Fraction, figures: int) -> str:
     return f"{float(exact):.{figures - 1}e}"
 
 
-def printed(value: float | Fraction, dimension: Dimension, figures: int = 6, like: str = "") -> str:
+def printed(value: float | Fraction, dimension: Dimension, figures: int = 6, like: Unit | str = PLAIN) -> str:
     """A value the way engineers print it: ``2.66463 A``, ``594.1 mΩ``; in the unit ``like`` where that fits."""
-    unit = UNITS.get(like)
-    if unit is not None and unit.dimension == dimension and not unit.celsius:
-        return f"{digits(Fraction(value) / unit.factor, figures)} {like}".replace("-", "−")
+    like = UNITS.get(like, PLAIN) if isinstance(like, str) else like
+    if like.dimension == dimension and not like.celsius and like.text:
+        return f"{digits(Fraction(value) / like.factor, figures)} {like.text}".replace("-", "−")
     symbol = unit_of(dimension)
     if symbol not in UNITS or value == 0 or not math.isfinite(float(value)):
         return f"{digits(value, figures)} {symbol}".strip().replace("-", "−")

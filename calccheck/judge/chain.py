@@ -9,7 +9,7 @@ from itertools import pairwise
 
 from calccheck.arithmetic import Amount, DimensionFault, Doubt
 from calccheck.formula import Node, Reference
-from calccheck.judge import say
+from calccheck.judge import hints, say
 from calccheck.judge.bounds import BOUNDS, judge_bound
 from calccheck.judge.members import Names, Worked, work
 from calccheck.judge.rounding import Printed, deviation
@@ -150,13 +150,26 @@ def _new_name(workings: Sequence[Worked], job: Work) -> str | None:
     if not isinstance(first.node, Reference) or job.names.meaning(first.node) is not None:
         return None
     name = _bare_name(first.node)
-    follows = any(w.sort in ("formula", "substitution") for w in workings[1:])
-    if name is None or not follows:
+    if name is None:
         return None
+    if not any(w.sort in ("formula", "substitution") for w in workings[1:]):
+        raise next((w.doubt for w in workings[1:] if w.doubt is not None), None) or _only_a_value(name, workings, job)
     ref = first.node
     if ref.subscripts:
         _refuse_near_quantity(ref, job)
     return name
+
+
+def _only_a_value(name: str, workings: Sequence[Worked], job: Work) -> Doubt:
+    """A new name with a value and nothing to work it from: a slip for a known one, or an assumption without the word."""
+    first = workings[0]
+    assert isinstance(first.node, Reference)
+    sentence, hint = hints.unknown(first.node, job.claim.circuit, job.ledger)
+    assume = f"given {name} = {workings[1].member.text}"
+    return Doubt(
+        f"{sentence} An assumption is written {assume}" if hint else f"{sentence}; an assumption is written {assume}",
+        first.member.span,
+    )
 
 
 def _refuse_near_quantity(ref: Reference, job: Work) -> None:

@@ -66,6 +66,10 @@ def with_test_current(circuit: Circuit, a: str, b: str) -> Circuit:
 
     What hangs together with neither ``b`` nor a controlled source is left out: zeroed current sources may have cut it off.
     """
+    if a == b:
+        return replace(
+            circuit, elements=(Element(TEST, "current source", b, a, circuit.span, Fraction(1)),), reference=b
+        )
     dead = zeroed(circuit)
     span = circuit.span
     test = Element(TEST, "current source", b, a, span, Fraction(1))

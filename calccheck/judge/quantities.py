@@ -7,11 +7,12 @@ from the first node through the part, its power is what it takes.
 from __future__ import annotations
 
 from collections.abc import Callable, Iterable
+from dataclasses import dataclass, replace
 from fractions import Fraction
 
-from calccheck.arithmetic import Amount, Doubt, Real
+from calccheck.arithmetic import Amount, Doubt, Real, trimmed
 from calccheck.formula import Change
-from calccheck.judge.changes import LAID_SHORT, TEST, changed, with_short, with_test_current
+from calccheck.judge.changes import LAID_SHORT, changed, with_short, with_test_current
 from calccheck.judge.scope import Key, Ledger
 from calccheck.model import Circuit, Element, Solution, State
 from calccheck.source import Span
@@ -20,22 +21,41 @@ from calccheck.units import AMPERE, OHM, VOLT, WATT, Dimension
 LARGEST_GAP = 1e-9
 
 
+@dataclass(frozen=True, slots=True)
+class Linear:
+    """A quantity that is linear in the sources: the circuit to solve, how to read a state of it, and what comes out."""
+
+    circuit: Circuit
+    read: Callable[[State], Real]
+    dimension: Dimension
+
+
 def amount(key: Key, ledger: Ledger, span: Span) -> Amount:
     """The value of a quantity. Raises ``Doubt`` where its circuit cannot be solved or it has no value."""
+    if key.letter == "P":
+        v, i = (amount(replace(key, letter=x), ledger, span) for x in ("V", "I"))
+        return Amount(trimmed(v.value * i.value), WATT)
+    quantity = linear(key, ledger, span)
+    return Amount(_summed(quantity, key, ledger, span), quantity.dimension)
+
+
+def linear(key: Key, ledger: Ledger, span: Span) -> Linear:
+    """How a voltage, current, short-circuit current or seen resistance is read from its circuit's states."""
     circuit = circuit_of(key, ledger, span)
     match key.letter:
         case "V":
-            return Amount(_voltage(circuit, key, ledger, span), VOLT)
+            plus, minus = ends(circuit, key, span)
+            return Linear(circuit, lambda s: s.potentials[plus] - (s.potentials[minus] if minus else 0), VOLT)
         case "I":
-            return Amount(_current(circuit, key, ledger, span), AMPERE)
-        case "P":
-            v, i = _voltage(circuit, key, ledger, span), _current(circuit, key, ledger, span)
-            return Amount(v * i, WATT)
-        case "R":
-            return Amount(_resistance(circuit, key, ledger, span), OHM)
+            name = _carrier(circuit, key, span)
+            return Linear(circuit, lambda s: s.currents[name], AMPERE)
         case "Isc":
-            laid = with_short(circuit, *key.subscripts)
-            return Amount(_summed(laid, key, ledger, span, lambda s: s.currents[LAID_SHORT]), AMPERE)
+            return Linear(with_short(circuit, *key.subscripts), lambda s: s.currents[LAID_SHORT], AMPERE)
+        case "R":
+            a, b = key.subscripts
+            if key.due_to:
+                raise Doubt("a resistance seen between nodes is not due to sources: they are zeroed in it", span)
+            return Linear(with_test_current(circuit, a, b), lambda s: s.potentials[a] - s.potentials[b], OHM)
     raise Doubt(f"{key.letter} is a quantity of alternating current, which this version does not read", span)
 
 
@@ -69,26 +89,22 @@ def check_sources(names: Iterable[str], circuit: Circuit, span: Span) -> None:
         raise Doubt(f"{name} is no independent source; those are: {known}", span)
 
 
-def _summed(circuit: Circuit, key: Key, ledger: Ledger, span: Span, read: Callable[[State], Real]) -> Real:
-    """A linear quantity: the sum over the sources that act, or the nodal value of the whole where no route is exact."""
-    check_sources(key.due_to, circuit, span)
-    solution = _solved(circuit, ledger, span)
+def _summed(q: Linear, key: Key, ledger: Ledger, span: Span) -> Real:
+    """The sum over the sources that act, or the nodal value of the whole where no route is exact."""
+    check_sources(key.due_to, q.circuit, span)
+    solution = solved(q.circuit, ledger, span)
     if not key.due_to and not solution.exact:
-        return read(solution.nodal)
+        return q.read(solution.nodal)
     acting = [s for name, s in solution.parts.items() if not key.due_to or name in key.due_to]
-    return sum((read(s) for s in acting), start=Fraction(0))
+    return sum((q.read(s) for s in acting), start=Fraction(0))
 
 
-def _solved(circuit: Circuit, ledger: Ledger, span: Span) -> Solution:
+def solved(circuit: Circuit, ledger: Ledger, span: Span) -> Solution:
+    """The circuit's solution. Raises ``Doubt`` where it has none or the two routes do not agree on it."""
     solution = ledger.solve(circuit)
     if not solution.exact and not solution.gap <= LARGEST_GAP:
         raise Doubt(f"the two routes differ by {solution.gap:.1e}: the circuit is too ill-conditioned to decide", span)
     return solution
-
-
-def _voltage(circuit: Circuit, key: Key, ledger: Ledger, span: Span) -> Real:
-    plus, minus = ends(circuit, key, span)
-    return _summed(circuit, key, ledger, span, lambda s: s.potentials[plus] - (s.potentials[minus] if minus else 0))
 
 
 def ends(circuit: Circuit, key: Key, span: Span) -> tuple[str, str]:
@@ -105,30 +121,20 @@ def ends(circuit: Circuit, key: Key, span: Span) -> tuple[str, str]:
     return names[0], names[1] if len(names) == 2 else ""
 
 
-def _current(circuit: Circuit, key: Key, ledger: Ledger, span: Span) -> Real:
+def _carrier(circuit: Circuit, key: Key, span: Span) -> str:
+    """The name of the part whose current is meant."""
     if len(key.subscripts) > 1:
         raise Doubt("currents into one terminal of a part are not read in this version", span)
     element = circuit.element(key.subscripts[0])
     if element is None:
         raise Doubt(f"{key.subscripts[0]} is taken out: it carries no current", span)
     _simple(element, span)
-    return _summed(circuit, key, ledger, span, lambda s: s.currents[element.name])
+    return element.name
 
 
 def _simple(element: Element, span: Span) -> None:
     if element.terminals:
         raise Doubt(f"{element.name} has several terminals: say between which nodes", span)
-
-
-def _resistance(circuit: Circuit, key: Key, ledger: Ledger, span: Span) -> Real:
-    a, b = key.subscripts
-    if key.due_to:
-        raise Doubt("a resistance seen between nodes is not due to sources: they are zeroed in it", span)
-    if a == b:
-        return 0
-    dead = with_test_current(circuit, a, b)
-    solution = _solved(dead, ledger, span)
-    return (solution.parts[TEST] if solution.exact else solution.nodal).potentials[a]
 
 
 def scale(key: Key | None, ledger: Ledger, dimension: Dimension) -> Real:

@@ -13,6 +13,7 @@ from typing import Literal
 
 from calccheck.arithmetic import Amount, Real, literal, size
 from calccheck.formula import Group, Node, Number, Unary
+from calccheck.units import PLAIN, Unit
 
 SLACK = Fraction(1, 10**9)
 COARSE = Fraction(5, 100)
@@ -26,7 +27,12 @@ class Printed:
     unit: Fraction
     figures: int
     digits: Decimal
-    unit_text: str = ""
+    written_in: Unit = PLAIN
+
+    @property
+    def unit_text(self) -> str:
+        """The unit as written."""
+        return self.written_in.text
 
     @property
     def half(self) -> Fraction:
@@ -52,7 +58,7 @@ def printed(node: Node) -> Printed | None:
     signed = node.digits if sign > 0 else node.digits.copy_negate()
     amount = literal(Number(signed, node.span, node.unit))
     place = Fraction(10) ** int(node.digits.as_tuple().exponent)
-    return Printed(amount, place * abs(node.unit.factor), figures(node.digits), signed, node.unit.text)
+    return Printed(amount, place * abs(node.unit.factor), figures(node.digits), signed, node.unit)
 
 
 def figures(digits: Decimal) -> int:

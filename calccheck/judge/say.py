@@ -4,21 +4,21 @@ from __future__ import annotations
 
 from calccheck.arithmetic import Amount, Real, size
 from calccheck.judge.rounding import Printed
-from calccheck.units import KELVIN, printed, words
+from calccheck.units import PLAIN, Unit, printed, words
 
 _ICE = 273.15
 
 
-def value(a: Amount, like: str = "", figures: int = 6) -> str:
+def value(a: Amount, like: Unit = PLAIN, figures: int = 6) -> str:
     """An amount as printed: in the unit ``like`` where that fits."""
-    if a.point or (like == "°C" and a.dimension == KELVIN):
-        return f"{float(a.value) - (_ICE if a.point else 0):.6g} °C".replace("-", "−")
+    if a.point:
+        return f"{float(a.value) - _ICE:.{figures}g} °C".replace("-", "−")
     return printed(a.value, a.dimension, figures, like)
 
 
 def near(a: Amount, p: Printed) -> str:
     """The truth to two places more than the printed value shows, in its unit."""
-    return value(a, p.unit_text, max(4, p.figures + 2))
+    return value(a, p.written_in, max(4, p.figures + 2))
 
 
 def percent(x: float) -> str:

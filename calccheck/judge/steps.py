@@ -4,9 +4,10 @@ from __future__ import annotations
 
 from collections.abc import Iterator, Sequence
 from dataclasses import dataclass, field, replace
+from fractions import Fraction
 
 from calccheck.arithmetic import COHERENT, Amount, DimensionFault, Doubt, Real, size
-from calccheck.formula import Number, references
+from calccheck.formula import Number, numbers, references
 from calccheck.judge import quantities, say
 from calccheck.judge.laws import followed
 from calccheck.judge.members import Names, Worked, without_unit
@@ -101,19 +102,30 @@ def judge_member(w: Worked, relation: Relation, ground: Ground) -> Step:
     if w.doubt is not None:
         return _step(w, "unchecked", say.reason(w.doubt.reason, w.doubt.suggestion))
     assert w.amount is not None
-    if w.amount.dimension != ground.truth.dimension:
+    w = _difference_in_celsius(w, ground)
+    assert w.amount is not None
+    if w.amount.dimension != ground.truth.dimension or w.amount.point != ground.truth.point:
         return _other_dimension(w, relation, ground)
     if w.printed is not None:
         return _value(w, w.printed, relation, ground)
     if relation == "≈":
         return _approximate_formula(w, ground)
-    if w.sort == "substitution" or _rests_on_rounding(w, ground):
+    if numbers(w.node) or _spreads(w, ground):
         return _substitution(w, ground)
     if equal(w.amount.value, ground.truth.value):
         return _step(w, "agrees")
     return _step(
         w, "differs", f"{w.member.text} comes to {say.value(w.amount)}, {_subject(ground)} to {say.value(ground.truth)}"
     )
+
+
+def _difference_in_celsius(w: Worked, ground: Ground) -> Worked:
+    """``18 °C`` printed for a difference of temperatures is 18 K."""
+    p = w.printed
+    if p is None or not p.amount.point or ground.truth.point or ground.truth.dimension != p.amount.dimension:
+        return w
+    kelvins = Amount(Fraction(p.digits), p.amount.dimension)
+    return replace(w, amount=kelvins, printed=replace(p, amount=kelvins))
 
 
 def _step(w: Worked, verdict: Verdict, message: str = "") -> Step:
@@ -204,10 +216,6 @@ def _spreads(w: Worked, ground: Ground) -> dict[str, Real]:
     return found
 
 
-def _rests_on_rounding(w: Worked, ground: Ground) -> bool:
-    return bool(_spreads(w, ground))
-
-
 def _substitution(w: Worked, ground: Ground) -> Step:
     """A member with printed values in it: it reaches the truth within the rounding of its numbers."""
     assert w.amount is not None
@@ -227,7 +235,7 @@ def _substitution(w: Worked, ground: Ground) -> Step:
     if high > low:
         message += f"; the rounding of its numbers allows {say.value(Amount(low, w.amount.dimension))} to {say.value(Amount(high, w.amount.dimension))}"
     if faulty is not None:
-        message += f"; it carries on {say.value(faulty.printed.amount, faulty.printed.unit_text)}, which differs above"
+        message += f"; it carries on {say.value(faulty.printed.amount, faulty.printed.written_in)}, which differs above"
     return _step(w, "differs", message)
 
 
@@ -244,9 +252,9 @@ def _value(w: Worked, p: Printed, relation: Relation, ground: Ground) -> Step:
     )
     how = fit(p, truth.value, settings.carry, largest)
     if how == "exact place":
-        if coarse(p, truth.value):
+        if coarse(p, truth.value) and not equal(p.amount.value, truth.value):
             ground.cautions.append(
-                f"coarse: {w.member.text} says no more than ±{say.value(Amount(p.half, truth.dimension), p.unit_text, 3)}"
+                f"coarse: {w.member.text} says no more than ±{say.value(Amount(p.half, truth.dimension), p.written_in, 3)}"
             )
         return _step(w, "agrees")
     off = deviation(p.amount.value, truth.value)
@@ -279,7 +287,7 @@ def _restated(w: Worked, p: Printed, ground: Ground) -> Step:
     return _step(
         w,
         "differs",
-        f"the circuit block has {_subject(ground)} = {say.value(ground.truth, p.unit_text)}, printed {w.member.text}",
+        f"the circuit block has {_subject(ground)} = {say.value(ground.truth, p.written_in)}, printed {w.member.text}",
     )
 
 
