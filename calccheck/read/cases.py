@@ -13,7 +13,7 @@ from calccheck.read.names import NOT_FOR_PARTS, WORD, plain_name
 from calccheck.source import Piece, Span
 
 _FORM = "case NAME: Rt = 3.3 kΩ; RL open"
-_CASE = re.compile(r"case\b\s*(?P<name>[^:]*?)\s*(?P<colon>:?)\s*(?P<changes>.*)", re.DOTALL)
+_CASE = re.compile(r"case\b\s*(?P<name>[^:]*?)\s*:\s*(?P<changes>.+)", re.DOTALL)
 _NAME = re.compile(r"[^\W_]\w*(?:\s+\w+)*")
 _CHANGE = re.compile(
     rf"(?P<part>{WORD})(?:\s*=\s*(?P<value>\S.*)|\s+(?:open|shorted)|\s+(?P<word>[^\W\d]\w*)\s+(?P<number>\S.*))",
@@ -33,7 +33,7 @@ class Case:
 def read_case(body: Piece, parts: Collection[str], complete: bool) -> Case:
     """A ``case`` statement. Raises ``Doubt`` where it is not of the form, or, when ``complete``, changes no part of ``parts``."""
     m = _CASE.fullmatch(body.text)
-    if m is None or not m["colon"] or not _NAME.fullmatch(m["name"]) or not m["changes"]:
+    if m is None or not _NAME.fullmatch(m["name"]):
         raise Doubt(f"expected {_FORM}, found {body.text}", body.span())
     name = " ".join(m["name"].split())
     if name in NOT_FOR_PARTS:

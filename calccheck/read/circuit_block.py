@@ -6,13 +6,12 @@ import re
 from collections import Counter
 from collections.abc import Mapping, Sequence
 from dataclasses import dataclass
-from difflib import get_close_matches
 
 from calccheck.arithmetic import Amount, DimensionFault, Doubt
 from calccheck.document import Block
 from calccheck.model import Circuit, Element, Finding
 from calccheck.read.cases import Case, read_case
-from calccheck.read.names import NODE, WORD, Named, check_names, plain_name
+from calccheck.read.names import NODE, WORD, Named, check_names, nearest, plain_name
 from calccheck.read.part_lines import PartLine, split_line
 from calccheck.read.parts import read_part
 from calccheck.read.value_names import Scope, UnknownName
@@ -191,9 +190,9 @@ def _stated_reference(s: _Statement, nodes: Counter[str], found: list[Finding], 
         return ""
     name = plain_name(m[1])
     if name not in nodes and complete:
-        near = get_close_matches(name, list(nodes), 1)
-        mend = s.line.text.replace(m[1], near[0], 1).rstrip() if near else ""
-        message = f"the reference {name} is no node of this circuit" + (f"; is {near[0]} meant?" if near else "")
+        near = nearest(name, nodes)
+        mend = s.line.text.replace(m[1], near, 1).rstrip() if near else ""
+        message = f"the reference {name} is no node of this circuit" + (f"; is {near} meant?" if near else "")
         found.append(_finding("circuit-line", message, s.body.span(*m.span(1)), mend))
     return name
 

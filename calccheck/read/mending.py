@@ -148,6 +148,8 @@ _SLIPS = [
           "the value stands before the nodes"),
     _slip(r"(?<![\w.])(?P<number>\d*\.?\d+)\s*(?P<prefix>[GMkKmµunp])\s+(?P<unit>Ω|[Oo]hms?|[VAFHS])\b",
           r"\g<number> \g<prefix>\g<unit>", "a prefix and its unit are one word: {written}"),
+    _slip(r"(?<![\w.])(?P<number>\d*\.?\d+)\s*(?P<unit>[kmµ]?[VA])\s*(?:dc|DC)\b", r"\g<number> \g<unit>",
+          "a source without a frequency is DC: {written}"),
     _slip(r"(?<![\w.])(?P<number>\d*\.?\d+)\s*(?P<unit>[^\W\d_]+)(?![\w:])(?!\s+to\b)", _unit, "{found} is written {written}"),
     _slip(rf"^(?P<head>\s*(?P<letter>[^\W\d_])\w*\s*:\s*(?P<at>{_NUMBER}))\s*(?P<prefix>[GMkKmµunp]?){_END}", _with_unit,
           "the value has no unit"),

@@ -5,6 +5,7 @@ from __future__ import annotations
 import re
 from collections.abc import Collection, Iterable, Sequence
 from dataclasses import dataclass
+from difflib import get_close_matches
 
 from calccheck.model import Finding
 from calccheck.read.expression import RESERVED
@@ -18,6 +19,7 @@ WORD = rf"[^\W\d_{SUPERSCRIPTS}]{_IN_WORD}*[′″']*"
 NODE = rf"(?!to\b)[+\-−]?{_IN_WORD}+[′″']*"
 _QUANTITY = re.compile(r"(?:V|I|P|Isc)_")
 _ORDINAL = re.compile(r"(.*?)_?(\d*)")
+_MANY = 200
 NOT_FOR_PARTS = RESERVED | {"π"}
 
 # First letter and unit by the custom of the trade (common practice). A letter with two small ones behind it begins a word
@@ -40,6 +42,12 @@ class Named:
 def plain_name(text: str) -> str:
     """A name with look-alike characters read as what they look like."""
     return text.translate(LOOKALIKES)
+
+
+def nearest(name: str, known: Collection[str]) -> str:
+    """The known name that looks most like a mistyped one; empty where none does, and among too many to look through."""
+    near = get_close_matches(name, list(known), 1) if len(known) <= _MANY else []
+    return near[0] if near else ""
 
 
 def customary(name: str) -> tuple[Dimension, ...]:

@@ -5,7 +5,6 @@ from __future__ import annotations
 import re
 from collections.abc import Callable
 from dataclasses import dataclass
-from difflib import get_close_matches
 from fractions import Fraction
 
 from calccheck.arithmetic import Amount, Doubt, Real, evaluate
@@ -13,7 +12,7 @@ from calccheck.component_code import component_code
 from calccheck.formula import Group, Node, Number, Reference, references, walk
 from calccheck.model import Control, Kind
 from calccheck.read.expression import parse
-from calccheck.read.names import customary
+from calccheck.read.names import customary, nearest
 from calccheck.read.value_names import Scope, free, is_control, known, steering
 from calccheck.source import Piece
 from calccheck.units import (
@@ -101,7 +100,8 @@ def _valued(amount: Amount, what: Piece, alternating: bool) -> Value:
     if kind is None or amount.point:
         if amount.dimension == NONE:
             raise Doubt(f"{what.text} has no unit; {_EXPECTED}", what.span())
-        raise Doubt(f"{what.text} is {words(amount.dimension)}; {_EXPECTED}", what.span())
+        found = "a temperature" if amount.point else words(amount.dimension)
+        raise Doubt(f"{what.text} is {found}; {_EXPECTED}", what.span())
     if alternating:
         if amount.dimension == OHM:
             return Value("impedance", unsolved="is an impedance")
@@ -180,8 +180,8 @@ def _with_free_symbol(written: Written, first: Reference, scope: Scope) -> Value
         raise Doubt(f"{first.word} is a part; a value is worked from givens", first.span)
     if unit is None and isinstance(node, Group) and node.unit.text:
         unit = node.unit
-    near = get_close_matches(first.word, list(scope.givens), 1) if scope.givens else []
-    hint = f"is {near[0]} meant" if near else f"given {first.word} = … would give its value"
+    near = nearest(first.word, scope.givens)
+    hint = f"is {near} meant?" if near else f"given {first.word} = … would give its value"
     if unit is None or unit.dimension not in KINDS:
         raise Doubt(f"{first.word} has no value and {what.text} no unit at its end; {hint}", first.span)
     return Value(KINDS[unit.dimension], unsolved=f"has the free symbol {first.word} for a value ({hint})")

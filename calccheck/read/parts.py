@@ -41,7 +41,11 @@ def read_part_value(part: PartLine, scope: Scope) -> Value:
     """The kind and value of a part, a source's frequency taken into account."""
     if part.shape.kind:
         return Value(part.shape.kind, unsolved=_UNSOLVED.get(part.shape.kind, ""))
-    value = read_value(part.what, part.name, scope)
+    try:
+        value = read_value(part.what, part.name, scope)
+    except Doubt as doubt:
+        doubt.span = doubt.span or part.what.span()
+        raise
     if part.frequency is None:
         return value
     if value.kind not in _SOURCES:

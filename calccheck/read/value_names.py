@@ -5,11 +5,11 @@ from __future__ import annotations
 import math
 from collections.abc import Collection, Mapping
 from dataclasses import dataclass
-from difflib import get_close_matches
 
 from calccheck.arithmetic import Amount, Doubt
 from calccheck.formula import NO_QUALIFIERS, Node, Reference, references
 from calccheck.model import Control
+from calccheck.read.names import nearest
 
 _CONSTANTS = {"e": math.e, "π": math.pi}
 
@@ -74,6 +74,6 @@ def steering(r: Reference, scope: Scope) -> Control:
 
 
 def _unknown(name: str, what: str, known: Collection[str], r: Reference) -> UnknownName:
-    near = get_close_matches(name, list(known), 1)
-    hint = f"; is {near[0]} meant?" if near else ""
+    near = nearest(name, known)
+    hint = f"; is {near} meant?" if near else ""
     return UnknownName(f"{r.text}: this circuit has no {what} {name}{hint}", r.span)
