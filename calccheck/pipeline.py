@@ -6,13 +6,14 @@ from collections.abc import Callable, Sequence
 from datetime import date
 
 from calccheck.arithmetic import Doubt
-from calccheck.edits import unmark
+from calccheck.edits import stray, unmark
 from calccheck.judge.scope import Ledger
 from calccheck.judge.sheet import judge_sheet
 from calccheck.judge.working import work_out as worked_out
 from calccheck.model import Circuit, CircuitFigures, Finding, Reading, Report, Settings, Solution, WorkedQuantity
 from calccheck.read.expression import parse
 from calccheck.read.sheet import read_sheet
+from calccheck.rules import RULES
 from calccheck.solve import Unsolvable, solve
 from calccheck.source import Sheet, whole
 
@@ -25,8 +26,14 @@ def check(sheet: Sheet, settings: Settings | None = None) -> Report:
     solve_once = solver()
     solutions, faults = _solved(reading.circuits, solve_once)
     judged, findings = judge_sheet(reading, solve_once, reading.settings.on or date.today())
-    every = sorted((*reading.findings, *faults, *findings), key=lambda f: f.span.start)
+    every = sorted((*reading.findings, *_stray_marks(reading), *faults, *findings), key=lambda f: f.span.start)
     return Report(reading, judged, tuple(every), _figures(reading, solutions), solutions)
+
+
+def _stray_marks(reading: Reading) -> list[Finding]:
+    """Marks that could not be taken out, and so say something of a sheet that nobody has checked."""
+    left = stray(reading.sheet.text) if reading.is_calc else []
+    return [Finding("mark", RULES["mark"].severity, mark.message, mark.span) for mark in left]
 
 
 def solver() -> Solve:

@@ -165,6 +165,8 @@ def _only_a_value(name: str, workings: Sequence[Worked], job: Work) -> Doubt:
     first = workings[0]
     assert isinstance(first.node, Reference)
     sentence, hint = hints.unknown(first.node, job.claim.circuit, job.ledger)
+    if workings[1].relation != "=":
+        return Doubt(sentence, first.member.span, hint)
     assume = f"given {name} = {workings[1].member.text}"
     return Doubt(
         f"{sentence} An assumption is written {assume}" if hint else f"{sentence}; an assumption is written {assume}",

@@ -1,0 +1,43 @@
+"""The full independent working of one quantity: each source alone, the sum, the nodal value, and the gap between the two."""
+
+from __future__ import annotations
+
+from calccheck.arithmetic import Amount, Doubt
+from calccheck.formula import Node, Reference
+from calccheck.judge import hints, quantities
+from calccheck.judge.changes import TEST
+from calccheck.judge.scope import Ledger, meaning
+from calccheck.model import WorkedQuantity
+from calccheck.source import Span
+from calccheck.units import Dimension
+
+
+def work_out(node: Node, span: Span, ledger: Ledger) -> WorkedQuantity:
+    """The working of a quantity that is linear in the sources. Raises ``Doubt`` for anything else, with the reason."""
+    if not isinstance(node, Reference):
+        raise Doubt("one quantity is worked out at a time, such as V_bus or I_RL with RL open", span)
+    m = meaning(node, -1, ledger)
+    if m is None:
+        raise Doubt(hints.unknown(node, -1, ledger)[0], span)
+    if m.sort != "quantity" or m.key is None:
+        raise Doubt(f"{node.text} is no quantity of a circuit", span)
+    if m.key.letter == "P":
+        name = m.key.subscripts[0]
+        raise Doubt(f"a power is no sum of parts by source; work out V_{name} and I_{name}", span)
+    q = quantities.linear(m.key, ledger, span)
+    solution = quantities.solved(q.circuit, ledger, span)
+    sources = [s for s in solution.parts if not m.key.due_to or s in m.key.due_to]
+    quantities.check_sources(m.key.due_to, q.circuit, span)
+    rows = tuple((_label(s), Amount(q.read(solution.parts[s]), q.dimension)) for s in sources)
+    total = quantities.amount(m.key, ledger, span) if solution.exact else _sum(rows, q.dimension)
+    whole = q.read(solution.nodal) if len(sources) == len(solution.parts) else None
+    nodal = Amount(whole, q.dimension) if whole is not None else None
+    return WorkedQuantity(node.text, rows, total, nodal, solution.gap)
+
+
+def _label(source: str) -> str:
+    return "1 A driven through the nodes" if source == TEST else source
+
+
+def _sum(rows: tuple[tuple[str, Amount], ...], dimension: Dimension) -> Amount:
+    return Amount(sum(float(a.value) for _, a in rows), dimension)
