@@ -46,11 +46,16 @@ def check(options: argparse.Namespace) -> int:
 def working(options: argparse.Namespace) -> int:
     """``calccheck working``: the table of one quantity."""
     from calccheck.annotate.working_table import working_table
+    from calccheck.arithmetic import Doubt
     from calccheck.pipeline import work_out
 
     source = standard_input() if options.sheet == "-" else Source(Path(options.sheet), Path(options.sheet))
-    w = work_out(sheet_of(source), options.quantity)
-    sys.stdout.write(working_table(w.quantity, w.rows, w.total, w.nodal, w.gap, w.unit))
+    try:
+        worked = work_out(sheet_of(source), options.quantity, settings_for(source))
+    except Doubt as doubt:
+        hint = f"; write {doubt.suggestion}" if doubt.suggestion and doubt.suggestion not in doubt.reason else ""
+        raise Unusable(source.name, f"{doubt.reason}{hint}") from None
+    sys.stdout.write(working_table(worked))
     return STANDS
 
 

@@ -25,6 +25,10 @@ _STRAY = re.compile(
     r"|\[\^calccheck\d*-\d+m?\]"
     r"| {2}# [^\r\n]{0,2000}? \(calccheck\d*-[0-9a-f]{6}\)(?=[\r\n]|\Z)"
 )
+_CHANGED = (
+    "the marks of an earlier run cannot be taken out, because their list was changed or something stands behind it; "
+    "restore the list (text of your own belongs above it), or delete the marks by hand"
+)
 _ORDER = {"note": 0, "comment": 1, "below": 2}
 
 
@@ -132,14 +136,25 @@ def unmark(text: str) -> str:
     return text
 
 
-def stray(text: str) -> list[Span]:
-    """Marks in a text from which the marks have been taken out: copied from elsewhere, or changed by hand.
+@dataclass(frozen=True, slots=True)
+class Stray:
+    """A mark left in a text from which the marks were taken out. ``listing``: it is the list of notes itself."""
 
-    Where the list of notes is among them nothing could be taken out, and its place stands for all.
+    span: Span
+    message: str
+    listing: bool
+
+
+def stray(text: str) -> list[Stray]:
+    """Marks that were copied from elsewhere or changed by hand.
+
+    Where the list of notes is among them nothing could be taken out, and it stands for all.
     """
     found = list(_STRAY.finditer(text)) if "calccheck" in text else []
     lists = [m for m in found if m["list"]]
-    return [Span(*m.span()) for m in (lists[:1] or found)]
+    if lists:
+        return [Stray(Span(*lists[0].span()), _CHANGED, True)]
+    return [Stray(Span(*m.span()), f"{m.group().strip()} is a mark of another run; delete it", False) for m in found]
 
 
 def _cuts(text: str) -> list[Span]:

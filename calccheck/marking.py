@@ -91,8 +91,8 @@ def write_marked(order: Order, form: str, on: date | None) -> tuple[Report | Non
     report = report_on(order.source, on)
     if not report.reading.is_calc:
         return report, False
-    if form == "md" and _list_left(unmark(sheet.text)):
-        raise Unusable(sheet.name, _CHANGED)
+    if form == "md":
+        _refuse_changed(sheet.name, unmark(sheet.text))
     data = _rendered(report, form)
     before = sheet.text.encode("utf-8") if order.in_place else None
     if data != before:
@@ -120,23 +120,18 @@ def remove_marks(order: Order) -> tuple[Report | None, bool]:
     _refuse_existing(order)
     text = sheet_of(order.source).text
     plain = unmark(text)
-    if _list_left(plain):
-        raise Unusable(order.source.name, _CHANGED)
+    _refuse_changed(order.source.name, plain)
     if plain == text:
         return None, False
     write_whole(order.target, plain.encode("utf-8"), order.replace, text.encode("utf-8") if order.in_place else None)
     return None, True
 
 
-_CHANGED = (
-    "its marks cannot be taken out, because their list at the end was changed or something stands behind it; "
-    "restore the list (text of your own belongs above it), or delete the marks by hand"
-)
-
-
-def _list_left(text: str) -> bool:
-    """Whether a list of marks is left in a text from which marks were taken out."""
-    return any(text.startswith("<!--", s.start) for s in stray(text))
+def _refuse_changed(name: str, text: str) -> None:
+    """Where the marks of an earlier run could not be taken out, new ones would only pile up."""
+    for left in stray(text):
+        if left.listing:
+            raise Unusable(name, left.message)
 
 
 def _refuse_existing(order: Order) -> None:

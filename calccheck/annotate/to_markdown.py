@@ -122,7 +122,9 @@ def claim_words(entry: Entry) -> str:
 def _closing(report: Report, findings: tuple[Entry, ...]) -> list[str]:
     """What ends the list of notes: the verdict in a sentence, and each finding with its line in the sheet."""
     summary = f"**Checked by calccheck.** {escaped(headline(report))} {LIMITS[-1]}"
-    lines = [f"- {MARKS[f.kind].label}, line {f.line}: {escaped(one_line(' '.join(f.told)))}" for f in findings]
+    lines = [
+        f"- {MARKS[f.kind].label}, line {f.line}: {escaped(one_line(' '.join(f.told)))}" for f in findings if not f.echo
+    ]
     return [summary, *([""] if lines else []), *lines]
 
 

@@ -2,35 +2,29 @@
 
 from __future__ import annotations
 
-from collections.abc import Sequence
-
 from calccheck.annotate.visible import one_line
-from calccheck.arithmetic import Amount, Real
+from calccheck.arithmetic import Amount
+from calccheck.model import WorkedQuantity
 from calccheck.units import digits, printed
 
 
-def working_table(
-    quantity: str, alone: Sequence[tuple[str, Amount]], total: Amount, nodal: Amount, gap: float, unit: str = ""
-) -> str:
-    """The table as text.
-
-    ``alone``: each independent source with the quantity's value when it acts by itself, in SI; ``total``: their sum;
-    ``nodal``: the value by nodal solution; ``gap``: their difference relative to the circuit's scale; ``unit``: the unit to
-    print in, the handiest where none is given. A source's share is its value over the sum.
-    """
-    rows = [(f"due to {name}", _shown(a, unit), _share(a.value, total.value)) for name, a in alone]
-    rows += [("sum", _shown(total, unit), ""), ("nodal solution", _shown(nodal, unit), ""), ("gap", f"{gap:.1e}", "")]
-    heads = (one_line(quantity), "value", "share")
-    rows = [heads, *((one_line(name), value, share) for name, value, share in rows)]
-    widths = [max(len(row[k]) for row in rows) for k in range(3)]
-    lines = [f"{n:<{widths[0]}}  {v:>{widths[1]}}  {s:>{widths[2]}}".rstrip() for n, v, s in rows]
+def working_table(worked: WorkedQuantity) -> str:
+    """The table as text. A source's share is its value over the sum; the gap is relative to the circuit's scale."""
+    rows = [(f"due to {name}", _shown(alone), _share(alone, worked.total)) for name, alone in worked.rows]
+    sums = [("sum", _shown(worked.total), "")]
+    if worked.nodal is not None:
+        sums += [("nodal solution", _shown(worked.nodal), ""), ("gap", f"{worked.gap:.1e}", "")]
+    table = [(one_line(worked.quantity), "value", "share"), *((one_line(n), v, s) for n, v, s in (*rows, *sums))]
+    widths = [max(len(row[k]) for row in table) for k in range(3)]
+    lines = [f"{n:<{widths[0]}}  {v:>{widths[1]}}  {s:>{widths[2]}}".rstrip() for n, v, s in table]
     rule = "-" * (sum(widths) + 4)
-    return "\n".join([lines[0], rule, *lines[1 : 1 + len(alone)], rule, *lines[1 + len(alone) :]]) + "\n"
+    split = 1 + len(rows)
+    return "\n".join([lines[0], rule, *lines[1:split], *([rule] if rows else []), *lines[split:]]) + "\n"
 
 
-def _shown(amount: Amount, unit: str) -> str:
-    return printed(amount.value, amount.dimension, 6, unit)
+def _shown(amount: Amount) -> str:
+    return printed(amount.value, amount.dimension)
 
 
-def _share(part: Real, total: Real) -> str:
-    return f"{digits(100 * part / total, 3)} %".replace("-", "−") if total else "-"
+def _share(part: Amount, total: Amount) -> str:
+    return f"{digits(100 * part.value / total.value, 3)} %".replace("-", "−") if total.value else "-"
