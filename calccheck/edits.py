@@ -101,7 +101,7 @@ def _insertions(text: str, edits: Sequence[Edit], label: str, end: str) -> Itera
             margin = _margin(text, at)
             yield at, f"{end}{margin}{end}{margin}Above: {' '.join(labels)}", notes
         else:
-            guard = _GUARD if text.startswith(("(", "[", _GUARD), at) else ""
+            guard = _GUARD if re.match(rf"\(|\[(?!\^)|{_GUARD}", text[at : at + len(_GUARD)]) else ""
             yield at, "".join(labels) + guard, notes
 
 
