@@ -1,0 +1,1 @@
+"""Outputs of a report: each a function of reports to text or bytes."""

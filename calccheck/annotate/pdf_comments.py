@@ -44,34 +44,47 @@ def add_comments(pdf: bytes, comments: dict[str, Comment], day: date) -> bytes:
     """The file with every link to ``annot:KEY`` (or ``annot:KEY+KEY``) turned into a highlight with those comments."""
     reader = PdfReader(BytesIO(pdf))
     parents = _structure_parents(reader)
-    size = int(reader.trailer["/Size"])
+    size = _whole(reader.trailer["/Size"])
     changed: dict[int, PdfObject] = {}
     names: set[str] = set()
     for page in reader.pages:
-        for reference in page.get("/Annots", ()):
-            link = reference.get_object()
+        for reference in _array(page.get("/Annots")):
+            link = _dictionary(reference)
             keys = _keys(link)
-            if not keys:
+            if not keys or not isinstance(reference, IndirectObject):
                 continue
             boxes = _lines_of(link)
             look = size + sum(number >= size for number in changed)
             changed[look] = _appearance(boxes, comments[keys[0]].colour)
-            name = _unused("+".join(keys), names)
-            note = _highlight([comments[k] for k in keys], boxes, look, reader, day, name)
+            note = _highlight([comments[k] for k in keys], boxes, day, _unused("+".join(keys), names))
+            note[NameObject("/AP")] = _names(N=IndirectObject(look, 0, reader))
             if "/StructParent" in link:
                 note[NameObject("/StructParent")] = link["/StructParent"]
-            changed[reference.idnum] = note
-            element = parents.get(int(link.get("/StructParent", -1)))
-            if element is not None:  # in the tagged text, too, it is an annotation now and no link
-                tag = DictionaryObject(element.get_object())
-                tag[NameObject("/S")] = NameObject("/Annot")
+                element = parents[_whole(link["/StructParent"])]
+                tag = DictionaryObject(_dictionary(element))
+                tag[NameObject("/S")] = NameObject("/Annot")  # in the tagged text, too, it is no link any more
                 changed[element.idnum] = tag
+            changed[reference.idnum] = note
     return _updated(pdf, reader, changed)
 
 
+def _dictionary(value: PdfObject | None) -> DictionaryObject:
+    found = value.get_object() if value is not None else None
+    return found if isinstance(found, DictionaryObject) else DictionaryObject()
+
+
+def _array(value: PdfObject | None) -> ArrayObject:
+    """An array's members, as references where they are."""
+    found = value.get_object() if value is not None else None
+    return found if isinstance(found, ArrayObject) else ArrayObject()
+
+
+def _whole(value: PdfObject) -> int:
+    return int(str(value))
+
+
 def _keys(link: DictionaryObject) -> list[str]:
-    action = link.get("/A")
-    address = str(action.get_object().get("/URI", "")) if action is not None else ""
+    address = str(_dictionary(link.get("/A")).get("/URI", ""))
     return address.removeprefix(SCHEME).split("+") if address.startswith(SCHEME) else []
 
 
@@ -88,21 +101,23 @@ def _unused(name: str, names: set[str]) -> str:
 def _structure_parents(reader: PdfReader) -> dict[int, IndirectObject]:
     """From the number that an annotation bears to its element in the structure tree (ISO 32000-1, 14.7.4.4)."""
     found: dict[int, IndirectObject] = {}
-    root = reader.trailer["/Root"].get("/StructTreeRoot")
-    waiting = [] if root is None else [root.get_object()["/ParentTree"]]
+    root = _dictionary(_dictionary(reader.trailer["/Root"]).get("/StructTreeRoot"))
+    waiting: list[PdfObject | None] = [root.get("/ParentTree")]
     while waiting:
-        node = waiting.pop().get_object()
-        numbers = node.get("/Nums", [])
-        found.update((int(numbers[k]), list.__getitem__(numbers, k + 1)) for k in range(0, len(numbers), 2))
-        waiting += node.get("/Kids", [])
-    return {k: v for k, v in found.items() if isinstance(v, IndirectObject)}
+        node = _dictionary(waiting.pop())
+        numbers = list(_array(node.get("/Nums")))
+        for number, element in zip(numbers[::2], numbers[1::2], strict=True):
+            if isinstance(element, IndirectObject):
+                found[_whole(number)] = element
+        waiting += _array(node.get("/Kids"))
+    return found
 
 
 def _lines_of(link: DictionaryObject) -> list[Box]:
     """The boxes of a link, one for each line of text: pieces that a change of font has parted are joined."""
-    flat = [float(v) for v in link.get("/QuadPoints") or ()]
+    flat = [float(str(v)) for v in _array(link.get("/QuadPoints"))]
     quads = [flat[k : k + 8] for k in range(0, len(flat), 8)]
-    x0, y0, x1, y1 = (float(v) for v in link["/Rect"])
+    x0, y0, x1, y1 = (float(str(v)) for v in _array(link["/Rect"]))
     parts = [(min(q[::2]), min(q[1::2]), max(q[::2]), max(q[1::2])) for q in quads] or [(x0, y0, x1, y1)]
     lines: list[Box] = []
     for part in sorted(parts, key=lambda b: (b[1] - b[3], b[0])):  # the tallest first: it tells the line
@@ -151,9 +166,7 @@ def _appearance(boxes: list[Box], colour: str) -> StreamObject:
     return form
 
 
-def _highlight(
-    comments: list[Comment], boxes: list[Box], look: int, reader: PdfReader, day: date, name: str
-) -> DictionaryObject:
+def _highlight(comments: list[Comment], boxes: list[Box], day: date, name: str) -> DictionaryObject:
     quads = [v for x0, y0, x1, y1 in boxes for v in (x0, y1, x1, y1, x0, y0, x1, y0)]
     when = TextStringObject(f"D:{day:%Y%m%d}000000Z")
     return _names(
@@ -169,7 +182,6 @@ def _highlight(
         CreationDate=when,
         C=_reals(*_rgb(comments[0].colour)),
         F=NumberObject(4),  # print
-        AP=_names(N=IndirectObject(look, 0, reader)),
     )
 
 
@@ -188,10 +200,10 @@ def _updated(pdf: bytes, reader: PdfReader, changed: dict[int, PdfObject]) -> by
     for number in sorted(offsets):
         out.write(f"{number} 1\n{offsets[number]:010d} 00000 n \n".encode("ascii"))
     old = reader.trailer
-    first = old["/ID"][0]
+    first = _array(old["/ID"])[0]
     second = ByteStringObject(sha256(out.getvalue()).digest()[:16])
     trailer = _names(
-        Size=NumberObject(max(int(old["/Size"]), max(offsets, default=0) + 1)),
+        Size=NumberObject(max(_whole(old["/Size"]), max(offsets, default=0) + 1)),
         Root=old.raw_get("/Root"),
         Info=old.raw_get("/Info"),
         ID=ArrayObject([first, second]),

@@ -43,7 +43,8 @@ class Run:
 def places(page: tuple[Block, ...], sheet: Sheet, rows: tuple[Entry, ...]) -> Places:
     """Give every character to the shortest entry that covers it, to a claim before a finding.
 
-    An entry of which nothing is shown gets its mark behind the nearest character before it on its line, if any is shown.
+    An entry of which nothing is shown gets its mark behind the nearest character before it on its line, else behind the
+    next one shown.
     """
     owner = [NOBODY] * len(sheet.text)
     for k in sorted(range(len(rows)), key=lambda k: (rows[k].key[0] == "c", rows[k].span.start - rows[k].span.end)):
@@ -53,17 +54,19 @@ def places(page: tuple[Block, ...], sheet: Sheet, rows: tuple[Entry, ...]) -> Pl
     last = {owner[at]: at for at in shown if owner[at] != NOBODY}
     ends: dict[int, tuple[int, ...]] = {}
     for k, row in enumerate(rows):
-        at = last[k] if k in last else _before(row, shown, sheet)
+        at = last[k] if k in last else _nearest(row, shown, sheet)
         if at != NOWHERE:
             ends[at] = (*ends.get(at, ()), k)
     return Places(rows, owner, ends)
 
 
-def _before(row: Entry, shown: list[int], sheet: Sheet) -> int:
-    """The last shown character up to the end of an entry, on the lines that the entry stands on."""
+def _nearest(row: Entry, shown: list[int], sheet: Sheet) -> int:
+    """The last shown character up to the end of an entry, on the lines that it stands on; else the next, else the last."""
     k = bisect_right(shown, max(row.span.start, row.span.end - 1)) - 1
     line = sheet.line_starts[sheet.line_column(row.span.start)[0] - 1]
-    return shown[k] if k >= 0 and shown[k] >= line else NOWHERE
+    if k >= 0 and shown[k] >= line:
+        return shown[k]
+    return shown[min(k + 1, len(shown) - 1)] if shown else NOWHERE
 
 
 def shown_pieces(page: tuple[Block, ...]) -> Iterator[Piece]:

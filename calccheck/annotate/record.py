@@ -9,11 +9,11 @@ from dataclasses import dataclass
 
 from calccheck.annotate.marks import MARKS
 from calccheck.arithmetic import Amount
-from calccheck.formula import Number, Range
-from calccheck.model import Claim, CircuitFigures, Finding, Judged, Member, Report
+from calccheck.formula import Node, Number, Range, Unary, numbers
+from calccheck.model import CircuitFigures, Claim, Finding, Judged, Member, Report
 from calccheck.rules import RULES
 from calccheck.source import Span
-from calccheck.units import digits, printed
+from calccheck.units import PLAIN, UNITS, Unit, digits, printed
 
 NOTED = ("differs", "unchecked", "error")  # what is to be mended: margin note and comment
 BESIDE = (*NOTED, "caution", "accepted")  # what a reviewer should see where it stands
@@ -26,6 +26,15 @@ TITLE_FIELDS = {
 
 BASES = {"circuit": "circuit", "working": "working", "": "none"}
 """What a claim's truth rests on: the solved circuit, the sheet's own working, nothing that could be computed."""
+
+MEANINGS = {
+    "differs": "is not the recomputed value",
+    "unchecked": "could not be read, resolved or solved: not vouched for",
+    "accepted": "differs, but stands under a waiver that names both values",
+    "rounded": "off by no more than rounding carried on, or a declared approximation, explains",
+    "agrees": "is the recomputed value to the last place printed",
+    "given": "an assumption, checked against nothing",
+}
 
 LIMITS = (
     "Every claim listed as agreeing was recomputed from the circuit and the working as they stand in this sheet. Such a "
@@ -68,17 +77,24 @@ class Entry:
     deviation: str = ""
     size: float = 0.0
     basis: str = ""
+    echo: bool = False
 
     @property
     def beside(self) -> bool:
         """Whether a note stands beside the mark."""
-        return self.kind in BESIDE or bool(self.cautions)
+        return not self.echo and (self.kind in BESIDE or bool(self.cautions))
+
+    @property
+    def to_mend(self) -> bool:
+        """Whether it is commented upon, as something to be mended."""
+        return not self.echo and self.kind in NOTED
 
 
 def entries(report: Report) -> tuple[Entry, ...]:
     """An entry for each claim, numbered in the order of the sheet, then for each finding."""
     claims = tuple(_claim(report, k, judged) for k, judged in enumerate(report.claims, 1))
-    return claims + tuple(_finding(report, k, finding) for k, finding in enumerate(report.findings, 1))
+    said = {e.message for e in claims}
+    return claims + tuple(_finding(report, k, finding, said) for k, finding in enumerate(report.findings, 1))
 
 
 def _claim(report: Report, k: int, judged: Judged) -> Entry:
@@ -86,8 +102,6 @@ def _claim(report: Report, k: int, judged: Judged) -> Entry:
     told = [judged.message, *(slip.text for slip in judged.slips)]
     if claim.problem and claim.problem.suggestion and claim.problem.suggestion not in judged.message:
         told.append(f"Write: {claim.problem.suggestion}")
-    if claim.waiver and judged.verdict == "accepted":
-        told.append(waiver_line(claim))
     return Entry(
         key=f"c{k}",
         number=str(k),
@@ -106,11 +120,12 @@ def _claim(report: Report, k: int, judged: Judged) -> Entry:
     )
 
 
-def _finding(report: Report, k: int, finding: Finding) -> Entry:
+def _finding(report: Report, k: int, finding: Finding, said: set[str]) -> Entry:
     title = RULES[finding.kind].title if finding.kind in RULES else finding.kind
     line = report.reading.sheet.line_column(finding.span.start)[0]
     told = (finding.message, f"Write: {finding.suggestion}") if finding.suggestion else (finding.message,)
-    return Entry(f"f{k}", f"F{k}", finding.severity, finding.span, line, title, finding.message, told)
+    echo = finding.message in said
+    return Entry(f"f{k}", f"F{k}", finding.severity, finding.span, line, title, finding.message, told, echo=echo)
 
 
 def comment_text(entry: Entry) -> str:
@@ -129,26 +144,38 @@ def comment_text(entry: Entry) -> str:
 
 def _value_member(claim: Claim) -> Member | None:
     """The member that prints the claim's value: the last literal behind ``=`` or ``≈``, else the last behind a bound."""
-    tail = [m for m in claim.members if isinstance(m.node, Number | Range)]
+    tail = [m for m in claim.members if _is_value(m.node)]
     stated = [m for m in tail if m.relation in ("=", "≈")]
     chosen = stated or tail
     return chosen[-1] if chosen else None
+
+
+def _is_value(node: Node) -> bool:
+    return isinstance(node, Number | Range) or (isinstance(node, Unary) and isinstance(node.operand, Number))
 
 
 def _printed(judged: Judged) -> str:
     member = _value_member(judged.claim)
     if member is not None:
         return member.text if member.relation in ("", "=") else f"{member.relation} {member.text}"
-    return _amount(judged.claimed, judged.claimed_unit)
+    return _amount(judged.claimed, _unit(judged))
 
 
 def _computed(judged: Judged) -> str:
+    unit = _unit(judged)
     if judged.low is not None and judged.high is not None:
-        return f"{_amount(judged.low, judged.claimed_unit)} … {_amount(judged.high, judged.claimed_unit)}"
-    return _amount(judged.computed or judged.low or judged.high, judged.claimed_unit)
+        return f"{_amount(judged.low, unit)} … {_amount(judged.high, unit)}"
+    return _amount(judged.computed or judged.low or judged.high, unit)
 
 
-def _amount(amount: Amount | None, unit: str) -> str:
+def _unit(judged: Judged) -> Unit:
+    """The unit that the claim's value is printed in."""
+    member = _value_member(judged.claim)
+    found = numbers(member.node) if member else []
+    return found[-1].unit if found else UNITS.get(judged.claimed_unit, PLAIN)
+
+
+def _amount(amount: Amount | None, unit: Unit) -> str:
     return "" if amount is None else printed(amount.value, amount.dimension, 6, unit)
 
 
@@ -171,13 +198,13 @@ def _deviation(judged: Judged) -> str:
 def worst_first(rows: tuple[Entry, ...]) -> list[Entry]:
     """What is to be mended or to be weighed, worst first; among what differs the largest deviation first."""
     order = list(MARKS)
-    wanted = [e for e in rows if e.kind in (*BESIDE, "note") or e.cautions]
+    wanted = [e for e in rows if e.beside or e.kind == "note"]
     return sorted(wanted, key=lambda e: (order.index(e.kind), -e.size, e.line))
 
 
 def counts(report: Report) -> list[tuple[str, list[int]]]:
     """Per verdict, worst first: the number of claims on each basis in the order of ``BASES``, then in all."""
-    table = []
+    table: list[tuple[str, list[int]]] = []
     for verdict in (name for name in MARKS if name in report.counts):
         row = [sum(j.verdict == verdict and j.basis == basis for j in report.claims) for basis in BASES]
         table.append((verdict, [*row, sum(row)]))

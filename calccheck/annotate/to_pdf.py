@@ -11,16 +11,17 @@ from datetime import UTC, date, datetime
 from pathlib import Path, PurePath
 from tempfile import TemporaryDirectory
 
+from calccheck.annotate.characters import told
 from calccheck.annotate.marks import MARKS
 from calccheck.annotate.places import places
-from calccheck.annotate.record import NOTED, TITLE_FIELDS, Entry, comment_text, entries
+from calccheck.annotate.record import TITLE_FIELDS, Entry, comment_text, entries
 from calccheck.annotate.typst_page import Setting, heading_levels, typeset
 from calccheck.annotate.typst_record import Words, digest, notes, record, summary
-from calccheck.annotate.typst_text import literal, told
+from calccheck.annotate.typst_text import literal
 from calccheck.model import Report
 
 _LOOK = ("sheet.typ", "record.typ")
-_STANDARDS = ["a-3a", "ua-1"]
+_TRIES = 3
 _NO_DATE = date(1970, 1, 1)  # an archivable file must bear a date; this one says that the sheet has none
 _NOT_SHOWN = re.compile(r"the text `\"(.*?)\"` could not be displayed")
 _CODE = re.compile(r"\\u\{([0-9a-f]+)\}")
@@ -34,7 +35,7 @@ def to_pdf(report: Report, sheet_number: int = 1, of: int = 1) -> bytes:
     """
     rows = entries(report)
     pdf = _compile(report, rows, f"sheet {sheet_number} of {of}")
-    to_mend = [e for e in rows if e.kind in NOTED]
+    to_mend = [e for e in rows if e.to_mend]
     if not to_mend:
         return pdf
     from calccheck.annotate.pdf_comments import Comment, add_comments  # late: pypdf costs more than setting the page
@@ -59,19 +60,22 @@ def _compile(report: Report, rows: tuple[Entry, ...], place_in_set: str) -> byte
     stamp = int(datetime(day.year, day.month, day.day, tzinfo=UTC).timestamp())
     missing: frozenset[str] = frozenset()
     with TemporaryDirectory() as empty:
-        for _ in range(3):
+        for _ in range(_TRIES):
             source = typst_source(report, rows, place_in_set, missing).encode("utf-8")
+            compiler = typst.Compiler(
+                source, root=empty, ignore_system_fonts=True, package_path=empty, package_cache_path=empty
+            )
             try:
-                return typst.compile(
-                    source, root=empty, package_path=empty, package_cache_path=empty, ignore_system_fonts=True,
-                    pdf_standards=_STANDARDS, timestamp=stamp,
-                )  # fmt: skip
+                pdf = compiler.compile(format="pdf", pdf_standards=["a-3a", "ua-1"], timestamp=stamp)
             except typst.TypstError as fault:
                 found = missing_characters(fault.diagnostic)
-                if not found - missing:
+                if found <= missing:
                     raise
                 missing |= found
-    raise AssertionError("typst keeps finding characters that no font shows")
+            else:
+                assert isinstance(pdf, bytes)
+                return pdf
+    raise RuntimeError(f"no font shows {''.join(sorted(missing))}, and boxes in their places do not help")
 
 
 def missing_characters(diagnostic: str) -> frozenset[str]:
@@ -106,7 +110,9 @@ def _marks() -> str:
 def _paper(w: Words, place_in_set: str) -> str:
     title = w.report.reading.title
     fields = "".join(f"{literal(key)}: [{w.say(_short(title.get(key, '')))}]," for key in TITLE_FIELDS)
-    name = told(_short(" ".join(filter(None, (title.get("sheet"), title.get("subject")))) or w.report.reading.sheet.name))
+    name = told(
+        _short(" ".join(filter(None, (title.get("sheet"), title.get("subject")))) or w.report.reading.sheet.name)
+    )
     day = sheet_date(w.report)
     return (
         f"#show: paper.with(title: {literal(name or 'Calc sheet')}, fields: ({fields}), "
@@ -126,6 +132,6 @@ def _attachment(report: Report) -> str:
     sheet = report.reading.sheet
     name = re.sub(r"[^\w.-]+", "-", PurePath(sheet.name.replace("\\", "/")).name).strip("-.") or "sheet.md"
     return (
-        f"#pdf.attach({literal(name)}, bytes({literal(sheet.text)}), relationship: \"source\", "
+        f'#pdf.attach({literal(name)}, bytes({literal(sheet.text)}), relationship: "source", '
         f'mime-type: "text/markdown", description: "The calc sheet as checked")'
     )

@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 from calccheck.annotate.places import Run
-from calccheck.annotate.record import NOTED, Entry
+from calccheck.annotate.record import Entry
 from calccheck.annotate.typst_text import literal
 from calccheck.source import NOWHERE, Piece, Sheet
 
@@ -18,14 +18,17 @@ def run_source(run: Run, body: str, below: bool = False) -> str:
     """One run: tinted by the entry it belongs to, a comment on it where something is to be mended, its marks behind it."""
     if run.entry is not None:
         body = f"#tint({literal(run.entry.kind)})[{body}];"
-    to_mend = [e.key for e in run.ends if e.kind in NOTED]
-    if to_mend:
-        body = f"#comment({literal('+'.join(to_mend))})[{body}];"
+    body = commented([e.key for e in run.ends if e.to_mend], body)
     return body + "".join(mark_source(e, below) for e in run.ends)
 
 
 def mark_source(entry: Entry, below: bool = False) -> str:
     """The mark of an entry, linked to its row in the record."""
     sides = f"below: {'true' if below else 'false'}, beside: {'true' if entry.beside else 'false'}"
-    extra = "#label-of(\"caution\");" if entry.cautions else ""
+    extra = '#label-of("caution");' if entry.cautions else ""
     return f"#mark({literal(entry.kind)}, {literal(entry.number)}, {literal(entry.key)}, {sides});{extra}"
+
+
+def commented(keys: list[str], body: str) -> str:
+    """The words with a comment on them, where something is to be mended."""
+    return f"#comment({literal('+'.join(keys))})[{body}];" if keys and body else body

@@ -9,11 +9,13 @@ from __future__ import annotations
 import re
 from decimal import Decimal, InvalidOperation
 
-from calccheck.annotate.typst_text import literal, told
+from calccheck.annotate.characters import told
+from calccheck.annotate.typst_text import literal
 from calccheck.formula import Binary, Call, Group, Node, Number, Range, Reference, Unary
 
 _RELATIONS = {"=": "=", "≈": "approx", "<": "<", "≤": "lt.eq", ">": ">", "≥": "gt.eq", "": ""}
 _OPERATORS = {"+": "+", "-": "minus", "×": "times", "∥": "parallel", "·": "thin"}
+_SIGNS = {"+": "#positive;", "-": "#negative;"}  # no operators: nothing stands before them to be added to
 _MOST_BARS = 2  # a fraction within a fraction within a fraction is set with a slash
 _NUMBER = re.compile(
     r"(?P<digits>(?:\d[\d\u00a0\u2009\u202f]*)?\.?\d*)"
@@ -41,7 +43,7 @@ def mathematics(node: Node, sheet: str, bars: int = 0) -> str:
         case Unary(sign="√"):
             return f"sqrt({mathematics(_bare(node.operand), sheet, bars)})"
         case Unary():
-            return f"{_OPERATORS[node.sign]} {mathematics(node.operand, sheet, bars)}"
+            return f"{_SIGNS[node.sign]}{mathematics(node.operand, sheet, bars)}"
         case Binary():
             return _binary(node, sheet, bars)
         case Group():
@@ -60,6 +62,8 @@ def _binary(node: Binary, sheet: str, bars: int) -> str:
         return f"frac({over}, {under})"
     left = mathematics(node.left, sheet, bars)
     if node.operator == "^":
+        if isinstance(node.left, Reference) and left.startswith("attach(") and left.endswith(")"):
+            return f"{left[:-1]}, t: {mathematics(_bare(node.right), sheet, _MOST_BARS)})"  # above its subscript
         return f"attach({left}, t: {mathematics(_bare(node.right), sheet, _MOST_BARS)})"
     sign = {"÷": "slash", "∠": "angle"}.get(node.operator) or _OPERATORS[node.operator]
     return f"{left} {sign} {mathematics(node.right, sheet, bars)}"
@@ -106,6 +110,6 @@ def _name(node: Reference) -> str:
     if node.letter and node.subscripts:
         core = f"attach(#slanted({literal(told(node.letter))}), b: {_upright(','.join(node.subscripts))})"
     else:
-        core = f"#slanted({literal(told(node.word))})"
+        core = f"#leaning({literal(told(node.word))})"
     words = [_upright(w.strip()) if w.strip() else "" for w in (before, behind)]
-    return " space ".join(part for part in (words[0], core, words[1]) if part)
+    return " thin ".join(part for part in (words[0], core, words[1]) if part)

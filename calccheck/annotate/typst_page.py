@@ -6,7 +6,7 @@ from collections.abc import Callable, Iterator, Sequence
 from dataclasses import dataclass, replace
 
 from calccheck.annotate.places import Places, marks_in, runs
-from calccheck.annotate.typst_marks import line_number, run_source
+from calccheck.annotate.typst_marks import commented, line_number, mark_source, run_source
 from calccheck.annotate.typst_text import literal, shown
 from calccheck.annotate.typst_working import math_row
 from calccheck.document import Block, Inline, blocks
@@ -15,7 +15,9 @@ from calccheck.source import Piece, Sheet
 
 _DEEPEST = 8  # lists and quotes nested deeper keep their words but gain no further indent
 _LONG_CELL = 900  # characters; a row with such a cell may break across pages, any other stands on one
-_SAFE_LINKS = ("http://", "https://", "mailto:")
+_ONE_PAGE = 22  # lines of a fence that is not parted by a page's end
+_CODE_SIZE, _SMALLEST = 8.2, 6.4  # points
+_CODE_ROOM = 525.0  # points of size times characters that one line of a fence has room for
 
 
 @dataclass(frozen=True, slots=True)
@@ -71,7 +73,11 @@ def _list(s: Setting, b: Block) -> str:
     items = "".join(f"[{typeset(s.deeper(), item.children)}]," for item in b.children)
     spaced = any(len(item.children) > 1 for item in b.children)
     tight = f"tight: {'false' if spaced else 'true'}"
-    return f"\n\n#enum({tight}, start: {b.level}, {items})\n\n" if b.info == "ordered" else f"\n\n#list({tight}, {items})\n\n"
+    return (
+        f"\n\n#enum({tight}, start: {b.level}, {items})\n\n"
+        if b.info == "ordered"
+        else f"\n\n#list({tight}, {items})\n\n"
+    )
 
 
 def _item(s: Setting, b: Block) -> str:
@@ -104,21 +110,39 @@ def _cell(s: Setting, c: Block) -> str:
 
 
 def _fence(s: Setting, b: Block) -> str:
-    word = (b.info.split() or [""])[0]
-    if word == "working":
-        rows = "".join(math_row(s.sheet, s.where, s.judged, s.missing, line) for line in b.lines)
-        return f"\n\n#working(({rows}))\n\n" if b.lines else ""
-    return _listing(s, b)
+    return _working(s, b) if (b.info.split() or [""])[0] == "working" else _listing(s, b)
+
+
+def _working(s: Setting, b: Block) -> str:
+    rows = "".join(math_row(s.sheet, s.where, s.judged, s.missing, line) for line in b.lines)
+    return f"\n\n#working({_whole(b)}, ({rows}))\n\n" if rows else ""
 
 
 def _listing(s: Setting, b: Block) -> str:
-    rows = "".join(f"({literal(line_number(s.sheet, line))}, [{_runs(s, line)}])," for line in b.lines)
-    return f"\n\n#listing(({rows}))\n\n" if rows else ""
+    """Lines as written, numbered as in the sheet, small enough to keep their columns where that is still readable."""
+    longest = max((len(line.text) for line in b.lines), default=0)
+    size = max(_SMALLEST, min(_CODE_SIZE, _CODE_ROOM / max(longest, 1)))
+    rows = _caption(s, b) + "".join(_line(s, line) for line in b.lines)
+    return f"\n\n#listing({size:.2f}, {_whole(b)}, ({rows}))\n\n" if rows else ""
 
 
-def _math(s: Setting, b: Block) -> str:
-    rows = "".join(math_row(s.sheet, s.where, s.judged, s.missing, line) for line in b.lines)
-    return f"\n\n#working(({rows}))\n\n" if rows else ""
+def _caption(s: Setting, b: Block) -> str:
+    """What a fence's first line says of it, but for the bare word that every circuit bears."""
+    return f"([], [#aside[{shown(b.info, s.missing)}];], [])," if b.info not in ("", "circuit") else ""
+
+
+def _line(s: Setting, line: Piece) -> str:
+    found = runs(s.where, line)
+    body = "".join(run_source(replace(run, ends=()), shown(run.text, s.missing)) for run in found)
+    marks = "".join(mark_source(e) for run in found for e in run.ends)
+    to_mend = [e.key for run in found for e in run.ends if e.to_mend]
+    return f"({literal(line_number(s.sheet, line))}, [{commented(to_mend, body)}], [{marks}]),"
+
+
+def _whole(b: Block) -> str:
+    """Whether a fence stands on one page: typst's ``true`` for those that surely fit on one."""
+    short = len(b.lines) <= _ONE_PAGE and sum(len(line.text) for line in b.lines) <= 80 * _ONE_PAGE
+    return "true" if short else "false"
 
 
 def _rule(s: Setting, b: Block) -> str:
@@ -127,7 +151,7 @@ def _rule(s: Setting, b: Block) -> str:
 
 def _note(s: Setting, b: Block) -> str:
     label = shown(f"[{b.info}]", s.missing)
-    return f"\n\n#small[#super[{label}] {typeset(s.deeper(), b.children)}]\n\n"
+    return f"\n\n#sheet-note([{label}], [{typeset(s.deeper(), b.children)}])\n\n"
 
 
 _BLOCKS: dict[str, Callable[[Setting, Block], str]] = {
@@ -139,7 +163,7 @@ _BLOCKS: dict[str, Callable[[Setting, Block], str]] = {
     "table": _table,
     "fence": _fence,
     "code": _listing,
-    "math": _math,
+    "math": _working,
     "html": _listing,
     "rule": _rule,
     "note": _note,

@@ -9,7 +9,9 @@ from hashlib import sha256
 from calccheck.annotate.marks import MARKS
 from calccheck.annotate.record import (
     BASES,
+    BESIDE,
     LIMITS,
+    MEANINGS,
     SIGNATORIES,
     TITLE_FIELDS,
     Entry,
@@ -49,10 +51,12 @@ def summary(w: Words) -> str:
     listed = "".join(_worst_row(w, e) for e in worst[:_MOST_IN_SUMMARY])
     more = len(worst) - _MOST_IN_SUMMARY
     rest = f"[{w.say(f'{more} more: see the check record.')}]" if more > 0 else "none"
-    table = "".join(f"({literal(verdict)}, {_numbers(row)})," for verdict, row in counts(w.report))
+    table = "".join(
+        f"({literal(verdict)}, {_numbers(row)}, [{w.say(MEANINGS[verdict])}])," for verdict, row in counts(w.report)
+    )
     return (
         f"#summary({literal(w.report.verdict)}, [{w.say(headline(w.report))}], ({table}), ({_others(w)}), "
-        f"({listed}), {rest})\n\n"
+        f"({listed}), {rest}, {w.report.reading.not_read})\n\n"
     )
 
 
@@ -61,15 +65,13 @@ def _numbers(row: Sequence[int]) -> str:
 
 
 def _others(w: Words) -> str:
-    """Front matter that the title block does not show, and what was not read."""
+    """Front matter that the title block does not show."""
     lines = [(k, v) for k, v in w.report.reading.title.items() if k not in TITLE_FIELDS]
-    if w.report.reading.not_read:
-        lines.append(("not read", f"{w.report.reading.not_read} other fences or HTML blocks"))
     return "".join(f"([{w.say(k)}], [{w.say(v)}])," for k, v in lines)
 
 
 def _worst_row(w: Words, e: Entry) -> str:
-    kind = e.kind if e.beside or e.kind == "note" else "caution"
+    kind = "caution" if e.cautions and e.kind not in BESIDE else e.kind
     target = literal(e.key if e.key in w.placed else "r-" + e.key)
     message = e.message or (e.cautions[0] if e.cautions else "")
     return (
@@ -102,7 +104,7 @@ def digest(report: Report) -> str:
 
 
 def _record_row(w: Words, e: Entry) -> str:
-    told = "".join(f"[{w.say(t)}]," for t in e.told)
+    told = "".join(f"[{w.say(t)}]," for t in e.told if e.kind != "given")  # the list of givens says it
     cautions = "".join(f"[{w.say(t)}]," for t in e.cautions)
     basis = BASES.get(e.basis, e.basis)
     return (
@@ -159,7 +161,7 @@ def notes(w: Words) -> str:
 def _note(w: Words, e: Entry) -> str:
     kind = e.kind if e.kind in MARKS else "note"
     lines = [*(e.told or ()), *e.cautions]
-    if e.computed and e.kind == "differs":
+    if e.kind == "differs" and e.computed and e.computed not in e.message:
         lines.insert(0, f"recomputed {e.computed}" + (f" ({e.deviation})" if e.deviation else ""))
     said = "".join(f"[{w.say(t)}]," for t in lines)
     brief = e.computed or e.deviation or f"line {e.line}"

@@ -8,12 +8,13 @@ from __future__ import annotations
 import re
 from collections.abc import Iterable
 
+from calccheck.annotate.characters import told
 from calccheck.annotate.marks import MARKS
 from calccheck.annotate.places import Places, marks_in, runs
 from calccheck.annotate.record import NOTED
-from calccheck.annotate.typst_marks import line_number, mark_source, run_source
+from calccheck.annotate.typst_marks import commented, line_number, mark_source, run_source
 from calccheck.annotate.typst_math import mathematics, relation
-from calccheck.annotate.typst_text import literal, shown, told
+from calccheck.annotate.typst_text import literal, shown
 from calccheck.formula import Reference
 from calccheck.model import Judged, Member
 from calccheck.source import NOWHERE, Piece, Sheet
@@ -31,13 +32,13 @@ def math_row(sheet: Sheet, where: Places, judged: dict[str, Judged], missing: fr
     members = _members_on(line, judged[entry.key]) if entry is not None and entry.key in judged else []
     if entry is None or len(owners) > 1 or not members:
         body = "".join(run_source(run, shown(run.text, missing)) for run in runs(where, line))
-        return f"..wide-row({number}, \"\", [#code[{body}]], []),"
+        return f'..wide-row({number}, "", [#code[{body}]], []),'
     beside = "".join(mark_source(e) for e in marks) or _step_mark(line, judged[entry.key])
     before, behind = _around(line, members, missing)
-    commented = [e.key for e in marks if e.kind in NOTED]
+    to_mend = [e.key for e in marks if e.to_mend]
     head = members[:1] if _is_head(members[0]) else []
     left = before + _formula(sheet, head)
-    right = _commented(commented, _formula(sheet, members[len(head) :])) + behind
+    right = commented(to_mend, _formula(sheet, members[len(head) :])) + behind
     if not head and not members[0].relation:
         return f"..wide-row({number}, {literal(entry.kind)}, [{left}{right}], [{beside}]),"
     return f"..formula-row({number}, {literal(entry.kind)}, [{left}], [{right}], [{beside}]),"
@@ -73,17 +74,15 @@ def _around(line: Piece, members: list[Member], missing: frozenset[str]) -> tupl
 
 
 def _formula(sheet: Sheet, members: Iterable[Member]) -> str:
-    """Members as one equation that may break behind its relations; the sheet's own characters are its alternative text."""
-    found = list(members)
-    if not found:
-        return ""
-    source = " ".join(f"{relation(m.relation)} {mathematics(m.node, sheet.text)}" for m in found)
-    alt = " ".join(f"{m.relation} {m.text}".strip() for m in found)
-    return f"#formula({literal(told(alt))}, ${source}$);"
+    """Each member with its relation as one equation, so that a chain breaks before its relations.
 
-
-def _commented(keys: list[str], body: str) -> str:
-    return f"#comment({literal('+'.join(keys))})[{body}];" if keys and body else body
+    The sheet's own characters are the alternative text.
+    """
+    return " ".join(
+        f"#formula({literal(told(f'{m.relation} {m.text}'.strip()))}, "
+        f"${relation(m.relation)} {mathematics(m.node, sheet.text)}$);"
+        for m in members
+    )
 
 
 def _step_mark(line: Piece, judged: Judged) -> str:
