@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import math
 import subprocess
 import sys
 from dataclasses import replace
@@ -17,8 +18,10 @@ from hypothesis import strategies as st
 from scipy.sparse import coo_matrix
 from scipy.sparse.linalg import spsolve
 
-from calccheck.model import Finding
+from calccheck.model import Finding, State
 from calccheck.solve import Unsolvable, solve, solve_batch, state, total
+from calccheck.solve.agreement import compared
+from calccheck.solve.elimination import solve_float
 from calccheck.source import Span
 
 
@@ -346,6 +349,64 @@ def test_a_batch_leaves_out_what_has_no_solution_and_keeps_the_rest():
     assert [at is None for at in found] == [False, True, True, True, True, False]
     assert found[0].currents == pytest.approx({"B1": -5, "R1": 5, "R2": 4, "R3": 1, "B2": 1})
     assert found[5] == found[0] and solve_batch([]) == []
+
+
+def test_a_batch_of_like_parts_between_other_nodes():
+    turned = replace(
+        KUPHALDT,
+        elements=tuple(
+            replace(e, plus=e.plus.replace("m", "n"), minus=e.minus.replace("m", "n")) for e in KUPHALDT.elements
+        ),
+    )
+    first, second = solve_batch([KUPHALDT, turned])
+    assert first.currents == second.currents and first.potentials["m"] == second.potentials["n"] == pytest.approx(8)
+
+
+def test_a_source_named_twice_counts_once():
+    assert state(solve(KUPHALDT), ("B1", "B1")) == state(solve(KUPHALDT), ("B1",))
+
+
+def test_a_small_pivot_is_passed_over_in_floating_point():
+    """10⁻²⁰·x + y = 1 and x + y = 2, so x = y = 1 to 20 places; with the first pivot x would come out 0 (textbook example)."""
+    x, y = solve_float([{0: 1e-20, 1: 1.0, -1: -1.0}, {0: 1.0, 1: 1.0, -1: -2.0}])
+    assert (x[-1], y[-1]) == pytest.approx((1, 1))
+
+
+@pytest.mark.parametrize(
+    ("parts", "volts", "amperes", "gap"),
+    [
+        # 2 A round a short with 5 Ω beside it: every voltage zero, so 10 V (2 A in 5 Ω) is what rounding is measured by
+        ([part("I", "I1", "com", "a", 2), part("S", "S1", "a", "com"), part("R", "R1", "a", "com", 5)], 1e-14, 0, 1e-15),
+        # 10 V on an open resistor of 5 Ω: every current zero, so 2 A (10 V over 5 Ω) is
+        ([part("V", "V1", "a", "com", 10), part("R", "R1", "a", "b", 5)], 0, 1e-15, 5e-16),
+        ([part("V", "V1", "a", "com", 10), part("R", "R1", "a", "b", 5)], math.nan, 0, math.inf),
+        ([part("V", "V1", "a", "com", 10), part("R", "R1", "a", "b", 5)], 0, math.inf, math.inf),
+        ([part("V", "V1", "a", "com", 10), part("R", "R1", "a", "com", 5)], 1e-6, 0, 1e-7),
+    ],
+)  # fmt: skip
+def test_a_route_that_strays_shows_in_the_gap(parts, volts, amperes, gap):
+    made = circuit(*parts)
+    solution = solve(made)
+    strayed = State(
+        {n: v + volts for n, v in solution.nodal.potentials.items()},
+        {n: i + amperes for n, i in solution.nodal.currents.items()},
+    )
+    assert compared(made, strayed, solution.parts, True).gap == pytest.approx(gap, rel=0.2, abs=0)
+
+
+def test_a_single_value_that_is_no_number_shows_in_every_figure():
+    solution = solve(KUPHALDT)
+    spoilt = State(solution.nodal.potentials, {**solution.nodal.currents, "R3": math.nan})
+    figures = compared(KUPHALDT, spoilt, solution.parts, True)
+    assert (figures.gap, figures.residual, figures.balance) == (math.inf, math.inf, math.inf)
+
+
+def test_values_that_fit_no_float_are_refused_with_words():
+    """Twelve stages of gain 10³⁰ on one volt."""
+    stages = [part("E", f"E{k}", f"n{k + 1}", "com", "1e30", (f"n{k}", "com")) for k in range(12)]
+    loads = [part("R", f"R{k}", f"n{k}", "com", 1) for k in range(13)]
+    with pytest.raises(Unsolvable, match="fit no number"):
+        solve(circuit(part("V", "V1", "n0", "com", 1), *stages, *loads))
 
 
 def test_an_unknown_source_is_refused():

@@ -130,6 +130,11 @@ def test_faults_by_name_and_line(name):
     assert solve_batch([made]) == [None] or "outside" in words or "both ends" in words
 
 
+def test_an_island_written_before_the_rest():
+    made, (found,) = refused(part("R", "R3", "x", "y", 1), *SOUND)
+    assert found.message.startswith("Nodes x and y have no path") and found.span == line_of(made, "R3")
+
+
 def test_no_reference_offers_the_node_where_most_parts_meet():
     made, (found,) = refused(*SOUND, part("R", "R3", "b", "c", 1), reference="")
     assert found.message.startswith("No node is named as the reference") and found.suggestion == "reference b"

@@ -23,9 +23,7 @@ _ROLES: dict[str, Role] = {
     "open": "gap",
     "capacitor": "gap",
 }
-_LARGEST = (
-    Fraction(10) ** 30
-)  # in SI; with its reciprocal far outside any value of the trade, far inside a float's range
+_WIDEST = 100  # a value lies within 2 to the power of ±this, about 1e±30 in SI, far outside any of the trade
 
 
 def role(e: Element) -> Role | None:
@@ -55,7 +53,7 @@ def part_faults(e: Element, circuit: Circuit) -> list[Finding]:
         return []
     if e.value is None:
         return [fault(f"{e.name} has no number for a value, which a solution needs.", e.span)]
-    if e.value and not 1 / _LARGEST <= abs(e.value) <= _LARGEST:
+    if e.value and abs(e.value.numerator.bit_length() - e.value.denominator.bit_length()) > _WIDEST:
         return [fault(f"{e.name} has a value outside 1e−30 to 1e30 in SI units. Check prefix and exponent.", e.span)]
     return _control_faults(e, circuit) if e.kind.startswith("controlled") else []
 

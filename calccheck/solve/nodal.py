@@ -5,11 +5,13 @@ from __future__ import annotations
 import math
 from collections import defaultdict
 from collections.abc import Sequence
+from dataclasses import dataclass
 
 import numpy as np
 
 from calccheck.model import Circuit, State
-from calccheck.solve.stamps import Array, Layout, can_stamp, layout_of, stamp
+from calccheck.solve.at_dc import part_faults
+from calccheck.solve.stamps import Array, Layout, layout_of, stamp
 
 SINGULAR = 1e13  # condition of the levelled equations beyond which their solution says nothing
 
@@ -44,33 +46,40 @@ def batch_states(circuits: Sequence[Circuit]) -> list[State | None]:
     """
     states: list[State | None] = [None] * len(circuits)
     for stacks in _by_size(circuits).values():
-        members = [(k, at, unit) for at, unit, indices, _, _ in stacks for k in indices]
-        matrices = np.concatenate([m for *_, m, _ in stacks])
-        rights = np.concatenate([r for *_, r in stacks])
-        sound = _conditions(matrices) < SINGULAR
-        solved = np.linalg.solve(matrices[sound], rights[sound][..., None])[..., 0]
-        for (k, at, unit), x in zip((m for m, good in zip(members, sound, strict=True) if good), solved, strict=True):
-            states[k] = _state(at, x, unit)
+        matrices = np.concatenate([s.matrices for s in stacks])
+        rights = np.concatenate([s.rights for s in stacks])
+        with np.errstate(all="ignore"):
+            sound = _conditions(matrices) < SINGULAR
+            solved = np.linalg.solve(matrices[sound], rights[sound][..., None])[..., 0]
+        members = [(k, s) for s in stacks for k in s.members]
+        for (k, s), x in zip((m for m, good in zip(members, sound, strict=True) if good), solved, strict=True):
+            states[k] = _state(s.at, x, s.unit)
     return states
 
 
-Stack = tuple[
-    Layout, float, list[int], Array, Array
-]  # with the unit of current, the circuits' indices, their equations
+@dataclass(frozen=True, slots=True)
+class _Stack:
+    """Levelled equations of the circuits with one layout, and where those circuits stand in the batch."""
+
+    at: Layout
+    unit: float
+    members: list[int]
+    matrices: Array
+    rights: Array
 
 
-def _by_size(circuits: Sequence[Circuit]) -> dict[int, list[Stack]]:
-    """The circuits' levelled equations, those with the same names in one stack, stacks by size."""
+def _by_size(circuits: Sequence[Circuit]) -> dict[int, list[_Stack]]:
+    """The equations of a batch, by their size; without circuits that have nothing to solve or a part that cannot be."""
     alike: dict[object, list[int]] = defaultdict(list)
     for k, c in enumerate(circuits):
-        if can_stamp(c):
+        if c.elements and not c.problems and not any(part_faults(e, c) for e in c.elements):
             alike[c.reference, frozenset(c.nodes()), tuple(e.name for e in c.elements)].append(k)
-    sizes: dict[int, list[Stack]] = defaultdict(list)
-    for indices in alike.values():
-        first = circuits[indices[0]]
+    sizes: dict[int, list[_Stack]] = defaultdict(list)
+    for members in alike.values():
+        first = circuits[members[0]]
         at, unit = layout_of(first), _unit_current(first)
-        equations = _variants([circuits[k] for k in indices], at)
-        sizes[at.size].append((at, unit, indices, *_levelled(*equations, len(at.nodes) - 1, unit)))
+        equations = _variants([circuits[k] for k in members], at)
+        sizes[at.size].append(_Stack(at, unit, members, *_levelled(*equations, len(at.nodes) - 1, unit)))
     return sizes
 
 

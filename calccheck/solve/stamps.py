@@ -15,6 +15,7 @@ import numpy as np
 from numpy.typing import NDArray
 
 from calccheck.model import Circuit, Control, Element
+from calccheck.solve.at_dc import value
 
 Array = NDArray[np.floating[Any]]
 Law = tuple[list[tuple[int, float]], float]  # coefficients by column, and the right side
@@ -42,20 +43,6 @@ def layout_of(circuit: Circuit) -> Layout:
     )
 
 
-def can_stamp(circuit: Circuit) -> bool:
-    """Whether every part has a law here, a value where it needs one, and a control that exists."""
-    nodes, parts = {*circuit.nodes(), circuit.reference}, {e.name for e in circuit.elements}
-    for e in circuit.elements:
-        law = LAWS.get(e.kind)
-        if law is None or (e.value is None and law not in (_link, _gap)):
-            return False
-        if law in (_controlled_voltage, _controlled_current):
-            control = e.control or Control()
-            if control.part not in parts if control.part else not {control.plus, control.minus} <= nodes:
-                return False
-    return not circuit.problems and bool(parts)
-
-
 def stamp(matrix: Array, right: Array, e: Element, at: Layout) -> None:
     """Writes a part's row and column into the equations, over what stood there."""
     own, nodes = at.parts[e.name], len(at.nodes)
@@ -69,9 +56,7 @@ def stamp(matrix: Array, right: Array, e: Element, at: Layout) -> None:
 
 
 def _number(e: Element) -> float:
-    if e.value is None:
-        raise ValueError(f"{e.name} has no value")
-    return float(e.value)
+    return float(value(e))
 
 
 def _across(e: Element, at: Layout) -> list[tuple[int, float]]:
