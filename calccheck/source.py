@@ -59,7 +59,11 @@ class Piece:
 
     def part(self, start: int, end: int) -> Piece:
         """The piece ``text[start:end]``."""
-        return Piece(self.text[start:end], self.at[start : end + 1])
+        at = self.at[start : end + 1]
+        if at[-1] == NOWHERE:  # a joint or a cut tab follows
+            last = max(at)
+            at = [*at[:-1], self.span(end).start if last == NOWHERE else last + 1]
+        return Piece(self.text[start:end], at)
 
     def strip(self) -> Piece:
         """The piece without white space at its ends."""

@@ -117,7 +117,7 @@ def _text(content: Piece, start: int, end: int, escapes: Sequence[_Placed]) -> I
                 at += content.at[begin:here]
             else:
                 at += [content.at[begin], *[NOWHERE] * (len(token.content) - 1)]
-        piece = Piece(text + content.text[here:end], [*at, *content.at[here : end + 1]])
+        piece = Piece(text + content.text[here:end], [*at, *content.at[here:end], piece.at[-1]])
     return Inline("text", _span(content, start, end), piece)
 
 
@@ -141,7 +141,7 @@ def _leaf(token: Token, content: Piece, start: int, end: int) -> Inline:
     match kind:
         case "code" | "math" | "html":
             lead = start + (end - start - len(token.content)) // 2
-            return Inline(kind, span, Piece(token.content, content.at[lead : lead + len(token.content) + 1]))
+            return Inline(kind, span, Piece(token.content, content.part(lead, lead + len(token.content)).at))
         case "image":
             label = content.part(start + 2, start + 2 + len(token.content))
             return Inline(kind, span, None, read_inlines(token.children or (), label), str(token.attrs["src"]))

@@ -110,6 +110,8 @@ def flow(page: Page, content: str, lines: range, place: int) -> Piece:
     while lines.stop - line > len(texts) and page.text.find(texts[0], place, line_end(page, line)) < 0:
         line += 1  # a line of nothing but no-break spaces is trimmed away, with its line end
         place = page.starts[line]
+    if page.text.find(texts[0], place, line_end(page, line)) < 0:
+        place = page.starts[line]  # behind tabs and block quotes the parser may leave a list's mark in the content
     pieces = [tail(page, line, texts[0], place)]
     for text in texts[1:]:
         line = min(line + 1, lines.stop - 1)
