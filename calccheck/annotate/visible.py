@@ -2,16 +2,15 @@
 
 from __future__ import annotations
 
-import re
-
-# C0, DEL and C1 controls; marks, embeddings, overrides and isolates of the bidirectional algorithm (Unicode Standard Annex 9);
-# zero-width characters, line and paragraph separators; lone surrogates, which stand for the odd bytes of a file name
-_UNSEEN = re.compile("[\x00-\x1f\x7f-\x9f\u00ad\u061c\u200b-\u200f\u2028-\u202e\u2060-\u2069\ufeff\ud800-\udfff]")
+from unicodedata import category
 
 
 def visible(text: str) -> str:
-    """The text with control, direction and zero-width characters as escapes: ``\\x1b``, ``\\u202e``."""
-    return _UNSEEN.sub(_escape, text)
+    """The text with what is not printed as escapes: controls, direction and zero-width characters, lone surrogates.
+
+    ``\\x1b``, ``\\u202e``, ``\\U000e0041``. Spaces of every width stay (Unicode category Zs).
+    """
+    return text if text.isprintable() else "".join(map(_shown, text))
 
 
 def one_line(text: str) -> str:
@@ -19,6 +18,8 @@ def one_line(text: str) -> str:
     return visible(" ".join(text.split()))
 
 
-def _escape(m: re.Match[str]) -> str:
-    code = ord(m.group())
-    return f"\\x{code:02x}" if code < 0x100 else f"\\u{code:04x}"
+def _shown(c: str) -> str:
+    if c.isprintable() or category(c) == "Zs":
+        return c
+    code = ord(c)
+    return f"\\x{code:02x}" if code < 0x100 else f"\\u{code:04x}" if code < 0x10000 else f"\\U{code:08x}"
