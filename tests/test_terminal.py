@@ -126,13 +126,12 @@ def test_nothing_a_terminal_would_obey_or_hide_gets_through(text):
     assert visible("10 mV at 20\u202f°C, I ≤ 3 A") == "10 mV at 20\u202f°C, I ≤ 3 A"
 
 
-def test_escapes_are_shown():
-    assert visible("a\x1b[31m\u202eb\u2066\r") == r"a\x1b[31m\u202eb\u2066\x0d"
-    nasty = report_of(
-        "`x = 3 A`\n", said("`x = 3 A`\n", "x = 3 A", "differs", message="\x1b]0;x\x07 \u202e"), name="a\x1b.md"
-    )
-    text = to_terminal([nasty], verbose=True)
-    assert text.startswith(r"a\x1b.md:1:2: differs: \x1b]0;x\x07 \u202e")
+def test_what_is_not_seen_stands_as_its_code_point():
+    assert visible("a\x1b[31m\u202eb\u2066\r\n") == "a[U+001B][31m[U+202E]b[U+2066][U+000D][U+000A]"
+    text = "`x = 3 A`\n"
+    nasty = report_of(text, said(text, "x = 3 A", "differs", message="\x1b]0;x\x07 \u202e"), name="a\x1b.md")
+    shown = to_terminal([nasty], verbose=True)
+    assert shown.startswith("a[U+001B].md:1:2: differs: [U+001B]]0;x[U+0007] [U+202E]\n")
 
 
 def test_the_working_of_one_quantity():

@@ -1,25 +1,17 @@
-"""Text from a sheet or a file name, safe to show: what a terminal or reader would obey or hide is spelt out."""
+"""Text from a sheet or a file name, safe to show: what a terminal or reader would obey or hide stands as its code point."""
 
 from __future__ import annotations
 
-from unicodedata import category
+from calccheck.annotate.characters import code_point, unseen
 
 
 def visible(text: str) -> str:
-    """The text with what is not printed as escapes: controls, direction and zero-width characters, lone surrogates.
-
-    ``\\x1b``, ``\\u202e``, ``\\U000e0041``. Spaces of every width stay (Unicode category Zs).
-    """
-    return text if text.isprintable() else "".join(map(_shown, text))
+    """The text with controls (line ends and tabs too), direction and zero-width characters as ``[U+202E]``."""
+    if text.isascii() and text.isprintable():
+        return text
+    return "".join(f"[{code_point(c)}]" if c in "\t\n" or unseen(c) else c for c in text)
 
 
 def one_line(text: str) -> str:
     """The text as one line of words, a space between them, and safe to show."""
     return visible(" ".join(text.split()))
-
-
-def _shown(c: str) -> str:
-    if c.isprintable() or category(c) == "Zs":
-        return c
-    code = ord(c)
-    return f"\\x{code:02x}" if code < 0x100 else f"\\u{code:04x}" if code < 0x10000 else f"\\U{code:08x}"
