@@ -191,7 +191,8 @@ def _stated_reference(s: _Statement, nodes: Counter[str], found: list[Finding], 
     name = plain_name(m[1])
     if name not in nodes and complete:
         near = nearest(name, nodes)
-        mend = s.line.text.replace(m[1], near, 1).rstrip() if near else ""
+        lead = len(s.line.text) - len(s.line.text.lstrip())
+        mend = s.line.text[: lead + m.start(1)] + near + s.line.text[lead + m.end(1) :] if near else ""
         message = f"the reference {name} is no node of this circuit" + (f"; is {near} meant?" if near else "")
         found.append(_finding("circuit-line", message, s.body.span(*m.span(1)), mend))
     return name

@@ -8,6 +8,7 @@ from __future__ import annotations
 import re
 from collections.abc import Callable, Iterator
 from dataclasses import dataclass
+from functools import partial
 
 from calccheck.read.names import NODE, WORD
 from calccheck.source import Piece, Span, whole
@@ -38,15 +39,24 @@ def mended(line: Piece, reads: Callable[[Piece], bool]) -> Mend | None:
     rest = line.text[len(code) :].rstrip()
     text, reasons, first = code, [], None
     for slip in _SLIPS:
-        m = next((m for m in slip.pattern.finditer(text) if slip.write(m) != m[0]), None)
+        m = next((m for m in slip.pattern.finditer(text) if _changed(slip, m)), None)
         if m is None:
             continue
         first = first or line.span(*_within(m, code))
         reasons.append(slip.reason.format(found=m[0].strip(" ,"), written=slip.write(m).strip(" ,")))
-        text = slip.pattern.sub(slip.write, text)
+        text = slip.pattern.sub(partial(_rewritten, slip), text)
     if first is None or not reads(whole(text)):
         return None
     return Mend(text + rest, "; ".join(reasons), first)
+
+
+def _changed(slip: _Slip, m: re.Match[str]) -> bool:
+    """Whether more than the blanks between columns would change."""
+    return slip.write(m).split() != m[0].split()
+
+
+def _rewritten(slip: _Slip, m: re.Match[str]) -> str:
+    return slip.write(m) if _changed(slip, m) else m[0]
 
 
 def _within(m: re.Match[str], code: str) -> tuple[int, int]:
@@ -132,6 +142,8 @@ def _slip(pattern: str, write: str | Callable[[re.Match[str]], str], reason: str
 
 # A group called at is the place to show; without one it is the whole match.
 _SLIPS = [
+    _slip(r"(?<![\w.])\d{1,3}(?: \d{3})+(?![\w.])", lambda m: m[0].replace(" ", ""),
+          "{found} is grouped by plain blanks; write {written}, or thin or no-break spaces"),
     _slip(r"(?<![\w{.])\d+,(?!\d{3}(?!\d))\d+", lambda m: m[0].replace(",", "."),
           "{found} has a decimal comma; a number is written with a point: {written}"),
     _slip(r";\s*(?=.)", ", ", "a part's line is parted by commas"),

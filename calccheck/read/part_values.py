@@ -7,7 +7,7 @@ from collections.abc import Callable
 from dataclasses import dataclass
 from fractions import Fraction
 
-from calccheck.arithmetic import Amount, Doubt, Real, evaluate
+from calccheck.arithmetic import Amount, Doubt, evaluate, real, Value as Value_
 from calccheck.component_code import component_code
 from calccheck.formula import Group, Node, Number, Reference, references, walk
 from calccheck.model import Control, Kind
@@ -102,20 +102,22 @@ def _valued(amount: Amount, what: Piece, alternating: bool) -> Value:
             raise Doubt(f"{what.text} has no unit; {_EXPECTED}", what.span())
         found = "a temperature" if amount.point else words(amount.dimension)
         raise Doubt(f"{what.text} is {found}; {_EXPECTED}", what.span())
-    if alternating:
+    if alternating or isinstance(amount.value, complex):
         if amount.dimension == OHM:
             return Value("impedance", unsolved="is an impedance")
         return Value(kind, unsolved=f"{what.text} is a phasor")
-    value = _fraction(amount.value, what)
-    if amount.dimension == SIEMENS:
-        if value == 0:
-            return Value("open", stated=amount)
-        value = 1 / value
-    return Value(kind, value, Amount(_fraction(amount.value, what), amount.dimension))
+    value = _exact(amount, what)
+    stated = Amount(value, amount.dimension)
+    if amount.dimension != SIEMENS:
+        return Value(kind, value, stated)
+    return Value("resistor", 1 / value, stated) if value else Value("open", stated=stated)
 
 
-def _fraction(value: Real, what: Piece) -> Fraction:
-    exact = Fraction(value)
+def _exact(amount: Amount, what: Piece) -> Fraction:
+    """A real amount as a rational that fits a floating-point number."""
+    if isinstance(amount.value, complex):
+        raise Doubt(f"{what.text} is complex", what.span())
+    exact = Fraction(amount.value)
     if exact and not _RANGE[0] <= abs(exact) <= _RANGE[1]:
         raise Doubt(f"{what.text}: the value does not fit a floating-point number", what.span())
     return exact
@@ -162,7 +164,7 @@ def _unit_behind_name(what: Piece, scope: Scope) -> tuple[Piece, Unit | None]:
 def _in_unit(amount: Amount, unit: Unit, what: Piece) -> Amount:
     if amount.dimension != NONE:
         raise Doubt(f"{what.text}: the value has a unit already; leave out {unit.text}", what.span())
-    return Amount(_fraction(amount.value, what) * unit.factor, unit.dimension)
+    return Amount(_exact(amount, what) * unit.factor, unit.dimension)
 
 
 def _refuse_units_that_are_names(node: Node, scope: Scope) -> None:
@@ -213,17 +215,17 @@ def _controlled(written: Written, control: list[Reference], scope: Scope) -> Val
         raise Doubt(reason, what.span())
     if written.alternating:
         return Value(kind, unsolved="has a complex gain")
-    return Value(kind, _fraction(gain.value, what), control=steered_by)
+    return Value(kind, _exact(gain, what), control=steered_by)
 
 
 def _gain(at: Callable[[Fraction], Amount], what: Piece) -> Amount:
     """The factor between a source and what steers it, which must be the same for every value of the latter."""
     gain = at(Fraction(1))
-    factor = Fraction(gain.value)
+    factor = _exact(gain, what)
     for x in _PROBES:
         try:
-            proportional = abs(Fraction(at(x).value) - x * factor) <= _SLACK * abs(factor)
-        except (Doubt, OverflowError):
+            proportional = abs(_exact(at(x), what) - x * factor) <= _SLACK * abs(factor)
+        except Doubt:
             proportional = False
         if not proportional:
             raise Doubt(f"{what.text} is not proportional to the quantity that steers it", what.span())
