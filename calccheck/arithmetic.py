@@ -5,6 +5,7 @@ A dimension fault and a doubt are different things: the first is an error of the
 
 from __future__ import annotations
 
+import cmath
 import math
 from collections.abc import Callable
 from dataclasses import dataclass, replace
@@ -15,6 +16,7 @@ from calccheck.source import Span
 from calccheck.units import AMPERE, FARAD, HENRY, NONE, OHM, SECOND, VOLT, Dimension, unit_of, words
 
 Real = Fraction | float
+Value = Fraction | float | complex  # complex: a phasor or an impedance; a complex value never has a zero imaginary part
 _ROOM = 4000  # bits of a rational before it is carried on as a float
 _ICE = Fraction(27315, 100)  # 0 °C in kelvin (SI Brochure, 9th edition, 2.3.1)
 
@@ -37,16 +39,35 @@ class DimensionFault(Exception):
 
 @dataclass(frozen=True, slots=True)
 class Amount:
-    """A value in coherent SI units with its dimension. ``point``: a temperature on the scale, not a difference."""
+    """A value in coherent SI units with its dimension.
 
-    value: Real
+    ``point``: a temperature on the scale, not a difference. ``frequency``: of a phasor in a circuit of several frequencies, in
+    hertz; phasors of different frequencies neither add nor multiply.
+    """
+
+    value: Value
     dimension: Dimension = NONE
     point: bool = False
+    frequency: Fraction | None = None
 
 
-def size(value: Real) -> Real:
-    """The magnitude of a value (``abs`` of a rational or a float, with a type that says so)."""
+def size(value: Value) -> Real:
+    """The magnitude of a value."""
+    if isinstance(value, complex):
+        return abs(value)
     return -value if value < 0 else value
+
+
+def real(value: Value, span: Span | None = None) -> Real:
+    """A value known to be real. Raises ``Doubt`` for a phasor, where only a real value makes sense."""
+    if isinstance(value, complex):
+        raise Doubt("a phasor has no order and no sign: take its magnitude |…|", span)
+    return value
+
+
+def plainest(value: Value) -> Value:
+    """A complex value whose imaginary part is zero, as the real one that it is."""
+    return value.real if isinstance(value, complex) and value.imag == 0 else value
 
 
 Lookup = Callable[[Reference], Amount]
@@ -92,8 +113,9 @@ def evaluate(node: Node, lookup: Lookup, number: Literal = literal) -> Amount:
     return work(node)
 
 
-def trimmed(value: Real) -> Real:
+def trimmed(value: Value) -> Value:
     """A rational grown out of bounds carried on as a float; anything not finite is a doubt."""
+    value = plainest(value)
     if isinstance(value, Fraction):
         over, under = value.numerator.bit_length(), value.denominator.bit_length()
         if over - under > 1000:
@@ -101,7 +123,7 @@ def trimmed(value: Real) -> Real:
         if over + under < _ROOM:
             return value
         value = value.numerator / value.denominator
-    if not math.isfinite(value):
+    if not cmath.isfinite(value):
         raise Doubt("the value does not fit a floating-point number")
     return value
 
@@ -121,7 +143,28 @@ def _binary(n: Binary, a: Amount, b: Amount) -> Amount:
         case "^":
             return power(a, b, n.span)
         case "∠":
-            raise Doubt("phasors are not read in this version", n.span)
+            return phasor(a, b, n)
+
+
+def phasor(a: Amount, b: Amount, n: Binary) -> Amount:
+    """Magnitude and angle: ``10 V ∠ 30°``. The angle must be written in degrees or radians."""
+    angle = n.right.operand if isinstance(n.right, Unary) else n.right
+    if not (isinstance(angle, Number) and angle.unit.text in ("°", "rad", "mrad")) and b.dimension == NONE:
+        raise Doubt("an angle is written with ° or rad", n.right.span)
+    if b.dimension != NONE:
+        raise DimensionFault(f"an angle is a plain number, not {words(b.dimension)}", n.right.span)
+    turned = cmath.rect(float(real(a.value, n.left.span)), float(real(b.value, n.right.span)))
+    return Amount(plainest(turned), a.dimension, frequency=a.frequency)
+
+
+def _one_frequency(a: Amount, b: Amount, span: Span) -> Fraction | None:
+    if a.frequency is not None and b.frequency is not None and a.frequency != b.frequency:
+        raise Doubt(
+            f"phasors of {float(a.frequency):g} Hz and {float(b.frequency):g} Hz are put together: they turn at different speeds; "
+            "add their squares (rms) or their powers",
+            span,
+        )
+    return a.frequency if a.frequency is not None else b.frequency
 
 
 def _sum(a: Amount, b: Amount, sign: int, n: Binary) -> Amount:
@@ -137,10 +180,11 @@ def _sum(a: Amount, b: Amount, sign: int, n: Binary) -> Amount:
         return Amount(_add(a.value, -b.value), a.dimension)
     if b.point and not a.point and sign < 0:
         raise Doubt("a temperature is taken from a difference; write the difference in K", n.span)
-    return Amount(_add(a.value, b.value if sign > 0 else -b.value), a.dimension, a.point or b.point)
+    frequency = _one_frequency(a, b, n.span)
+    return Amount(_add(a.value, b.value if sign > 0 else -b.value), a.dimension, a.point or b.point, frequency)
 
 
-def _add(a: Real, b: Real) -> Real:
+def _add(a: Value, b: Value) -> Value:
     return trimmed(a + b)
 
 
@@ -148,7 +192,7 @@ def _product(a: Amount, b: Amount, span: Span) -> Amount:
     if a.point or b.point:
         raise Doubt("a temperature in °C is multiplied; write a difference in K", span)
     dimension = tuple(x + y for x, y in zip(a.dimension, b.dimension, strict=True))
-    return Amount(trimmed(a.value * b.value), dimension)
+    return Amount(trimmed(a.value * b.value), dimension, frequency=_one_frequency(a, b, span))
 
 
 def reciprocal(a: Amount, span: Span) -> Amount:
@@ -157,7 +201,7 @@ def reciprocal(a: Amount, span: Span) -> Amount:
         raise Doubt("something is divided by a temperature in °C; write K", span)
     if a.value == 0:
         raise Doubt("division by zero", span)
-    return Amount(1 / a.value, tuple(-x for x in a.dimension))
+    return Amount(1 / a.value, tuple(-x for x in a.dimension), frequency=a.frequency)
 
 
 def parallel(a: Amount, b: Amount, span: Span) -> Amount:
@@ -169,7 +213,7 @@ def parallel(a: Amount, b: Amount, span: Span) -> Amount:
         if a.value == 0:
             return a  # two shorts side by side
         raise Doubt("the two sides of ∥ cancel: no finite value", span)
-    return Amount(trimmed(a.value * b.value / total), a.dimension)
+    return Amount(trimmed(a.value * b.value / total), a.dimension, frequency=_one_frequency(a, b, span))
 
 
 def power(a: Amount, b: Amount, span: Span) -> Amount:
@@ -178,26 +222,29 @@ def power(a: Amount, b: Amount, span: Span) -> Amount:
         raise DimensionFault(f"an exponent is a plain number, not {words(b.dimension)}", span)
     if a.point:
         raise Doubt("a temperature in °C is raised to a power", span)
-    exponent = Fraction(b.value).limit_denominator(1000)
-    if a.dimension != NONE and abs(float(exponent) - float(b.value)) > 1e-12:
+    raised = real(b.value, span)
+    exponent = Fraction(raised).limit_denominator(1000)
+    if a.dimension != NONE and abs(float(exponent) - float(raised)) > 1e-12:
         raise Doubt("a quantity with a unit is raised to a power that is no simple fraction", span)
     dimension = tuple(_half(x * exponent) for x in a.dimension)
-    return Amount(_raised(a.value, b.value, span), dimension)
+    return Amount(_raised(a.value, raised, span), dimension, frequency=a.frequency)
 
 
 def _half(x: Fraction | int) -> Fraction | int:
     return int(x) if x == int(x) else x
 
 
-def _raised(base: Real, exponent: Real, span: Span) -> Real:
+def _raised(base: Value, exponent: Real, span: Span) -> Value:
     if base == 0 and exponent <= 0:
         raise Doubt("zero to the power of zero or less", span)
-    decades = 0.0 if base == 0 else abs(float(exponent) * math.log10(abs(float(base))))
+    decades = 0.0 if base == 0 else abs(float(exponent) * math.log10(size(base)))
     if decades > 300:
         raise Doubt("the power does not fit a floating-point number", span)
     whole = float(exponent).is_integer()
     if whole and size(exponent) <= 64 and isinstance(base, Fraction):
         return trimmed(base ** int(exponent))
+    if isinstance(base, complex):
+        return trimmed(base ** (int(exponent) if whole else float(exponent)))
     if base < 0 and not whole:
         raise Doubt("a root of a negative number", span)
     return math.pow(float(base), float(exponent))
@@ -241,18 +288,18 @@ def _call(n: Call, arguments: list[Amount]) -> Amount:
     if n.function in ("min", "max"):
         if any(x.dimension != first.dimension for x in arguments):
             raise DimensionFault(f"{n.function}() compares unlike quantities", n.span)
-        ordered = sorted(arguments, key=lambda x: float(x.value))
+        ordered = sorted(arguments, key=lambda x: float(real(x.value, n.span)))
         return ordered[0 if n.function == "min" else -1]
     if len(arguments) != 1:
         raise Doubt(f"{n.function}() takes one value", n.span)
     if n.function == "abs":
-        return replace(first, value=-first.value if first.value < 0 else first.value)
+        return replace(first, value=size(first.value), frequency=None)
     if n.function == "sqrt":
         return power(first, Amount(Fraction(1, 2)), n.span)
     if first.dimension != NONE:
         raise DimensionFault(f"{n.function}() takes a plain number, not {words(first.dimension)}", n.span)
     try:
-        return Amount(trimmed(_FUNCTIONS[n.function](float(first.value))))
+        return Amount(trimmed(_FUNCTIONS[n.function](float(real(first.value, n.span)))))
     except (ValueError, OverflowError):
         raise Doubt(f"{n.function}() has no value there", n.span) from None
 

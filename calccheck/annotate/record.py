@@ -11,9 +11,10 @@ from calccheck.annotate.marks import MARKS
 from calccheck.arithmetic import Amount
 from calccheck.formula import Node, Number, Range, Unary, numbers
 from calccheck.model import CircuitFigures, Claim, Finding, Judged, Member, Report
+from calccheck.printing import shown
 from calccheck.rules import RULES
 from calccheck.source import Span
-from calccheck.units import PLAIN, UNITS, Unit, digits, printed
+from calccheck.units import PLAIN, UNITS, Unit, digits
 
 NOTED = ("differs", "unchecked", "error")  # what is to be mended: margin note and comment
 BESIDE = (*NOTED, "caution", "accepted")  # what a reviewer should see where it stands
@@ -176,7 +177,7 @@ def _unit(judged: Judged) -> Unit:
 
 
 def _amount(amount: Amount | None, unit: Unit) -> str:
-    return "" if amount is None else printed(amount.value, amount.dimension, 6, unit)
+    return "" if amount is None else shown(amount, unit)
 
 
 def _deviation(judged: Judged) -> str:
@@ -187,8 +188,14 @@ def _deviation(judged: Judged) -> str:
     if percent < 5e-4:
         return "0 %" if percent == 0 else "< 0.001 %"
     sign = ""
-    if judged.claimed is not None and judged.computed is not None:
-        sign = "+" if judged.claimed.value > judged.computed.value else "−"
+    claimed, computed = (a.value if a is not None else None for a in (judged.claimed, judged.computed))
+    if (
+        claimed is not None
+        and computed is not None
+        and not isinstance(claimed, complex)
+        and not isinstance(computed, complex)
+    ):
+        sign = "+" if claimed > computed else "−"
     return f"{sign}{digits(percent, 2 if percent < 0.1 else 3)} %"
 
 

@@ -8,7 +8,7 @@ from collections.abc import Sequence
 from hashlib import sha256
 from typing import Any
 
-from calccheck.arithmetic import Amount, Real
+from calccheck.arithmetic import Amount, Real, Value
 from calccheck.model import CircuitFigures, Finding, Judged, Report, Step
 from calccheck.source import Sheet, Span
 from calccheck.units import Dimension, unit_of
@@ -121,11 +121,17 @@ def _claimed(judged: Judged) -> Record | None:
 
 
 def _amount(amount: Amount | None) -> Record | None:
-    return None if amount is None else _record(_number(amount.value), amount.dimension)
+    return None if amount is None else _record(_value(amount.value), amount.dimension)
 
 
 def _record(value: object, dimension: Dimension) -> Record:
     return {"value": value, "unit": unit_of(dimension)}
+
+
+def _value(value: Value) -> object:
+    if isinstance(value, complex):
+        return {"re": _number(value.real), "im": _number(value.imag)}
+    return _number(value)
 
 
 def _number(value: Real | None, figures: int = 12) -> float | None:

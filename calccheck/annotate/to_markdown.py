@@ -12,8 +12,8 @@ from calccheck.annotate.visible import one_line
 from calccheck.document import Block, blocks
 from calccheck.edits import Edit, put_in, unmark
 from calccheck.model import Judged, Report, Step
+from calccheck.printing import shown
 from calccheck.source import Sheet, Span
-from calccheck.units import printed
 
 __all__ = ["to_markdown", "unmark"]
 
@@ -103,7 +103,7 @@ def _step_words(step: Step) -> str:
         return one_line(f"{label}: {step.message}")
     if step.amount is None:
         return label
-    return one_line(f"{label}: {printed(step.amount.value, step.amount.dimension)}")
+    return one_line(f"{label}: {shown(step.amount)}")
 
 
 # --- words ----------------------------------------------------------------------------------------------------------

@@ -5,7 +5,8 @@ from __future__ import annotations
 from calccheck.annotate.visible import one_line
 from calccheck.arithmetic import Amount
 from calccheck.model import WorkedQuantity
-from calccheck.units import digits, printed
+from calccheck.printing import shown
+from calccheck.units import digits
 
 
 def working_table(worked: WorkedQuantity) -> str:
@@ -23,8 +24,10 @@ def working_table(worked: WorkedQuantity) -> str:
 
 
 def _shown(amount: Amount) -> str:
-    return printed(amount.value, amount.dimension)
+    return shown(amount)
 
 
 def _share(part: Amount, total: Amount) -> str:
-    return f"{digits(100 * part.value / total.value, 3)} %".replace("-", "−") if total.value else "-"
+    if not total.value or isinstance(part.value, complex) or isinstance(total.value, complex):
+        return "-"  # phasors have no shares: they need not point the same way
+    return f"{digits(100 * part.value / total.value, 3)} %".replace("-", "−")

@@ -23,6 +23,8 @@ def judge_bound(left: Amount, right: Amount, first: Worked, subject: Worked, lim
         return Step(text, member.span, relation, "differs", right, say.unlike(left, right))
     q, limit, seen = (left, right, relation) if limit_right else (right, left, BOUNDS[relation])
     label = subject.member.text if limit_right else member.text
+    if isinstance(q.value, complex) or isinstance(limit.value, complex):
+        return Step(text, member.span, relation, "unchecked", limit, f"a phasor is bounded by its magnitude: |{label}|")
     if seen in ("<", "≤") and limit.value > 0 > q.value:
         return Step(text, member.span, relation, "unchecked", limit, say.says_nothing(label, q, "below"))
     if seen in (">", "≥") and limit.value < 0 < q.value:

@@ -12,6 +12,7 @@ from calccheck.formula import Node, Reference
 from calccheck.judge import hints, say
 from calccheck.judge.bounds import BOUNDS, judge_bound
 from calccheck.judge.members import Names, Worked, work
+from calccheck.judge.phasors import PrintedPhasor, parts
 from calccheck.judge.rounding import Printed, deviation
 from calccheck.judge.scope import Defined, Key, Ledger, Result
 from calccheck.judge.steps import Ground, judge_member
@@ -82,10 +83,10 @@ def _given(job: Work) -> Judged:
     amount = members[0].amount
     assert amount is not None
     shown = last.printed
-    spread = shown.half if shown is not None else Fraction(0)
+    spread = shown.half if isinstance(shown, Printed) else Fraction(0)
     job.ledger.names[name] = Defined(name, amount, shown, "working", True, claim.span.start, spread)
     return Judged(
-        claim, "given", quantity=name, claimed=amount, claimed_unit=shown.unit_text if shown else "",
+        claim, "given", quantity=name, claimed=amount, claimed_unit=shown.written_in.text if shown else "",
         message=f"assumed, from {claim.from_sheet}" if claim.from_sheet else "assumed",
     )  # fmt: skip
 
@@ -121,7 +122,7 @@ def _chain(job: Work) -> Judged:
         (s for s in segments if not s.only_a_value), segments[0]
     )
     key: Key | None = None
-    printings: list[tuple[Printed, Step]] = []
+    printings: list[tuple[Printed | PrintedPhasor, Step]] = []
     for segment in segments:
         if segment.truth is None:
             _no_truth(segment, job, segment is main)
@@ -226,13 +227,13 @@ def _fault(fault: DimensionFault, w: Worked, job: Work) -> None:
     job.steps.append(Step(w.member.text, w.member.span, w.relation, "differs", None, fault.reason))
 
 
-def _judge_segment(segment: Segment, job: Work) -> list[tuple[Printed, Step]]:
+def _judge_segment(segment: Segment, job: Work) -> list[tuple[Printed | PrintedPhasor, Step]]:
     """Every member but the truth held against it; the printed values among them with their steps."""
     assert segment.truth is not None
     w0 = segment.members[segment.at]
     ground = Ground(segment.truth, segment.basis, w0, segment.members, job.names, job.ledger)
     ground.trace_truth()
-    printings: list[tuple[Printed, Step]] = []
+    printings: list[tuple[Printed | PrintedPhasor, Step]] = []
     for k, w in enumerate(segment.members):
         if k == segment.at or w.sort == "new name":
             continue
@@ -265,7 +266,9 @@ def _dimension_of_bound(first: Worked, job: Work) -> None:
     job.findings.append(Finding("dimension", RULES["dimension"].severity, step.message, first.member.span))
 
 
-def _summed_up(main: Segment, printings: list[tuple[Printed, Step]], job: Work, workings: Sequence[Worked]) -> Judged:
+def _summed_up(
+    main: Segment, printings: list[tuple[Printed | PrintedPhasor, Step]], job: Work, workings: Sequence[Worked]
+) -> Judged:
     """The claim's verdict: that of its worst step; the first step of that kind gives the sentence."""
     steps = sorted(job.steps, key=lambda s: s.span.start) if job.claim.place != "table" else job.steps
     worst: Verdict = max((s.verdict for s in steps), key=lambda v: _ORDER[v], default="unchecked")
@@ -283,7 +286,7 @@ def _summed_up(main: Segment, printings: list[tuple[Printed, Step]], job: Work, 
         basis=main.basis,
         quantity=workings[0].member.text if workings[0].sort != "value" else main.members[main.at].member.text,
         claimed=shown.amount if shown else None,
-        claimed_unit=shown.unit_text if shown else "",
+        claimed_unit=shown.written_in.text if shown else "",
         computed=truth,
         high=limit if bound is not None and bound.relation in ("<", "≤") else None,
         low=limit if bound is not None and bound.relation in (">", "≥") else None,
@@ -295,7 +298,12 @@ def _summed_up(main: Segment, printings: list[tuple[Printed, Step]], job: Work, 
 
 
 def _enter(
-    judged: Judged, main: Segment, name: str | None, key: Key | None, printings: list[tuple[Printed, Step]], job: Work
+    judged: Judged,
+    main: Segment,
+    name: str | None,
+    key: Key | None,
+    printings: list[tuple[Printed | PrintedPhasor, Step]],
+    job: Work,
 ) -> None:
     """Put the chain's name and its printed values into the ledger, for what stands further down."""
     if main.truth is None:
@@ -308,4 +316,13 @@ def _enter(
         key = Key(-1, "name", (name,))
     for p, step in printings:
         if p.amount.dimension == main.truth.dimension:
-            job.ledger.results.append(Result(p, main.truth, step.verdict, start, key))
+            job.ledger.results += _results(p, main.truth, step, start, key)
+
+
+def _results(p: Printed | PrintedPhasor, truth: Amount, step: Step, start: int, key: Key | None) -> list[Result]:
+    """A printed value as later numbers may repeat it: a phasor by each of its two figures."""
+    if isinstance(p, Printed):
+        return [Result(p, truth, step.verdict, start, key)]
+    magnitude, angle, re, im = parts(replace(truth, value=complex(truth.value)))
+    first, second = (magnitude, angle) if p.polar else (re, im)
+    return [Result(p.first, first, step.verdict, start, None), Result(p.second, second, step.verdict, start, None)]

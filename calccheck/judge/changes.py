@@ -6,7 +6,7 @@ from collections.abc import Iterable
 from dataclasses import replace
 from fractions import Fraction
 
-from calccheck.arithmetic import Amount, Doubt
+from calccheck.arithmetic import Amount, Doubt, real
 from calccheck.formula import Change
 from calccheck.model import Circuit, Element
 from calccheck.units import AMPERE, OHM, SIEMENS, VOLT, words
@@ -42,7 +42,7 @@ def _remade(element: Element, change: Change, value: Amount | None) -> Element:
     if value.dimension != wanted:
         raise Doubt(f"{element.name} is {words(wanted)}, {words(value.dimension)} cannot take its place", change.span)
     kind = element.kind if element.kind in ("voltage source", "current source") else "resistor"
-    return replace(element, kind=kind, value=Fraction(value.value), stated=value, tolerance=None)
+    return replace(element, kind=kind, value=Fraction(real(value.value, change.span)), stated=value, tolerance=None)
 
 
 def _put(circuit: Circuit, old: Element, new: Element) -> Circuit:

@@ -32,8 +32,8 @@ def followed(key: Key, ledger: Ledger, circuit: Circuit) -> Iterator[tuple[Real,
 def _printed(key: Key, ledger: Ledger) -> list[Real]:
     values: list[Real] = []
     for r in reversed(ledger.results):
-        if r.key == key and r.stands and r.printed.amount.value not in values:
-            values.append(r.printed.amount.value)
+        if r.key == key and r.stands and r.printed.value not in values:
+            values.append(r.printed.value)
     return values[:_MOST]
 
 

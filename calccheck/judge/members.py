@@ -9,6 +9,7 @@ from typing import Literal
 from calccheck.arithmetic import Amount, DimensionFault, Doubt, evaluate
 from calccheck.formula import Node, Range, Reference, numbers, references
 from calccheck.judge import hints, quantities
+from calccheck.judge.phasors import PrintedPhasor, printed_phasor
 from calccheck.judge.rounding import Printed, printed
 from calccheck.judge.scope import Key, Ledger, Meaning, meaning
 from calccheck.loose_units import with_loose_units
@@ -31,7 +32,7 @@ class Worked:
     sort: Sort
     basis: Basis = ""
     amount: Amount | None = None
-    printed: Printed | None = None
+    printed: Printed | PrintedPhasor | None = None
     key: Key | None = None
     restates: bool = False
     doubt: Doubt | None = None
@@ -103,7 +104,7 @@ def work(member: Member, names: Names) -> Worked:
     node = with_loose_units(member.node, names.known)
     if isinstance(node, Range):
         return Worked(member, node, "range", doubt=_range_doubt(node))
-    value = printed(node)
+    value = printed(node) or printed_phasor(node)
     found = references(node)
     sort: Sort = "value" if value is not None else "substitution" if _has_printed(node) else "formula"
     w = Worked(member, node, sort, printed=value)

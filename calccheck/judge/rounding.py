@@ -11,7 +11,7 @@ from decimal import Decimal
 from fractions import Fraction
 from typing import Literal
 
-from calccheck.arithmetic import Amount, Real, literal, size
+from calccheck.arithmetic import Amount, Real, Value, literal, real, size
 from calccheck.formula import Group, Node, Number, Unary
 from calccheck.units import PLAIN, Unit
 
@@ -33,6 +33,11 @@ class Printed:
     def unit_text(self) -> str:
         """The unit as written."""
         return self.written_in.text
+
+    @property
+    def value(self) -> Real:
+        """The value in SI."""
+        return real(self.amount.value)
 
     @property
     def half(self) -> Fraction:
@@ -76,7 +81,7 @@ def fit(p: Printed, truth: Real, carry: Fraction, scale: Real = 0) -> Fit:
     ``whole zeros``: right to the figures before the zeros at its end, and within ``carry``. ``scale``: the largest like value
     of the circuit, against which a bare zero is held.
     """
-    x = p.amount.value
+    x = p.value
     distance = size(x - truth)
     slack = SLACK * size(truth)
     if p.digits == 0 and int(p.digits.as_tuple().exponent) >= 0:
@@ -106,11 +111,15 @@ def coarse(p: Printed, truth: Real) -> bool:
     return not bare_zero and p.half > COARSE * size(truth)
 
 
-def equal(a: Real, b: Real) -> bool:
+def equal(a: Value, b: Value) -> bool:
     """Whether two worked values are the same to 1e-9."""
     return bool(size(a - b) <= SLACK * max(size(a), size(b)))
 
 
-def deviation(x: Real, truth: Real) -> float | None:
+def deviation(x: Value, truth: Value) -> float | None:
     """How far a value is from the truth, as a fraction of the truth; ``None`` at a truth of zero."""
-    return None if truth == 0 else float((x - truth) / size(truth))
+    if truth == 0:
+        return None
+    if isinstance(x, complex) or isinstance(truth, complex):
+        return float(size(x - truth) / size(truth))
+    return float((x - truth) / size(truth))

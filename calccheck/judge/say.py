@@ -2,23 +2,36 @@
 
 from __future__ import annotations
 
-from calccheck.arithmetic import Amount, Real, size
+from fractions import Fraction
+
+from calccheck.arithmetic import Amount, Real, real, size
+from calccheck.judge.phasors import PrintedPhasor, is_angle, nearest_turn
 from calccheck.judge.rounding import Printed
-from calccheck.units import PLAIN, Unit, printed, words
-
-_ICE = 273.15
-
-
-def value(a: Amount, like: Unit = PLAIN, figures: int = 6) -> str:
-    """An amount as printed: in the unit ``like`` where that fits."""
-    if a.point:
-        return f"{float(a.value) - _ICE:.{figures}g} °C".replace("-", "−")
-    return printed(a.value, a.dimension, figures, like)
+from calccheck.printing import shown
+from calccheck.units import PLAIN, printed, words
 
 
-def near(a: Amount, p: Printed) -> str:
-    """The truth to two places more than the printed value shows, in its unit."""
-    return value(a, p.written_in, max(4, p.figures + 2))
+def near(a: Amount, p: Printed | PrintedPhasor) -> str:
+    """The truth to two places more than the printed value shows, in its unit and its form."""
+    if isinstance(p, PrintedPhasor) and not p.polar and isinstance(a.value, complex):
+        figures = max(4, p.figures + 2)
+        re, im = (printed(abs(x), a.dimension, figures, p.written_in) for x in (a.value.real, a.value.imag))
+        number, _, unit = re.partition(" ")
+        sign, lead = "−" if a.value.imag < 0 else "+", "−" if a.value.real < 0 else ""
+        return f"({lead}{number} {sign} j{im.partition(' ')[0]}) {unit}".strip()
+    if (
+        isinstance(p, Printed)
+        and is_angle(p)
+        and a.dimension == p.amount.dimension
+        and not isinstance(a.value, complex)
+    ):
+        a = Amount(nearest_turn(a.value, p.value))
+    return shown(a, p.written_in if _readable(a, p) else PLAIN, max(4, p.figures + 2))
+
+
+def _readable(a: Amount, p: Printed | PrintedPhasor) -> bool:
+    """Whether the printed unit suits the truth; a miss of a thousand reads better in the truth's own handy unit."""
+    return a.value == 0 or Fraction(1, 1000) < size(a.value) / abs(p.written_in.factor) < 100_000
 
 
 def percent(x: float) -> str:
@@ -43,15 +56,15 @@ def unlike(a: Amount, b: Amount) -> str:
 def says_nothing(label: str, q: Amount, side: str) -> str:
     """A bound on the other side of zero than its quantity."""
     better = f"|{label}|" if label[:1] in "VI" else f"−{label}"
-    return f"{label} is {value(q)}: a limit on the other side of zero says nothing of it; bound {better} instead"
+    return f"{label} is {shown(q)}: a limit on the other side of zero says nothing of it; bound {better} instead"
 
 
 def margin(label: str, q: Amount, limit: Amount, room: Real, holds: bool) -> str:
     """A bound with its margin."""
-    share = f" ({abs(float(room / limit.value)) * 100:.3g} % of the limit)" if limit.value else ""
-    apart = value(Amount(size(room), q.dimension), figures=4)
+    share = f" ({float(size(room / real(limit.value))) * 100:.3g} % of the limit)" if limit.value else ""
+    apart = shown(Amount(size(room), q.dimension), figures=4)
     if holds:
-        return f"{label} is {value(q)}, {apart}{share} inside its limit"
+        return f"{label} is {shown(q)}, {apart}{share} inside its limit"
     if room == 0:
-        return f"{label} is {value(q)}, which is the limit itself: not below or above it"
-    return f"{label} is {value(q)} and passes the limit of {value(limit)} by {apart}{share}"
+        return f"{label} is {shown(q)}, which is the limit itself: not below or above it"
+    return f"{label} is {shown(q)} and passes the limit of {shown(limit)} by {apart}{share}"

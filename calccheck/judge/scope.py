@@ -11,6 +11,7 @@ from typing import Literal
 from calccheck.arithmetic import Amount, Doubt, Real, evaluate
 from calccheck.component_code import component_code
 from calccheck.formula import Change, ChangeKind, Reference
+from calccheck.judge.phasors import PrintedPhasor
 from calccheck.judge.rounding import Printed
 from calccheck.model import Basis, Circuit, Element, Settings, Solution, Verdict
 
@@ -27,7 +28,7 @@ class Defined:
 
     name: str
     exact: Amount
-    printed: Printed | None
+    printed: Printed | PrintedPhasor | None
     basis: Basis
     given: bool
     offset: int

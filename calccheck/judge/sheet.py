@@ -58,7 +58,7 @@ def _lapsed(waiver: Waiver, j: Judged, on: date) -> str:
     if shown.amount.dimension != j.claimed.dimension or shown.amount.value != j.claimed.value:
         return "the printed number is no longer the one that it accepts"
     same = truth.amount.dimension == j.computed.dimension
-    if not same or fit(truth, j.computed.value, Fraction(0)) == "no":
+    if not same or isinstance(j.computed.value, complex) or fit(truth, j.computed.value, Fraction(0)) == "no":
         return "the recomputed number is no longer the one that it names"
     return ""
 

@@ -6,15 +6,17 @@ from collections.abc import Iterator, Sequence
 from dataclasses import dataclass, field, replace
 from fractions import Fraction
 
-from calccheck.arithmetic import COHERENT, Amount, DimensionFault, Doubt, Real, size
+from calccheck.arithmetic import COHERENT, Amount, DimensionFault, Doubt, Real, real, size
 from calccheck.formula import Number, numbers, references
 from calccheck.judge import quantities, say
 from calccheck.judge.laws import followed
 from calccheck.judge.members import Names, Worked, without_unit
+from calccheck.judge.phasors import PrintedPhasor, is_angle, nearest_turn, phasor_fit
 from calccheck.judge.rounding import SLACK, Printed, coarse, deviation, equal, fit
 from calccheck.judge.scope import Key, Ledger
-from calccheck.judge.trace import Traced, reach, trace, worked_pieces
+from calccheck.judge.trace import Reach, Traced, reach, trace, worked_pieces
 from calccheck.model import Basis, Finding, Relation, Step, Verdict
+from calccheck.printing import shown
 from calccheck.rules import RULES
 from calccheck.units import NONE, WATT, words
 
@@ -106,6 +108,8 @@ def judge_member(w: Worked, relation: Relation, ground: Ground) -> Step:
     assert w.amount is not None
     if w.amount.dimension != ground.truth.dimension or w.amount.point != ground.truth.point:
         return _other_dimension(w, relation, ground)
+    if isinstance(w.printed, PrintedPhasor) or (w.printed is not None and isinstance(ground.truth.value, complex)):
+        return _phasor(w, w.printed, relation, ground)
     if w.printed is not None:
         return _value(w, w.printed, relation, ground)
     if relation == "≈":
@@ -115,14 +119,19 @@ def judge_member(w: Worked, relation: Relation, ground: Ground) -> Step:
     if equal(w.amount.value, ground.truth.value):
         return _step(w, "agrees")
     return _step(
-        w, "differs", f"{w.member.text} comes to {say.value(w.amount)}, {_subject(ground)} to {say.value(ground.truth)}"
+        w, "differs", f"{w.member.text} comes to {shown(w.amount)}, {_subject(ground)} to {shown(ground.truth)}"
     )
 
 
 def _difference_in_celsius(w: Worked, ground: Ground) -> Worked:
     """``18 °C`` printed for a difference of temperatures is 18 K."""
     p = w.printed
-    if p is None or not p.amount.point or ground.truth.point or ground.truth.dimension != p.amount.dimension:
+    if (
+        not isinstance(p, Printed)
+        or not p.amount.point
+        or ground.truth.point
+        or ground.truth.dimension != p.amount.dimension
+    ):
         return w
     kelvins = Amount(Fraction(p.digits), p.amount.dimension)
     return replace(w, amount=kelvins, printed=replace(p, amount=kelvins))
@@ -161,8 +170,8 @@ def _bare(w: Worked, relation: Relation, ground: Ground, bare_member: bool) -> S
     assert w.amount is not None
     dimension = ground.truth.dimension if bare_member else w.amount.dimension
     dressed = replace(w, amount=Amount(w.amount.value, dimension))
-    if w.printed is not None:
-        dressed = replace(dressed, printed=replace(w.printed, amount=Amount(w.printed.amount.value, dimension)))
+    if isinstance(w.printed, Printed):
+        dressed = replace(dressed, printed=replace(w.printed, amount=Amount(w.printed.value, dimension)))
     before = ground.truth
     ground.truth = Amount(ground.truth.value, dimension)
     held = _bare_fits(dressed, relation, ground)
@@ -177,7 +186,7 @@ def _bare(w: Worked, relation: Relation, ground: Ground, bare_member: bool) -> S
 
 def _bare_fits(w: Worked, relation: Relation, ground: Ground) -> Step:
     assert w.amount is not None
-    if w.printed is not None:
+    if isinstance(w.printed, Printed) and not isinstance(ground.truth.value, complex):
         return _value(w, w.printed, relation, ground)
     distance = size(w.amount.value - ground.truth.value)
     if distance <= ground.ledger.settings.carry * size(
@@ -185,7 +194,7 @@ def _bare_fits(w: Worked, relation: Relation, ground: Ground) -> Step:
     ):  # its numbers cannot be traced without units
         ground.carried = w.amount
         return _step(w, "agrees")
-    return _step(w, "differs", f"it comes to {say.value(w.amount)}, not {say.value(ground.truth)}")
+    return _step(w, "differs", f"it comes to {shown(w.amount)}, not {shown(ground.truth)}")
 
 
 # --- formulas and substitutions -------------------------------------------------------------------------------------
@@ -200,7 +209,7 @@ def _approximate_formula(w: Worked, ground: Ground) -> Step:
         step = _step(w, "rounded", f"neglects {say.percent(off)} of {_subject(ground)}")
     else:
         gap = "from zero" if off is None else f"by {say.percent(off)}"
-        message = f"{w.member.text} is {say.value(w.amount)}, off {gap} from {_subject(ground)} = {say.value(ground.truth)}: no approximation"
+        message = f"{w.member.text} is {shown(w.amount)}, off {gap} from {_subject(ground)} = {shown(ground.truth)}: no approximation"
         return _step(w, "differs", message)
     ground.truth = w.amount  # what follows is held to the formula, not to the truth before it
     return step
@@ -223,41 +232,78 @@ def _substitution(w: Worked, ground: Ground) -> Step:
     ground.say_untraced(traced)
     truth = ground.truth.value
     try:
-        low, high = reach(w.node, ground.names.amount, traced, _spreads(w, ground))
+        reached = reach(w.node, ground.names.amount, traced, _spreads(w, ground))
     except (Doubt, DimensionFault):
-        low = high = w.amount.value
-    slack = SLACK * size(truth)
-    if low - slack <= truth <= high + slack:
+        reached = Reach(w.amount.value, *(real(w.amount.value),) * 2)
+    if reached.holds(truth):
         ground.carried = w.amount
         return _step(w, "agrees")
     faulty = next((t.faulty for t in traced if t.faulty is not None), None)
-    message = f"{w.member.text} comes to {say.value(w.amount)}, {_subject(ground)} to {say.value(ground.truth)}"
-    if high > low:
-        message += f"; the rounding of its numbers allows {say.value(Amount(low, w.amount.dimension))} to {say.value(Amount(high, w.amount.dimension))}"
+    message = f"{w.member.text} comes to {shown(w.amount)}, {_subject(ground)} to {shown(ground.truth)}"
+    if reached.high > reached.low:
+        low, high = (shown(Amount(x, w.amount.dimension)) for x in (reached.low, reached.high))
+        message += f"; the rounding of its numbers allows {low} to {high}"
     if faulty is not None:
-        message += f"; it carries on {say.value(faulty.printed.amount, faulty.printed.written_in)}, which differs above"
+        message += f"; it carries on {shown(faulty.printed.amount, faulty.printed.written_in)}, which differs above"
     return _step(w, "differs", message)
 
 
 # --- values ---------------------------------------------------------------------------------------------------------
 
 
+def _phasor(w: Worked, p: Printed | PrintedPhasor, relation: Relation, ground: Ground) -> Step:
+    """A printed phasor, each of its two figures by its own digits; a real value for a phasor is no phasor."""
+    truth, settings = ground.truth, ground.ledger.settings
+    if isinstance(p, Printed):
+        name = _subject(ground)
+        return _step(
+            w, "unchecked", f"{name} is a phasor, {say.near(truth, p)}: print its angle, or claim |{name}| alone"
+        )
+    how = phasor_fit(
+        p, truth.value, settings.carry, quantities.scale(ground.source.key, ground.ledger, truth.dimension)
+    )
+    if how == "exact place":
+        return _step(w, "agrees")
+    off, near = deviation(p.amount.value, truth.value) or 0.0, say.near(truth, p)
+    carried = ground.carried
+    if (
+        abs(off) <= settings.carry
+        and carried is not None
+        and phasor_fit(p, carried.value, settings.carry, 0) == "exact place"
+    ):
+        return _step(w, "rounded", f"carried rounding: follows from the working before it; exact {near}")
+    if how == "cut off":
+        return _step(w, "rounded", f"cut off, not rounded: {near}")
+    if how == "whole zeros":
+        return _step(w, "rounded", f"rounded to its figures before the zeros: {near}")
+    if relation == "≈" and p.figures <= 2 and abs(off) <= settings.approx:
+        return _step(w, "rounded", f"near {near}")
+    message = (
+        f"{_subject(ground)} comes to {near}, printed {w.member.text} (off by {say.percent(abs(off))} of its magnitude)"
+    )
+    return _step(w, "differs", message)
+
+
 def _value(w: Worked, p: Printed, relation: Relation, ground: Ground) -> Step:
     """A printed value: by its last place, then cut off, then carried rounding."""
     truth, settings = ground.truth, ground.ledger.settings
+    t = real(truth.value)
+    if is_angle(p) and truth.dimension == p.amount.dimension:
+        t = nearest_turn(t, p.value)
+        truth = replace(truth, value=t)
     if ground.source.restates and relation != "≈":
         return _restated(w, p, ground)
     largest = (
         quantities.scale(ground.source.key, ground.ledger, truth.dimension) if p.digits == 0 and _circuit(ground) else 0
     )
-    how = fit(p, truth.value, settings.carry, largest)
+    how = fit(p, t, settings.carry, largest)
     if how == "exact place":
-        if coarse(p, truth.value) and not equal(p.amount.value, truth.value):
+        if coarse(p, t) and not equal(p.value, t):
             ground.cautions.append(
-                f"coarse: {w.member.text} says no more than ±{say.value(Amount(p.half, truth.dimension), p.written_in, 3)}"
+                f"coarse: {w.member.text} says no more than ±{shown(Amount(p.half, truth.dimension), p.written_in, 3)}"
             )
         return _step(w, "agrees")
-    off = deviation(p.amount.value, truth.value)
+    off = deviation(p.value, t)
     near = say.near(truth, p)
     law = _carried(p, ground)
     if law:
@@ -282,25 +328,30 @@ def _circuit(ground: Ground) -> bool:
 
 def _restated(w: Worked, p: Printed, ground: Ground) -> Step:
     """A part's own value, repeated: it is the very value or it is wrong."""
-    if equal(p.amount.value, ground.truth.value):
+    if equal(p.value, ground.truth.value):
         return _step(w, "agrees")
     return _step(
         w,
         "differs",
-        f"the circuit block has {_subject(ground)} = {say.value(ground.truth, p.written_in)}, printed {w.member.text}",
+        f"the circuit block has {_subject(ground)} = {shown(ground.truth, p.written_in)}, printed {w.member.text}",
     )
 
 
 def _carried(p: Printed, ground: Ground) -> str:
     """What printed values the value follows from, within the carry that the sheet allows; nothing where it does not."""
-    truth = ground.truth.value
-    if size(p.amount.value - truth) > ground.ledger.settings.carry * size(truth):
+    truth = real(ground.truth.value)
+    if size(p.value - truth) > ground.ledger.settings.carry * size(truth):
         return ""
     if any(m.sort == "substitution" for m in ground.members):
-        return "the working before it" if ground.carried is not None and _follows(p, ground.carried.value) else ""
+        return "the working before it" if ground.carried is not None and _follows(p, real(ground.carried.value)) else ""
     key: Key | None = ground.source.key
     if key is None or key.circuit < 0:
         return ""
+    if any(
+        r.key == key and r.stands and r.printed.value == p.value and r.printed.unit <= p.unit
+        for r in ground.ledger.results
+    ):
+        return "the same value printed above"
     circuit = quantities.circuit_of(key, ground.ledger, ground.source.member.span)
     return next(
         (f"{law} with values printed above" for v, law in followed(key, ground.ledger, circuit) if _follows(p, v)), ""
@@ -308,4 +359,4 @@ def _carried(p: Printed, ground: Ground) -> str:
 
 
 def _follows(p: Printed, v: Real) -> bool:
-    return size(p.amount.value - v) <= p.half + SLACK * size(v)
+    return size(p.value - v) <= p.half + SLACK * size(v)

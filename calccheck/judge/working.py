@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from calccheck.arithmetic import Amount, Doubt
+from calccheck.arithmetic import Amount, Doubt, plainest
 from calccheck.formula import Node, Reference
 from calccheck.judge import hints, quantities
 from calccheck.judge.changes import TEST
@@ -40,4 +40,4 @@ def _label(source: str) -> str:
 
 
 def _sum(rows: tuple[tuple[str, Amount], ...], dimension: Dimension) -> Amount:
-    return Amount(sum(float(a.value) for _, a in rows), dimension)
+    return Amount(plainest(sum(complex(a.value) for _, a in rows)), dimension)

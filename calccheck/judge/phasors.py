@@ -1,0 +1,149 @@
+"""Printed phasors and complex values, and how they are held against the truth: each printed figure by its own digits."""
+
+from __future__ import annotations
+
+import cmath
+import math
+from dataclasses import dataclass
+from fractions import Fraction
+
+from calccheck.arithmetic import Amount, Real, Value, plainest
+from calccheck.formula import Binary, Group, Node, Number, Reference, Unary
+from calccheck.judge.rounding import SLACK, Fit, Printed, fit, printed
+from calccheck.units import NONE, PLAIN, Unit, times
+
+_TURN = 2 * math.pi
+
+
+@dataclass(frozen=True, slots=True)
+class PrintedPhasor:
+    """A complex value as printed: magnitude and angle (``polar``), or real and imaginary part."""
+
+    first: Printed
+    second: Printed
+    polar: bool
+
+    @property
+    def amount(self) -> Amount:
+        """The value in SI."""
+        a, b = float(self.first.value), float(self.second.value)
+        value = cmath.rect(a, b) if self.polar else complex(a, b)
+        return Amount(plainest(value), self.first.amount.dimension)
+
+    @property
+    def written_in(self) -> Unit:
+        """The unit that the value was printed in."""
+        return self.first.written_in
+
+    @property
+    def figures(self) -> int:
+        """Significant figures of the part printed with most."""
+        return max(self.first.figures, self.second.figures)
+
+
+def printed_phasor(node: Node) -> PrintedPhasor | None:
+    """``3.2 V ∠ −41.3°``, ``(2.4 − j2.1) V``, ``−j2.1 Ω``; nothing for what is no printed phasor."""
+    if isinstance(node, Binary) and node.operator == "∠":
+        magnitude, angle = printed(node.left), printed(node.right)
+        return PrintedPhasor(magnitude, angle, True) if magnitude and angle else None
+    unit = PLAIN
+    while isinstance(node, Group):
+        unit, node = (node.unit if node.unit.text else unit), node.inner
+    parts = _rectangular(node)
+    if parts is None:
+        return None
+    first, second = (_in(p, unit) for p in parts)
+    same = first.amount.dimension == second.amount.dimension or first.digits == 0
+    return (
+        PrintedPhasor(first if first.digits or first.written_in.text else _zero_like(second), second, False)
+        if same
+        else None
+    )
+
+
+def _rectangular(node: Node) -> tuple[Printed, Printed] | None:
+    """Real and imaginary part, where the node is their sum or the imaginary part alone."""
+    alone = _imaginary(node)
+    if alone is not None:
+        return _zero_like(alone), alone
+    if not (isinstance(node, Binary) and node.operator in ("+", "-")):
+        return None
+    re, im = printed(node.left), _imaginary(node.right)
+    if re is None or im is None:
+        return None
+    return re, _turned(im) if node.operator == "-" else im
+
+
+def _imaginary(node: Node) -> Printed | None:
+    if isinstance(node, Unary) and node.sign in ("-", "+"):
+        inner = _imaginary(node.operand)
+        return _turned(inner) if inner is not None and node.sign == "-" else inner
+    if isinstance(node, Binary) and node.operator == "·" and isinstance(node.left, Reference) and node.left.word == "j":
+        return printed(node.right) if isinstance(node.right, Number) else None
+    return None
+
+
+def _turned(p: Printed) -> Printed:
+    return Printed(Amount(-p.value, p.amount.dimension), p.unit, p.figures, p.digits.copy_negate(), p.written_in)
+
+
+def _zero_like(p: Printed) -> Printed:
+    """A real part that is not printed: zero, to the same last place as the imaginary part."""
+    return Printed(Amount(Fraction(0), p.amount.dimension), p.unit, 0, p.digits * 0, p.written_in)
+
+
+def _in(p: Printed, unit: Unit) -> Printed:
+    if not unit.text:
+        return p
+    written = unit if p.written_in == PLAIN else times(p.written_in, unit)
+    dimension = tuple(a + b for a, b in zip(p.amount.dimension, unit.dimension, strict=True))
+    return Printed(Amount(p.value * unit.factor, dimension), p.unit * unit.factor, p.figures, p.digits, written)
+
+
+def phasor_fit(p: PrintedPhasor, truth: Value, carry: Fraction, scale: Real) -> Fit:
+    """How a printed phasor stands to the truth: the worse of its two figures.
+
+    Angles are taken modulo a turn, and not at all where the magnitude is zero on the circuit's ``scale``.
+    """
+    t = complex(truth)
+    if not p.polar:
+        largest = max(scale, abs(t))
+        return _worse(_part(p.first, t.real, carry, largest), _part(p.second, t.imag, carry, largest))
+    magnitude = fit(p.first, abs(t), carry, scale)
+    if abs(t) <= SLACK * scale:
+        return magnitude
+    return _worse(magnitude, fit(p.second, nearest_turn(cmath.phase(t), p.second.value), carry, _TURN))
+
+
+def _part(p: Printed, truth: float, carry: Fraction, scale: Real) -> Fit:
+    if abs(truth) <= 1e-12 * scale:
+        truth = 0.0
+    return fit(p, truth, carry, scale)
+
+
+def _worse(a: Fit, b: Fit) -> Fit:
+    order: tuple[Fit, ...] = ("exact place", "cut off", "whole zeros", "no")
+    return max(a, b, key=order.index)
+
+
+def nearest_turn(angle: Real, printed_angle: Real) -> float:
+    """The angle (radians) with whole turns added so that it comes nearest to the printed one."""
+    return float(angle) + _TURN * round((float(printed_angle) - float(angle)) / _TURN)
+
+
+def is_angle(p: Printed) -> bool:
+    """Whether a real value is printed as an angle."""
+    return p.amount.dimension == NONE and p.written_in.text in ("°", "rad", "mrad")
+
+
+def parts(a: Amount) -> list[Amount]:
+    """The real figures by which a complex amount may stand in a substitution: magnitude, angle, real and imaginary part."""
+    if not isinstance(a.value, complex):
+        return [a]
+    v = a.value
+    return [
+        Amount(abs(v), a.dimension),
+        Amount(cmath.phase(v)),
+        Amount(v.real, a.dimension),
+        Amount(v.imag, a.dimension),
+    ]
