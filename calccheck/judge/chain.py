@@ -12,6 +12,7 @@ from calccheck.formula import Node, Reference
 from calccheck.judge import hints, say
 from calccheck.judge.bounds import BOUNDS, judge_bound
 from calccheck.judge.members import Names, Worked, work
+from calccheck.judge.miss import Miss
 from calccheck.judge.phasors import PrintedPhasor, parts
 from calccheck.judge.rounding import Printed, deviation
 from calccheck.judge.scope import Defined, Key, Ledger, Result
@@ -32,6 +33,7 @@ class Work:
     steps: list[Step] = field(default_factory=list)
     cautions: list[str] = field(default_factory=list)
     findings: list[Finding] = field(default_factory=list)
+    miss: Miss | None = None
 
 
 @dataclass(frozen=True, slots=True)
@@ -53,16 +55,19 @@ class Segment:
         return all(w.sort == "value" for w in self.members)
 
 
-def judge_claim(claim: Claim, ledger: Ledger) -> tuple[Judged, tuple[Finding, ...]]:
-    """The verdict on one claim; names that it defines and values that it prints are entered in the ledger."""
+def judge_claim(claim: Claim, ledger: Ledger) -> tuple[Judged, tuple[Finding, ...], Miss | None]:
+    """The verdict on one claim, findings, and the ground for naming a slip where a member differs.
+
+    Names that the claim defines and values that it prints are entered in the ledger.
+    """
     if claim.problem is not None:
-        return Judged(claim, "unchecked", message=say.reason(claim.problem.reason, claim.problem.suggestion)), ()
+        return Judged(claim, "unchecked", message=say.reason(claim.problem.reason, claim.problem.suggestion)), (), None
     job = Work(claim, ledger, Names(claim.circuit, ledger))
     try:
         judged = _given(job) if claim.given else _chain(job)
     except Doubt as d:
         judged = Judged(claim, "unchecked", quantity=claim.members[0].text, message=say.reason(d.reason, d.suggestion))
-    return judged, tuple(job.findings)
+    return judged, tuple(job.findings), job.miss
 
 
 # --- assumptions ----------------------------------------------------------------------------------------------------
@@ -233,7 +238,8 @@ def _judge_segment(segment: Segment, job: Work) -> list[tuple[Printed | PrintedP
     w0 = segment.members[segment.at]
     ground = Ground(segment.truth, segment.basis, w0, segment.members, job.names, job.ledger)
     ground.trace_truth()
-    printings: list[tuple[Printed | PrintedPhasor, Step]] = []
+    judged: list[tuple[Worked, Step]] = []
+    against: tuple[Amount, Worked] | None = None  # what the first member that differs was held against
     for k, w in enumerate(segment.members):
         if k == segment.at or w.sort == "new name":
             continue
@@ -241,13 +247,15 @@ def _judge_segment(segment: Segment, job: Work) -> list[tuple[Printed | PrintedP
         if w.fault is not None:
             _fault(w.fault, w, job)
             continue
-        step = judge_member(w, relation, ground)
-        job.steps.append(step)
-        if w.printed is not None:
-            printings.append((w.printed, step))
+        judged.append((w, judge_member(w, relation, ground)))
+        job.steps.append(judged[-1][1])
+        if against is None and judged[-1][1].verdict == "differs":
+            against = ground.truth, ground.held or w0
+    if against is not None and job.miss is None:
+        job.miss = Miss(ground, *against, tuple(judged))
     job.cautions += ground.cautions
     job.findings += ground.findings
-    return printings
+    return [(w.printed, step) for w, step in judged if w.printed is not None]
 
 
 def _bounds(segments: Sequence[Segment], job: Work) -> None:
@@ -312,7 +320,9 @@ def _enter(
     if name is not None:
         shown = printings[-1][0] if printings else None
         spread = Fraction(0)
-        job.ledger.names[name] = Defined(name, main.truth, shown, main.basis, False, start, spread)
+        job.ledger.names[name] = Defined(
+            name, main.truth, shown, main.basis, False, start, spread, main.members[main.at].node
+        )
         key = Key(-1, "name", (name,))
     for p, step in printings:
         if p.amount.dimension == main.truth.dimension:

@@ -10,7 +10,7 @@ from typing import Literal
 
 from calccheck.arithmetic import Amount, Doubt, Real, evaluate
 from calccheck.component_code import component_code
-from calccheck.formula import Change, ChangeKind, Reference
+from calccheck.formula import Change, ChangeKind, Node, Reference
 from calccheck.judge.phasors import PrintedPhasor
 from calccheck.judge.rounding import Printed
 from calccheck.model import Basis, Circuit, Element, Settings, Solution, Verdict
@@ -23,7 +23,8 @@ _TWO_NODES = {"R", "Z", "Isc"}
 class Defined:
     """A name of the sheet: the exact value for formulas, the printed one, and where it comes from.
 
-    ``spread``: how far the exact value may be off because it was worked from rounded numbers (SI, either way).
+    ``spread``: how far the exact value may be off because it was worked from rounded numbers (SI, either way). ``node``: the
+    formula that defines it.
     """
 
     name: str
@@ -33,6 +34,7 @@ class Defined:
     given: bool
     offset: int
     spread: Real = 0
+    node: Node | None = None
 
 
 @dataclass(frozen=True, slots=True)

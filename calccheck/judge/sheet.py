@@ -25,7 +25,7 @@ def judge_sheet(
     judged: list[Judged] = []
     findings: list[Finding] = []
     for claim in reading.claims:
-        j, more = judge_claim(claim, ledger)
+        j, more, _ = judge_claim(claim, ledger)
         j, waived = _waived(j, on)
         judged.append(j)
         findings += [*more, *waived]

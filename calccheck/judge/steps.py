@@ -25,7 +25,8 @@ from calccheck.units import NONE, WATT, words
 class Ground:
     """What the members of one segment are held against, and what was said on the way.
 
-    ``truth`` moves to a formula behind ``≈``. ``carried``: value of the last substitution that reaches the truth.
+    ``source``: the member that gives the truth; behind ``≈ formula`` the ``truth`` is that formula, ``held`` its member.
+    ``carried``: value of the last substitution that reaches the truth.
     """
 
     truth: Amount
@@ -35,6 +36,7 @@ class Ground:
     names: Names
     ledger: Ledger
     carried: Amount | None = None
+    held: Worked | None = None
     cautions: list[str] = field(default_factory=list)
     findings: list[Finding] = field(default_factory=list)
 
@@ -211,7 +213,7 @@ def _approximate_formula(w: Worked, ground: Ground) -> Step:
         gap = "from zero" if off is None else f"by {say.percent(off)}"
         message = f"{w.member.text} is {shown(w.amount)}, off {gap} from {_subject(ground)} = {shown(ground.truth)}: no approximation"
         return _step(w, "differs", message)
-    ground.truth = w.amount  # what follows is held to the formula, not to the truth before it
+    ground.truth, ground.held = w.amount, w  # what follows is held to the formula, not to the truth before it
     return step
 
 
