@@ -6,6 +6,8 @@ Both printed outputs (page and PDF) set these rows; neither words anything by it
 from __future__ import annotations
 
 from dataclasses import dataclass
+from fractions import Fraction
+from hashlib import sha256
 
 from calccheck.annotate.marks import MARKS
 from calccheck.arithmetic import Amount
@@ -187,14 +189,9 @@ def _deviation(judged: Judged) -> str:
     percent = abs(judged.deviation) * 100
     if percent < 5e-4:
         return "0 %" if percent == 0 else "< 0.001 %"
-    sign = ""
     claimed, computed = (a.value if a is not None else None for a in (judged.claimed, judged.computed))
-    if (
-        claimed is not None
-        and computed is not None
-        and not isinstance(claimed, complex)
-        and not isinstance(computed, complex)
-    ):
+    sign = ""
+    if isinstance(claimed, Fraction | float) and isinstance(computed, Fraction | float):
         sign = "+" if claimed > computed else "−"
     return f"{sign}{digits(percent, 2 if percent < 0.1 else 3)} %"
 
@@ -231,6 +228,11 @@ def headline(report: Report) -> str:
     if parts:
         return "; ".join(parts) + "."
     return f"All {total} claims stand." if total else "The sheet makes no claims."
+
+
+def digest(report: Report) -> str:
+    """SHA-256 of the sheet as UTF-8, in hexadecimal."""
+    return sha256(report.reading.sheet.text.encode("utf-8", "surrogatepass")).hexdigest()
 
 
 def waiver_line(claim: Claim) -> str:

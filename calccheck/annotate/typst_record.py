@@ -4,7 +4,6 @@ from __future__ import annotations
 
 from collections.abc import Sequence
 from dataclasses import dataclass
-from hashlib import sha256
 
 from calccheck.annotate.marks import MARKS
 from calccheck.annotate.record import (
@@ -16,6 +15,7 @@ from calccheck.annotate.record import (
     TITLE_FIELDS,
     Entry,
     counts,
+    digest,
     figure_cells,
     given_notes,
     headline,
@@ -96,11 +96,6 @@ def record(w: Words) -> str:
         f"#record-circuits(({_circuits(w)}))\n#record-givens(({_givens(w)}))\n#record-waivers(({_waivers(w)}))\n"
         f"#record-limits([{w.say(opening)}], ({listed}), [{w.say(closing)}])\n#signatures(({signatories}))\n"
     )
-
-
-def digest(report: Report) -> str:
-    """SHA-256 of the sheet as UTF-8, in hexadecimal."""
-    return sha256(report.reading.sheet.text.encode("utf-8", "surrogatepass")).hexdigest()
 
 
 def _record_row(w: Words, e: Entry) -> str:

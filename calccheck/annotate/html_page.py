@@ -1,0 +1,200 @@
+"""The sheet as written, as HTML: every block of the page, every claim tinted and followed by its mark, notes behind blocks."""
+
+from __future__ import annotations
+
+from collections.abc import Callable, Iterator, Sequence
+from dataclasses import dataclass
+from html import escape
+from itertools import groupby
+
+from calccheck.annotate.characters import code_point, unseen
+from calccheck.annotate.marks import MARKS
+from calccheck.annotate.places import Places, marks_in, runs
+from calccheck.annotate.record import Entry
+from calccheck.document import Block, Inline, inlines
+from calccheck.source import NOWHERE, Piece, Sheet
+
+_SAFE_LINKS = ("http://", "https://", "mailto:")
+_TAGS = {"emphasis": "em", "strong": "strong", "strike": "s"}
+
+
+@dataclass(frozen=True, slots=True)
+class Setting:
+    """What the walk needs at every step. ``following``: of each listed entry, the one after it in the sheet."""
+
+    sheet: Sheet
+    where: Places
+    following: dict[str, str]
+
+
+def said(text: str) -> str:
+    """Text of the sheet as HTML: markup escaped, unseen characters as their code points."""
+    parts = []
+    for boxed, group in groupby(text, key=unseen):
+        if boxed:
+            parts += [f'<span class="point">{code_point(c)}</span>' for c in group]
+        else:
+            parts.append(escape("".join(group)))
+    return "".join(parts)
+
+
+def blocks_html(s: Setting, children: Sequence[Block]) -> str:
+    """Blocks one behind the other."""
+    return "".join(_BLOCKS[b.kind](s, b) for b in children if b.kind in _BLOCKS)
+
+
+def word_html(entry: Entry, key: str, target: str) -> str:
+    """Sign, word and number of an entry, as a link. ``key``: its own anchor, if any."""
+    anchor = f' id="{key}"' if key else ""
+    label = f"{MARKS[entry.kind].label}<sup>{escape(entry.number)}</sup>"
+    more = f' <span class="ink-caution">{MARKS["caution"].label}</span>' if entry.cautions else ""
+    return f'<a class="word ink-{entry.kind}"{anchor} href="#{target}">{label}{more}</a>'
+
+
+# --- blocks ---------------------------------------------------------------------------------------------------------
+
+
+def _heading(s: Setting, b: Block) -> str:
+    level = min(6, b.level + 1)
+    return f"<h{level}>{_inlines(s, b.inlines)}</h{level}>\n{_notes(s, b.inlines)}"
+
+
+def _paragraph(s: Setting, b: Block) -> str:
+    return f"<p>{_inlines(s, b.inlines)}</p>\n{_notes(s, b.inlines)}"
+
+
+def _list(s: Setting, b: Block) -> str:
+    items = "".join(f"<li>{_item(s, item)}</li>\n" for item in b.children)
+    if b.info == "ordered":
+        return f'<ol start="{b.level}">\n{items}</ol>\n'
+    return f"<ul>\n{items}</ul>\n"
+
+
+def _item(s: Setting, b: Block) -> str:
+    """A list's item; one that is a paragraph alone stands without its space."""
+    if len(b.children) == 1 and b.children[0].kind == "paragraph":
+        return _inlines(s, b.children[0].inlines) + _notes(s, b.children[0].inlines)
+    return blocks_html(s, b.children)
+
+
+def _quote(s: Setting, b: Block) -> str:
+    return f"<blockquote>\n{blocks_html(s, b.children)}</blockquote>\n"
+
+
+def _table(s: Setting, b: Block) -> str:
+    head, *body = b.children
+    heads = "".join(_cell(s, c, "th scope=col") for c in head.children)
+    rows = "".join(f"<tr>{''.join(_cell(s, c, 'td') for c in row.children)}</tr>\n" for row in body)
+    cells = [i for row in b.children for c in row.children for i in c.inlines]
+    table = f"<table>\n<thead><tr>{heads}</tr></thead>\n<tbody>\n{rows}</tbody>\n</table>"
+    return f'<div class="scroll" tabindex="0" role="group" aria-label="table">\n{table}\n</div>\n{_notes(s, cells)}'
+
+
+def _cell(s: Setting, c: Block, tag: str) -> str:
+    side = f' class="{c.info}"' if c.info in ("right", "center") else ""
+    return f"<{tag}{side}>{_inlines(s, c.inlines)}</{tag.split()[0]}>"
+
+
+def _lines(s: Setting, b: Block) -> str:
+    """Lines as written, numbered as in the sheet."""
+    caption = f'<span class="line soft">{said(b.info)}</span>' if b.info not in ("", "circuit", "working") else ""
+    lines = "".join(
+        f'<span class="line" data-line="{_line_number(s.sheet, line)}">{_runs(s, line)}</span>' for line in b.lines
+    )
+    notes = "".join(note_html(s, e) for e in marks_in(s.where, b.lines) if e.beside)
+    return f"<pre><code>{caption}{lines}</code></pre>\n{notes}" if b.lines or caption else ""
+
+
+def _line_number(sheet: Sheet, line: Piece) -> str:
+    at = next((p for p in line.at if p != NOWHERE), None)
+    return "" if at is None else str(sheet.line_column(at)[0])
+
+
+def _rule(s: Setting, b: Block) -> str:
+    return "<hr>\n"
+
+
+def _note(s: Setting, b: Block) -> str:
+    return f'<div role="note"><sup>[{said(b.info)}]</sup>\n{blocks_html(s, b.children)}</div>\n'
+
+
+_BLOCKS: dict[str, Callable[[Setting, Block], str]] = {
+    "heading": _heading,
+    "paragraph": _paragraph,
+    "list": _list,
+    "item": _item,
+    "quote": _quote,
+    "table": _table,
+    "fence": _lines,
+    "code": _lines,
+    "math": _lines,
+    "html": _lines,
+    "rule": _rule,
+    "note": _note,
+}
+
+
+# --- notes ----------------------------------------------------------------------------------------------------------
+
+
+def _notes(s: Setting, children: Sequence[Inline]) -> str:
+    pieces: Iterator[Piece] = (i.text for i in inlines(tuple(children)) if i.text is not None)
+    return "".join(note_html(s, e) for e in marks_in(s.where, pieces) if e.beside)
+
+
+def note_html(s: Setting, e: Entry) -> str:
+    """What stands behind a block about one of its claims, with ways to the next and back to the list."""
+    found = f"recomputed {e.computed}" if e.kind == "differs" and e.computed and e.computed not in e.message else ""
+    told = "".join(f'<span class="told">{said(t)}</span>' for t in (found, *e.told, *e.cautions) if t)
+    label = f'<strong class="ink-{e.kind}">{MARKS[e.kind].label} {escape(e.number)}</strong>'
+    onward = s.following.get(e.key)
+    jumps = f'<a href="#l-{e.key}">to the list</a>'
+    jumps += f' <a href="#{onward}">to the next</a>' if onward else ""
+    return f'<div class="beside ink-{e.kind}" role="note">{label} <span class="jump">{jumps}</span>{told}</div>\n'
+
+
+# --- inlines --------------------------------------------------------------------------------------------------------
+
+
+def _inlines(s: Setting, children: Sequence[Inline]) -> str:
+    return "".join(_inline(s, i) for i in children)
+
+
+def _inline(s: Setting, i: Inline) -> str:
+    match i.kind:
+        case "text":
+            return _runs(s, i.text) if i.text else ""
+        case "code" | "html":
+            return f"<code>{_runs(s, i.text)}</code>" if i.text else ""
+        case "math":
+            return f"<code>$ {_runs(s, i.text)} $</code>" if i.text else ""
+        case "emphasis" | "strong" | "strike":
+            return f"<{_TAGS[i.kind]}>{_inlines(s, i.children)}</{_TAGS[i.kind]}>"
+        case "link" | "image":
+            return _link(s, i)
+        case "break":
+            return "<br>\n"
+        case "softbreak":
+            return "\n"
+        case "note":
+            return f"<sup>[{said(i.target)}]</sup>"
+    return _inlines(s, i.children)
+
+
+def _link(s: Setting, i: Inline) -> str:
+    """A link where its address is one to follow safely and no mark, itself a link, stands in it; else words and address."""
+    words = _inlines(s, i.children) or (_runs(s, i.text) if i.text else "")
+    safe = i.kind == "link" and i.target.lower().startswith(_SAFE_LINKS) and "<a " not in words
+    if safe:
+        return f'<a href="{escape(i.target)}" rel="noreferrer noopener">{words}</a>'
+    lead = "image: " if i.kind == "image" else ""
+    return f'{words} <code class="soft">({lead}{said(i.target)})</code>' if i.target else words
+
+
+def _runs(s: Setting, piece: Piece) -> str:
+    parts = []
+    for run in runs(s.where, piece):
+        body = said(run.text)
+        parts.append(f'<mark class="tint-{run.entry.kind}">{body}</mark>' if run.entry else body)
+        parts += [word_html(e, e.key, f"r-{e.key}") for e in run.ends]
+    return "".join(parts)
