@@ -6,6 +6,7 @@ from memory; directions are those of the passive sign convention, IEC 60375.
 
 from __future__ import annotations
 
+import math
 import sys
 from dataclasses import replace
 from fractions import Fraction
@@ -141,6 +142,13 @@ def test_values_from_givens() -> None:
     assert (strain.value, strain.written) == (Fraction("350.7"), "350 Ω * (1 + GF*strain)")
     assert part("R1: R Ω, a to b", R=Amount(Fraction(10))).value == 10
     assert part("R1: 2*R, a to b", R=Amount(Fraction(10), OHM)).value == 20
+    assert part("R1: π * 2 Ω, a to b").value == Fraction(math.pi) * 2
+    _, result = reading("R1: R Ω, a to gnd\nZ1: Z, a to gnd\nE1: Z / (1 Ω) * V_a, b to gnd",
+                        {"R": Amount(Fraction(10), OHM), "Z": Amount(3 + 4j, OHM)})  # fmt: skip
+    messages = [f.message for f in result.findings]
+    assert "the value has a unit already; leave out Ω" in messages[0]
+    assert "Z1 (line 3) is an impedance" in messages[1]
+    assert "is complex" in messages[2]
     assert part("V1: V_ref, a to b", V_ref=Amount(Fraction(5), VOLT)).value == 5
 
 
@@ -363,6 +371,19 @@ def test_slips_of_the_pen(line: str, column: int, under: str, says: str, suggest
         ("case hot: R0 cold", 11, "R0 cold", "expected a change such as"),
         ("reference", 1, "reference", "expected reference NODE"),
         ("reference nowhere", 11, "nowhere", "is no node of this circuit"),
+        ("case of: R0 open", 6, "of", "a word of the language"),
+        ("case hot: R0 = 3 +", 18, "+", "expected a value"),
+        ("R1: 5 Ω ±2*3 %, a to b", 10, "2*3 %", "a tolerance is written"),
+        ("R1: 5 Ω, a to b, +5 %/+3 %", 18, "+5 %/+3 %", "a tolerance is written"),
+        ("R1: 5 Ω, a to b, max", 18, "max", "a rating is written"),
+        ("X1: short circuit, a to b", 11, "circuit", "expected a comma behind short"),
+        ("U1: op-amp, plus a b, minus b, out c", 13, "plus a b", "expected a node behind plus"),
+        ("R1: 1e300 Ω / 1e-300 / 1e-300, a to b", 5, "1e300 Ω / 1e-300 / 1e-300", "does not fit"),
+        ("E1: gain * V_a, a to b", 5, "gain", "gain has no value"),
+        ("E1: 2 * V_a V, a to b", 5, "2 * V_a V", "leave out V"),
+        ("E1: 2 * V_a ±1 V, a to b", 13, "±1 V", "the tolerance of a gain is written ±5 %"),
+        ("F1: 2 * I_{R0,a}, a to b", 9, "I_{R0,a}", "R0 has two terminals; write I_R0"),
+        ("R1: " + "1 Ω + " * 400 + "1 Ω, a to b", 1, ("R1: " + "1 Ω + " * 400)[:40], "longer than 2000 characters"),
         ("Resistor of five ohms", 1, "Resistor of five ohms", "found no colon behind a name"),
     ],
 )  # fmt: skip
@@ -379,6 +400,7 @@ def test_lines_without_a_corrected_form(line: str, column: int, under: str, says
     ("line", "column", "under", "says"),
     [
         ("R1: 5 Ω ±0.1 V, a to b", 9, "±0.1 V", "the tolerance is a voltage, the value a resistance"),
+        ("R1: 5 Ω +10 %/−1 Ω, a to b", 9, "+10 %/−1 Ω", "two sides of a tolerance"),
         ("R1: 5 Ω + 3 V, a to b", 5, "5 Ω + 3 V", "cannot be added"),
         ("V1: 3 + j4 V, a to b", 5, "3 + j4 V", "cannot be added"),
     ],
@@ -394,6 +416,16 @@ def test_dimensions_that_do_not_fit(line: str, column: int, under: str, says: st
 def test_a_name_on_a_line_that_cannot_be_read_is_not_told_twice() -> None:
     _, result = reading("R1: banana, a to gnd, split\nF1: 2 * I_R1, a to gnd\nE1: V_c, a to gnd")
     assert [f.message.split(",")[0] for f in result.findings] == ["expected a tolerance"]
+
+
+def test_a_slip_and_an_unknown_name_are_told_one_after_the_other() -> None:
+    sheet, result = reading("R0: 1 Ω, a to gnd\nE1: 2 * V_zz a to b")
+    (finding,) = result.findings
+    assert (placed(sheet, finding.span), finding.suggestion) == ((2, 14, "a to b"), "E1: 2 * V_zz, a to b")
+    sheet, result = reading("R0: 1 Ω, a to gnd\nE1: 2 * V_zz, a to b")
+    assert [(f.message, placed(sheet, f.span)) for f in result.findings] == [
+        ("V_zz: this circuit has no node zz", (2, 9, "V_zz"))
+    ]
 
 
 def test_givens_and_units_that_share_a_name() -> None:
@@ -473,6 +505,19 @@ def test_a_negative_resistance_is_a_caution() -> None:
     assert kinds(result) == ["negative-resistance"] * 2
     assert placed(sheet, result.findings[0].span) == (1, 5, "−5 Ω")
     assert [e.value for e in result.circuit.elements] == [-5, -500, -5]
+
+
+def test_cases_are_called_apart() -> None:
+    _, result = reading("R1: 1 Ω, a to gnd\ncase hot: R1 = 3.3 Ω\ncase hot: R1 open\ncase odd: R1 beta 80")
+    assert [(f.kind, f.message) for f in result.findings] == [("circuit-name", "two cases are called hot")]
+    assert [c.name for c in result.cases] == ["hot", "odd"]
+
+
+def test_steering_by_parts_of_several_terminals() -> None:
+    transistor = "Q1: npn, base a, collector b, emitter gnd, V_BE 0.65 V, beta 150"
+    _, result = reading(f"{transistor}\nF1: 2 * I_{{Q1,c}}, a to gnd\nE1: 2 * V_Q1, a to gnd")
+    assert result.circuit.elements[1].control == Control(part="Q1")
+    assert "Q1 has several terminals; write a voltage between two nodes" in result.findings[-1].message
 
 
 def test_circuit_names() -> None:

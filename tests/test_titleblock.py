@@ -91,6 +91,7 @@ def test_no_fields(text: str) -> None:
         ("just words", (2, 1), "just words", "made of fields"),
         ("a: b: c", (2, 5), ":", "no YAML"),
         ("ok: x\nx: [1", (3, 5), "1", "no YAML"),
+        ("a: b\n--- c", (3, 1), "-", "one document"),
         ("? [a]\n: b", (2, 3), "[", "a field's name is plain text"),
         ("a: x\x07", (2, 5), "\x07", "U+0007"),
         ("a: " + "[" * 50 + "]" * 50, (2, 24), "[", "deeper than 20"),

@@ -143,7 +143,16 @@ def _trouble(fault: Doubt | DimensionFault, line: Piece, body: Piece, scope: Sco
     mend = mended(line, lambda text: _reads(text, scope))
     if mend:
         return _finding("circuit-line", mend.reason, mend.span, mend.line)
-    return _finding("circuit-line", fault.reason, fault.span or body.span())
+    return _finding("circuit-line", fault.reason, _within(fault.span, body))
+
+
+def _within(span: Span | None, body: Piece) -> Span:
+    """The place of a fault; what is missing behind the end of a statement is shown at its last character."""
+    whole = body.span()
+    if span is None:
+        return whole
+    end = min(span.end, whole.end)
+    return Span(min(span.start, end - 1), end)
 
 
 def _reads(line: Piece, scope: Scope | None) -> bool:
@@ -206,7 +215,7 @@ def _cases(statements: Sequence[_Statement], scope: Scope, found: list[Finding],
         try:
             case = read_case(s.body, scope.parts, complete)
         except (Doubt, DimensionFault) as fault:
-            found.append(_finding("circuit-line", str(fault), fault.span or s.body.span()))
+            found.append(_finding("circuit-line", str(fault), _within(fault.span, s.body)))
             continue
         if case.name in cases:
             found.append(_finding("circuit-name", f"two cases are called {case.name}", case.span))

@@ -141,7 +141,8 @@ def _shape(what: Piece) -> Shape:
     if shape.kind == "transformer" and not _RATIO.fullmatch(what.text):
         raise Doubt(f"expected transformer 10:1, found {what.text}", what.span())
     if shape.kind not in (None, "transformer") and m and m.end() < len(what.text):
-        raise Doubt(f"expected a comma behind {m[1]}, found {what.text[m.end() :].strip()}", what.span(m.end()))
+        rest = what.part(m.end(), len(what.text)).strip()
+        raise Doubt(f"expected a comma behind {m[1]}, found {rest.text}", rest.span())
     return shape
 
 
