@@ -35,13 +35,12 @@ def amount(key: Key, ledger: Ledger, span: Span) -> Amount:
     if key.letter == "P":
         v, i = (amount(replace(key, letter=x), ledger, span) for x in ("V", "I"))
         return Amount(trimmed(v.value * i.value), WATT)
-    quantity = linear(key, ledger, span)
+    quantity = linear(key, circuit_of(key, ledger, span), span)
     return Amount(_summed(quantity, key, ledger, span), quantity.dimension)
 
 
-def linear(key: Key, ledger: Ledger, span: Span) -> Linear:
-    """How a voltage, current, short-circuit current or seen resistance is read from its circuit's states."""
-    circuit = circuit_of(key, ledger, span)
+def linear(key: Key, circuit: Circuit, span: Span) -> Linear:
+    """How a voltage, current, short-circuit current or seen resistance is read from the states of its changed circuit."""
     match key.letter:
         case "V":
             plus, minus = ends(circuit, key, span)
@@ -65,6 +64,11 @@ def circuit_of(key: Key, ledger: Ledger, span: Span) -> Circuit:
     if circuit.problems:
         first = circuit.problems[0]
         raise Doubt(f"its circuit is not solved: {first.message}", span)
+    return with_changes(circuit, key, span)
+
+
+def with_changes(circuit: Circuit, key: Key, span: Span) -> Circuit:
+    """A circuit with the changes that a quantity's qualifiers make."""
     for part, what, value in key.changes:
         circuit = changed(circuit, Change(part, what, span), value)
     return circuit

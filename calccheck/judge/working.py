@@ -24,7 +24,7 @@ def work_out(node: Node, span: Span, ledger: Ledger) -> WorkedQuantity:
     if m.key.letter == "P":
         name = m.key.subscripts[0]
         raise Doubt(f"a power is no sum of parts by source; work out V_{name} and I_{name}", span)
-    q = quantities.linear(m.key, ledger, span)
+    q = quantities.linear(m.key, quantities.circuit_of(m.key, ledger, span), span)
     solution = quantities.solved(q.circuit, ledger, span)
     sources = [s for s in solution.parts if not m.key.due_to or s in m.key.due_to]
     quantities.check_sources(m.key.due_to, q.circuit, span)

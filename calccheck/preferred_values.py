@@ -1,0 +1,44 @@
+"""Preferred values of resistors and capacitors, IEC 60063:2015: the series and a value's neighbours in them."""
+
+from __future__ import annotations
+
+from fractions import Fraction
+
+_E24 = (10, 11, 12, 13, 15, 16, 18, 20, 22, 24, 27, 30, 33, 36, 39, 43, 47, 51, 56, 62, 68, 75, 82, 91)
+
+
+def _three_figures(count: int) -> tuple[int, ...]:
+    """E48, E96 and E192: powers of the root of ten to three figures; 9.20 for 9.19 is the standard's own exception."""
+    values = [round(100 * 10 ** (k / count)) for k in range(count)]
+    return tuple(920 if v == 919 else v for v in values)
+
+
+SERIES: dict[str, tuple[int, ...]] = {
+    "E3": _E24[::8], "E6": _E24[::4], "E12": _E24[::2], "E24": _E24,
+    "E48": _three_figures(48), "E96": _three_figures(96), "E192": _three_figures(192),
+}  # fmt: skip
+_USUAL = ("E12", "E24", "E96", "E192")
+
+
+def neighbours(value: Fraction) -> tuple[Fraction, ...]:
+    """The next lower and next higher value in the coarsest of E12, E24, E96, E192 that holds this one; else nothing."""
+    for name in _USUAL:
+        series = SERIES[name]
+        decade = _decade(value, len(str(series[0])))
+        digits = value / decade
+        if digits.denominator == 1 and int(digits) in series:
+            at = series.index(int(digits))
+            low = series[at - 1] if at else Fraction(series[-1], 10)
+            high = series[at + 1] if at + 1 < len(series) else series[0] * 10
+            return low * decade, high * decade
+    return ()
+
+
+def _decade(value: Fraction, figures: int) -> Fraction:
+    """The power of ten in which a value above zero has that many figures before the point."""
+    power = Fraction(1)
+    while value / power >= 10**figures:
+        power *= 10
+    while value / power < 10 ** (figures - 1):
+        power /= 10
+    return power
