@@ -98,7 +98,7 @@ def settings_for(source: Source) -> Settings:
     """The repository's settings, found from the sheet's folder upward. Raises ``Unusable``."""
     from calccheck.read.settings import SettingFault, read_repo_settings
 
-    name, table = settings_table(source.path.parent)
+    name, table = settings_table(source.path.parent.resolve())
     try:
         return read_repo_settings(table)
     except SettingFault as fault:

@@ -121,12 +121,11 @@ def decoded(data: bytes, name: str) -> str:
 
 @lru_cache(maxsize=256)
 def settings_table(folder: Path) -> tuple[str, dict[str, Any]]:
-    """``[tool.calccheck]`` of the nearest pyproject.toml from the folder upward, with that file's name.
+    """``[tool.calccheck]`` of the nearest pyproject.toml from an absolute folder upward, with that file's name.
 
     Empty where there is none. Raises ``Unusable``.
     """
-    absolute = Path(os.path.realpath(folder))
-    path = next((p for p in (d / "pyproject.toml" for d in (absolute, *absolute.parents)) if p.is_file()), None)
+    path = next((p for p in (d / "pyproject.toml" for d in (folder, *folder.parents)) if p.is_file()), None)
     text = read_text(path) if path is not None else ""
     if "calccheck" not in text:
         return str(path), {}

@@ -47,7 +47,8 @@ def _entry_lines(row: Entry, report: Report, verbose: bool, colour: bool) -> Ite
     where = _where(report, row.span)
     if row.kind not in ("agrees", "rounded", "given") or verbose:
         failing = _failing(row, report)
-        first = _where(report, failing[0].span) if failing else where
+        line = report.reading.sheet.line_column(failing[0].span.start)[0] if failing else row.line
+        first = where if line == row.line else _where(report, failing[0].span)
         yield f"{first}: {_word(row.kind, colour)}: {one_line(row.message or row.text)}"
         yield from _details(row)
         for step in failing[1:]:
