@@ -7,7 +7,7 @@ from collections.abc import Callable
 from dataclasses import dataclass
 from fractions import Fraction
 
-from calccheck.arithmetic import Amount, Doubt, evaluate, real, Value as Value_
+from calccheck.arithmetic import Amount, Doubt, evaluate
 from calccheck.component_code import component_code
 from calccheck.formula import Group, Node, Number, Reference, references, walk
 from calccheck.model import Control, Kind
