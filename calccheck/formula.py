@@ -8,6 +8,7 @@ from __future__ import annotations
 from collections.abc import Iterator
 from dataclasses import dataclass, field
 from decimal import Decimal
+from fractions import Fraction
 from typing import Literal
 
 from calccheck.source import Span
@@ -44,12 +45,15 @@ class Change:
 
 @dataclass(frozen=True, slots=True)
 class Qualifiers:
-    """What stands behind a quantity: ``due to Vb and Ia``, ``without RL``, ``in case hot``, ``at 50 Hz``, ``of bridge``."""
+    """What stands behind a quantity: ``due to Vb and Ia``, ``without RL``, ``in case hot``, ``at 50 Hz``, ``of bridge``.
+
+    ``frequency``: in hertz, 0 for ``at dc``.
+    """
 
     due_to: tuple[str, ...] = ()
     changes: tuple[Change, ...] = ()
     case: str = ""
-    frequency: str = ""
+    frequency: Fraction | None = None
     circuit: str = ""
 
 

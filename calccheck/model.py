@@ -8,12 +8,12 @@ from datetime import date
 from fractions import Fraction
 from typing import Literal
 
-from calccheck.arithmetic import Amount, Real
+from calccheck.arithmetic import Amount, Value
 from calccheck.document import Block
 from calccheck.formula import Node
 from calccheck.rules import Severity
 from calccheck.source import Sheet, Span
-from calccheck.units import Dimension
+from calccheck.units import UNITS, Dimension
 
 # --- circuits -------------------------------------------------------------------------------------------------------
 
@@ -21,6 +21,9 @@ Kind = Literal[
     "resistor", "voltage source", "current source", "controlled voltage source", "controlled current source",
     "short", "open", "capacitor", "inductor", "impedance", "op-amp", "transformer", "transistor", "diode",
 ]  # fmt: skip
+
+
+UNSTATED = Fraction(-1)
 
 
 @dataclass(frozen=True, slots=True)
@@ -61,7 +64,9 @@ class Element:
     ``value``: ohms of a resistor (whether written as a resistance or a conductance), volts or amperes of a source, the gain
     of a controlled source in SI, farads, henries; ``None`` for short, open, and what this version does not solve.
     ``stated``: the value as written, with the dimension it was written in, for claims that restate it.
-    ``terminals``: of a part with more than two, word and node.
+    ``terminals``: of a part with more than two, word and node. ``phasor``: of an AC source in volts or amperes, of an impedance
+    in ohms; ``value`` is then ``None``. ``frequency``: of an AC source in hertz, ``UNSTATED`` where the sheet needs and names
+    none, ``None`` for DC.
     """
 
     name: str
@@ -76,6 +81,8 @@ class Element:
     tolerance: Tolerance | None = None
     ratings: tuple[Rating, ...] = ()
     terminals: tuple[tuple[str, str], ...] = ()
+    phasor: complex | None = None
+    frequency: Fraction | None = None
 
 
 @dataclass(frozen=True, slots=True)
@@ -112,10 +119,10 @@ class Circuit:
 
 @dataclass(frozen=True, slots=True)
 class State:
-    """Potentials by node (reference 0) in volts and currents by part in amperes, from ``plus`` to ``minus``."""
+    """Potentials by node (reference 0) in volts and currents by part in amperes, from ``plus`` to ``minus``; phasors at AC."""
 
-    potentials: Mapping[str, Real]
-    currents: Mapping[str, Real]
+    potentials: Mapping[str, Value]
+    currents: Mapping[str, Value]
 
 
 @dataclass(frozen=True, slots=True)
@@ -286,6 +293,15 @@ class Settings:
     preferred: str = ""
     frequency: str = ""
     on: date | None = None
+
+    @property
+    def hertz(self) -> Fraction:
+        """The frequency of unmarked AC parts in hertz, 0 where none is given."""
+        number, _, unit = self.frequency.partition(" ")
+        try:
+            return Fraction(number) * UNITS[unit].factor
+        except (ValueError, KeyError):
+            return Fraction(0)
 
 
 @dataclass(frozen=True, slots=True)

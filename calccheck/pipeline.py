@@ -2,12 +2,13 @@
 
 from __future__ import annotations
 
-from collections.abc import Callable, Sequence
+from collections.abc import Sequence
 from datetime import date
+from fractions import Fraction
 
 from calccheck.arithmetic import Doubt
 from calccheck.edits import stray, unmark
-from calccheck.judge.scope import Ledger
+from calccheck.judge.scope import Ledger, Solve
 from calccheck.judge.sheet import judge_sheet
 from calccheck.judge.working import work_out as worked_out
 from calccheck.model import Circuit, CircuitFigures, Finding, Reading, Report, Settings, Solution, WorkedQuantity
@@ -16,8 +17,6 @@ from calccheck.read.sheet import read_sheet
 from calccheck.rules import RULES
 from calccheck.solve import Unsolvable, solve
 from calccheck.source import Sheet, whole
-
-Solve = Callable[[Circuit], Solution]
 
 
 def check(sheet: Sheet, settings: Settings | None = None) -> Report:
@@ -37,16 +36,17 @@ def _stray_marks(reading: Reading) -> list[Finding]:
 
 
 def solver() -> Solve:
-    """A solver that solves each circuit once and raises ``Doubt`` where one cannot be solved."""
-    known: dict[Circuit, Solution | Doubt] = {}
+    """A solver that solves each circuit once at each frequency and raises ``Doubt`` where one cannot be solved."""
+    known: dict[tuple[Circuit, Fraction], Solution | Doubt] = {}
 
-    def solve_once(circuit: Circuit) -> Solution:
-        if circuit not in known:
+    def solve_once(circuit: Circuit, frequency: Fraction = Fraction(0)) -> Solution:
+        if (circuit, frequency) not in known:
             try:
-                known[circuit] = solve(circuit)
+                known[circuit, frequency] = solve(circuit, *([frequency] if frequency else []))
             except Unsolvable as u:
-                known[circuit] = Doubt(f"its circuit cannot be solved: {u.findings[0].message}", u.findings[0].span)
-        found = known[circuit]
+                first = u.findings[0]
+                known[circuit, frequency] = Doubt(f"its circuit cannot be solved: {first.message}", first.span)
+        found = known[circuit, frequency]
         if isinstance(found, Doubt):
             raise Doubt(found.reason, found.span)
         return found

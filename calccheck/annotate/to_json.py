@@ -117,7 +117,7 @@ def _claimed(judged: Judged) -> Record | None:
     if judged.claimed is not None or limit is None:
         return _amount(judged.claimed)
     ends = {"low": judged.low, "high": judged.high}
-    return _record({k: None if a is None else _number(a.value) for k, a in ends.items()}, limit.dimension)
+    return _record({k: None if a is None else _value(a.value) for k, a in ends.items()}, limit.dimension)
 
 
 def _amount(amount: Amount | None) -> Record | None:

@@ -13,6 +13,7 @@ from calccheck.units import AMPERE, OHM, SIEMENS, VOLT, words
 
 TEST = "test current"  # names with a blank cannot meet a part's
 LAID_SHORT = "short laid"
+DC = Fraction(0)
 
 
 def changed(circuit: Circuit, change: Change, value: Amount | None) -> Circuit:
@@ -61,7 +62,7 @@ def _zeroed(e: Element) -> Element:
     return replace(e, kind="open", value=None) if e.kind == "current source" else e
 
 
-def with_test_current(circuit: Circuit, a: str, b: str) -> Circuit:
+def with_test_current(circuit: Circuit, a: str, b: str, frequency: Fraction = DC) -> Circuit:
     """The circuit without its independent sources and with 1 A driven into ``a`` and out of ``b``, which is the reference.
 
     What hangs together with neither ``b`` nor a controlled source is left out: zeroed current sources may have cut it off.

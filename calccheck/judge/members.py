@@ -2,15 +2,17 @@
 
 from __future__ import annotations
 
+import cmath
 from collections.abc import Sequence
 from dataclasses import dataclass, replace
+from fractions import Fraction
 from typing import Literal
 
-from calccheck.arithmetic import Amount, DimensionFault, Doubt, evaluate
+from calccheck.arithmetic import Amount, DimensionFault, Doubt, evaluate, size
 from calccheck.formula import Node, Range, Reference, numbers, references
 from calccheck.judge import hints, quantities
 from calccheck.judge.phasors import PrintedPhasor, printed_phasor
-from calccheck.judge.rounding import Printed, printed
+from calccheck.judge.rounding import SLACK, Printed, printed
 from calccheck.judge.scope import Key, Ledger, Meaning, meaning
 from calccheck.loose_units import with_loose_units
 from calccheck.model import Basis, Member, Relation
@@ -71,19 +73,19 @@ class Names:
         return self._amounts[ref]
 
     def _work(self, ref: Reference) -> Amount:
-        if ref.prefix:
+        if ref.prefix in ("min", "max", "worst", "rss", "sigma", "yield"):
             raise Doubt(f"{ref.prefix} before a quantity is not read in this version", ref.span)
         if ref.qualifiers.case:
             raise Doubt("cases are not read in this version", ref.span)
-        if ref.qualifiers.frequency not in ("", "dc"):
-            raise Doubt("frequencies are not read in this version", ref.span)
         m = self.meaning(ref)
         if m is None:
             sentence, hint = hints.unknown(ref, self.nearest, self.ledger)
             raise Doubt(sentence, ref.span, hint)
         if m.sort == "quantity":
             assert m.key is not None
-            return quantities.amount(m.key, self.ledger, ref.span)
+            return _component(ref, m.key, self.ledger)
+        if ref.prefix:
+            raise Doubt(f"{ref.prefix} stands before a voltage, a current or an impedance", ref.span)
         q = ref.qualifiers
         if q.due_to or q.changes:
             raise Doubt(
@@ -97,6 +99,25 @@ class Names:
         if m.element.stated is None:
             raise Doubt(f"{ref.word} is {m.element.kind} and has no value of its own", ref.span)
         return m.element.stated
+
+
+def _component(ref: Reference, key: Key, ledger: Ledger) -> Amount:
+    """A quantity, or its magnitude, angle, real or imaginary part, or its rms value over all frequencies."""
+    if ref.prefix == "rms":
+        return quantities.rms(key, ledger, ref.span)
+    a = quantities.amount(key, ledger, ref.span)
+    match ref.prefix:
+        case "mag":
+            return Amount(size(a.value), a.dimension)
+        case "re":
+            return Amount(a.value.real, a.dimension)
+        case "im":
+            return Amount(a.value.imag if isinstance(a.value, complex) else Fraction(0), a.dimension)
+        case "arg":
+            if size(a.value) <= SLACK * quantities.scale(key, ledger, a.dimension):
+                raise Doubt(f"{ref.text}: its magnitude is zero, which has no angle", ref.span)
+            return Amount(cmath.phase(complex(a.value)))
+    return a
 
 
 def work(member: Member, names: Names) -> Worked:

@@ -6,13 +6,14 @@ from the first node through the part, its power is what it takes.
 
 from __future__ import annotations
 
+import math
 from collections.abc import Callable, Iterable
 from dataclasses import dataclass, replace
 from fractions import Fraction
 
-from calccheck.arithmetic import Amount, Doubt, Real, trimmed
+from calccheck.arithmetic import Amount, Doubt, Real, Value, plainest, size, trimmed
 from calccheck.formula import Change
-from calccheck.judge.changes import LAID_SHORT, changed, with_short, with_test_current
+from calccheck.judge.changes import DC, LAID_SHORT, changed, with_short, with_test_current
 from calccheck.judge.scope import Key, Ledger
 from calccheck.model import Circuit, Element, Solution, State
 from calccheck.source import Span
@@ -26,21 +27,97 @@ class Linear:
     """A quantity that is linear in the sources: the circuit to solve, how to read a state of it, and what comes out."""
 
     circuit: Circuit
-    read: Callable[[State], Real]
+    read: Callable[[State], Value]
     dimension: Dimension
 
 
 def amount(key: Key, ledger: Ledger, span: Span) -> Amount:
     """The value of a quantity. Raises ``Doubt`` where its circuit cannot be solved or it has no value."""
-    if key.letter == "P":
-        v, i = (amount(replace(key, letter=x), ledger, span) for x in ("V", "I"))
-        return Amount(trimmed(v.value * i.value), WATT)
-    quantity = linear(key, circuit_of(key, ledger, span), span)
-    return Amount(_summed(quantity, key, ledger, span), quantity.dimension)
+    circuit = circuit_of(key, ledger, span)
+    if key.letter in ("P", "S", "Q"):
+        return _power(key, circuit, ledger, span)
+    frequency = frequency_of(key, circuit, ledger, span)
+    quantity = linear(key, circuit, span, frequency)
+    value = _summed(quantity, key, frequency, ledger, span)
+    several = len(frequencies(circuit)) > 1 and key.letter in ("V", "I", "Isc")
+    return Amount(value, quantity.dimension, frequency=frequency if several else None)
 
 
-def linear(key: Key, circuit: Circuit, span: Span) -> Linear:
-    """How a voltage, current, short-circuit current or seen resistance is read from the states of its changed circuit."""
+def rms(key: Key, ledger: Ledger, span: Span) -> Amount:
+    """The rms value over all frequencies that act: the root of the sum of the squares, DC among them."""
+    if key.letter not in ("V", "I", "Isc"):
+        raise Doubt("rms stands before a voltage or a current", span)
+    circuit = circuit_of(key, ledger, span)
+    total, dimension = 0.0, VOLT
+    for f in _acting(key, circuit, span):
+        quantity = linear(key, circuit, span, f)
+        total += _half(f, ledger) * float(size(_summed(quantity, key, f, ledger, span))) ** 2
+        dimension = quantity.dimension
+    return Amount(math.sqrt(total), dimension)
+
+
+def _half(frequency: Fraction, ledger: Ledger) -> float:
+    """What makes a mean square of a phasor's square: one for rms phasors and for DC, a half for peak ones."""
+    return 0.5 if ledger.settings.phasors == "peak" and frequency != 0 else 1.0
+
+
+def _power(key: Key, circuit: Circuit, ledger: Ledger, span: Span) -> Amount:
+    """Average power P over all frequencies that act; complex power S and reactive power Q at one frequency (IEC 60375)."""
+    acting = _acting(key, circuit, span)
+    if key.letter != "P" and len(acting) > 1:
+        raise Doubt(f"{key.letter} belongs to one frequency: say at which", span)
+    if len(key.subscripts) != 1:
+        raise Doubt("a power is a part's", span)
+    total: Value = Fraction(0)
+    for f in acting:
+        voltage, current = (linear(replace(key, letter=x), circuit, span, f) for x in ("V", "I"))
+        v, i = (_summed(q, key, f, ledger, span) for q in (voltage, current))
+        total += v * i if f == 0 else _half(f, ledger) * complex(v) * complex(i).conjugate()
+    if key.letter == "S":
+        return Amount(trimmed(total), WATT)
+    if key.letter == "Q":
+        return Amount(total.imag, WATT)
+    return Amount(trimmed(total.real), WATT)
+
+
+def frequencies(circuit: Circuit) -> tuple[Fraction, ...]:
+    """The frequencies of a circuit's independent sources, 0 for DC, rising; DC alone where there is no source."""
+    return tuple(sorted({s.frequency or Fraction(0) for s in circuit.sources()})) or (Fraction(0),)
+
+
+def _acting(key: Key, circuit: Circuit, span: Span) -> tuple[Fraction, ...]:
+    """The frequencies of the sources that act on a quantity: all of them, or as its qualifiers say."""
+    check_sources(key.due_to, circuit, span)
+    if key.frequency is not None:
+        return (key.frequency,)
+    named = [s for s in circuit.sources() if not key.due_to or s.name in key.due_to]
+    return tuple(sorted({s.frequency or Fraction(0) for s in named})) or (Fraction(0),)
+
+
+def frequency_of(key: Key, circuit: Circuit, ledger: Ledger, span: Span) -> Fraction:
+    """The one frequency of a voltage, current or impedance. Raises ``Doubt`` where several act."""
+    if key.letter == "R" and key.frequency is None:
+        return Fraction(0)
+    present = frequencies(circuit)
+    if key.letter == "Z":
+        alternating = [f for f in present if f != 0] or (
+            [ledger.settings.hertz] if ledger.settings.hertz else [Fraction(0)]
+        )
+        if key.frequency is None and len(alternating) > 1:
+            raise Doubt("an impedance belongs to one frequency: say at which", span)
+        return alternating[0] if key.frequency is None else key.frequency
+    acting = _acting(key, circuit, span)
+    if len(acting) > 1:
+        shown = ", ".join("dc" if f == 0 else f"{float(f):g} Hz" for f in acting)
+        raise Doubt(f"sources of several frequencies act here ({shown}): say at which, or rms", span)
+    if key.frequency is not None and key.frequency not in present:
+        shown = ", ".join("dc" if f == 0 else f"{float(f):g} Hz" for f in present)
+        raise Doubt(f"no source of this circuit has {float(key.frequency):g} Hz; its sources have: {shown}", span)
+    return acting[0]
+
+
+def linear(key: Key, circuit: Circuit, span: Span, frequency: Fraction = DC) -> Linear:
+    """How a voltage, current, short-circuit current, seen resistance or impedance is read from its circuit's states."""
     match key.letter:
         case "V":
             plus, minus = ends(circuit, key, span)
@@ -50,12 +127,13 @@ def linear(key: Key, circuit: Circuit, span: Span) -> Linear:
             return Linear(circuit, lambda s: s.currents[name], AMPERE)
         case "Isc":
             return Linear(with_short(circuit, *key.subscripts), lambda s: s.currents[LAID_SHORT], AMPERE)
-        case "R":
+        case "R" | "Z":
             a, b = key.subscripts
             if key.due_to:
                 raise Doubt("a resistance seen between nodes is not due to sources: they are zeroed in it", span)
-            return Linear(with_test_current(circuit, a, b), lambda s: s.potentials[a] - s.potentials[b], OHM)
-    raise Doubt(f"{key.letter} is a quantity of alternating current, which this version does not read", span)
+            tested = with_test_current(circuit, a, b, frequency)
+            return Linear(tested, lambda s: s.potentials[a] - s.potentials[b], OHM)
+    raise Doubt(f"{key.letter} is no quantity of a circuit", span)
 
 
 def circuit_of(key: Key, ledger: Ledger, span: Span) -> Circuit:
@@ -93,19 +171,19 @@ def check_sources(names: Iterable[str], circuit: Circuit, span: Span) -> None:
         raise Doubt(f"{name} is no independent source; those are: {known}", span)
 
 
-def _summed(q: Linear, key: Key, ledger: Ledger, span: Span) -> Real:
+def _summed(q: Linear, key: Key, frequency: Fraction, ledger: Ledger, span: Span) -> Value:
     """The sum over the sources that act, or the nodal value of the whole where no route is exact."""
-    check_sources(key.due_to, q.circuit, span)
-    solution = solved(q.circuit, ledger, span)
+    solution = solved(q.circuit, ledger, span, frequency)
     if not key.due_to and not solution.exact:
-        return q.read(solution.nodal)
+        return plainest(q.read(solution.nodal))
+    check_sources(key.due_to, q.circuit, span)
     acting = [s for name, s in solution.parts.items() if not key.due_to or name in key.due_to]
-    return sum((q.read(s) for s in acting), start=Fraction(0))
+    return plainest(sum((q.read(s) for s in acting), start=Fraction(0)))
 
 
-def solved(circuit: Circuit, ledger: Ledger, span: Span) -> Solution:
+def solved(circuit: Circuit, ledger: Ledger, span: Span, frequency: Fraction = DC) -> Solution:
     """The circuit's solution. Raises ``Doubt`` where it has none or the two routes do not agree on it."""
-    solution = ledger.solve(circuit)
+    solution = ledger.solve(circuit, frequency)
     if not solution.exact and not solution.gap <= LARGEST_GAP:
         raise Doubt(f"the two routes differ by {solution.gap:.1e}: the circuit is too ill-conditioned to decide", span)
     return solution
@@ -143,10 +221,12 @@ def _simple(element: Element, span: Span) -> None:
 
 def scale(key: Key | None, ledger: Ledger, dimension: Dimension) -> Real:
     """The largest voltage, current or power of a quantity's circuit, against which a bare zero is held."""
-    if key is None:
+    if key is None or key.circuit < 0:
         return 0
     try:
-        solution = ledger.solve(circuit_of(key, ledger, Span(0, 0)))
+        circuit = circuit_of(key, ledger, Span(0, 0))
+        found = [ledger.solve(circuit, f) for f in _acting(key, circuit, Span(0, 0))]
     except Doubt:
         return 0
-    return {VOLT: solution.volts, AMPERE: solution.amperes, WATT: solution.watts}.get(dimension, 0)
+    largest = {VOLT: "volts", AMPERE: "amperes", WATT: "watts"}.get(dimension)
+    return max((getattr(s, largest) for s in found), default=0) if largest else 0

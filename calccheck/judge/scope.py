@@ -3,10 +3,9 @@
 from __future__ import annotations
 
 import math
-from collections.abc import Callable
 from dataclasses import dataclass, field
 from fractions import Fraction
-from typing import Literal
+from typing import Literal, Protocol
 
 from calccheck.arithmetic import Amount, Doubt, Real, evaluate
 from calccheck.component_code import component_code
@@ -39,13 +38,17 @@ class Defined:
 
 @dataclass(frozen=True, slots=True)
 class Key:
-    """What a quantity is, apart from how it is written: the same key, the same value."""
+    """What a quantity is, apart from how it is written: the same key, the same value.
+
+    ``frequency``: as told by ``at 50 Hz``, in hertz; ``None`` where the sources that act decide.
+    """
 
     circuit: int
     letter: str
     subscripts: tuple[str, ...]
     due_to: frozenset[str] = frozenset()
     changes: tuple[tuple[str, ChangeKind, Amount | None], ...] = ()
+    frequency: Fraction | None = None
 
 
 @dataclass(frozen=True, slots=True)
@@ -64,12 +67,19 @@ class Result:
         return self.verdict in ("agrees", "rounded", "accepted")
 
 
+class Solve(Protocol):
+    """Solves a circuit at a frequency in hertz (0: DC). Raises ``Doubt`` where it cannot be solved."""
+
+    def __call__(self, circuit: Circuit, frequency: Fraction = Fraction(0)) -> Solution:
+        """The solution."""
+
+
 @dataclass(slots=True)
 class Ledger:
     """The sheet's circuits, and what its claims have established up to the present one."""
 
     circuits: tuple[Circuit, ...]
-    solve: Callable[[Circuit], Solution]
+    solve: Solve
     settings: Settings
     names: dict[str, Defined] = field(default_factory=dict)
     results: list[Result] = field(default_factory=list)
@@ -89,7 +99,7 @@ class Meaning:
     constant: Amount | None = None
 
 
-_CONSTANTS = {"π": Amount(Fraction(math.pi)), "e": Amount(Fraction(math.e))}
+_CONSTANTS = {"j": Amount(1j), "π": Amount(Fraction(math.pi)), "e": Amount(Fraction(math.e))}
 
 
 def circuit_index(ref: Reference, nearest: int, ledger: Ledger) -> int:
@@ -115,8 +125,6 @@ def meaning(ref: Reference, nearest: int, ledger: Ledger) -> Meaning | None:
         return Meaning("name", defined=ledger.names[ref.word])
     if ref.word in _CONSTANTS:
         return Meaning("constant", constant=_CONSTANTS[ref.word])
-    if ref.word == "j":
-        raise Doubt("complex values are not read in this version", ref.span)
     index = circuit_index(ref, nearest, ledger)
     if index < 0:
         return None
@@ -148,7 +156,7 @@ def quantity_key(ref: Reference, index: int, circuit: Circuit, ledger: Ledger) -
         return None
     q = ref.qualifiers
     changes = tuple((c.part, c.what, _replacement(c, ledger, circuit)) for c in q.changes)
-    return Key(index, ref.letter, subs, frozenset(q.due_to), changes)
+    return Key(index, ref.letter, subs, frozenset(q.due_to), changes, q.frequency)
 
 
 def _replacement(change: Change, ledger: Ledger, circuit: Circuit) -> Amount | None:

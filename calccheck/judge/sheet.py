@@ -2,21 +2,18 @@
 
 from __future__ import annotations
 
-from collections.abc import Callable
 from dataclasses import replace
 from datetime import date
 from fractions import Fraction
 
 from calccheck.judge.chain import judge_claim
 from calccheck.judge.rounding import fit, printed
-from calccheck.judge.scope import Ledger
-from calccheck.model import Circuit, Finding, Judged, Reading, Solution, Waiver
+from calccheck.judge.scope import Ledger, Solve
+from calccheck.model import Finding, Judged, Reading, Waiver
 from calccheck.rules import RULES
 
 
-def judge_sheet(
-    reading: Reading, solve: Callable[[Circuit], Solution], on: date
-) -> tuple[tuple[Judged, ...], tuple[Finding, ...]]:
+def judge_sheet(reading: Reading, solve: Solve, on: date) -> tuple[tuple[Judged, ...], tuple[Finding, ...]]:
     """The verdicts of a sheet's claims and the findings made on the way.
 
     ``solve`` gives the solution of a circuit or raises ``Doubt``. ``on``: the day by which waivers are judged.

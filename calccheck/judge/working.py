@@ -21,17 +21,19 @@ def work_out(node: Node, span: Span, ledger: Ledger) -> WorkedQuantity:
         raise Doubt(hints.unknown(node, -1, ledger)[0], span)
     if m.sort != "quantity" or m.key is None:
         raise Doubt(f"{node.text} is no quantity of a circuit", span)
-    if m.key.letter == "P":
+    if m.key.letter in ("P", "S", "Q"):
         name = m.key.subscripts[0]
         raise Doubt(f"a power is no sum of parts by source; work out V_{name} and I_{name}", span)
-    q = quantities.linear(m.key, quantities.circuit_of(m.key, ledger, span), span)
-    solution = quantities.solved(q.circuit, ledger, span)
+    circuit = quantities.circuit_of(m.key, ledger, span)
+    frequency = quantities.frequency_of(m.key, circuit, ledger, span)
+    q = quantities.linear(m.key, circuit, span, frequency)
+    solution = quantities.solved(q.circuit, ledger, span, frequency)
     sources = [s for s in solution.parts if not m.key.due_to or s in m.key.due_to]
     quantities.check_sources(m.key.due_to, q.circuit, span)
-    rows = tuple((_label(s), Amount(q.read(solution.parts[s]), q.dimension)) for s in sources)
+    rows = tuple((_label(s), Amount(plainest(q.read(solution.parts[s])), q.dimension)) for s in sources)
     total = quantities.amount(m.key, ledger, span) if solution.exact else _sum(rows, q.dimension)
     whole = q.read(solution.nodal) if len(sources) == len(solution.parts) else None
-    nodal = Amount(whole, q.dimension) if whole is not None else None
+    nodal = Amount(plainest(whole), q.dimension) if whole is not None else None
     return WorkedQuantity(node.text, rows, total, nodal, solution.gap)
 
 

@@ -8,14 +8,28 @@ from __future__ import annotations
 import re
 from dataclasses import replace
 from decimal import Decimal
+from fractions import Fraction
 from typing import NoReturn, cast
 
 from calccheck.arithmetic import Doubt
-from calccheck.formula import Binary, Call, Change, Group, Node, Number, Operator, Prefix, Qualifiers, Range, Reference, Unary
+from calccheck.formula import (
+    Binary,
+    Call,
+    Change,
+    Group,
+    Node,
+    Number,
+    Operator,
+    Prefix,
+    Qualifiers,
+    Range,
+    Reference,
+    Unary,
+)
 from calccheck.model import Member, Relation
 from calccheck.read.tokens import RELATIONS, Token, superscript, tokens
 from calccheck.source import Piece, Span
-from calccheck.units import NONE, PLAIN, UNITS, Unit, power, times
+from calccheck.units import HERTZ, NONE, PLAIN, UNITS, Unit, power, times
 
 FUNCTIONS = {
     "sqrt", "exp", "ln", "log10", "sin", "cos", "tan", "asin", "acos", "atan", "abs", "min", "max", "dB",
@@ -153,12 +167,14 @@ class Parser:
             self.take()
             exponent = Number(Decimal(superscript(t.text)), self.piece.span(t.start, t.end))
             return Binary("^", left, exponent, self.span(start))
-        if t.kind in ("number", "word", "braced") or self.is_operator("("):
+        if t.kind in ("number", "imaginary", "word", "braced") or self.is_operator("("):
             return self.juxtaposed(left, start, above)
         binding = _BINDING.get(t.text, 0) if t.kind == "operator" else 0
         if binding <= above:
             return None
         self.take()
+        if t.text == "∠":
+            return self.phasor(left, start)
         right = self.expression(binding - 1 if t.text == "^" else binding)
         if t.text == "÷" and isinstance(right, Binary) and right.operator == "·":
             raise Doubt(
@@ -168,6 +184,18 @@ class Parser:
         sign = cast(Operator, "×" if t.text == "·" else t.text)
         return Binary(sign, left, right, self.span(start))
 
+    def phasor(self, magnitude: Node, start: int) -> Node:
+        """The angle behind ∠, and the unit that may stand behind the angle: ``10 ∠ 30° V``."""
+        t = self.now
+        sign = self.take() if self.is_operator("-", "+") else None
+        angle = self.operand()
+        if sign is not None and sign.text == "-":
+            angle = Unary("-", angle, self.span(t.start))
+        if isinstance(magnitude, Number) and not magnitude.unit.text:
+            unit, unit_words = self.unit()
+            magnitude = replace(magnitude, unit=unit, unit_words=unit_words)
+        return Binary("∠", magnitude, angle, self.span(start))
+
     def juxtaposed(self, left: Node, start: int, above: int) -> Node | None:
         """``2 R1``, ``2(R1 + R2)``: a product without a sign."""
         t = self.now
@@ -175,7 +203,7 @@ class Parser:
             return None
         if above >= _JUXTAPOSED:
             return None
-        if t.kind == "number":
+        if t.kind in ("number", "imaginary"):
             self.fail(f"{self.shown(t)} follows without an operator; write × for a product")
         if isinstance(left, Unary) and left.sign == "√" and not isinstance(left.operand, Group):
             self.fail("a root without brackets beside a product can be read two ways")
@@ -189,6 +217,11 @@ class Parser:
         t = self.take()
         if t.kind == "number":
             return self.number(t)
+        if t.kind == "imaginary":
+            value = self.number(t)
+            return Binary(
+                "·", Reference("j", self.piece.span(t.start, t.start + 1), text="j"), value, self.span(t.start)
+            )
         if t.kind in ("word", "braced"):
             return self.word(t)
         if t.kind == "operator":
@@ -203,8 +236,6 @@ class Parser:
                 inner = self.expression()
                 self.close("|", t)
                 return Call("abs", (inner,), self.span(t.start))
-            if t.text == "∠":
-                self.fail("phasors are not read in this version", t)
         self.fail("expected a value behind this" if t.kind == "end" else f"expected a value, found {self.shown(t)}", t)
 
     def group(self, opened: Token) -> Node:
@@ -229,8 +260,6 @@ class Parser:
         if abs(digits.adjusted()) > 300:
             self.fail("a number out of range", t)
         unit, unit_words = self.unit()
-        if self.is_operator("∠"):
-            self.fail("phasors are not read in this version")
         return Number(digits, self.span(t.start), unit, unit_words)
 
     def glued(self, t: Token, word: Token) -> NoReturn:
@@ -242,7 +271,9 @@ class Parser:
             right = f"{t.text} {word.text[0] if len(word.text) > 4 else ''}Ω".replace("K", "k")
             self.fail(f"{word.text} is no unit here; write {right}", word)
         if word.text[0] in "πω":
-            self.fail(f"{word.text} reads as one name; part the factors: {t.text}{word.text[0]} × {word.text[1:]}", word)
+            self.fail(
+                f"{word.text} reads as one name; part the factors: {t.text}{word.text[0]} × {word.text[1:]}", word
+            )
         self.fail(f"{written} is no number with a unit; write {t.text} × {word.text} for a product", word)
 
     def unit(self) -> tuple[Unit, tuple[str, ...]]:
@@ -355,7 +386,7 @@ class Parser:
                 self.once(found.case, t)
                 found = replace(found, case=self.case())
             elif t.text == "at":
-                self.once(found.frequency, t)
+                self.once(found.frequency is not None, t)
                 found = replace(found, frequency=self.frequency())
             else:
                 self.once(found.circuit, t)
@@ -421,14 +452,15 @@ class Parser:
             words.append(self.take().text)
         return " ".join(words)
 
-    def frequency(self) -> str:
-        """``50 Hz`` or ``dc``."""
+    def frequency(self) -> Fraction:
+        """``50 Hz`` or ``dc``, in hertz."""
         t = self.take()
         if t.kind == "word" and t.text == "dc":
-            return "dc"
+            return Fraction(0)
         if t.kind == "number":
-            self.number(t)
-            return self.piece.text[t.start : self.seen[self.at - 1].end]
+            number = self.number(t)
+            if isinstance(number, Number) and number.unit.dimension == HERTZ:
+                return Fraction(number.digits) * number.unit.factor
         self.fail(f"expected a frequency or dc behind at, found {self.shown(t)}", t)
 
 

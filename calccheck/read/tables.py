@@ -157,14 +157,14 @@ def _qualified(node: Node, edge: Edge) -> Node:
 
 def _reference(node: Reference, edge: Edge) -> Reference:
     mine, more = node.qualifiers, edge.qualifiers
-    for name in ("due_to", "case", "frequency", "circuit"):
-        if getattr(mine, name) and getattr(more, name):
-            raise Doubt("both edges of the table give the same qualifier", node.span)
+    both = [mine.due_to and more.due_to, mine.case and more.case, mine.circuit and more.circuit]
+    if any(both) or (mine.frequency is not None and more.frequency is not None):
+        raise Doubt("both edges of the table give the same qualifier", node.span)
     merged = Qualifiers(
         mine.due_to or more.due_to,
         (*mine.changes, *more.changes),
         mine.case or more.case,
-        mine.frequency or more.frequency,
+        more.frequency if mine.frequency is None else mine.frequency,
         mine.circuit or more.circuit,
     )
     return replace(node, qualifiers=merged, prefix=edge.prefix or node.prefix, text=f"{node.text} {edge.text}".strip())

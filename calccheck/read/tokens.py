@@ -10,7 +10,7 @@ from calccheck.arithmetic import Doubt
 from calccheck.source import Piece
 from calccheck.units import LOOKALIKES, UNITS
 
-TokenKind = Literal["number", "word", "braced", "operator", "superscript", "end"]
+TokenKind = Literal["number", "imaginary", "word", "braced", "operator", "superscript", "end"]
 LONGEST = 10_000  # characters of one statement; a longer one is no formula that a person wrote
 
 SUPERSCRIPTS = "⁰¹²³⁴⁵⁶⁷⁸⁹"
@@ -21,6 +21,7 @@ _NUMBER = rf"(?:\d{{1,3}}(?:{_GROUPS}\d{{3}})+(?!\d)|\d+)(?:\.\d+(?:{_GROUPS}\d{
 _TOKEN = re.compile(
     rf"""(?P<space>\s+)
     |(?P<number>(?:{_NUMBER})(?:[eE][+-]?\d+|\s?[×*]\s?10(?:⁻?[{SUPERSCRIPTS}]+|\^[+-]?\d+))?)
+    |(?P<imaginary>j(?:{_NUMBER})(?:[eE][+-]?\d+)?)
     |(?P<braced>{_LETTER}[^\W_{SUPERSCRIPTS}]*_\{{[^{{}}]*\}})
     |(?P<word>°C(?!\w)|{_WORD})
     |(?P<superscript>⁻?[{SUPERSCRIPTS}]+)
@@ -58,6 +59,9 @@ def tokens(piece: Piece) -> list[Token]:
         if kind == "number":
             _refuse_comma_and_point(piece, text, m)
             found.append(Token("number", _plain(m.group()), at, m.end()))
+        elif kind == "imaginary":
+            _refuse_comma_and_point(piece, text, m)
+            found.append(Token("imaginary", _plain(m.group()[1:]), at, m.end()))
         elif kind == "operator":
             found.append(Token("operator", _SAME.get(m.group(), m.group()), at, m.end()))
         elif kind == "superscript":
