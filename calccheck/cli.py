@@ -17,6 +17,10 @@ from calccheck.files import Unusable
 _ABOUT = """\
 Recomputes every claim in calc sheets (Markdown with a circuit block and hand-worked values) by nodal
 solution and by superposition, and says which of them do not stand."""
+_MARK = """\
+Write the sheets with every claim marked where it stands: as Markdown for the author, as a page for the
+screen, or as a PDF for the reviewer. NAME.md becomes NAME.checked.md (.html, .pdf) in the output folder,
+below it in the folders that the sheet stands in. A sheet itself is changed only with --in-place."""
 _STATUS = """\
 exit status:
   0  every claim stands
@@ -85,7 +89,7 @@ def arguments() -> argparse.ArgumentParser:
     """The commands and their options."""
     layout = argparse.RawDescriptionHelpFormatter
     parser = argparse.ArgumentParser("calccheck", description=_ABOUT, epilog=_STATUS, formatter_class=layout)
-    parser.add_argument("--version", action=_Version, nargs=0, help="print the version and stop")
+    parser.add_argument("--version", action="version", version=f"calccheck {__version__}", help="print the version")
     commands = parser.add_subparsers(dest="command", metavar="COMMAND", required=True)
     one = commands.add_parser(
         "check", help="recompute every claim and print what is to be mended", epilog=_STATUS, formatter_class=layout,
@@ -95,11 +99,13 @@ def arguments() -> argparse.ArgumentParser:
     one.add_argument(
         "--format", choices=("text", "json"), default="text", help="text to read (default) or the JSON report"
     )
+    one.add_argument(
+        "-v", "--verbose", action="store_true", help="also what stands, and which files are no calc sheets"
+    )
     _common(one)
     two = commands.add_parser(
         "mark", help="write the sheets with every claim marked where it stands", epilog=_STATUS, formatter_class=layout,
-        description="Write the sheets with every claim marked where it stands: as Markdown for the author, as a page for "
-        "the screen, or as a PDF for the reviewer. A sheet itself is changed only with --in-place.",
+        description=_MARK,
     )  # fmt: skip
     _paths(two, "sheets, or folders to search for *.md (default: this folder)")
     two.add_argument("--to", choices=("md", "html", "pdf"), required=True, help="what to write")
@@ -118,7 +124,6 @@ def arguments() -> argparse.ArgumentParser:
     )  # fmt: skip
     three.add_argument("sheet", metavar="SHEET", help="the sheet; - is standard input")
     three.add_argument("quantity", metavar="QUANTITY", help='as in a sheet: V_bus, "I_RL due to Vb", "R_{a,b}"')
-    three.add_argument("--on", metavar="DATE", type=_day, help=argparse.SUPPRESS)
     return parser
 
 
@@ -131,17 +136,6 @@ def _common(parser: argparse.ArgumentParser) -> None:
     parser.add_argument(
         "--jobs", metavar="N", type=_jobs, default=1, help="share the sheets among N processes (default 1)"
     )
-    parser.add_argument(
-        "-v", "--verbose", action="store_true", help="also what stands, and files that are no calc sheets"
-    )
-
-
-class _Version(argparse.Action):
-    """Looks the version up only when asked for."""
-
-    def __call__(self, parser: argparse.ArgumentParser, *_: object, **__: object) -> None:
-        print(f"calccheck {__version__}")
-        parser.exit()
 
 
 def _day(text: str) -> date:

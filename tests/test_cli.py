@@ -406,6 +406,7 @@ def test_a_reader_that_stops_early_is_no_fault(folder):
 def seen_on_a_terminal(arguments: list[str], env: dict[str, str]) -> bytes:
     """What the program prints when its output is a terminal."""
     import pty  # late: POSIX only, as this test is
+
     main_end, other_end = pty.openpty()
     command = [sys.executable, "-m", "calccheck", *arguments]
     with subprocess.Popen(command, stdout=other_end, env={**os.environ, **env}):
@@ -441,6 +442,23 @@ def test_a_check_loads_nothing_that_it_does_not_use(folder):
         [sys.executable, "-c", code], capture_output=True, text=True, env={**os.environ, "PYTHONUTF8": "1"}
     )
     assert done.stdout.endswith("\n[]\n"), done.stdout
+
+
+@pytest.mark.parametrize(("typed", "offered"), [("calccheck ch", "check"), ("calccheck mark --to ", "md html pdf")])
+def test_a_shell_completes_commands_and_options(tmp_path, typed, offered):
+    """By argcomplete's protocol: the line in COMP_LINE, the completions to file descriptor 8."""
+    answer = tmp_path / "answer"
+    shell = {
+        "_ARGCOMPLETE": "1",
+        "_ARGCOMPLETE_IFS": " ",
+        "COMP_LINE": typed,
+        "COMP_POINT": str(len(typed)),
+        "COMP_TYPE": "9",
+    }
+    code = "import sys; sys.argv = ['calccheck']; from calccheck.cli import entry; entry()"
+    command = f'"{sys.executable}" -c "{code}" 8>"{answer}" 9>/dev/null'
+    subprocess.run(command, shell=True, check=True, env={**os.environ, **shell})
+    assert answer.read_text().strip() == offered
 
 
 def test_days_are_those_of_the_calendar(folder, capsys):
