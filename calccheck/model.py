@@ -58,13 +58,35 @@ class Rating:
 
 
 @dataclass(frozen=True, slots=True)
+class Device:
+    """What the model of a part that is more than a resistance needs, in SI; of each kind only what belongs to it.
+
+    Transistor: ``polarity``, ``state`` active or saturated, ``beta``, ``v_be``, and ``v_ce`` of a saturated one. The drops are
+    positive for npn and pnp alike; a pnp's run from emitter to base and from emitter to collector. Diode: ``state`` conducting
+    or blocking, and ``drop`` from ``plus``, the anode. Transformer: ``ratio`` of the first pair's turns to the second's.
+    Op-amp: the least and most that its output reaches against the reference, ``None`` where not stated.
+    """
+
+    state: Literal["", "active", "saturated", "conducting", "blocking"] = ""
+    polarity: Literal["", "npn", "pnp"] = ""
+    beta: Fraction | None = None
+    v_be: Fraction | None = None
+    v_ce: Fraction | None = None
+    drop: Fraction | None = None
+    ratio: Fraction | None = None
+    swing_low: Fraction | None = None
+    swing_high: Fraction | None = None
+
+
+@dataclass(frozen=True, slots=True)
 class Element:
     """A part between two nodes. Current counts from ``plus`` through the part to ``minus`` (IEC 60375).
 
     ``value``: ohms of a resistor (whether written as a resistance or a conductance), volts or amperes of a source, the gain
     of a controlled source in SI, farads, henries; ``None`` for short, open, and what this version does not solve.
     ``stated``: the value as written, with the dimension it was written in, for claims that restate it.
-    ``terminals``: of a part with more than two, word and node. ``phasor``: of an AC source in volts or amperes, of an impedance
+    ``terminals``: of a part with more than two, word and node: base, collector, emitter; plus, minus, out; first+, first-,
+    second+, second-. ``phasor``: of an AC source in volts or amperes, of an impedance
     in ohms; ``value`` is then ``None``. ``frequency``: of an AC source in hertz, ``UNSTATED`` where the sheet needs and names
     none, ``None`` for DC.
     """
@@ -83,6 +105,14 @@ class Element:
     terminals: tuple[tuple[str, str], ...] = ()
     phasor: complex | None = None
     frequency: Fraction | None = None
+    device: Device | None = None
+
+    @property
+    def is_source(self) -> bool:
+        """Whether it is an independent source, a hand model's drop among them."""
+        if self.kind == "diode":
+            return self.device is None or self.device.state != "blocking"
+        return self.kind in ("voltage source", "current source", "transistor")
 
 
 @dataclass(frozen=True, slots=True)
@@ -113,13 +143,16 @@ class Circuit:
         return tuple(names)
 
     def sources(self) -> tuple[Element, ...]:
-        """The independent sources."""
-        return tuple(e for e in self.elements if e.kind in ("voltage source", "current source"))
+        """The independent sources of every frequency, parts with a drop of their hand model among them."""
+        return tuple(e for e in self.elements if e.is_source)
 
 
 @dataclass(frozen=True, slots=True)
 class State:
-    """Potentials by node (reference 0) in volts and currents by part in amperes, from ``plus`` to ``minus``; phasors at AC."""
+    """Potentials by node (reference 0) in volts and currents by part in amperes, from ``plus`` to ``minus``; complex at AC.
+
+    Of a part with named terminals a current for each, under ``Q1,collector``: the current into that terminal.
+    """
 
     potentials: Mapping[str, Value]
     currents: Mapping[str, Value]
@@ -127,11 +160,12 @@ class State:
 
 @dataclass(frozen=True, slots=True)
 class Solution:
-    """A circuit solved twice.
+    """A circuit solved twice, at one frequency.
 
-    ``nodal``: the whole circuit in floating point. ``parts``: each independent source alone, by name; rationals where
-    ``exact``. ``gap``: largest difference of the two routes relative to the circuit's scale; ``residual``: largest sum of
-    currents at a node relative to the largest current; ``balance``: sum of all powers relative to the largest.
+    ``nodal``: the whole circuit in floating point. ``parts``: each independent source of that frequency alone, by name;
+    rationals where ``exact``. ``gap``: largest difference of the two routes relative to the circuit's scale; ``residual``:
+    largest sum of currents at a node relative to the largest current; ``balance``: sum of all powers relative to the largest.
+    ``frequency``: in hertz, ``None`` for DC.
     """
 
     nodal: State
@@ -143,6 +177,7 @@ class Solution:
     volts: float
     amperes: float
     watts: float
+    frequency: Fraction | None = None
 
 
 # --- claims ---------------------------------------------------------------------------------------------------------

@@ -27,6 +27,7 @@ RULES: dict[str, Rule] = {
     "circuit-name": Rule("error", "A name in a circuit block is not allowed or used twice", "sheet-language.md#names"),
     "not-solved-here": Rule("error", "A part that this version reads but does not solve", "limits.md#not-solved"),
     "structure": Rule("error", "The circuit has no single solution", "how-it-checks.md#structure"),
+    "state": Rule("error", "A part is not in the state that its hand model assumes", "how-it-checks.md#assumed-states"),
     "routes": Rule("error", "The two routes disagree", "how-it-checks.md#two-routes"),
     "letter": Rule("caution", "A part's first letter contradicts its unit", "sheet-language.md#the-circuit-block"),
     "letter-case": Rule("caution", "Two names differ only in upper and lower case", "sheet-language.md#names"),
