@@ -10,7 +10,7 @@ from itertools import groupby
 from calccheck.annotate.characters import code_point, unseen
 from calccheck.annotate.marks import MARKS
 from calccheck.annotate.places import Places, marks_in, runs
-from calccheck.annotate.record import Entry
+from calccheck.annotate.record import Entry, note_lines
 from calccheck.document import Block, Inline, inlines
 from calccheck.source import NOWHERE, Piece, Sheet
 
@@ -144,8 +144,7 @@ def _notes(s: Setting, children: Sequence[Inline]) -> str:
 
 def note_html(s: Setting, e: Entry) -> str:
     """What stands behind a block about one of its claims, with ways to the next and back to the list."""
-    found = f"recomputed {e.computed}" if e.kind == "differs" and e.computed and e.computed not in e.message else ""
-    told = "".join(f'<span class="told">{said(t)}</span>' for t in (found, *e.told, *e.cautions) if t)
+    told = "".join(f'<span class="told">{said(t)}</span>' for t in note_lines(e))
     label = f'<strong class="ink-{e.kind}">{MARKS[e.kind].label} {escape(e.number)}</strong>'
     onward = s.following.get(e.key)
     jumps = f'<a href="#l-{e.key}">to the list</a>'

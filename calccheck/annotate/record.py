@@ -131,6 +131,14 @@ def _finding(report: Report, k: int, finding: Finding, said: set[str]) -> Entry:
     return Entry(f"f{k}", f"F{k}", finding.severity, finding.span, line, title, finding.message, told, echo=echo)
 
 
+def note_lines(entry: Entry) -> list[str]:
+    """What a note beside a mark says; the recomputed value first, unless the message bears it."""
+    value = entry.computed if entry.kind == "differs" else ""
+    borne = value in entry.message or (entry.deviation != "" and entry.deviation in entry.message)
+    found = f"recomputed {value}" + (f" ({entry.deviation})" if entry.deviation else "")
+    return [*([] if borne else [found]), *entry.told, *entry.cautions]
+
+
 def comment_text(entry: Entry) -> str:
     """An entry in a few lines of plain text, for a comment."""
     found = f"recomputed {entry.computed}" if entry.computed else ""

@@ -17,7 +17,7 @@ _DEEPEST = 8  # lists and quotes nested deeper keep their words but gain no furt
 _LONG_CELL = 900  # characters; a row with such a cell may break across pages, any other stands on one
 _ONE_PAGE = 22  # lines of a fence that is not parted by a page's end
 _CODE_SIZE, _SMALLEST = 8.2, 6.4  # points
-_CODE_ROOM = 525.0  # points of size times characters that one line of a fence has room for
+_CODE_ROOM, _ROOM_BESIDE_MARKS = 545.0, 455.0  # points of size times characters that a fence's line has room for
 
 
 @dataclass(frozen=True, slots=True)
@@ -121,14 +121,12 @@ def _working(s: Setting, b: Block) -> str:
 def _listing(s: Setting, b: Block) -> str:
     """Lines as written, numbered as in the sheet, small enough to keep their columns where that is still readable."""
     longest = max((len(line.text) for line in b.lines), default=0)
-    size = max(_SMALLEST, min(_CODE_SIZE, _CODE_ROOM / max(longest, 1)))
-    rows = _caption(s, b) + "".join(_line(s, line) for line in b.lines)
-    return f"\n\n#listing({size:.2f}, {_whole(b)}, ({rows}))\n\n" if rows else ""
-
-
-def _caption(s: Setting, b: Block) -> str:
-    """What a fence's first line says of it, but for the bare word that every circuit bears."""
-    return f"([], [#aside[{shown(b.info, s.missing)}];], [])," if b.info not in ("", "circuit") else ""
+    room = _ROOM_BESIDE_MARKS if marks_in(s.where, b.lines) else _CODE_ROOM
+    size = max(_SMALLEST, min(_CODE_SIZE, room / max(longest, 1)))
+    rows = "".join(_line(s, line) for line in b.lines)
+    plain = b.info in ("", "circuit")  # the bare word that every circuit bears says nothing
+    caption = "none" if plain else f"[{shown(b.info, s.missing)}]"
+    return f"\n\n#listing({size:.2f}, {_whole(b)}, {caption}, ({rows}))\n\n" if rows else ""
 
 
 def _line(s: Setting, line: Piece) -> str:

@@ -19,6 +19,7 @@ from calccheck.annotate.record import (
     figure_cells,
     given_notes,
     headline,
+    note_lines,
     waiver_line,
     worst_first,
 )
@@ -155,9 +156,6 @@ def notes(w: Words) -> str:
 
 def _note(w: Words, e: Entry) -> str:
     kind = e.kind if e.kind in MARKS else "note"
-    lines = [*(e.told or ()), *e.cautions]
-    if e.kind == "differs" and e.computed and e.computed not in e.message:
-        lines.insert(0, f"recomputed {e.computed}" + (f" ({e.deviation})" if e.deviation else ""))
-    said = "".join(f"[{w.say(t)}]," for t in lines)
+    said = "".join(f"[{w.say(t)}]," for t in note_lines(e))
     brief = e.computed or e.deviation or f"line {e.line}"
     return f"{literal(e.key)}: (kind: {literal(kind)}, number: {literal(e.number)}, brief: [{w.say(brief)}], lines: ({said})),"
