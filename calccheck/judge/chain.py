@@ -88,7 +88,8 @@ def _given(job: Work) -> Judged:
     amount = members[0].amount
     assert amount is not None
     shown = last.printed
-    spread = shown.half if isinstance(shown, Printed) else Fraction(0)
+    rounded = bool(claim.from_sheet) and isinstance(shown, Printed)  # a result of another sheet
+    spread = shown.half if rounded and isinstance(shown, Printed) else Fraction(0)
     job.ledger.names[name] = Defined(name, amount, shown, "working", True, claim.span.start, spread)
     return Judged(
         claim, "given", quantity=name, claimed=amount, claimed_unit=shown.written_in.text if shown else "",

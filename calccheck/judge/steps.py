@@ -5,8 +5,9 @@ from __future__ import annotations
 from collections.abc import Iterator, Sequence
 from dataclasses import dataclass, field, replace
 from fractions import Fraction
+from itertools import takewhile
 
-from calccheck.arithmetic import COHERENT, Amount, DimensionFault, Doubt, Real, real, size
+from calccheck.arithmetic import COHERENT, Amount, DimensionFault, Doubt, Real, literal, real, size
 from calccheck.formula import Number, numbers, references
 from calccheck.judge import quantities, say
 from calccheck.judge.laws import followed
@@ -14,7 +15,7 @@ from calccheck.judge.members import Names, Worked, without_unit
 from calccheck.judge.phasors import PrintedPhasor, is_angle, nearest_turn, phasor_fit
 from calccheck.judge.rounding import SLACK, Printed, coarse, deviation, equal, fit
 from calccheck.judge.scope import Key, Ledger
-from calccheck.judge.trace import Reach, Traced, reach, trace, worked_pieces
+from calccheck.judge.trace import Meanings, Reach, Traced, reach, trace, worked_pieces
 from calccheck.model import Basis, Finding, Relation, Step, Verdict
 from calccheck.printing import shown
 from calccheck.rules import RULES
@@ -47,7 +48,16 @@ class Ground:
 
     def traced(self, w: Worked) -> list[Traced]:
         """What the printed numbers of a member stand for."""
-        return trace(w.node, self.pieces(w), self.exact_values(), self.ledger)
+        return trace(w.node, self.meanings(w), self.ledger)
+
+    def meanings(self, w: Worked) -> Meanings:
+        """What a number of this member may stand for."""
+        before = [*takewhile(lambda m: m is not w, self.members)]
+        fixed = [numbers(m.node) for m in before if m is self.source or m.sort == "formula"]
+        constants = [literal(n) for found in fixed for n in found]
+        pieces = [a for m in before for a in worked_pieces(m.node, self.names.amount)]
+        repeated = [literal(n) for m in before for n in numbers(m.node)]
+        return Meanings([*self.exact_values(), *constants], pieces, [*self.circuit_values()], repeated)
 
     def exact_values(self) -> list[Amount]:
         """Values of parts and givens, and of what ``with … as`` puts in their place."""
@@ -58,15 +68,6 @@ class Ground:
                     found.append(e.stated)
         key = self.source.key
         return [*found, *(v for _, _, v in key.changes if v is not None)] if key else found
-
-    def pieces(self, w: Worked) -> list[Amount]:
-        """Worked values that a number of this member may round: the pieces of the members before it, and the circuit's."""
-        found: list[Amount] = []
-        for other in self.members:
-            if other is w:
-                break
-            found += worked_pieces(other.node, self.names.amount)
-        return [*found, *self.circuit_values()]
 
     def circuit_values(self) -> Iterator[Amount]:
         """Voltages, currents and powers of the truth's circuit under its own qualifiers, printed or not."""

@@ -7,7 +7,7 @@ from dataclasses import dataclass
 from fractions import Fraction
 
 from calccheck.arithmetic import Amount, DimensionFault, Doubt, Lookup, Real, Value, evaluate, literal, real, size
-from calccheck.formula import Node, Number, Reference, numbers, references, walk
+from calccheck.formula import Binary, Node, Number, Reference, Unary, numbers, references, walk
 from calccheck.judge.phasors import parts
 from calccheck.judge.rounding import SLACK, Printed, printed
 from calccheck.judge.scope import Ledger, Result
@@ -18,39 +18,79 @@ from calccheck.units import NONE
 class Traced:
     """A printed number: how far the exact value that it stands for may be from it (0 where it is exact).
 
-    ``found``: whether it stands for anything. ``faulty``: the earlier result that it repeats, where that one does not stand.
+    ``found``: whether it stands for anything. ``several``: whether it may stand for more than one thing, so that the same
+    digits elsewhere in the member need not mean the same. ``faulty``: the earlier result that it repeats, where that one
+    does not stand.
     """
 
     number: Number
     room: Real
     found: bool
+    several: bool = False
     faulty: Result | None = None
 
+    @property
+    def key(self) -> object:
+        """What moves together with this number."""
+        return self.number.span if self.several else (self.number.digits, self.number.unit.text)
 
-def trace(node: Node, pieces: Sequence[Amount], exact: Sequence[Amount], ledger: Ledger) -> list[Traced]:
-    """What each printed number of a member stands for.
 
-    ``exact``: values of parts and givens, of which a number must be the very value. ``pieces``: worked values of the formula
-    before the member and of the circuit, of which it may be a right rounding.
+@dataclass(frozen=True, slots=True)
+class Meanings:
+    """What the numbers of a member may stand for.
+
+    ``exact``: values of parts and givens, and constants of the formula, of which a number must be the very value.
+    ``pieces``: worked pieces of the members before it, of which it may be a right rounding, as of ``around``, the circuit's
+    own values. ``repeated``: the printed numbers of the members before it.
     """
-    return [_one(n, pieces, exact, ledger) for n in numbers(node)]
+
+    exact: Sequence[Amount]
+    pieces: Sequence[Amount]
+    around: Sequence[Amount]
+    repeated: Sequence[Amount]
 
 
-def _one(n: Number, pieces: Sequence[Amount], exact: Sequence[Amount], ledger: Ledger) -> Traced:
+def trace(node: Node, meanings: Meanings, ledger: Ledger) -> list[Traced]:
+    """What each printed number of a member stands for."""
+    counts = _exponents(node)
+    return [Traced(n, 0, True) if n in counts else _one(n, meanings, ledger) for n in numbers(node)]
+
+
+def _exponents(node: Node) -> list[Node]:
+    """The numbers that stand as exponents: they count and round nothing."""
+    raised = [b.right for b in walk(node) if isinstance(b, Binary) and b.operator == "^"]
+    return [r.operand if isinstance(r, Unary) else r for r in raised]
+
+
+def _one(n: Number, meanings: Meanings, ledger: Ledger) -> Traced:
     p = printed(n)
     assert p is not None
-    same = [a for a in exact if a.dimension == p.amount.dimension and size(a.value) == size(p.value)]
-    if same:
+    rounds = [a for a in meanings.pieces if _rounds(p, a)]
+    if any(_same(p, a) for a in meanings.exact):
+        other = bool(n.unit.text) and any(not _same(p, a) for a in rounds)
+        return Traced(n, p.half if other else 0, True)
+    if _counts(n):
         return Traced(n, 0, True)
+    rounds += [a for a in meanings.around if _rounds(p, a)]
     earlier = _earlier(p, ledger)
     if earlier is not None and earlier.stands:
-        return Traced(n, max(p.half, size(size(p.value) - size(earlier.truth.value))), True)
-    if any(_rounds(p, a) for a in pieces):
-        return Traced(n, p.half, True)
+        several = len({size(a.value) for a in (*rounds, earlier.truth)}) > 1
+        return Traced(n, max(p.half, size(size(p.value) - size(earlier.truth.value))), True, several)
+    if rounds:
+        return Traced(n, p.half, True, len({size(a.value) for a in rounds}) > 1)
     if earlier is not None:
         return Traced(n, 0, True, faulty=earlier)
-    counts = p.amount.dimension == NONE and not n.unit.text
-    return Traced(n, 0, counts)
+    plain = p.amount.dimension == NONE and not n.unit.text
+    return Traced(n, 0, plain or any(_same(p, a) for a in meanings.repeated))
+
+
+def _counts(n: Number) -> bool:
+    """Whether a number is a count, as the 2 of ``2 × 3.4 V``: a whole one of one figure, without a unit."""
+    return not n.unit.text and n.digits.as_tuple().exponent == 0 and abs(n.digits) < 10
+
+
+def _same(p: Printed, a: Amount) -> bool:
+    return a.dimension == p.amount.dimension and size(a.value) == size(p.value)
 
 
 def _earlier(p: Printed, ledger: Ledger) -> Result | None:
@@ -70,9 +110,11 @@ def _rounds(p: Printed, a: Amount) -> bool:
 
 
 def worked_pieces(node: Node, lookup: Lookup) -> list[Amount]:
-    """The amounts of all pieces of an expression that can be worked out."""
+    """The amounts of all pieces of an expression that can be worked out; a printed number is none."""
     found = []
     for piece in walk(node):
+        if printed(piece) is not None:
+            continue
         try:
             found += parts(evaluate(piece, lookup))
         except (Doubt, DimensionFault):
@@ -100,10 +142,10 @@ class Reach:
 def reach(node: Node, lookup: Lookup, traced: Sequence[Traced], spreads: dict[str, Real]) -> Reach:
     """The values that a member may stand for, each rounded number moved within its room.
 
-    Numbers printed alike move together. ``spreads``: room of names by word. The direction of each is found by moving it
+    Numbers printed alike move together, unless they may stand for several things. ``spreads``: room of names by word. The direction of each is found by moving it
     alone; then all are moved at once, so that products of small moves are not lost.
     """
-    rooms: dict[object, Real] = {(t.number.digits, t.number.unit.text): t.room for t in traced if t.room}
+    rooms: dict[object, Real] = {t.key: t.room for t in traced if t.room}
     rooms |= {r.word: spreads[r.word] for r in references(node) if spreads.get(r.word)}
     middle = evaluate(node, lookup).value
     if isinstance(middle, complex):
@@ -123,7 +165,8 @@ def reach(node: Node, lookup: Lookup, traced: Sequence[Traced], spreads: dict[st
 def _moved(node: Node, lookup: Lookup, shifts: dict[object, Real]) -> Value:
     def number(n: Number) -> Amount:
         a = literal(n)
-        return Amount(a.value + shifts.get((n.digits, n.unit.text), Fraction(0)), a.dimension, a.point)
+        shift = shifts.get(n.span) or shifts.get((n.digits, n.unit.text), Fraction(0))
+        return Amount(a.value + shift, a.dimension, a.point)
 
     def name(r: Reference) -> Amount:
         a = lookup(r)
