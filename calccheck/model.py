@@ -104,6 +104,7 @@ class Element:
     ratings: tuple[Rating, ...] = ()
     terminals: tuple[tuple[str, str], ...] = ()
     phasor: complex | None = None
+    formula: Node | None = None
     frequency: Fraction | None = None
     device: Device | None = None
 
@@ -120,7 +121,7 @@ class Circuit:
     """One circuit block as read.
 
     ``problems``: findings that make every claim on this circuit unchecked (a line that does not parse, a part of a kind that
-    this version does not solve). ``span``: the fence's content.
+    this version does not solve). ``span``: the fence's content. ``symbols``: free symbols of its values with their dimensions.
     """
 
     name: str
@@ -128,6 +129,7 @@ class Circuit:
     reference: str
     span: Span
     problems: tuple[Finding, ...] = ()
+    symbols: tuple[tuple[str, Dimension], ...] = ()
 
     def element(self, name: str) -> Element | None:
         """The part of that name."""
