@@ -25,7 +25,7 @@ def check(options: argparse.Namespace) -> int:
     """``calccheck check``: findings on standard output, problems with files on standard error."""
     found, problems = gathered(options.paths)
     reports = []
-    for outcome in run(partial(report_on, on=options.on, keep_page=False), found, _name, options.jobs):
+    for outcome in run(partial(brief_report_on, on=options.on), found, _name, options.jobs):
         if outcome.value is not None:
             reports.append(outcome.value)
         else:
@@ -84,13 +84,20 @@ def sheet_of(source: Source) -> Sheet:
     return Sheet(source.name, read_text(source.path) if source.text is None else source.text)
 
 
-def report_on(source: Source, on: date | None, keep_page: bool = True) -> Report:
-    """The report on one sheet. ``keep_page``: whether an output will walk the page; without it a report travels light."""
+def report_on(source: Source, on: date | None) -> Report:
+    """The report on one sheet. Raises ``Unusable`` where the sheet or its repository's settings cannot be read."""
     from calccheck.pipeline import check as checked  # late: --help and --version need no solver
 
-    report = checked(sheet_of(source), replace(settings_for(source), on=on))
-    if keep_page:
-        return report
+    return checked(sheet_of(source), replace(settings_for(source), on=on))
+
+
+def brief_report_on(source: Source, on: date | None) -> Report:
+    """The report without its page and solutions, for outputs that walk neither: so it travels light between processes."""
+    return brief(report_on(source, on))
+
+
+def brief(report: Report) -> Report:
+    """The report without its page and solutions."""
     return replace(report, reading=replace(report.reading, page=()), solutions=())
 
 

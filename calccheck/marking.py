@@ -13,7 +13,7 @@ from pathlib import Path
 from calccheck.annotate.to_terminal import totals
 from calccheck.annotate.visible import visible
 from calccheck.batch import run
-from calccheck.commands import complain, gathered, in_colour, report_on, sheet_of, status
+from calccheck.commands import brief, complain, gathered, in_colour, report_on, sheet_of, status
 from calccheck.edits import stray, unmark
 from calccheck.files import MARKED, Source, Unusable, write_whole
 from calccheck.model import Report
@@ -90,14 +90,14 @@ def write_marked(order: Order, form: str, on: date | None) -> tuple[Report | Non
     sheet = sheet_of(order.source)
     report = report_on(order.source, on)
     if not report.reading.is_calc:
-        return report, False
+        return brief(report), False
     if form == "md":
         _refuse_changed(sheet.name, unmark(sheet.text))
     data = _rendered(report, form)
     before = sheet.text.encode("utf-8") if order.in_place else None
     if data != before:
         write_whole(order.target, data, order.replace, before)
-    return report, data != before
+    return brief(report), data != before
 
 
 def _rendered(report: Report, form: str) -> bytes:

@@ -297,6 +297,16 @@ def test_a_file_that_exists_is_replaced_only_on_request(folder, capsys):
     assert mine.read_text(encoding="utf-8").startswith(CIRCUIT)
 
 
+def test_pages_and_documents_by_several_processes(folder, capsys):
+    write(folder / "a.md", RIGHT)
+    write(folder / "b.md", WRONG)
+    for form, start in (("html", b"<!doctype html>"), ("pdf", b"%PDF-")):
+        status, out, err = run(capsys, "mark", "--to", form, "--jobs", "2", ".")
+        assert (status, err) == (1, "") and out.startswith(str(Path(f"marked/a.checked.{form}")))
+        for name in ("a", "b"):
+            assert (folder / "marked" / f"{name}.checked.{form}").read_bytes()[: len(start)].lower() == start.lower()
+
+
 def test_two_sheets_never_go_to_one_copy(folder, capsys):
     write(folder / "a" / "bus.md", RIGHT)
     write(folder / "b" / "bus.md", WRONG)
