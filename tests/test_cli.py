@@ -13,7 +13,7 @@ from pathlib import Path
 import pytest
 
 import calccheck.pipeline
-from calccheck import __version__
+from calccheck import __version__, batch
 from calccheck.cli import main
 from calccheck.files import Unusable, sources, write_whole
 
@@ -265,6 +265,43 @@ def test_working(folder, capsys):
     assert status == 0 and "due to V1" in out and "7.5" in out
     status, out, err = run(capsys, "working", "a.md", "V_q")
     assert (status, out) == (2, "") and err.startswith("calccheck: a.md: V_q: neither a node")
+
+
+class Terminal(io.StringIO):
+    """Standard error on a terminal."""
+
+    def isatty(self) -> bool:
+        return True
+
+
+@pytest.mark.parametrize(("seconds", "shown"), [(0.1, False), (0.6, True)])
+def test_a_bar_for_work_of_more_than_a_second(monkeypatch, seconds, shown):
+    clock = (seconds * k for k in range(100))
+    screen = Terminal()
+    monkeypatch.setattr(batch.time, "monotonic", lambda: next(clock))
+    monkeypatch.setattr(sys, "stderr", screen)
+    assert [o.value for o in batch.run(len, ["a", "bb", "ccc", "dddd"], str)] == [1, 2, 3, 4]
+    assert ("4 of 4 sheets" in screen.getvalue()) == shown
+    assert screen.getvalue().endswith("\r\x1b[K") == shown
+
+
+def test_no_bar_where_nobody_sees_it(monkeypatch):
+    clock = iter(range(100))
+    monkeypatch.setattr(batch.time, "monotonic", lambda: next(clock))
+    monkeypatch.setattr(sys, "stderr", io.StringIO())
+    assert len(list(batch.run(len, ["a", "bb", "ccc"], str))) == 3 and sys.stderr.getvalue() == ""
+
+
+def test_a_worker_that_dies_takes_no_other_sheet_with_it(monkeypatch):
+    outcomes = list(batch.run(die_on_b, ["a", "b", "c", "d"], str, jobs=2))
+    assert len(outcomes) == 4 and any("internal fault" in o.problem for o in outcomes)
+    assert all(o.value is not None or o.problem for o in outcomes)
+
+
+def die_on_b(name: str) -> str:
+    if name == "b":
+        os._exit(3)
+    return name
 
 
 # --- marked copies --------------------------------------------------------------------------------------------------
