@@ -18,7 +18,7 @@ from calccheck.units import AMPERE, FARAD, HENRY, NONE, OHM, SECOND, VOLT, Dimen
 Real = Fraction | float
 Value = Fraction | float | complex  # complex: a phasor or an impedance; a complex value never has a zero imaginary part
 _ROOM = 4000  # bits of a rational before it is carried on as a float
-_ICE = Fraction(27315, 100)  # 0 °C in kelvin (SI Brochure, 9th edition, 2.3.1)
+ICE = Fraction(27315, 100)  # 0 °C in kelvin (SI Brochure, 9th edition, 2.3.1)
 
 
 class Doubt(Exception):
@@ -78,7 +78,7 @@ def literal(number: Number) -> Amount:
     """A printed number in SI."""
     value = Fraction(number.digits) * number.unit.factor
     if number.unit.celsius:
-        return Amount(value + _ICE, number.unit.dimension, point=True)
+        return Amount(value + ICE, number.unit.dimension, point=True)
     return Amount(value, number.unit.dimension)
 
 
@@ -254,7 +254,7 @@ def _unary(n: Unary, a: Amount) -> Amount:
     if n.sign == "√":
         return power(a, Amount(Fraction(1, 2)), n.span)
     if n.sign == "-":
-        return replace(a, value=-a.value) if not a.point else Amount(2 * _ICE - a.value, a.dimension, True)
+        return replace(a, value=-a.value) if not a.point else Amount(2 * ICE - a.value, a.dimension, True)
     return a
 
 

@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import cmath
+import re
 from collections.abc import Sequence
 from dataclasses import dataclass, replace
 from fractions import Fraction
@@ -177,8 +178,15 @@ def _key(node: Node, meanings: Sequence[Meaning | None]) -> Key | None:
     return Key(-1, "name", (node.word,)) if m.sort == "name" else m.key
 
 
+_WORKED = re.compile(r"[*×·/÷∥()^√]|^(?!.*\d)")
+
+
 def _restates(node: Node, meanings: Sequence[Meaning | None]) -> bool:
-    return isinstance(node, Reference) and bool(meanings) and meanings[0] is not None and meanings[0].sort == "part"
+    """Whether the member is a part's own value as written; one that the block works from others is rounded like any."""
+    first = meanings[0] if meanings and isinstance(node, Reference) else None
+    if first is None or first.element is None or first.sort != "part":
+        return False
+    return not _WORKED.search(first.element.written)
 
 
 def _refuse_units_that_are_names(node: Node, names: Names) -> None:

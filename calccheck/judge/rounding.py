@@ -6,12 +6,12 @@ leaves the choice at a tie open.
 
 from __future__ import annotations
 
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 from decimal import Decimal
 from fractions import Fraction
 from typing import Literal
 
-from calccheck.arithmetic import Amount, Real, Value, literal, real, size
+from calccheck.arithmetic import ICE, Amount, Real, Value, literal, real, size
 from calccheck.formula import Group, Node, Number, Unary
 from calccheck.units import PLAIN, Unit
 
@@ -64,6 +64,13 @@ def printed(node: Node) -> Printed | None:
     amount = literal(Number(signed, node.span, node.unit))
     place = Fraction(10) ** int(node.digits.as_tuple().exponent)
     return Printed(amount, place * abs(node.unit.factor), figures(node.digits), signed, node.unit)
+
+
+def on_scale(p: Printed, truth: Real) -> tuple[Printed, Real]:
+    """A printed value and the truth as the digits count: a temperature in °C by its degrees, not by its kelvins."""
+    if not p.amount.point:
+        return p, truth
+    return replace(p, amount=Amount(Fraction(p.digits), p.amount.dimension)), truth - ICE
 
 
 def figures(digits: Decimal) -> int:

@@ -7,13 +7,13 @@ from dataclasses import dataclass, field, replace
 from fractions import Fraction
 from itertools import takewhile
 
-from calccheck.arithmetic import COHERENT, Amount, DimensionFault, Doubt, Real, literal, real, size
+from calccheck.arithmetic import COHERENT, ICE, Amount, DimensionFault, Doubt, Real, literal, real, size
 from calccheck.formula import Number, numbers, references
 from calccheck.judge import quantities, say
 from calccheck.judge.laws import followed
 from calccheck.judge.members import Names, Worked, without_unit
 from calccheck.judge.phasors import PrintedPhasor, is_angle, nearest_turn, phasor_fit
-from calccheck.judge.rounding import SLACK, Printed, coarse, deviation, equal, fit
+from calccheck.judge.rounding import SLACK, Printed, coarse, deviation, equal, fit, on_scale
 from calccheck.judge.scope import Key, Ledger
 from calccheck.judge.trace import Meanings, Reach, Traced, reach, trace, worked_pieces
 from calccheck.model import Basis, Finding, Relation, Step, Verdict
@@ -107,7 +107,7 @@ def judge_member(w: Worked, relation: Relation, ground: Ground) -> Step:
     if w.doubt is not None:
         return _step(w, "unchecked", say.reason(w.doubt.reason, w.doubt.suggestion))
     assert w.amount is not None
-    w = _difference_in_celsius(w, ground)
+    w = _temperature(w, ground)
     assert w.amount is not None
     if w.amount.dimension != ground.truth.dimension or w.amount.point != ground.truth.point:
         return _other_dimension(w, relation, ground)
@@ -126,16 +126,15 @@ def judge_member(w: Worked, relation: Relation, ground: Ground) -> Step:
     )
 
 
-def _difference_in_celsius(w: Worked, ground: Ground) -> Worked:
-    """``18 °C`` printed for a difference of temperatures is 18 K."""
+def _temperature(w: Worked, ground: Ground) -> Worked:
+    """``18 °C`` printed for a difference of temperatures is 18 K; ``328 K`` printed for a temperature counts from 0 K."""
     p = w.printed
-    if (
-        not isinstance(p, Printed)
-        or not p.amount.point
-        or ground.truth.point
-        or ground.truth.dimension != p.amount.dimension
-    ):
+    if not isinstance(p, Printed) or ground.truth.dimension != p.amount.dimension:
         return w
+    if p.amount.point == ground.truth.point:
+        return w
+    if ground.truth.point:
+        return replace(w, amount=replace(p.amount, point=True))
     kelvins = Amount(Fraction(p.digits), p.amount.dimension)
     return replace(w, amount=kelvins, printed=replace(p, amount=kelvins))
 
@@ -205,7 +204,8 @@ def _bare_fits(w: Worked, relation: Relation, ground: Ground) -> Step:
 
 def _approximate_formula(w: Worked, ground: Ground) -> Step:
     assert w.amount is not None
-    off = deviation(w.amount.value, ground.truth.value)
+    zero = ICE if ground.truth.point else 0
+    off = deviation(w.amount.value - zero, ground.truth.value - zero)
     if equal(w.amount.value, ground.truth.value):
         step = _step(w, "agrees")
     elif off is not None and abs(off) <= ground.ledger.settings.approx:
@@ -296,10 +296,9 @@ def _value(w: Worked, p: Printed, relation: Relation, ground: Ground) -> Step:
         truth = replace(truth, value=t)
     if ground.source.restates and relation != "≈":
         return _restated(w, p, ground)
-    largest = (
-        quantities.scale(ground.source.key, ground.ledger, truth.dimension) if p.digits == 0 and _circuit(ground) else 0
-    )
-    how = fit(p, t, settings.carry, largest)
+    zero = ICE if p.amount.point else 0
+    p, t = on_scale(p, t)
+    how = fit(p, t, settings.carry, _largest(ground) if p.digits == 0 else 0)
     if how == "exact place":
         if coarse(p, t) and not equal(p.value, t):
             ground.cautions.append(
@@ -308,7 +307,7 @@ def _value(w: Worked, p: Printed, relation: Relation, ground: Ground) -> Step:
         return _step(w, "agrees")
     off = deviation(p.value, t)
     near = say.near(truth, p)
-    law = _carried(p, ground)
+    law = _carried(p, t, ground, zero)
     if law:
         return _step(
             w,
@@ -325,8 +324,14 @@ def _value(w: Worked, p: Printed, relation: Relation, ground: Ground) -> Step:
     return _step(w, "differs", f"{_subject(ground)} comes to {near}, printed {w.member.text}{shift}")
 
 
-def _circuit(ground: Ground) -> bool:
-    return ground.basis == "circuit" and ground.source.key is not None and ground.source.key.circuit >= 0
+def _largest(ground: Ground) -> Real:
+    """What a bare zero is held to: the largest like value of the circuit, or of the formula where things cancel."""
+    dimension = ground.truth.dimension
+    pieces = worked_pieces(ground.source.node, ground.names.amount)
+    largest: Real = max((size(a.value) for a in pieces if a.dimension == dimension), default=0)
+    if ground.basis == "circuit" and ground.source.key is not None and ground.source.key.circuit >= 0:
+        return max(largest, quantities.scale(ground.source.key, ground.ledger, dimension))
+    return largest
 
 
 def _restated(w: Worked, p: Printed, ground: Ground) -> Step:
@@ -340,13 +345,16 @@ def _restated(w: Worked, p: Printed, ground: Ground) -> Step:
     )
 
 
-def _carried(p: Printed, ground: Ground) -> str:
-    """What printed values the value follows from, within the carry that the sheet allows; nothing where it does not."""
-    truth = real(ground.truth.value)
+def _carried(p: Printed, truth: Real, ground: Ground, zero: Real) -> str:
+    """What printed values the value follows from, within the carry that the sheet allows; nothing where it does not.
+
+    ``zero``: where the degrees of a temperature count from.
+    """
     if size(p.value - truth) > ground.ledger.settings.carry * size(truth):
         return ""
     if any(m.sort == "substitution" for m in ground.members):
-        return "the working before it" if ground.carried is not None and _follows(p, real(ground.carried.value)) else ""
+        carried = ground.carried
+        return "the working before it" if carried is not None and _follows(p, real(carried.value) - zero) else ""
     key: Key | None = ground.source.key
     if key is None or key.circuit < 0:
         return ""
