@@ -61,18 +61,23 @@ def run(
 
 
 def _in_processes(guarded: _Guarded[Item, Done], items: Sequence[Item], jobs: int) -> Iterator[Outcome[Done]]:
-    from concurrent.futures import Future, ProcessPoolExecutor  # late: a hook checks a few sheets in one process
+    """The outcomes by several processes. A process that dies takes its pool along: what was left is done one by one."""
+    from concurrent.futures import ProcessPoolExecutor  # late: a hook checks a few sheets in one process
     from concurrent.futures.process import BrokenProcessPool
 
-    def outcome(item: Item, future: Future[Outcome[Done]]) -> Outcome[Done]:
-        try:
-            return future.result()
-        except BrokenProcessPool as fault:  # a worker died: killed, or out of memory
-            return Outcome(None, internal_fault(guarded.name(item), fault))
-
-    with ProcessPoolExecutor(min(jobs, len(items))) as pool:
-        futures = [pool.submit(guarded, item) for item in items]
-        yield from map(outcome, items, futures)
+    done = 0
+    try:
+        with ProcessPoolExecutor(min(jobs, len(items))) as pool:
+            for future in [pool.submit(guarded, item) for item in items]:
+                yield future.result()
+                done += 1
+    except BrokenProcessPool:
+        for item in items[done:]:
+            try:
+                with ProcessPoolExecutor(1) as pool:
+                    yield pool.submit(guarded, item).result()
+            except BrokenProcessPool as fault:  # killed, or out of memory
+                yield Outcome(None, internal_fault(guarded.name(item), fault))
 
 
 def _with_bar(outcomes: Iterable[Outcome[Done]], total: int) -> Iterator[Outcome[Done]]:
