@@ -61,7 +61,6 @@ def work(tmp_path_factory):
     clone.mkdir()
     for name in SHIPPED:
         source = PROJECT / name
-        copy = shutil.copytree if source.is_dir() else shutil.copy
         if source.is_dir():
             shutil.copytree(source, clone / name, ignore=shutil.ignore_patterns("__pycache__"))
         else:
