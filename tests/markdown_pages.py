@@ -50,6 +50,8 @@ def check_laws(source: str, tree: tuple[Block, ...]) -> None:
         check_characters(source, piece, resolved)
     check_spans(source, tree, Span(0, len(source)))
     for block in blocks(tree):
+        if block.kind == "fence":
+            check_fence(source, block)
         check_inline_spans(source, block.inlines, block.span)
         if block.content:
             check_covered(block.content, block.inlines)
@@ -113,6 +115,15 @@ def check_covered(content: Piece, children: tuple[Inline, ...]) -> None:
     covered = {offset for inline in children for offset in range(inline.span.start, inline.span.end)}
     missing = [c for c, offset in zip(content.text, content.at, strict=False) if offset not in covered | {NOWHERE}]
     assert not "".join(missing).strip(), (content.text, children)
+
+
+def check_fence(source: str, block: Block) -> None:
+    """A closed fence ends with a run at least as long as the one it begins with, on a line of its own."""
+    written = source[block.span.start : block.span.end]
+    opening = re.match("`+|~+", written)
+    lines = re.split(r"\r\n?|\n", written)
+    assert opening
+    assert not block.closed or (len(lines) > 1 and lines[-1].endswith(opening.group()))
 
 
 def check_code(source: str, inline: Inline) -> None:

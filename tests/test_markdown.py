@@ -14,6 +14,7 @@ CODE = {
     "escaped backticks": (r"a \`no\` `y` \\`z`", [("y", 1, 10), ("z", 1, 16)]),
     "doubled backticks": ("``a`b`` and `` `c` ``", [("a`b", 1, 1), ("`c`", 1, 13)]),
     "unmatched run": ("`a``b` `c", [("a``b", 1, 1)]),
+    "only backticks": ("` `` ` `b`", [("``", 1, 1), ("b", 1, 8)]),
     "only spaces": ("`  ` `a`", [("  ", 1, 1), ("a", 1, 6)]),
     "lazy lines": ("> - `q1`\n>   text `q2`\nlazy `q3`", [("q1", 1, 5), ("q2", 2, 10), ("q3", 3, 6)]),
     "lists in lists": (
@@ -29,6 +30,7 @@ CODE = {
     "table in a note": ("[^1]: a|b\n    -|-\n    `u`|`u`", [("u", 3, 5), ("u", 3, 9)]),
     "paragraphs": ("x\n`a` `a`\n\n- `b`\n", [("a", 2, 1), ("a", 2, 5), ("b", 4, 3)]),
     "tabs": ("-\t`t1`\n\n\t`t2` tab\t`t3`", [("t1", 1, 3), ("t2", 3, 2), ("t3", 3, 11)]),
+    "quotes, tabs, list": (">\t>\t- `t1`\nx `t2`", [("t1", 1, 7), ("t2", 2, 3)]),
     "quote and tab": (">\t`t1`\n>\tx `t2`", [("t1", 1, 3), ("t2", 2, 5)]),
     "beyond 16 bits": ("𝐼𝐼 `n𝐼` 😀 `m`", [("n𝐼", 1, 4), ("m", 1, 11)]),
     "across lines": ("a `multi\n   line` b\nc `multi line`", [("multi    line", 1, 3), ("multi line", 3, 3)]),
@@ -73,6 +75,7 @@ LINES = {
     "fence in a list": ("- ```\n  a\n    b\n  ```\n", [("a", 2, 3), ("  b", 3, 3)]),
     "indented fence": ("  ```\n  a\n b\n   c\n  ```", [("a", 2, 3), ("b", 3, 2), (" c", 4, 3)]),
     "fence in a quoted list": ("> 1. ```\n>    a\n>    ```", [("a", 2, 6)]),
+    "fenced quote mark": ("> ```\n> >\n> ```", [(">", 2, 3)]),
     "open fence": ("```\na\n\nb", [("a", 2, 1), ("", 3, 1), ("b", 4, 1)]),
     "fence and tabs": ("```\n\ta\n```\n- ```\n\tb\n  ```", [("\ta", 2, 1), ("  b", 5, 2)]),
     "indented code": ("    code\n\ttab\n\n      two\n", [("code", 1, 5), ("tab", 2, 2), ("", 3, 1), ("  two", 4, 5)]),
@@ -86,6 +89,8 @@ LINES = {
     "maths in a quote": ("> $$x\n> y$$", [("x", 1, 5), ("y", 2, 3)]),
     "maths in a list": ("- $$\n  x = 1\n  $$", [("x = 1", 2, 3)]),
     "maths on a line": ("$$ a = 1 $$\n\n$$b$$ (eq)", [(" a = 1 ", 1, 3), ("b", 3, 3)]),
+    "maths and dollars": ("$$\na $$ b $$", [("a $$ b ", 2, 1)]),
+    "maths behind other dollars": ("    $$\n\n$$a$$ b\n\n$$\nc\n$$", [("$$", 1, 5), ("c", 6, 1)]),
     "maths behind a no-break space": ("$$\n\u00a0b = 1$$", [("\u00a0b = 1", 2, 1)]),
     "front matter": ("---\na: 1\n\nb: 2\n---\nx", [("a: 1", 2, 1), ("", 3, 1), ("b: 2", 4, 1)]),
 }
@@ -97,6 +102,7 @@ PLACES = {
         "- a\n- - b\n    1) c\n> * d",
         [("- a", 1, 1), ("- - b\n    1) c", 2, 1), ("- b\n    1) c", 2, 3), ("1) c", 3, 5), ("* d", 4, 3)],
     ),
+    "empty items": ("item", "10)\n\n>-", [("10)", 1, 1), ("-", 3, 2)]),
     "cells": (
         "cell",
         "| h | `k` |\n|--|--|\n|  1 kΩ|  |\n| a \\| b | `c` | extra |\n| s |",
@@ -222,3 +228,23 @@ def test_content_is_the_source_of_the_inlines():
     (paragraph,) = quote.children
     assert paragraph.content.text == "a `b`\n  c &lt;\nd"
     assert list(paragraph.content.at) == [2, 3, 4, 5, 6, NOWHERE, *range(11, 19), NOWHERE, 21, 22]
+    (heading,) = read_page("# # #")
+    assert (heading.content.text, list(heading.content.at)) == ("#", [2, 3])
+
+
+def test_spaces_of_a_tab_cut_in_two_stand_nowhere():
+    (quote,) = read_page(">\t\t  a")
+    (line,) = quote.children[0].lines
+    assert (line.text, list(line.at)) == ("    a", [NOWHERE, NOWHERE, 3, 4, 5, 6])
+
+
+@pytest.mark.parametrize("page", ["```\na\n``` \t\n", "> ```\n> a\n> ````", "- ~~~\n  ~~~"])
+def test_closed_fences(page):
+    assert [block.closed for block in blocks(read_page(page)) if block.kind == "fence"] == [True]
+
+
+@pytest.mark.parametrize(
+    "page", ["```\na", "> ```\n> a\n>", "```\na\n~~~", "```\na ```", "- ```\n  a\n\nb", "````\n```"]
+)
+def test_open_fences(page):
+    assert [block.closed for block in blocks(read_page(page)) if block.kind == "fence"] == [False]

@@ -125,11 +125,8 @@ def test_every_page_obeys_the_laws(page):
 @given(pages())
 @settings(max_examples=150, deadline=None)
 def test_the_tree_is_what_the_parser_alone_makes_of_the_page(page):
-    tree = read_page(page)
-    body = page.removeprefix("\ufeff")
-    if tree and tree[0].kind == "front matter":
-        body, tree = page[tree[0].span.end :], tree[1:]
-    body = re.sub("[\u00a0\u3000\u2028\x0b\x1c\x85].*[$][$]", "", body)  # see "maths behind a no-break space"
+    # no front matter, which is ours; no blanks before dollars: the parser then loses characters before the closing ones
+    body = "\n" + re.sub("[\u00a0\u3000\u2028\x0b\x1c\x85].*[$][$]", "", page)
     assert same_outline(read_page(body)) == plain_outline(body)
 
 

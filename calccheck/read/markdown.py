@@ -127,7 +127,7 @@ def _noting_lines(rule: _BlockRule) -> _BlockRule:
         if not state.src.startswith("$$", begin) or state.env.get("no maths before") == last:
             return False
         if not rule(state, first, last, silent):
-            if not state.is_code_block(first) and "$$" not in state.src[begin + 2 : end]:
+            if "$$" not in state.src[begin + 2 : end]:
                 state.env["no maths before"] = last
             return False
         lines = range(first, state.line)

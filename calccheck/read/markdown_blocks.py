@@ -157,9 +157,8 @@ def _rule(token: Token, begin: int, page: Page) -> Block:
 def _fence(token: Token, begin: int, page: Page) -> Block:
     first, behind = _lines(token)
     lines = places.tails(page, token.content, first + 1)
-    last_line = page.text[page.starts[behind - 1] : places.line_end(page, behind - 1)]
-    closed = len(lines) == behind - first - 2 and last_line.rstrip(" \t").endswith(token.markup)
     span = places.span_to_line_end(page, begin, first, behind - 1)
+    closed = first + 1 + len(lines) + 1 == behind
     return Block("fence", span, lines=lines, info=token.info.strip(), closed=closed)
 
 

@@ -100,7 +100,7 @@ def _code_end(token: Token, source: str, start: int) -> int:
     """One space at either end belongs to the mark-up, if both are there and the code is not all spaces."""
     inner = start + len(token.markup)
     bare = inner + len(token.content)
-    as_written = source[inner:bare].replace("\n", " ") == token.content and source.startswith(token.markup, bare)
+    as_written = source[inner:bare].replace("\n", " ") == token.content
     return bare + len(token.markup) + (0 if as_written else 2)
 
 
