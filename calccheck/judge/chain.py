@@ -14,8 +14,8 @@ from calccheck.judge.bounds import BOUNDS, judge_bound
 from calccheck.judge.members import Names, Worked, work
 from calccheck.judge.miss import Miss
 from calccheck.judge.phasors import PrintedPhasor, parts
-from calccheck.judge.rounding import Printed, deviation
-from calccheck.judge.scope import Defined, Key, Ledger, Result
+from calccheck.judge.rounding import Printed, deviation, equal, fit
+from calccheck.judge.scope import QUANTITY_LETTERS, Defined, Key, Ledger, Result, quantity_key
 from calccheck.judge.steps import Ground, judge_member
 from calccheck.model import Basis, Claim, Finding, Judged, Step, Verdict
 from calccheck.rules import RULES
@@ -87,6 +87,7 @@ def _given(job: Work) -> Judged:
     last = members[-1]
     amount = members[0].amount
     assert amount is not None
+    _refuse_two_values(members, amount)
     shown = last.printed
     rounded = bool(claim.from_sheet) and isinstance(shown, Printed)  # a result of another sheet
     spread = shown.half if rounded and isinstance(shown, Printed) else Fraction(0)
@@ -95,6 +96,19 @@ def _given(job: Work) -> Judged:
         claim, "given", quantity=name, claimed=amount, claimed_unit=shown.written_in.text if shown else "",
         message=f"assumed, from {claim.from_sheet}" if claim.from_sheet else "assumed",
     )  # fmt: skip
+
+
+def _refuse_two_values(members: Sequence[Worked], amount: Amount) -> None:
+    """An assumption is one value; a second one may only be its right rounding."""
+    for w in members[1:]:
+        if w.relation not in ("=", "≈"):
+            raise Doubt("a bound is a claim of its own; an assumption ends before it", w.member.span)
+        p, same = w.printed, w.amount is not None and w.amount.dimension == amount.dimension
+        near = (
+            isinstance(p, Printed) and isinstance(amount.value, Fraction | float) and fit(p, amount.value, Fraction(0))
+        )
+        if not same or w.amount is None or not (near == "exact place" or equal(w.amount.value, amount.value)):
+            raise Doubt(f"the assumption has two values: {w.member.text} is not what stands before it", w.member.span)
 
 
 def _bare_name(node: Node) -> str | None:
@@ -107,12 +121,23 @@ def _bare_name(node: Node) -> str | None:
 def _refuse_taken(name: str, job: Work) -> None:
     ledger = job.ledger
     known = ledger.names.get(name)
+    place = job.claim.members[0].span
     if known is not None:
         word = "assumed" if known.given else "defined"
-        raise Doubt(f"{name} is {word} above already; a name has one value in a sheet", job.claim.members[0].span)
-    for c in ledger.circuits:
-        if c.element(name) is not None:
-            raise Doubt(f"{name} is a part of the circuit; give the assumption another name", job.claim.members[0].span)
+        raise Doubt(f"{name} is {word} above already; a name has one value in a sheet", place)
+    _refuse_of_circuit(job.claim.members[0].node, job)
+
+
+def _refuse_of_circuit(node: Node, job: Work) -> None:
+    """A new name may not be a part or a quantity of any circuit in the sheet."""
+    assert isinstance(node, Reference)
+    for k, c in enumerate(job.ledger.circuits):
+        called = f" {c.name}" if c.name else ""
+        if c.element(node.word) is not None:
+            raise Doubt(f"{node.word} is a part of the circuit{called}; choose another name", node.span)
+        if quantity_key(node, k, c, job.ledger) is not None:
+            raise Doubt(f"{node.word} is a quantity of the circuit{called}; choose another name", node.span)
+    _refuse_near_quantity(node, job)
 
 
 # --- chains ---------------------------------------------------------------------------------------------------------
@@ -129,13 +154,14 @@ def _chain(job: Work) -> Judged:
     )
     key: Key | None = None
     printings: list[tuple[Printed | PrintedPhasor, Step]] = []
-    for segment in segments:
+    for k, segment in enumerate(segments):
         if segment.truth is None:
-            _no_truth(segment, job, segment is main)
-        else:
-            found = _judge_segment(segment, job)
-            if segment is main:
-                key, printings = segment.members[segment.at].key, found
+            _no_truth(segment, job)
+            continue
+        segments[k], found = _judge_segment(segment, job)
+        if segment is main:
+            main = segments[k]
+            key, printings = main.members[main.at].key, found
     _bounds(segments, job)
     judged = _summed_up(main, printings, job, workings)
     _enter(judged, main, name, key, printings, job)
@@ -161,9 +187,7 @@ def _new_name(workings: Sequence[Worked], job: Work) -> str | None:
         return None
     if not any(w.sort in ("formula", "substitution") for w in workings[1:]):
         raise next((w.doubt for w in workings[1:] if w.doubt is not None), None) or _only_a_value(name, workings, job)
-    ref = first.node
-    if ref.subscripts:
-        _refuse_near_quantity(ref, job)
+    _refuse_of_circuit(first.node, job)
     return name
 
 
@@ -183,6 +207,8 @@ def _only_a_value(name: str, workings: Sequence[Worked], job: Work) -> Doubt:
 
 def _refuse_near_quantity(ref: Reference, job: Work) -> None:
     """A defined name shaped like a quantity differs from all in the circuit in more than a letter, and more than in case."""
+    if not ref.subscripts or ref.letter.capitalize() not in QUANTITY_LETTERS:
+        return
     sub = ref.subscripts[0]
     for c in job.ledger.circuits:
         for known in (*c.nodes(), *(e.name for e in c.elements)):
@@ -217,7 +243,7 @@ def _segment(members: Sequence[Worked]) -> Segment:
     return Segment(tuple(members), at, members[at].amount)
 
 
-def _no_truth(segment: Segment, job: Work, main: bool) -> None:
+def _no_truth(segment: Segment, job: Work) -> None:
     """A segment whose truth cannot be worked out: unchecked with the reason, or a fault of dimensions."""
     w = segment.members[segment.at]
     if w.fault is not None:
@@ -233,8 +259,11 @@ def _fault(fault: DimensionFault, w: Worked, job: Work) -> None:
     job.steps.append(Step(w.member.text, w.member.span, w.relation, "differs", None, fault.reason))
 
 
-def _judge_segment(segment: Segment, job: Work) -> list[tuple[Printed | PrintedPhasor, Step]]:
-    """Every member but the truth held against it; the printed values among them with their steps."""
+def _judge_segment(segment: Segment, job: Work) -> tuple[Segment, list[tuple[Printed | PrintedPhasor, Step]]]:
+    """Every member but the truth held against it; the printed values among them with their steps.
+
+    The segment comes back with the dimension in which numbers without units were read.
+    """
     assert segment.truth is not None
     w0 = segment.members[segment.at]
     ground = Ground(segment.truth, segment.basis, w0, segment.members, job.names, job.ledger)
@@ -256,7 +285,8 @@ def _judge_segment(segment: Segment, job: Work) -> list[tuple[Printed | PrintedP
         job.miss = Miss(ground, *against, tuple(judged))
     job.cautions += ground.cautions
     job.findings += ground.findings
-    return [(w.printed, step) for w, step in judged if w.printed is not None]
+    read = replace(segment, truth=replace(segment.truth, dimension=ground.truth.dimension))
+    return read, [(w.printed, step) for w, step in judged if w.printed is not None]
 
 
 def _bounds(segments: Sequence[Segment], job: Work) -> None:
@@ -264,7 +294,7 @@ def _bounds(segments: Sequence[Segment], job: Work) -> None:
         first = right.members[0]
         if left.truth is None or right.truth is None or first.relation not in BOUNDS:
             continue
-        limit_right = right.only_a_value or right.basis != "circuit"
+        limit_right = right.only_a_value or (right.basis != "circuit" and not left.only_a_value)
         job.steps.append(judge_bound(left.truth, right.truth, first, left.members[left.at], limit_right, job.names))
         if left.truth.dimension != right.truth.dimension:
             _dimension_of_bound(first, job)

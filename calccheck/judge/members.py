@@ -10,7 +10,7 @@ from fractions import Fraction
 from typing import Literal
 
 from calccheck.arithmetic import Amount, DimensionFault, Doubt, evaluate, size
-from calccheck.formula import Node, Range, Reference, numbers, references
+from calccheck.formula import Group, Node, Number, Range, Reference, numbers, references, walk
 from calccheck.judge import hints, quantities
 from calccheck.judge.phasors import PrintedPhasor, printed_phasor
 from calccheck.judge.rounding import SLACK, Printed, printed
@@ -190,11 +190,12 @@ def _restates(node: Node, meanings: Sequence[Meaning | None]) -> bool:
 
 
 def _refuse_units_that_are_names(node: Node, names: Names) -> None:
-    for n in numbers(node):
-        for word in n.unit_words:
+    for n in walk(node):
+        for word in n.unit_words if isinstance(n, Number | Group) else ():
             if names.meaning(Reference(word, n.span)) is not None:
+                before = n.digits if isinstance(n, Number) else "(…)"
                 raise Doubt(
-                    f"{word} is a unit and a name here: for the product write {n.digits} × {word}, "
+                    f"{word} is a unit and a name here: for the product write {before} × {word}, "
                     f"for the unit give the name another spelling",
                     n.span,
                 )

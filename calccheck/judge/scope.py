@@ -105,9 +105,11 @@ _CONSTANTS = {"j": Amount(1j), "π": Amount(Fraction(math.pi)), "e": Amount(Frac
 def circuit_index(ref: Reference, nearest: int, ledger: Ledger) -> int:
     """The circuit that a reference belongs to. Raises ``Doubt`` where that is open."""
     if ref.qualifiers.circuit:
-        for k, c in enumerate(ledger.circuits):
-            if c.name == ref.qualifiers.circuit:
-                return k
+        called = [k for k, c in enumerate(ledger.circuits) if c.name == ref.qualifiers.circuit]
+        if len(called) > 1:
+            raise Doubt(f"several circuits are called {ref.qualifiers.circuit}", ref.span)
+        if called:
+            return called[0]
         known = ", ".join(c.name for c in ledger.circuits if c.name) or "none is named"
         raise Doubt(f"there is no circuit {ref.qualifiers.circuit}; named circuits: {known}", ref.span)
     if len(ledger.circuits) == 1:
@@ -151,7 +153,8 @@ def quantity_key(ref: Reference, index: int, circuit: Circuit, ledger: Ledger) -
             ref.letter == "I" and circuit.element(subs[0]) is not None
         )
     else:
-        fits = circuit.element(subs[0]) is not None or (ref.letter == "V" and subs[0] in nodes)
+        known = circuit.element(subs[0]) is not None or (ref.letter == "V" and subs[0] in nodes)
+        fits = len(subs) == 1 and known
     if not fits:
         return None
     q = ref.qualifiers

@@ -7,7 +7,7 @@ from datetime import date
 from fractions import Fraction
 
 from calccheck.judge.chain import judge_claim
-from calccheck.judge.rounding import fit, printed
+from calccheck.judge.rounding import Printed, fit, printed
 from calccheck.judge.scope import Ledger, Solve
 from calccheck.model import Finding, Judged, Reading, Waiver
 from calccheck.rules import RULES
@@ -57,6 +57,23 @@ def _lapsed(waiver: Waiver, j: Judged, on: date) -> str:
     same = truth.amount.dimension == j.computed.dimension
     if not same or isinstance(j.computed.value, complex) or fit(truth, j.computed.value, Fraction(0)) == "no":
         return "the recomputed number is no longer the one that it names"
+    return _beyond(j, shown)
+
+
+def _beyond(j: Judged, accepted: Printed) -> str:
+    """What fails in the claim beside the value that the waiver accepts, and what follows from it."""
+    if any(s.verdict == "unchecked" for s in j.steps):
+        return "another member of the claim is unchecked"
+    failing = [s for s in j.steps if s.verdict == "differs"]
+    bounds = [s for s in failing if s.relation not in ("=", "≈")]
+    if bounds and len(failing) > len(bounds):
+        return f"it says nothing of the bound {bounds[0].text}"
+    for s in failing:
+        a = s.amount
+        if s not in bounds and (
+            a is None or isinstance(a.value, complex) or fit(accepted, a.value, Fraction(0)) == "no"
+        ):
+            return f"it says nothing of {s.text}, which differs too"
     return ""
 
 
