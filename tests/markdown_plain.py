@@ -80,7 +80,7 @@ def _token(token: Token) -> str:
         return "]"
     align = str(token.attrs.get("style", "")).removeprefix("text-align:")
     match token.type:
-        case "text":
+        case "text" | "text_special":  # the parser leaves escapes apart in an image within an image
             return token.content
         case "heading_open":
             return f"heading{token.tag[1]}["
