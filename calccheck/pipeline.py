@@ -8,8 +8,10 @@ from fractions import Fraction
 
 from calccheck.arithmetic import Doubt
 from calccheck.edits import stray, unmark
+from calccheck.judge.quantities import frequencies
 from calccheck.judge.scope import Ledger, Solve
 from calccheck.judge.sheet import judge_sheet
+from calccheck.judge.symbols import instance, points
 from calccheck.judge.working import work_out as worked_out
 from calccheck.model import Circuit, CircuitFigures, Finding, Reading, Report, Settings, Solution, WorkedQuantity
 from calccheck.read.expression import parse
@@ -26,7 +28,13 @@ def check(sheet: Sheet, settings: Settings | None = None) -> Report:
     solutions, faults = _solved(reading.circuits, solve_once)
     judged, findings = judge_sheet(reading, solve_once, reading.settings.on or date.today())
     every = sorted((*reading.findings, *_stray_marks(reading), *faults, *findings), key=lambda f: f.span.start)
-    return Report(reading, judged, tuple(every), _figures(reading, solutions), solutions)
+    return Report(
+        reading,
+        judged,
+        tuple(every),
+        _figures(reading, solutions),
+        tuple(found[0] if found else None for found in solutions),
+    )
 
 
 def _stray_marks(reading: Reading) -> list[Finding]:
@@ -54,43 +62,50 @@ def solver() -> Solve:
     return solve_once
 
 
-def _solved(circuits: Sequence[Circuit], solve_once: Solve) -> tuple[tuple[Solution | None, ...], list[Finding]]:
-    """Each circuit as drawn, solved or not, with the findings that say why not."""
-    solutions: list[Solution | None] = []
+def _solved(circuits: Sequence[Circuit], solve_once: Solve) -> tuple[list[list[Solution]], list[Finding]]:
+    """Each circuit as drawn, solved at each frequency of its sources or not at all, with the findings that say why not."""
+    point = points(circuits)[0]
+    solutions: list[list[Solution]] = []
     faults: list[Finding] = []
-    for circuit in circuits:
+    for circuit in (instance(c, point) for c in circuits):
         try:
-            solutions.append(solve_once(circuit))
+            solutions.append([solve_once(circuit, f) for f in frequencies(circuit)])
         except Doubt:
-            solutions.append(None)
+            solutions.append([])
             faults += _faults(circuit)
-    return tuple(solutions), faults
+    return solutions, faults
 
 
 def _faults(circuit: Circuit) -> tuple[Finding, ...]:
     """Why a circuit has no solution; what its reader said already is not said twice."""
     if circuit.problems:
         return ()
-    try:
-        solve(circuit)
-    except Unsolvable as u:
-        return u.findings
+    for frequency in frequencies(circuit):
+        try:
+            solve(circuit, *([frequency] if frequency else []))
+        except Unsolvable as u:
+            return u.findings
     return ()
 
 
-def _figures(reading: Reading, solutions: Sequence[Solution | None]) -> tuple[CircuitFigures, ...]:
+def _figures(reading: Reading, solutions: Sequence[Sequence[Solution]]) -> tuple[CircuitFigures, ...]:
+    """How well the two routes agree on each circuit, at the worst of its frequencies."""
     return tuple(
         CircuitFigures(
             c.name, reading.sheet.line_column(c.span.start)[0], len(c.nodes()), len(c.elements),
-            s.gap if s else None, s.residual if s else None, s.balance if s else None,
+            max((s.gap for s in found), default=None), max((s.residual for s in found), default=None),
+            max((s.balance for s in found), default=None),
         )
-        for c, s in zip(reading.circuits, solutions, strict=True)
+        for c, found in zip(reading.circuits, solutions, strict=True)
     )  # fmt: skip
 
 
 def work_out(sheet: Sheet, quantity: str, settings: Settings | None = None) -> WorkedQuantity:
     """The independent working of one quantity of a sheet's circuit. Raises ``Doubt`` with the reason where there is none."""
     reading = read_sheet(Sheet(sheet.name, unmark(sheet.text)), settings or Settings())
+    point = points(reading.circuits)[0]
+    if point:
+        raise Doubt("the circuit has free symbols: no number can be worked out")
     ledger = Ledger(reading.circuits, solver(), reading.settings)
     piece = whole(quantity)
     return worked_out(parse(piece), piece.span(), ledger)

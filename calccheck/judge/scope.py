@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import math
+from collections.abc import Mapping
 from dataclasses import dataclass, field
 from fractions import Fraction
 from typing import Literal, Protocol
@@ -83,6 +84,7 @@ class Ledger:
     settings: Settings
     names: dict[str, Defined] = field(default_factory=dict)
     results: list[Result] = field(default_factory=list)
+    symbols: Mapping[str, Amount] = field(default_factory=dict)
 
 
 Sort = Literal["quantity", "part", "name", "constant"]
@@ -125,6 +127,8 @@ def meaning(ref: Reference, nearest: int, ledger: Ledger) -> Meaning | None:
     """What a reference means, or ``None`` for a name that nothing has."""
     if ref.word in ledger.names and not ref.braced:
         return Meaning("name", defined=ledger.names[ref.word])
+    if ref.word in ledger.symbols:
+        return Meaning("constant", constant=ledger.symbols[ref.word])
     if ref.word in _CONSTANTS:
         return Meaning("constant", constant=_CONSTANTS[ref.word])
     index = circuit_index(ref, nearest, ledger)

@@ -9,6 +9,7 @@ from fractions import Fraction
 from calccheck.judge.chain import judge_claim
 from calccheck.judge.rounding import Printed, fit, printed
 from calccheck.judge.scope import Ledger, Solve
+from calccheck.judge.symbols import combined, instance, points
 from calccheck.model import Finding, Judged, Reading, Waiver
 from calccheck.rules import RULES
 
@@ -18,14 +19,18 @@ def judge_sheet(reading: Reading, solve: Solve, on: date) -> tuple[tuple[Judged,
 
     ``solve`` gives the solution of a circuit or raises ``Doubt``. ``on``: the day by which waivers are judged.
     """
-    ledger = Ledger(reading.circuits, solve, reading.settings)
+    ledgers = [
+        Ledger(tuple(instance(c, p) for c in reading.circuits), solve, reading.settings, symbols=p)
+        for p in points(reading.circuits)
+    ]
+    symbols = sorted({name for c in reading.circuits for name, _ in c.symbols})
     judged: list[Judged] = []
     findings: list[Finding] = []
     for claim in reading.claims:
-        j, more, _ = judge_claim(claim, ledger)
-        j, waived = _waived(j, on)
+        found = [judge_claim(claim, ledger) for ledger in ledgers]
+        j, waived = _waived(combined([f[0] for f in found], symbols), on)
         judged.append(j)
-        findings += [*more, *waived]
+        findings += [*found[0][1], *waived]
     return tuple(judged), tuple(findings)
 
 
