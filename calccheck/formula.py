@@ -65,7 +65,7 @@ class Reference:
     """A name or a quantity: ``Rb``, ``Rp2``, ``V_bus due to Vb``, ``R_{a,b} without RL``.
 
     ``letter`` and ``subscripts`` are the parts of a name with a subscript (``V`` and ``('bus',)``), else ``word`` and ``()``.
-    ``braced``: the subscript stood in braces. What the name means is decided where circuits and definitions are known.
+    ``braced``: the subscript stood in braces. ``maths``: it stands in dollar maths, where ``R_1`` may mean the part R1. What the name means is decided where circuits and definitions are known.
     """
 
     word: str
@@ -76,6 +76,7 @@ class Reference:
     qualifiers: Qualifiers = NO_QUALIFIERS
     prefix: Prefix = ""
     text: str = ""
+    maths: bool = False
 
 
 @dataclass(frozen=True, slots=True)

@@ -3,8 +3,9 @@
 from __future__ import annotations
 
 import math
+import re
 from collections.abc import Mapping
-from dataclasses import dataclass, field
+from dataclasses import dataclass, field, replace
 from fractions import Fraction
 from typing import Literal, Protocol
 
@@ -125,6 +126,22 @@ def circuit_index(ref: Reference, nearest: int, ledger: Ledger) -> int:
 
 def meaning(ref: Reference, nearest: int, ledger: Ledger) -> Meaning | None:
     """What a reference means, or ``None`` for a name that nothing has."""
+    found = _as_spelt(ref, nearest, ledger)
+    if not ref.maths or not ref.subscripts:
+        return found
+    joined = replace(
+        ref, word=ref.letter + "".join(ref.subscripts), letter="", subscripts=(), braced=False, maths=False
+    )
+    part = _as_spelt(joined, nearest, ledger) if not ref.qualifiers.due_to and not ref.qualifiers.changes else None
+    if found is not None and part is not None:
+        raise Doubt(
+            f"{ref.text} may be {joined.word} or a quantity: write \\mathrm{{{joined.word}}} or put it in code",
+            ref.span,
+        )
+    return found if part is None else part
+
+
+def _as_spelt(ref: Reference, nearest: int, ledger: Ledger) -> Meaning | None:
     if ref.word in ledger.names and not ref.braced:
         return Meaning("name", defined=ledger.names[ref.word])
     if ref.word in ledger.symbols:
@@ -149,7 +166,7 @@ def quantity_key(ref: Reference, index: int, circuit: Circuit, ledger: Ledger) -
     if ref.letter not in QUANTITY_LETTERS:
         return None
     nodes = circuit.nodes()
-    subs = ref.subscripts
+    subs = tuple(_in_maths(s, circuit) for s in ref.subscripts) if ref.maths else ref.subscripts
     if ref.letter in _TWO_NODES:
         fits = len(subs) == 2 and all(s in nodes for s in subs)
     elif len(subs) == 2:
@@ -162,8 +179,18 @@ def quantity_key(ref: Reference, index: int, circuit: Circuit, ledger: Ledger) -
     if not fits:
         return None
     q = ref.qualifiers
-    changes = tuple((c.part, c.what, _replacement(c, ledger, circuit)) for c in q.changes)
-    return Key(index, ref.letter, subs, frozenset(q.due_to), changes, q.frequency)
+    due_to = frozenset(_in_maths(s, circuit) for s in q.due_to) if ref.maths else frozenset(q.due_to)
+    changes = tuple(
+        (_in_maths(c.part, circuit) if ref.maths else c.part, c.what, _replacement(c, ledger, circuit))
+        for c in q.changes
+    )
+    return Key(index, ref.letter, subs, due_to, changes, q.frequency)
+
+
+def _in_maths(name: str, circuit: Circuit) -> str:
+    """A part's name in maths: ``R_1`` is the part R1 where nothing is called R_1."""
+    plain = re.sub(r"[_{}]", "", name)
+    return plain if circuit.element(name) is None and circuit.element(plain) is not None else name
 
 
 def _replacement(change: Change, ledger: Ledger, circuit: Circuit) -> Amount | None:

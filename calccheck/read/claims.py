@@ -11,6 +11,7 @@ from calccheck.document import Block, Inline, blocks, inlines
 from calccheck.model import Claim, Finding, Place, Problem, Waiver
 from calccheck.read.attributes import read_tolerance
 from calccheck.read.expression import parse_chain
+from calccheck.read.maths import has_relation, parse_maths, rows
 from calccheck.read.prose import prose_claims
 from calccheck.read.tables import reads_as_table, table_claims
 from calccheck.read.waivers import read_waiver, waiver_text
@@ -194,13 +195,19 @@ def _table(found: Found, block: Block, circuit: int, names: Sequence[str]) -> No
 
 
 def _maths(text: Piece, span: Span, circuit: int) -> list[Claim]:
-    """Dollar maths with a relation: recognised, not read in this version."""
-    if not re.search(r"[=≈<≤>≥]|\\(?:approx|leq?|geq?|lt|gt)\b", text.text):
+    """Dollar maths with a relation: a claim a statement."""
+    if not has_relation(text.text):
         return []
-    problem = Problem(
-        "dollar maths is not read in this version; write the claim in inline code or a working fence", span
-    )
-    return [Claim(text.strip().text, span, "math", circuit, problem=problem)]
+    found = rows(text)
+    return [_formula(p, p.span() if len(found) > 1 else span, circuit) for p in found if has_relation(p.text)]
+
+
+def _formula(piece: Piece, span: Span, circuit: int) -> Claim:
+    claim = Claim(" ".join(piece.text.split()), span, "math", circuit)
+    try:
+        return replace(claim, members=parse_maths(piece))
+    except Doubt as d:
+        return replace(claim, problem=Problem(d.reason, d.span or span, d.suggestion))
 
 
 # --- waivers --------------------------------------------------------------------------------------------------------

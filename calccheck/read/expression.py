@@ -64,9 +64,9 @@ def parse_value(piece: Piece) -> Node:
     return node
 
 
-def parse_chain(piece: Piece) -> tuple[Member, ...]:
-    """``member = member ≤ member``: the members with the relation before each."""
-    p = Parser(piece)
+def parse_chain(piece: Piece, seen: list[Token] | None = None) -> tuple[Member, ...]:
+    """``member = member ≤ member``: the members with the relation before each. ``seen``: tokens of dollar maths."""
+    p = Parser(piece, seen)
     members: list[Member] = []
     relation = ""
     while True:
@@ -93,10 +93,11 @@ def parse_qualifiers(piece: Piece) -> Qualifiers:
 class Parser:
     """The state of one parse: the tokens of a piece and how far they are taken."""
 
-    __slots__ = ("at", "deep", "piece", "seen")
+    __slots__ = ("at", "deep", "maths", "piece", "seen")
 
-    def __init__(self, piece: Piece) -> None:
-        self.piece, self.seen, self.at, self.deep = piece, tokens(piece), 0, 0
+    def __init__(self, piece: Piece, seen: list[Token] | None = None) -> None:
+        self.piece, self.seen, self.at, self.deep = piece, seen or tokens(piece), 0, 0
+        self.maths = seen is not None
 
     @property
     def now(self) -> Token:
@@ -167,6 +168,9 @@ class Parser:
             self.take()
             exponent = Number(Decimal(superscript(t.text)), self.piece.span(t.start, t.end))
             return Binary("^", left, exponent, self.span(start))
+        if t.kind == "word" and t.text in UNITS and _is_power_of_numbers(left):
+            unit, unit_words = self.unit()  # 10⁻³ V
+            return Group(left, self.span(start), unit, unit_words)
         if t.kind in ("number", "imaginary", "word", "braced") or self.is_operator("("):
             return self.juxtaposed(left, start, above)
         binding = _BINDING.get(t.text, 0) if t.kind == "operator" else 0
@@ -369,7 +373,7 @@ class Parser:
         found = self.qualifiers()
         return Reference(
             t.text, self.span(t.start), letter if parts else "", parts, braced, found,
-            text=self.piece.text[t.start : self.seen[self.at - 1].end],
+            text=self.piece.text[t.start : self.seen[self.at - 1].end], maths=self.maths,
         )  # fmt: skip
 
     def qualifiers(self) -> Qualifiers:
@@ -462,6 +466,14 @@ class Parser:
             if isinstance(number, Number) and number.unit.dimension == HERTZ:
                 return Fraction(number.digits) * number.unit.factor
         self.fail(f"expected a frequency or dc behind at, found {self.shown(t)}", t)
+
+
+def _is_power_of_numbers(node: Node) -> bool:
+    if not (isinstance(node, Binary) and node.operator == "^" and isinstance(node.left, Number)):
+        return False
+    exponent = node.right.inner if isinstance(node.right, Group) else node.right
+    exponent = exponent.operand if isinstance(exponent, Unary) else exponent
+    return isinstance(exponent, Number) and not node.left.unit.text
 
 
 def _with_unit_of(low: Node, high: Node) -> Node:
