@@ -6,7 +6,7 @@ from collections.abc import Mapping
 from dataclasses import dataclass, field
 from datetime import date
 from fractions import Fraction
-from typing import Literal
+from typing import Literal, get_args
 
 from calccheck.arithmetic import Amount, Value
 from calccheck.document import Block
@@ -341,9 +341,33 @@ class Settings:
             return Fraction(0)
 
 
+Role = Literal["originator", "checker", "approver"]
+ROLES: tuple[Role, ...] = get_args(Role)
+
+
+@dataclass(frozen=True, slots=True)
+class Signature:
+    """A signature under a sheet, as it stands in the front matter.
+
+    ``form``: version of the canonical form that was digested; ``digest``: of the whole, SHA-256 in hexadecimal; ``parts``:
+    the beginning of the digest of each part by its name (``signatures.PARTS``).
+    """
+
+    role: Role
+    name: str
+    on: date
+    form: int
+    digest: str
+    parts: Mapping[str, str]
+    span: Span
+
+
 @dataclass(frozen=True, slots=True)
 class Reading:
-    """A sheet as read: what the first stage hands on. ``title``: front matter fields as text, in the order written."""
+    """A sheet as read: what the first stage hands on.
+
+    ``title``: front matter fields as text, in the order written, without settings and signatures.
+    """
 
     sheet: Sheet
     page: tuple[Block, ...]
@@ -354,6 +378,7 @@ class Reading:
     claims: tuple[Claim, ...]
     findings: tuple[Finding, ...]
     not_read: int = 0
+    signatures: tuple[Signature, ...] = ()
 
 
 @dataclass(frozen=True, slots=True)
