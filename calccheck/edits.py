@@ -11,16 +11,15 @@ from __future__ import annotations
 import re
 from collections.abc import Iterator, Sequence
 from dataclasses import dataclass
-from hashlib import sha256
 from typing import Literal
 
 from calccheck.source import Span
 
 _BEGIN = "marks, written by the program; `calccheck mark --remove` takes them out -->"
-_END = re.compile(r"<!-- (calccheck\d*) marks end here ([0-9a-f]{16}) -->([ \t\r\n]*)\Z")
+_END = r"<!-- (calccheck\d*) marks end here ([0-9a-f]{16}) -->([ \t\r\n]*)\Z"
 _LINE_END = re.compile(r"\r\n|\r|\n")
 _GUARD = "<!---->"  # between a reference and a bracket, which together would read as a link
-_STRAY = re.compile(
+_STRAY = (  # compiled only for a text that says calccheck
     r"(?P<list><!-- calccheck\d* marks(?:,| end here)[^\r\n]*?-->)"
     r"|\[\^calccheck\d*-\d+m?\]"
     r"| {2}# [^\r\n]{0,2000}? \(calccheck\d*-[0-9a-f]{6}\)(?=[\r\n]|\Z)"
@@ -122,6 +121,8 @@ def _margin(text: str, at: int) -> str:
 
 def _digest(words: str, length: int) -> str:
     """The beginning of the SHA-256 of words, the same whatever the line ends are."""
+    from hashlib import sha256  # late: most texts bear no marks
+
     return sha256(_LINE_END.sub("\n", words).encode("utf-8", "surrogatepass")).hexdigest()[:length]
 
 
@@ -150,7 +151,7 @@ def stray(text: str) -> list[Stray]:
 
     Where the list of notes is among them nothing could be taken out, and it stands for all.
     """
-    found = list(_STRAY.finditer(text)) if "calccheck" in text else []
+    found = list(re.finditer(_STRAY, text)) if "calccheck" in text else []
     lists = [m for m in found if m["list"]]
     if lists:
         return [Stray(Span(*lists[0].span()), _CHANGED, True)]
@@ -159,7 +160,7 @@ def stray(text: str) -> list[Stray]:
 
 def _cuts(text: str) -> list[Span]:
     """What to take out, in order; nothing unless the text ends in an unchanged list of notes."""
-    closing = _END.search(text) if "<!-- calccheck" in text else None
+    closing = re.search(_END, text) if "<!-- calccheck" in text else None
     if closing is None:
         return []
     label = closing[1]

@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import os
+import re
 import stat
 from collections.abc import Iterator, Sequence
 from dataclasses import dataclass
@@ -127,7 +128,7 @@ def settings_table(folder: Path) -> tuple[str, dict[str, Any]]:
     """
     path = next((p for p in (d / "pyproject.toml" for d in (folder, *folder.parents)) if p.is_file()), None)
     text = read_text(path) if path is not None else ""
-    if "calccheck" not in text:
+    if not re.search(r"""tool["'\s]*\.["'\s]*calccheck|^\s*\[\s*["']?tool["']?\s*\]""", text, re.MULTILINE):
         return str(path), {}
     import tomllib  # late: most projects keep no settings of ours
 

@@ -229,6 +229,17 @@ def test_settings_of_the_nearest_project_file(folder, capsys):
     assert run(capsys, "check", "sub/a.md")[0] == 0
 
 
+@pytest.mark.parametrize(
+    "table",
+    ["[tool.calccheck]\napprox = '1 %'", "[ tool . 'calccheck' ]\napprox = '1 %'", "tool.calccheck.approx = '1 %'",
+     "[tool]\ncalccheck = {approx = '1 %'}", "[tool]\ncalccheck.approx = 0.01", "# x\n ['tool']\ncalccheck.approx = '1%'"],
+)  # fmt: skip
+def test_settings_however_toml_lets_them_be_written(folder, capsys, table):
+    write(folder / "pyproject.toml", f"{table}\n")
+    write(folder / "a.md", CIRCUIT + "\n`V_b ≈ 7.8 V`\n")
+    assert run(capsys, "check")[0] == 1
+
+
 def test_the_day_on_which_waivers_are_judged(folder, capsys):
     waiver = '<!-- calccheck: accept 7.6 V for 7.5 V "measured" by QD until 2027-03-01 -->'
     write(folder / "a.md", WRONG.replace("`.", f"` {waiver}."))
