@@ -124,6 +124,8 @@ PLACES = {
     "quotes": ("quote", " > a\nb\n\n>", [("> a\nb", 1, 2), (">", 4, 1)]),
     "paragraphs": ("paragraph", "  a\n  b  \n\n- c\n\n  d", [("a\n  b", 1, 3), ("c", 4, 3), ("d", 6, 3)]),
     "fences": ("fence", "- ```x\n  a\n  ```  \n~~~\nb", [("```x\n  a\n  ```", 1, 3), ("~~~\nb", 4, 1)]),
+    "code": ("code", "a\n\n      b  \n\n    c\n\n- d\n\n      e", [("  b  \n\n    c", 3, 5), ("e", 9, 7)]),
+    "html": ("html", "  <div>\na\n\n- <b>", [("  <div>\na", 1, 1), ("<b>", 4, 3)]),
     "rules": ("rule", "- ***\n\n * * *  ", [("***", 1, 3), ("* * *", 3, 2)]),
     "notes": ("note", "> [^a]: b\n\n[^c]:\n", [("[^a]: b", 1, 3), ("[^c]:", 3, 1)]),
     "lists": ("list", "1. a\n2. b\n\n- c", [("1. a\n2. b", 1, 1), ("- c", 4, 1)]),

@@ -163,10 +163,12 @@ def _fence(token: Token, begin: int, page: Page) -> Block:
 
 
 def _verbatim(token: Token, begin: int, page: Page) -> Block:
+    """Indented code or HTML; blanks before it that no container takes are part of it."""
     first, behind = _lines(token)
+    lines = places.tails(page, token.content, first)
+    end = places.span_to_line_end(page, begin, first, behind - 1).end
     kind: BlockKind = "html" if token.type == "html_block" else "code"
-    span = places.span_to_line_end(page, begin, first, behind - 1)
-    return Block(kind, span, lines=places.tails(page, token.content, first))
+    return Block(kind, Span(lines[0].span().start, end), lines=lines)
 
 
 def _maths(token: Token, begin: int, page: Page) -> Block:
