@@ -4,17 +4,18 @@ from __future__ import annotations
 
 from calccheck.arithmetic import Amount, size
 from calccheck.judge import say
-from calccheck.judge.members import Names, Worked
+from calccheck.judge.members import Worked
 from calccheck.judge.rounding import SLACK
 from calccheck.model import Relation, Step
 
 BOUNDS: dict[Relation, Relation] = {"<": ">", "≤": "≥", ">": "<", "≥": "≤"}
 
 
-def judge_bound(left: Amount, right: Amount, first: Worked, subject: Worked, limit_right: bool, names: Names) -> Step:
+def judge_bound(left: Amount, right: Amount, first: Worked, subject: Worked, limit_right: bool, both: bool) -> Step:
     """One bound. ``first``: the member behind the relation. ``subject``: the member before it.
 
-    ``limit_right``: whether the limit stands on the right. A limit above zero says nothing of a quantity below zero.
+    ``limit_right``: whether the limit stands on the right. A limit above zero says nothing of a quantity below zero, unless
+    ``both`` sides are bounded, as in ``−0.3 V ≤ V_in ≤ 5.3 V``.
     """
     relation = first.relation
     member = first.member
@@ -25,9 +26,9 @@ def judge_bound(left: Amount, right: Amount, first: Worked, subject: Worked, lim
     label = subject.member.text if limit_right else member.text
     if isinstance(q.value, complex) or isinstance(limit.value, complex):
         return Step(text, member.span, relation, "unchecked", limit, f"a phasor is bounded by its magnitude: |{label}|")
-    if seen in ("<", "≤") and limit.value > 0 > q.value:
+    if not both and seen in ("<", "≤") and limit.value > 0 > q.value:
         return Step(text, member.span, relation, "unchecked", limit, say.says_nothing(label, q, "below"))
-    if seen in (">", "≥") and limit.value < 0 < q.value:
+    if not both and seen in (">", "≥") and limit.value < 0 < q.value:
         return Step(text, member.span, relation, "unchecked", limit, say.says_nothing(label, q, "above"))
     slack = SLACK * size(limit.value)
     room = limit.value - q.value if seen in ("<", "≤") else q.value - limit.value

@@ -295,7 +295,8 @@ def _bounds(segments: Sequence[Segment], job: Work) -> None:
         if left.truth is None or right.truth is None or first.relation not in BOUNDS:
             continue
         limit_right = right.only_a_value or (right.basis != "circuit" and not left.only_a_value)
-        job.steps.append(judge_bound(left.truth, right.truth, first, left.members[left.at], limit_right, job.names))
+        subject = left.members[left.at]
+        job.steps.append(judge_bound(left.truth, right.truth, first, subject, limit_right, len(segments) == 3))
         if left.truth.dimension != right.truth.dimension:
             _dimension_of_bound(first, job)
 

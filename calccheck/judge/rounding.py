@@ -9,6 +9,7 @@ from __future__ import annotations
 from dataclasses import dataclass, replace
 from decimal import Decimal
 from fractions import Fraction
+from itertools import takewhile
 from typing import Literal
 
 from calccheck.arithmetic import ICE, Amount, Real, Value, literal, real, size
@@ -75,7 +76,7 @@ def on_scale(p: Printed, truth: Real) -> tuple[Printed, Real]:
 
 def figures(digits: Decimal) -> int:
     """Significant figures as printed: leading zeros do not count, trailing zeros do."""
-    return len(str(abs(int(digits.scaleb(-int(digits.as_tuple().exponent)))))) if digits else 0
+    return len(digits.as_tuple().digits) if digits else 0
 
 
 Fit = Literal["exact place", "cut off", "whole zeros", "no"]
@@ -106,10 +107,10 @@ def fit(p: Printed, truth: Real, carry: Fraction, scale: Real = 0) -> Fit:
 
 def _zeros_at_end(digits: Decimal) -> int:
     """How many zeros end a whole number written without a point or an exponent."""
-    if int(digits.as_tuple().exponent) != 0 or digits == 0:
+    shown = digits.as_tuple()
+    if shown.exponent != 0 or digits == 0:
         return 0
-    text = str(abs(int(digits)))
-    return len(text) - len(text.rstrip("0"))
+    return sum(1 for _ in takewhile(lambda d: d == 0, reversed(shown.digits)))
 
 
 def coarse(p: Printed, truth: Real) -> bool:

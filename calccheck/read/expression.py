@@ -7,7 +7,7 @@ from __future__ import annotations
 
 import re
 from dataclasses import replace
-from decimal import Decimal
+from decimal import Decimal, InvalidOperation
 from fractions import Fraction
 from typing import NoReturn, cast
 
@@ -25,6 +25,7 @@ from calccheck.formula import (
     Range,
     Reference,
     Unary,
+    children,
 )
 from calccheck.model import Member, Relation
 from calccheck.read.tokens import RELATIONS, Token, superscript, tokens
@@ -41,6 +42,8 @@ RESERVED = FUNCTIONS | PREFIXES | QUALIFIER_WORDS | {
 }  # fmt: skip
 DEEPEST = 100
 LONGEST_SUM = 200
+LONGEST_CHAIN = 200
+TALLEST = 220  # levels of operations, which are worked out one within the other
 
 _BINDING = {"+": 10, "-": 10, "×": 20, "·": 20, "÷": 20, "∥": 30, "^": 50, "∠": 45}
 _JUXTAPOSED = 40
@@ -53,6 +56,7 @@ def parse(piece: Piece) -> Node:
     p = Parser(piece)
     node = p.expression()
     p.expect_end()
+    p.refuse_tall(node)
     return node
 
 
@@ -61,6 +65,7 @@ def parse_value(piece: Piece) -> Node:
     p = Parser(piece)
     node = p.member()
     p.expect_end()
+    p.refuse_tall(node)
     return node
 
 
@@ -72,6 +77,9 @@ def parse_chain(piece: Piece, seen: list[Token] | None = None) -> tuple[Member, 
     while True:
         start = p.now.start
         node = p.member()
+        p.refuse_tall(node)
+        if len(members) == LONGEST_CHAIN:
+            p.fail(f"more than {LONGEST_CHAIN} members in one chain; part it")
         end = p.seen[p.at - 1].end
         text = piece.text[start:end]
         members.append(Member(cast(Relation, relation), node, text, piece.span(start, end)))
@@ -117,6 +125,16 @@ class Parser:
         """Give up at a token."""
         t = token or self.now
         raise Doubt(reason, self.piece.span(t.start, max(t.end, t.start + 1)), suggestion)
+
+    def refuse_tall(self, node: Node) -> None:
+        """Operations within operations may not pile up beyond what can be worked out."""
+        if len(self.seen) < TALLEST:
+            return
+        level, height = [node], 0
+        while level:
+            level, height = [c for n in level for c in children(n)], height + 1
+            if height > TALLEST:
+                raise Doubt(f"more than {TALLEST} operations within one another; part the formula", node.span)
 
     def expect_end(self) -> None:
         """Nothing may follow."""
@@ -166,6 +184,8 @@ class Parser:
         t = self.now
         if t.kind == "superscript":
             self.take()
+            if len(t.text) > 4:
+                self.fail("the power does not fit a floating-point number", t)
             exponent = Number(Decimal(superscript(t.text)), self.piece.span(t.start, t.end))
             return Binary("^", left, exponent, self.span(start))
         if t.kind == "word" and t.text in UNITS and _is_power_of_numbers(left):
@@ -179,7 +199,7 @@ class Parser:
         self.take()
         if t.text == "∠":
             return self.phasor(left, start)
-        right = self.expression(binding - 1 if t.text == "^" else binding)
+        right = self.exponent() if t.text == "^" else self.expression(binding)
         if t.text == "÷" and isinstance(right, Binary) and right.operator == "·":
             raise Doubt(
                 "what stands behind the stroke can be read two ways: put brackets around all that is below it",
@@ -199,6 +219,15 @@ class Parser:
             unit, unit_words = self.unit()
             magnitude = replace(magnitude, unit=unit, unit_words=unit_words)
         return Binary("∠", magnitude, angle, self.span(start))
+
+    def exponent(self) -> Node:
+        """What stands behind ^: its sign belongs to it alone, and a unit behind it would belong to the power."""
+        t = self.now
+        sign = self.take() if self.is_operator("-", "+") else None
+        right = self.expression(_BINDING["^"] - 1)
+        if isinstance(right, Number) and right.unit.text:
+            self.fail("a unit behind an exponent: write 1e-3 A or 10^-3 × 1 A", t)
+        return right if sign is None else Unary("-" if sign.text == "-" else "+", right, self.span(t.start))
 
     def juxtaposed(self, left: Node, start: int, above: int) -> Node | None:
         """``2 R1``, ``2(R1 + R2)``: a product without a sign."""
@@ -260,7 +289,10 @@ class Parser:
         follows = self.now
         if follows.kind == "word" and follows.start == t.end and follows.text not in UNITS and follows.text != "π":
             self.glued(t, follows)
-        digits = Decimal(t.text)
+        try:
+            digits = Decimal(t.text)
+        except InvalidOperation:  # an exponent of twenty digits
+            self.fail("a number out of range", t)
         if abs(digits.adjusted()) > 300:
             self.fail("a number out of range", t)
         unit, unit_words = self.unit()
@@ -317,12 +349,12 @@ class Parser:
             return None
         self.take()
         exponent = 1
-        if self.now.kind == "superscript":
+        if self.now.kind == "superscript" and len(self.now.text) <= 4:
             exponent = superscript(self.take().text)
         elif self.is_operator("^") and self.seen[self.at + 1].kind == "number" and known.dimension != NONE:
             self.take()
             raised = self.take()
-            if not raised.text.isdigit():
+            if not (raised.text.isdigit() and len(raised.text) <= 4):
                 self.fail("a unit is raised to a whole number", raised)
             exponent = int(raised.text)
         if not 0 < abs(exponent) <= 9:

@@ -28,6 +28,7 @@ _TOKEN = re.compile(
     |(?P<operator>//|~=|<=|>=|\.\.\.|[-+×·*/÷^√∥()\[\]|=≈<≤>≥,±∠…°%])""",
     re.VERBOSE,
 )
+_EXPONENT = re.compile(_NUMBER)  # behind ^ a number ends before a × 10³, which multiplies the power
 _SAME = {"//": "∥", "*": "×", "/": "÷", "~=": "≈", "<=": "≤", ">=": "≥", "...": "…", "[": "(", "]": ")"}
 _UP = str.maketrans(SUPERSCRIPTS + "⁻", "0123456789-")
 _GAPS = str.maketrans("", "", "\u2009\u202f\u00a0")
@@ -56,6 +57,8 @@ def tokens(piece: Piece) -> list[Token]:
         if m is None:
             raise _strange(piece, text, at)
         kind = m.lastgroup
+        if kind == "number" and found and found[-1].text == "^":
+            m = _EXPONENT.match(text, at) or m
         if kind == "number":
             _refuse_comma_and_point(piece, text, m)
             found.append(Token("number", _plain(m.group()), at, m.end()))
