@@ -13,7 +13,7 @@ from fractions import Fraction
 
 from calccheck.formula import Binary, Call, Group, Node, Number, Range, Reference, Unary
 from calccheck.source import Span
-from calccheck.units import AMPERE, FARAD, HENRY, NONE, OHM, SECOND, VOLT, Dimension, unit_of, words
+from calccheck.units import AMPERE, FARAD, HENRY, NONE, OHM, SECOND, VOLT, WATT, Dimension, unit_of, words
 
 Real = Fraction | float
 Value = Fraction | float | complex  # complex: a phasor or an impedance; a complex value never has a zero imaginary part
@@ -42,13 +42,14 @@ class Amount:
     """A value in coherent SI units with its dimension.
 
     ``point``: a temperature on the scale, not a difference. ``frequency``: of a phasor in a circuit of several frequencies, in
-    hertz; phasors of different frequencies neither add nor multiply.
+    hertz; phasors of different frequencies neither add nor multiply. ``level``: a number of decibels.
     """
 
     value: Value
     dimension: Dimension = NONE
     point: bool = False
     frequency: Fraction | None = None
+    level: bool = False
 
 
 def size(value: Value) -> Real:
@@ -79,7 +80,7 @@ def literal(number: Number) -> Amount:
     value = Fraction(number.digits) * number.unit.factor
     if number.unit.celsius:
         return Amount(value + ICE, number.unit.dimension, point=True)
-    return Amount(value, number.unit.dimension)
+    return Amount(value, number.unit.dimension, level=number.unit.text == "dB")
 
 
 def evaluate(node: Node, lookup: Lookup, number: Literal = literal) -> Amount:
@@ -105,6 +106,8 @@ def evaluate(node: Node, lookup: Lookup, number: Literal = literal) -> Amount:
                 return _product(inner, Amount(n.unit.factor, n.unit.dimension), n.span)
             case Binary():
                 return _binary(n, work(n.left), work(n.right))
+            case Call(function="dB"):
+                return decibels(n.arguments[0], work)
             case Call():
                 return _call(n, [work(a) for a in n.arguments])
             case Range():
@@ -180,8 +183,10 @@ def _sum(a: Amount, b: Amount, sign: int, n: Binary) -> Amount:
         return Amount(_add(a.value, -b.value), a.dimension)
     if b.point and not a.point and sign < 0:
         raise Doubt("a temperature is taken from a difference; write the difference in K", n.span)
+    if a.level != b.level:
+        raise DimensionFault("decibels and a plain number cannot be added", n.span)
     frequency = _one_frequency(a, b, n.span)
-    return Amount(_add(a.value, b.value if sign > 0 else -b.value), a.dimension, a.point or b.point, frequency)
+    return Amount(_add(a.value, b.value if sign > 0 else -b.value), a.dimension, a.point or b.point, frequency, a.level)
 
 
 def _add(a: Value, b: Value) -> Value:
@@ -191,8 +196,11 @@ def _add(a: Value, b: Value) -> Value:
 def _product(a: Amount, b: Amount, span: Span) -> Amount:
     if a.point or b.point:
         raise Doubt("a temperature in °C is multiplied; write a difference in K", span)
+    if a.level and b.level:
+        raise Doubt("decibels are multiplied by decibels; gains in series add their decibels", span)
     dimension = tuple(x + y for x, y in zip(a.dimension, b.dimension, strict=True))
-    return Amount(trimmed(a.value * b.value), dimension, frequency=_one_frequency(a, b, span))
+    level = (a.level or b.level) and dimension == NONE
+    return Amount(trimmed(a.value * b.value), dimension, frequency=_one_frequency(a, b, span), level=level)
 
 
 def reciprocal(a: Amount, span: Span) -> Amount:
@@ -250,6 +258,31 @@ def _raised(base: Value, exponent: Real, span: Span) -> Value:
     return math.pow(float(base), float(exponent))
 
 
+def decibels(node: Node, work: Callable[[Node], Amount]) -> Amount:
+    """20 log10 of a ratio of two voltages or currents, 10 log10 of a ratio of two powers (IEC 60027-3).
+
+    Raises ``Doubt`` for a bare number, which may be either.
+    """
+    ratio = node
+    while isinstance(ratio, Group) and not ratio.unit.text:
+        ratio = ratio.inner
+    if isinstance(ratio, Call) and ratio.function == "abs":
+        ratio = ratio.arguments[0]
+    if not (isinstance(ratio, Binary) and ratio.operator == "÷"):
+        raise Doubt(
+            "dB takes a ratio of two voltages, currents or powers; of a number it may be 10 or 20 log", node.span
+        )
+    over, under = work(ratio.left), work(ratio.right)
+    factor = {VOLT: 20, AMPERE: 20, WATT: 10}.get(over.dimension)
+    if factor is None or over.dimension != under.dimension:
+        raise Doubt(
+            "dB takes a ratio of two voltages, currents or powers; of anything else it may be 10 or 20 log", node.span
+        )
+    if over.value == 0 or under.value == 0:
+        raise Doubt("a ratio of or to zero has no decibels", node.span)
+    return Amount(factor * math.log10(size(over.value) / size(under.value)), level=True)
+
+
 def _unary(n: Unary, a: Amount) -> Amount:
     if n.sign == "√":
         return power(a, Amount(Fraction(1, 2)), n.span)
@@ -283,8 +316,6 @@ _FUNCTIONS: dict[str, Callable[[float], float]] = {
 
 def _call(n: Call, arguments: list[Amount]) -> Amount:
     first = arguments[0]
-    if n.function == "dB":
-        raise Doubt("dB is not read in this version", n.span)
     if n.function in ("min", "max"):
         if any(x.dimension != first.dimension for x in arguments):
             raise DimensionFault(f"{n.function}() compares unlike quantities", n.span)

@@ -18,4 +18,6 @@ def shown(a: Amount, like: Unit | str = PLAIN, figures: int = 6) -> str:
         return f"{printed(abs(a.value), a.dimension, figures, like)} ∠ {angle}°"
     if a.point:
         return f"{float(a.value) - _ICE:.{figures}g} °C".replace("-", "−")
+    if a.level:
+        return f"{digits(a.value, figures)} dB".replace("-", "−")
     return printed(a.value, a.dimension, figures, like)

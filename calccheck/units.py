@@ -86,6 +86,7 @@ _ROWS: list[tuple[str, Fraction, Dimension, dict[str, int]]] = [
     ("ppm", Fraction(1, 10**6), NONE, {"": 0}),
     ("°", _DEGREE, NONE, {"": 0}),
     ("rad", Fraction(1), NONE, {"": 0, "m": -3}),
+    ("dB", Fraction(1), NONE, {"": 0}),
 ]
 
 

@@ -7,8 +7,8 @@ from dataclasses import dataclass, field, replace
 from fractions import Fraction
 from itertools import takewhile
 
-from calccheck.arithmetic import COHERENT, ICE, Amount, DimensionFault, Doubt, Real, literal, real, size
-from calccheck.formula import Number, numbers, references
+from calccheck.arithmetic import COHERENT, ICE, Amount, DimensionFault, Doubt, Real, decibels, evaluate, literal, real, size
+from calccheck.formula import Binary, Node, Number, numbers, references
 from calccheck.judge import quantities, say
 from calccheck.judge.laws import followed
 from calccheck.judge.members import Names, Worked, without_unit
@@ -109,6 +109,8 @@ def judge_member(w: Worked, relation: Relation, ground: Ground) -> Step:
     assert w.amount is not None
     w = _temperature(w, ground)
     assert w.amount is not None
+    if w.amount.level != ground.truth.level:
+        return _decibels(w, relation, ground)
     if w.amount.dimension != ground.truth.dimension or w.amount.point != ground.truth.point:
         return _other_dimension(w, relation, ground)
     if isinstance(w.printed, PrintedPhasor) or (w.printed is not None and isinstance(ground.truth.value, complex)):
@@ -137,6 +139,26 @@ def _temperature(w: Worked, ground: Ground) -> Worked:
         return replace(w, amount=replace(p.amount, point=True))
     kelvins = Amount(Fraction(p.digits), p.amount.dimension)
     return replace(w, amount=kelvins, printed=replace(p, amount=kelvins))
+
+
+def _decibels(w: Worked, relation: Relation, ground: Ground) -> Step:
+    """``V_out / V_in = 0.333 = −9.54 dB``: the truth taken in decibels where it is a ratio that has them."""
+    assert w.amount is not None
+    if not w.amount.level:
+        return _step(w, "unchecked", f"{_subject(ground)} is in dB, {w.member.text} is a plain number")
+    node = next((m.node for m in ground.members if _is_ratio(m.node)), ground.source.node)
+    try:
+        level = decibels(node, lambda n: evaluate(n, ground.names.amount))
+    except Doubt as d:
+        return _step(w, "unchecked", say.reason(d.reason))
+    plain, ground.truth = ground.truth, level
+    step = judge_member(w, relation, ground)
+    ground.truth = plain
+    return step
+
+
+def _is_ratio(node: Node) -> bool:
+    return isinstance(node, Binary) and node.operator == "÷" and bool(references(node))
 
 
 def _step(w: Worked, verdict: Verdict, message: str = "") -> Step:
