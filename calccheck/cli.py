@@ -31,8 +31,15 @@ This is a check of arithmetic and circuit laws. It is not an approval."""
 
 
 def entry() -> None:
-    """What the installed command runs."""
-    raise SystemExit(main())
+    """What the installed command runs.
+
+    It leaves without taking the interpreter down piece by piece, which would cost a tenth of a run: all files are closed and
+    all processes have ended by then.
+    """
+    status = main()
+    sys.stdout.flush()
+    sys.stderr.flush()
+    os._exit(status)
 
 
 def main(argv: Sequence[str] | None = None) -> int:
