@@ -17,6 +17,7 @@ from calccheck.model import Circuit, CircuitFigures, Finding, Reading, Report, S
 from calccheck.read.expression import parse
 from calccheck.read.sheet import read_sheet
 from calccheck.rules import RULES
+from calccheck.signatures import signature_findings
 from calccheck.solve import Unsolvable, solve
 from calccheck.source import Sheet, whole
 
@@ -27,7 +28,8 @@ def check(sheet: Sheet, settings: Settings | None = None) -> Report:
     solve_once = solver()
     solutions, faults = _solved(reading.circuits, solve_once)
     judged, findings = judge_sheet(reading, solve_once, reading.settings.on or date.today())
-    every = sorted((*reading.findings, *_stray_marks(reading), *faults, *findings), key=lambda f: f.span.start)
+    beside = (*_stray_marks(reading), *signature_findings(reading))
+    every = sorted((*reading.findings, *beside, *faults, *findings), key=lambda f: f.span.start)
     return Report(
         reading,
         judged,

@@ -37,5 +37,11 @@ RULES: dict[str, Rule] = {
     "waiver": Rule("error", "A waiver that cannot be read, has lapsed, or waives nothing", "sheet-language.md#waivers"),
     "waiver-idle": Rule("caution", "A waiver whose claim stands without it", "sheet-language.md#waivers"),
     "fence": Rule("error", "A fence is not closed", "sheet-language.md#a-sheet"),
+    "signature": Rule("error", "A signature cannot be read or is void", "reviewing.md#signatures"),
+    "reference": Rule("error", "A value from another sheet does not stand there", "reviewing.md#values-from-other-sheets"),
+    "hazard": Rule("caution", "A hazard that the sheet itself names", "reviewing.md#cautions"),
+    "touch-voltage": Rule("caution", "Voltages dangerous to touch", "reviewing.md#cautions"),
+    "mains": Rule("caution", "Sources at mains frequency", "reviewing.md#cautions"),
+    "stored-energy": Rule("caution", "Dangerous energy stored in a capacitor", "reviewing.md#cautions"),
     "mark": Rule("error", "A mark of an earlier run stands where it does not belong", "reviewing.md#marked-copies"),
 }

@@ -12,6 +12,7 @@ from calccheck.model import Circuit, Finding, Reading, Settings
 from calccheck.read.circuit_block import given_lines, read_circuit
 from calccheck.read.claims import assumption, read_claims
 from calccheck.read.markdown import read_page
+from calccheck.read.signatures import read_signatures
 from calccheck.read.titleblock import read_titleblock
 from calccheck.source import Piece, Sheet
 
@@ -21,6 +22,7 @@ def read_sheet(sheet: Sheet, repository: Settings) -> Reading:
     page = read_page(sheet.text)
     front = page[0] if page and page[0].kind == "front matter" else None
     title, settings, findings = read_titleblock(front, repository)
+    stated = title.pop("signatures", None) is not None
     fences = [b for b in blocks(page) if b.kind == "fence"]
     circuit_fences = [f for f in fences if _word(f) == "circuit"]
     is_calc = bool(circuit_fences) or any(_word(f) == "working" for f in fences) or "sheet" in title
@@ -33,9 +35,10 @@ def read_sheet(sheet: Sheet, repository: Settings) -> Reading:
         circuits.append(reading.circuit)
         findings = (*findings, *reading.findings)
     found = read_claims(page, _names(circuits), [given_lines(f) for f in circuit_fences])
-    every = sorted((*findings, *_same_names(circuits, sheet), *found.findings), key=lambda f: f.span.start)
+    signatures, faults = read_signatures(front, stated) if front else ((), ())
+    every = sorted((*findings, *faults, *_same_names(circuits, sheet), *found.findings), key=lambda f: f.span.start)
     return Reading(
-        sheet, page, True, title, settings, tuple(circuits), tuple(found.claims), tuple(every), found.not_read
+        sheet, page, True, title, settings, tuple(circuits), tuple(found.claims), tuple(every), found.not_read, signatures
     )  # fmt: skip
 
 

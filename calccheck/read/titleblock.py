@@ -10,6 +10,7 @@ from typing import Any
 from calccheck.document import Block
 from calccheck.model import Finding, Settings
 from calccheck.read.settings import SettingFault, with_setting
+from calccheck.read.signatures import plainly_written, signature_lines
 from calccheck.rules import RULES
 from calccheck.source import Piece, Span, joined
 
@@ -19,6 +20,7 @@ DEEPEST = 20
 # The simplest front matter, read without loading YAML (9 ms of a run's 60): a word, a colon, plain text in which no sign
 # means anything to YAML. ``tests/test_titleblock.py`` holds this reading against PyYAML.
 _SIMPLE = re.compile(r"(?P<key>[A-Za-z][A-Za-z0-9_]{0,39}):(?: +(?P<value>[^\W_][\w ,.;()/+%&°–—-]*?))? *")
+_CONFLICT = re.compile(r"^<{7} .*$", re.MULTILINE)  # as git writes it
 
 
 class _Fault(Exception):
@@ -44,7 +46,10 @@ class _Entry:
 def read_titleblock(
     front: Block | None, repo_settings: Settings
 ) -> tuple[dict[str, str], Settings, tuple[Finding, ...]]:
-    """The fields as text in the order written (``check`` left out), the sheet's settings over the repository's, findings."""
+    """The fields as text in the order written (``check`` left out), the sheet's settings over the repository's, findings.
+
+    Signatures are a field here like any other; ``read.signatures`` reads them line by line.
+    """
     if front is None:
         return {}, repo_settings, ()
     text = joined(front.lines)
@@ -98,6 +103,11 @@ def _simple(lines: tuple[Piece, ...]) -> _Entry | None:
     """Front matter of plain fields only; nothing where YAML is needed to be sure."""
     found = _Entry(0, 0, fields={})
     assert found.fields is not None
+    signed = signature_lines(lines) or range(0)
+    if signed:
+        if not plainly_written(lines, signed):
+            return None
+        lines = (*lines[: signed.start + 1], *lines[signed.stop :])
     for line in lines:
         m = _SIMPLE.fullmatch(line.text)
         if m is None or m["key"] in found.fields or m["key"] == "check":
@@ -122,6 +132,10 @@ def _by_yaml(text: str) -> _Entry:
     try:
         return _document(yaml.parse(text, Loader=loader))
     except yaml.MarkedYAMLError as e:
+        conflict = _CONFLICT.search(text)
+        if conflict:
+            reason = "a merge of two branches was left open here; keep what both wrote and delete the lines between"
+            raise _Fault(reason, *conflict.span()) from None
         mark = e.problem_mark or e.context_mark
         reason = " ".join(str(e.problem or e.context).split())
         raise _Fault(f"this is no YAML: {reason}", mark.index if mark else 0) from None
