@@ -18,7 +18,7 @@ from calccheck.read.waivers import read_waiver, waiver_text
 from calccheck.rules import RULES
 from calccheck.source import Piece, Span, joined
 
-RELATION = re.compile(r"[=≈<≤>≥]|~=")
+RELATION = re.compile(r"[=≈<≤>≥≅≃∼＝]|~=|~\s?[-−+]?[\d.]")
 _LEADS = re.compile(r"\s*(?:[=≈<≤>≥]|~=)")
 _GIVEN = re.compile(r"\s*given\b\s*")
 _FROM = re.compile(r"\s+from\s+(\S+)\s*$")

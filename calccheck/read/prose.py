@@ -9,28 +9,37 @@ import re
 from bisect import bisect_left
 from collections.abc import Sequence
 from functools import lru_cache
+from html import unescape
 from itertools import pairwise
 
 from calccheck.document import Block, inlines
 from calccheck.model import Claim, Problem
 from calccheck.source import NOWHERE
 
+_SIGNS = "=≈<≤>≥"
 _QUANTITY = r"(?:Isc|[VIPRZSQ])(?:\\?_\{[^{}]*\}|\\?_[A-Za-z0-9]\w*)|\|[VI]\\?_\w+\|"
 _VALUE = r"[-−+]?\s?(?:\d+(?:[.,]\d+)?|\.\d+)(?:\s?[a-zA-ZµμΩΩ%°][\w/·°%²³]*)?"
-_RELATION = r"(?:[=≈<≤>≥]|~=|\\?[<>]=?)"
+_RELATION = r"(?:~=|\\?[<>]=?|[=≈≤≥~≅≃∼]|&(?:l[te]|g[te]|leq|geq|ap|asymp|approx|equals);)"
+_ABOUT = dict.fromkeys(("~", "~=", "≅", "≃", "∼"), "≈")
 
 
 @lru_cache(maxsize=64)
 def _pattern(names: tuple[str, ...]) -> re.Pattern[str]:
     known = "|".join(re.escape(n) for n in sorted(names, key=len, reverse=True))
     subject = f"{_QUANTITY}|{known}" if known else _QUANTITY
-    return re.compile(rf"(?<![\w.])(?P<subject>{subject})[*_]*\s*(?P<relation>{_RELATION})\s*(?P<value>{_VALUE})")
+    return re.compile(
+        rf"(?<![\w.])_{{0,3}}(?P<subject>{subject})[*_]{{0,3}}\s*(?P<relation>{_RELATION})\s*(?:about\s|approx\.?\s|ca\.?\s)?"
+        rf"\s*[*_]{{0,3}}(?P<value>{_VALUE})"
+    )
 
 
 def prose_claims(block: Block, names: Sequence[str], circuit: int) -> list[Claim]:
-    """What reads as a claim in a block's plain text. Code, maths and HTML in it are left out."""
+    """What reads as a claim in a block's plain text.
+
+    Code, maths and HTML in it are left out, but for names in code whose relation and value stand outside: `` `V_b` = 8 V ``.
+    """
     content = block.content
-    if content is None or not any(c in content.text for c in "=≈<≤>≥~"):
+    if content is None or not any(c in content.text for c in "=≈<≤>≥~≅≃∼&"):
         return []
     text = list(content.text)
     at = [p if p != NOWHERE else -1 for p in content.at]
@@ -39,17 +48,17 @@ def prose_claims(block: Block, names: Sequence[str], circuit: int) -> list[Claim
     for inline in inlines(block.inlines):
         if inline.kind in ("code", "math", "html"):
             first, last = bisect_left(at, inline.span.start), bisect_left(at, inline.span.end)
+            words = text[first:last]
             text[first:last] = " " * (last - first)
+            if inline.kind != "html" and not any(c in _SIGNS for c in words):
+                text[first:last] = [" " if c in "`$" else c for c in words]
     claims = []
     for m in _pattern(tuple(names)).finditer("".join(text)):
         span = content.span(m.start(), m.end())
-        written = m["subject"].replace("\\", "").strip("*_")
-        problem = Problem(
-            "a claim in plain prose: put it in code", span, f"`{written} {m['relation'].strip(chr(92))} {m['value']}`"
-        )
-        claims.append(
-            Claim(f"{written} {m['relation'].strip(chr(92))} {m['value']}", span, "prose", circuit, problem=problem)
-        )
+        sign = unescape(m["relation"].strip("\\"))
+        written = f"{m['subject'].replace(chr(92), '').strip('*_')} {_ABOUT.get(sign, sign)} {m['value']}"
+        problem = Problem("a claim in plain prose: put it in code", span, f"`{written}`")
+        claims.append(Claim(written, span, "prose", circuit, problem=problem))
     return claims
 
 

@@ -29,7 +29,9 @@ from calccheck.units import UNITS
 
 _UNIT_TAIL = re.compile(r"\s*(?:\(([^()\s]+)\)|\[([^\[\]\s]+)\]|/\s*(\S+))\s*$")
 _SHAPE = re.compile(r"(?:Isc|[VIPRZ])_(?:\{[^{}]*\}|\w+)")
-_READS_AS_VALUE = re.compile(r"[-−+]?\s?\d[\d.,\s]*(?:[eE][-+]?\d+)?\s?([^\W\d]\w*|Ω|%|°C?)")
+_READS_AS_VALUE = re.compile(r"(?:[=≈<≤>≥~±]\s*)?[-−+]?\s?\.?\d[\d.,\s]*(?:[eE][-+]?\d+)?\s?([^\W\d]\w*|Ω|%|°C?)")
+_RELATION = re.compile(r"(~=|<=|>=|[=≈<≤>≥])\s*")
+_SIGN: dict[str, Relation] = {"~=": "≈", "<=": "≤", ">=": "≥"}
 _NOTHING = {"", "-", "–", "—", "−"}
 _PLAIN_HEADERS = {"", "total", "value", "nominal", "calculated"}
 HEADERS = "a qualifier (due to …, without …, with …), total, value, nominal, calculated, min, max, limit, unit"
@@ -58,6 +60,9 @@ class Subject:
     suggestion: str = ""
 
 
+_UNNAMED = Subject(None, "", reason="no quantity in code names this value: its row or column has none at its edge")
+
+
 def reads_as_table(table: Block) -> bool:
     """Whether an edge of the table holds quantities."""
     head, body = table.children[0], table.children[1:]
@@ -67,10 +72,11 @@ def reads_as_table(table: Block) -> bool:
 def table_claims(table: Block, circuit: int) -> dict[int, Claim]:
     """The claims of a table's cells, by the offset at which the cell begins."""
     head, body = table.children[0], table.children[1:]
+    spare = max((len(r.children) for r in body), default=0) - len(head.children)  # cells beyond the last header
     if any(_subject(r.children[0]) for r in body if r.children):
-        edges = [_edge(c) for c in head.children]
+        edges = [*(_edge(c) for c in head.children), *[Edge("prose", text="(none)")] * spare]
         return _grid(body, circuit, lambda row, _: _subject(row.children[0]), lambda _, k: edges[k], edges)
-    subjects = [None, *(_subject(c) for c in head.children[1:])]
+    subjects = [None, *(_subject(c) for c in head.children[1:]), *[None] * spare]
     return _grid(body, circuit, lambda _, k: subjects[k], lambda row, _: _edge(row.children[0]), [])
 
 
@@ -86,9 +92,7 @@ def _grid(
     for row in body:
         row_unit = next((plain(row.children[k]).text for k in units if k < len(row.children)), "")
         for k, cell in enumerate(row.children[1:], 1):
-            subject = subject_of(row, k)
-            if subject is None:
-                continue
+            subject = subject_of(row, k) or _UNNAMED
             edge = edge_of(row, k)
             unit = edge.unit or subject.unit or row_unit
             claim = _claim(cell, subject, edge, unit, circuit)
@@ -100,15 +104,20 @@ def _grid(
 def _claim(cell: Block, subject: Subject, edge: Edge, unit: str, circuit: int) -> Claim | None:
     """The claim of one cell, or nothing where it claims nothing."""
     piece = plain(cell)
-    if piece.text in _NOTHING or edge.role == "unit" or re.search(r"[=≈<≤>≥]", piece.text):
-        return None  # a cell with a relation of its own is read as inline code or prose
+    own = _RELATION.match(piece.text)
+    if piece.text in _NOTHING or edge.role == "unit" or _is_claim(cell):
+        return None
     value_like = _READS_AS_VALUE.match(piece.text)
-    if edge.role == "prose":
+    if edge.role == "prose" or subject is _UNNAMED:
         if not value_like or value_like[1] not in UNITS:
             return None
-        reason = f"the header {edge.text!r} says nothing of this value; a header is {HEADERS}"
+        header = f"the header {edge.text!r} says nothing of this value; a header is {HEADERS}"
+        reason = header if edge.role == "prose" else _UNNAMED.reason
         return Claim(piece.text, cell.span, "table", circuit, problem=Problem(reason, cell.span))
     relation: Relation = "≤" if edge.role == "limit" else "="
+    if own:
+        relation = _SIGN.get(own[1]) or cast(Relation, own[1])
+        piece = piece.part(own.end(), len(piece.text))
     shown = f"{piece.text} {unit}" if unit and not re.search(r"[^\W\d]|[%°]", piece.text) else piece.text
     text = " ".join(f"{edge.prefix} {subject.text} {edge.text} {relation} {shown}".split())
     claim = Claim(text, cell.span, "table", circuit)
@@ -122,6 +131,11 @@ def _claim(cell: Block, subject: Subject, edge: Edge, unit: str, circuit: int) -
         return replace(claim, problem=Problem(d.reason, d.span or cell.span, d.suggestion))
     label = text.partition(f" {relation} ")[0]
     return replace(claim, members=(Member("", first, label, cell.span), Member(relation, value, shown, cell.span)))
+
+
+def _is_claim(cell: Block) -> bool:
+    """Whether a cell holds a claim of its own in code: that is read as inline code is."""
+    return any(i.kind == "code" and i.text is not None and _RELATION.search(i.text.text) for i in _runs(cell.inlines))
 
 
 def _with_unit(node: Node, text: str) -> Node:
@@ -186,24 +200,28 @@ def _runs(found: tuple[Inline, ...]) -> list[Inline]:
 
 def _subject(cell: Block) -> Subject | None:
     """The quantity that an edge cell holds in code, with the unit written behind it; ``None`` where it holds none."""
-    runs = _runs(cell.inlines)
-    codes = [i.text for i in runs if i.kind == "code" and i.text is not None]
+    codes = [i.text for i in _runs(cell.inlines) if i.kind == "code" and i.text is not None]
     whole = plain(cell)
-    if len(codes) != 1:
-        shaped = not codes and _SHAPE.fullmatch(whole.text)
+    if not codes:
         reason = "the quantity stands outside of code: put it in code"
+        shaped = _SHAPE.fullmatch(whole.text)
         return Subject(None, whole.text, reason=reason, suggestion=f"`{whole.text}`") if shaped else None
-    rest = whole.text.replace(codes[0].text, "", 1).strip()
-    tail = _UNIT_TAIL.fullmatch(rest) if rest else None
-    if (rest and tail is None) or codes[0].text.split()[0:1] == [] or codes[0].text.split()[0] in QUALIFIER_WORDS:
+    if (whole.text.split() or [""])[0] in QUALIFIER_WORDS:
         return None
     try:
         node = parse(codes[0])
-    except Doubt:
-        return None
+    except Doubt as d:
+        shaped = _SHAPE.match(codes[0].text)
+        return Subject(None, whole.text, reason=d.reason, suggestion=d.suggestion) if shaped else None
     if not references(node):
         return None
-    return Subject(node, codes[0].text, next((g for g in tail.groups() if g), "") if tail else "")
+    rest = whole.text.replace(codes[0].text, "", 1).strip()
+    if len(codes) > 1 or any(word in QUALIFIER_WORDS for word in rest.split()):
+        reason = "the quantity and its qualifiers stand apart: put them in one piece of code"
+        return Subject(None, whole.text, reason=reason, suggestion=f"`{whole.text}`")
+    tail = _UNIT_TAIL.search(rest)
+    unit = next((g for g in tail.groups() if g), "") if tail else ""
+    return Subject(node, codes[0].text, unit if unit in UNITS or _compound(unit) else "")
 
 
 def _edge(cell: Block) -> Edge:

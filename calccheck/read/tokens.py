@@ -113,6 +113,8 @@ def _strange(piece: Piece, text: str, at: int) -> Doubt:
         return Doubt("a dash: write − for minus, or a range as 3.2 … 3.4", piece.span(at, at + 1))
     if c == "{":
         return Doubt("a brace: a subscript is written V_{a,b}, without blanks before the brace", piece.span(at, at + 1))
+    if c in "~≅≃∼":
+        return Doubt(f"{c} is no relation here: write ≈ for about", piece.span(at, at + 1))
     shown = c if c.isprintable() else f"U+{ord(c):04X}"
     return Doubt(f"the character {shown} means nothing here", piece.span(at, at + 1))
 
