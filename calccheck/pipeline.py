@@ -18,7 +18,7 @@ from calccheck.read.expression import parse
 from calccheck.read.sheet import read_sheet
 from calccheck.rules import RULES
 from calccheck.signatures import signature_findings
-from calccheck.solve import Unsolvable, solve
+from calccheck.solve import Unsolvable, solve, solve_batch
 from calccheck.source import Sheet, whole
 
 
@@ -27,7 +27,7 @@ def check(sheet: Sheet, settings: Settings | None = None) -> Report:
     reading = read_sheet(Sheet(sheet.name, unmark(sheet.text)), settings or Settings())
     solve_once = solver()
     solutions, faults = _solved(reading.circuits, solve_once)
-    judged, findings = judge_sheet(reading, solve_once, reading.settings.on or date.today())
+    judged, findings = judge_sheet(reading, solve_once, reading.settings.on or date.today(), solve_batch)
     beside = (*_stray_marks(reading), *signature_findings(reading))
     every = sorted((*reading.findings, *beside, *faults, *findings), key=lambda f: f.span.start)
     return Report(

@@ -2,36 +2,60 @@
 
 from __future__ import annotations
 
+from collections.abc import Callable, Sequence
 from dataclasses import replace
 from datetime import date
 from fractions import Fraction
 
 from calccheck.judge.chain import judge_claim
+from calccheck.judge.miss import Miss
 from calccheck.judge.rounding import Printed, fit, printed
 from calccheck.judge.scope import Ledger, Solve
+from calccheck.judge.slips.redo import Earlier, Redo, SolveBatch
 from calccheck.judge.symbols import combined, instance, points
 from calccheck.model import Finding, Judged, Reading, Waiver
 from calccheck.rules import RULES
 
 
-def judge_sheet(reading: Reading, solve: Solve, on: date) -> tuple[tuple[Judged, ...], tuple[Finding, ...]]:
-    """The verdicts of a sheet's claims and the findings made on the way.
+def judge_sheet(
+    reading: Reading, solve: Solve, on: date, solve_batch: SolveBatch, earlier: Callable[[], Sequence[Earlier]] = tuple
+) -> tuple[tuple[Judged, ...], tuple[Finding, ...]]:
+    """The verdicts of a sheet's claims, with the slips that explain wrong ones, and the findings made on the way.
 
-    ``solve`` gives the solution of a circuit or raises ``Doubt``. ``on``: the day by which waivers are judged.
+    ``solve`` gives the solution of a circuit or raises ``Doubt``; ``solve_batch`` the states of many, ``None`` for one that has
+    none. ``on``: the day by which waivers are judged. ``earlier``: the circuits of the sheet's earlier versions, newest first;
+    called only where a claim differs.
     """
     ledgers = [
         Ledger(tuple(instance(c, p) for c in reading.circuits), solve, reading.settings, symbols=p)
         for p in points(reading.circuits)
     ]
     symbols = sorted({name for c in reading.circuits for name, _ in c.symbols})
+    redo = Redo(solve, solve_batch, earlier)
     judged: list[Judged] = []
     findings: list[Finding] = []
     for claim in reading.claims:
         found = [judge_claim(claim, ledger) for ledger in ledgers]
-        j, waived = _waived(combined([f[0] for f in found], symbols), on)
+        j = _explained(combined([f[0] for f in found], symbols), [f[2] for f in found], redo)
+        j, waived = _waived(j, on)
         judged.append(j)
         findings += [*found[0][1], *waived]
     return tuple(judged), tuple(findings)
+
+
+def _explained(j: Judged, misses: Sequence[Miss | None], redo: Redo) -> Judged:
+    """A claim that differs with the slips that would give its number; where many would, the number does not decide."""
+    miss = next((m for m in misses if m is not None), None)
+    if j.verdict != "differs" or miss is None:
+        return j
+    from calccheck.judge.slips.naming import UNDECIDED, name_slips  # late: most sheets have no claim that differs
+
+    slips = name_slips(miss, redo)
+    if len(slips) > UNDECIDED:
+        j = replace(
+            j, message=f"{j.message}; {len(slips)} kinds of slip fit, so the number does not decide between them"
+        )
+    return replace(j, slips=slips)
 
 
 def _waived(j: Judged, on: date) -> tuple[Judged, tuple[Finding, ...]]:

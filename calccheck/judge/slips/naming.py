@@ -1,0 +1,90 @@
+"""The slips that fit a wrong value, likeliest first.
+
+A slip is the likelier, the commoner it is and the fewer values of its kind were tried: one that could have given any of fifty
+numbers met this one by chance fifty times as easily as one that could only have given this.
+"""
+
+from __future__ import annotations
+
+from collections import defaultdict
+from collections.abc import Sequence
+from dataclasses import dataclass
+
+from calccheck.arithmetic import Value, size
+from calccheck.judge.miss import Miss
+from calccheck.judge.slips.again import Again
+from calccheck.judge.slips.case import Case, Guess, case_of
+from calccheck.judge.slips.redo import Redo
+from calccheck.judge.slips.table import SLIPS, SlipKind
+from calccheck.judge.slips.working import right_substitution
+from calccheck.model import Slip
+
+UNDECIDED = 3  # kinds that may fit before the number decides nothing
+_ALIKE = 3  # fits of one kind that a sentence names
+_WORKING_RIGHT = 0.02  # how much rarer a slip with the circuit is, where the working before the value is right
+
+
+@dataclass(frozen=True, slots=True)
+class _Fit:
+    """A kind of slip that fits: the guesses that do with their values, and how likely it is."""
+
+    kind: SlipKind
+    guesses: tuple[tuple[Guess, Value | None], ...]
+    score: float
+
+
+def name_slips(miss: Miss, redo: Redo) -> tuple[Slip, ...]:
+    """The slips that explain the first value of a chain that differs, likeliest first."""
+    case = case_of(miss, redo)
+    if case is None:
+        return ()
+    figures = case.printed.figures if case.printed is not None else 99
+    tried = [(kind, guess) for kind in SLIPS if figures >= kind.figures for guess in kind.find(case)]
+    again = Again(case)
+    redo.solve(circuit for _, guess in tried for circuit in again.to_solve(guess))
+    by_kind: dict[str, list[tuple[Guess, Value | None]]] = defaultdict(list)
+    for kind, guess in tried:
+        by_kind[kind.key].append((guess, again.value(guess)))
+    fits = [fit for kind in SLIPS if (fit := _fitting(kind, by_kind[kind.key], case)) is not None]
+    return tuple(Slip(f.kind.key, _sentence(f, case)) for f in sorted(fits, key=lambda f: -f.score))
+
+
+def _fitting(kind: SlipKind, tried: Sequence[tuple[Guess, Value | None]], case: Case) -> _Fit | None:
+    """How a kind of slip fits, if it does."""
+    met: dict[str, tuple[Guess, Value | None, float]] = {}
+    for guess, value in tried:
+        how = 1.0 if guess.certain else _how(guess, value, case)
+        if how:
+            met.setdefault(guess.what, (guess, value, how))
+    if not met:
+        return None
+    best = max(how for *_, how in met.values())
+    others = max(_distinct(tried, case), *(guess.tried for guess, *_ in met.values()))
+    score = kind.common * best / others
+    if kind.of in ("sources", "circuit") and right_substitution(case) is not None:
+        score *= _WORKING_RIGHT
+    return _Fit(kind, tuple((g, v) for g, v, how in met.values() if how == best), score)
+
+
+def _how(guess: Guess, value: Value | None, case: Case) -> float:
+    dimension = guess.dimension if guess.dimension is not None else case.miss.truth.dimension
+    if value is None or isinstance(value, complex) or dimension != case.dimension:
+        return 0.0
+    return case.fits(value)
+
+
+def _distinct(tried: Sequence[tuple[Guess, Value | None]], case: Case) -> int:
+    """How many numbers of as many digits, other than the right one, the kind could have given."""
+    grain = float(case.printed.unit) if case.printed is not None else 1e-9 * (abs(float(case.truth)) or 1.0)
+    values = [float(v) for _, v in tried if v is not None and not isinstance(v, complex) and size(v) < 1e300 * grain]
+    numbers = {round(v / grain) for v in values}
+    return max(1, len(numbers - {round(float(case.truth) / grain)}))
+
+
+def _sentence(fit: _Fit, case: Case) -> str:
+    whats = [guess.what for guess, _ in fit.guesses]
+    told = " or ".join(whats[:_ALIKE]) + (f" or {len(whats) - _ALIKE} more alike" if len(whats) > _ALIKE else "")
+    guess, value = fit.guesses[0]
+    if guess.certain or value is None or case.ledger.symbols:  # a symbol's value is none that anybody wrote
+        return f"consistent with {told}"
+    return f"consistent with {told}: {case.say(value)}"
