@@ -7,13 +7,11 @@ that it has changed; it does not prove who signed (the history of the repository
 
 from __future__ import annotations
 
-import json
 from collections.abc import Mapping
 from dataclasses import MISSING, Field, dataclass, fields, is_dataclass
 from datetime import date
 from decimal import Decimal
 from fractions import Fraction
-from hashlib import sha256
 
 from calccheck.formula import Group
 from calccheck.model import Claim, Element, Finding, Reading, Signature
@@ -47,10 +45,14 @@ def digest_of(reading: Reading) -> Digest:
 
 
 def _sha(text: str) -> str:
+    from hashlib import sha256  # late, as json below: most sheets that are checked bear no signature
+
     return sha256(text.encode("utf-8", "surrogatepass")).hexdigest()
 
 
 def _written_out(plain: Plain) -> str:
+    import json
+
     return json.dumps(plain, ensure_ascii=True, separators=(",", ":"))
 
 
@@ -143,6 +145,12 @@ def _default(f: Field[object]) -> object:
 
 
 # --- whether signatures hold ----------------------------------------------------------------------------------------
+
+
+def signature_line(name: str, day: date, now: Digest) -> str:
+    """A signature as it stands below its role in the front matter."""
+    parts = " ".join(f"{part}:{short}" for part, short in now.parts.items())
+    return f"{name} {day.isoformat()} form:{FORM} sha256:{now.whole} {parts}"
 
 
 def why_void(signature: Signature, now: Digest) -> str:
