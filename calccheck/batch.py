@@ -66,18 +66,27 @@ def _in_processes(guarded: _Guarded[Item, Done], items: Sequence[Item], jobs: in
     from concurrent.futures.process import BrokenProcessPool
 
     done = 0
+    pool = ProcessPoolExecutor(min(jobs, len(items)), initializer=_leave_interrupts_to_the_parent)
     try:
-        with ProcessPoolExecutor(min(jobs, len(items))) as pool:
-            for future in [pool.submit(guarded, item) for item in items]:
-                yield future.result()
-                done += 1
+        for future in [pool.submit(guarded, item) for item in items]:
+            yield future.result()
+            done += 1
     except BrokenProcessPool:
         for item in items[done:]:
             try:
-                with ProcessPoolExecutor(1) as pool:
-                    yield pool.submit(guarded, item).result()
+                with ProcessPoolExecutor(1) as alone:
+                    yield alone.submit(guarded, item).result()
             except BrokenProcessPool as fault:  # killed, or out of memory
                 yield Outcome(None, internal_fault(guarded.name(item), fault))
+    finally:
+        pool.shutdown(wait=True, cancel_futures=True)  # an interrupt ends the sheets in hand and begins no other
+
+
+def _leave_interrupts_to_the_parent() -> None:
+    """An interrupt from the keyboard reaches every process of the group; one of them is to answer it."""
+    import signal
+
+    signal.signal(signal.SIGINT, signal.SIG_IGN)
 
 
 def _with_bar(outcomes: Iterable[Outcome[Done]], total: int) -> Iterator[Outcome[Done]]:

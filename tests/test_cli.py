@@ -2,11 +2,14 @@
 
 from __future__ import annotations
 
+import contextlib
 import io
 import json
 import os
+import signal
 import subprocess
 import sys
+import time
 from datetime import date
 from pathlib import Path
 
@@ -459,6 +462,23 @@ def test_a_reader_that_stops_early_is_no_fault(folder):
         assert p.stdout is not None and p.stderr is not None
         p.stdout.close()
         assert p.stderr.read() == b""
+
+
+@pytest.mark.parametrize("jobs", ["1", "2"])
+def test_an_interrupt_is_quiet(folder, jobs):
+    for k in range(200):
+        write(folder / f"{k}.md", WRONG * 30)
+    command = [sys.executable, "-m", "calccheck", "check", "--jobs", jobs]
+    pipes = {"stdout": subprocess.PIPE, "stderr": subprocess.PIPE}
+    with subprocess.Popen(command, start_new_session=True, env={**os.environ, "PYTHONUTF8": "1"}, **pipes) as p:
+        time.sleep(1.5)
+        os.killpg(p.pid, signal.SIGINT)  # as a terminal does: the whole group
+        try:
+            out, err = p.communicate(timeout=60)
+        finally:
+            with contextlib.suppress(ProcessLookupError):  # as it should be: none of the group is left
+                os.killpg(p.pid, signal.SIGKILL)
+    assert (p.returncode, out, err) == (2, b"", b"")
 
 
 def seen_on_a_terminal(arguments: list[str], env: dict[str, str]) -> bytes:
