@@ -196,7 +196,7 @@ def _updated(pdf: bytes, reader: PdfReader, changed: dict[int, PdfObject]) -> by
         changed[number].write_to_stream(out)
         out.write(b"\nendobj\n")
     table = out.tell()
-    out.write(b"xref\n")
+    out.write(b"xref\n0 1\n0000000000 65535 f \n")
     for number in sorted(offsets):
         out.write(f"{number} 1\n{offsets[number]:010d} 00000 n \n".encode("ascii"))
     old = reader.trailer
