@@ -16,7 +16,7 @@ from calccheck.document import Block, inlines
 from calccheck.model import Claim, Problem
 from calccheck.source import NOWHERE
 
-_SIGNS = "=≈<≤>≥"
+_SIGNS = "=≈<≤>≥≅≃∼~＝"
 _QUANTITY = r"(?:Isc|[VIPRZSQ])(?:\\?_\{[^{}]*\}|\\?_[A-Za-z0-9]\w*)|\|[VI]\\?_\w+\|"
 _VALUE = r"[-−+]?\s?(?:\d+(?:[.,]\d+)?|\.\d+)(?:\s?[a-zA-ZµμΩΩ%°][\w/·°%²³]*)?"
 _RELATION = r"(?:~=|\\?[<>]=?|[=≈≤≥~≅≃∼]|&(?:l[te]|g[te]|leq|geq|ap|asymp|approx|equals);)"
