@@ -13,6 +13,7 @@ from calccheck import __version__
 from calccheck.batch import internal_fault
 from calccheck.commands import FAILED, check, complain, working
 from calccheck.files import Unusable
+from calccheck.model import ROLES
 
 _ABOUT = """\
 Recomputes every claim in calc sheets (Markdown with a circuit block and hand-worked values) by nodal
@@ -71,6 +72,10 @@ def _command(options: argparse.Namespace) -> int:
                 from calccheck.marking import mark  # late: writing is not needed to check
 
                 return mark(options)
+            case "sign":
+                from calccheck.signing import sign
+
+                return sign(options)
             case _:
                 return working(options)
     except (KeyboardInterrupt, BrokenPipeError):
@@ -131,7 +136,20 @@ def arguments() -> argparse.ArgumentParser:
     )  # fmt: skip
     three.add_argument("sheet", metavar="SHEET", help="the sheet; - is standard input")
     three.add_argument("quantity", metavar="QUANTITY", help='as in a sheet: V_bus, "I_RL due to Vb", "R_{a,b}"')
+    _sign_arguments(commands)
     return parser
+
+
+def _sign_arguments(commands: argparse._SubParsersAction[argparse.ArgumentParser]) -> None:
+    four = commands.add_parser(
+        "sign", help="sign a sheet that stands", epilog=_STATUS, formatter_class=argparse.RawDescriptionHelpFormatter,
+        description="Put a signature into a sheet's front matter. A sheet that is not clean is not signed. What changes in its\n"
+        "circuit, claims, givens, waivers or settings later voids the signature.",
+    )  # fmt: skip
+    four.add_argument("sheet", metavar="SHEET", help="the sheet")
+    four.add_argument("--role", choices=ROLES, required=True, help="the role in which to sign")
+    four.add_argument("--by", metavar="NAME", required=True, help="name or initials of whoever signs")
+    four.add_argument("--on", metavar="DATE", type=_day, help="the day of the signature (2027-03-01), if not today")
 
 
 def _paths(parser: argparse.ArgumentParser, explained: str) -> None:
