@@ -14,7 +14,7 @@ from typing import Literal
 from calccheck.source import Span
 from calccheck.units import PLAIN, Unit
 
-ChangeKind = Literal["without", "open", "shorted", "as"]
+ChangeKind = Literal["without", "open", "shorted", "as", "beta", "V_BE", "V_CE", "drop"]
 Operator = Literal["+", "-", "×", "÷", "^", "∥", "·", "∠"]
 Prefix = Literal["", "min", "max", "worst", "rss", "mag", "arg", "re", "im", "rms", "sigma", "yield"]
 
@@ -35,7 +35,7 @@ class Number:
 
 @dataclass(frozen=True, slots=True)
 class Change:
-    """One change of a circuit: a part taken out, opened, shorted, or given another value."""
+    """One change of a circuit: a part taken out, opened, shorted, given another value, or one of its model's values."""
 
     part: str
     what: ChangeKind

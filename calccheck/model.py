@@ -10,7 +10,7 @@ from typing import Literal, get_args
 
 from calccheck.arithmetic import Amount, Value
 from calccheck.document import Block
-from calccheck.formula import Node
+from calccheck.formula import Change, Node
 from calccheck.rules import Severity
 from calccheck.source import Sheet, Span
 from calccheck.units import UNITS, Dimension
@@ -64,7 +64,8 @@ class Device:
     Transistor: ``polarity``, ``state`` active or saturated, ``beta``, ``v_be``, and ``v_ce`` of a saturated one. The drops are
     positive for npn and pnp alike; a pnp's run from emitter to base and from emitter to collector. Diode: ``state`` conducting
     or blocking, and ``drop`` from ``plus``, the anode. Transformer: ``ratio`` of the first pair's turns to the second's.
-    Op-amp: the least and most that its output reaches against the reference, ``None`` where not stated.
+    Op-amp: the least and most that its output reaches against the reference, ``None`` where not stated. ``tolerances``: by the
+    word that they stand behind: ``beta``, ``V_BE``, ``V_CE``, ``drop``.
     """
 
     state: Literal["", "active", "saturated", "conducting", "blocking"] = ""
@@ -76,6 +77,7 @@ class Device:
     ratio: Fraction | None = None
     swing_low: Fraction | None = None
     swing_high: Fraction | None = None
+    tolerances: tuple[tuple[str, Tolerance], ...] = ()
 
 
 @dataclass(frozen=True, slots=True)
@@ -83,12 +85,13 @@ class Element:
     """A part between two nodes. Current counts from ``plus`` through the part to ``minus`` (IEC 60375).
 
     ``value``: ohms of a resistor (whether written as a resistance or a conductance), volts or amperes of a source, the gain
-    of a controlled source in SI, farads, henries; ``None`` for short, open, and what this version does not solve.
+    of a controlled source in SI, farads, henries; ``None`` for short, open, parts with a ``device``, ``phasor`` or ``formula``.
     ``stated``: the value as written, with the dimension it was written in, for claims that restate it.
     ``terminals``: of a part with more than two, word and node: base, collector, emitter; plus, minus, out; first+, first-,
-    second+, second-. ``phasor``: of an AC source in volts or amperes, of an impedance
-    in ohms; ``value`` is then ``None``. ``frequency``: of an AC source in hertz, ``UNSTATED`` where the sheet needs and names
-    none, ``None`` for DC.
+    second+, second-. ``phasor``: of an AC source in volts or amperes, of an impedance in ohms, a complex gain; ``value`` is then
+    ``None``. ``frequency``: of an AC source in hertz, ``UNSTATED`` where the sheet needs and names none, ``None`` for DC.
+    ``formula``: of a value with free symbols, the only names in it; with an amount for each it comes to what ``stated`` would
+    be, or, of a controlled source, to its volts or amperes by 1 V or 1 A of what steers it.
     """
 
     name: str
@@ -117,11 +120,20 @@ class Element:
 
 
 @dataclass(frozen=True, slots=True)
+class Case:
+    """``case hot: Rt = 3.3 kΩ; Q1 beta 80``: a circuit's named case. The changes' values name nothing but free symbols."""
+
+    name: str
+    changes: tuple[Change, ...]
+    span: Span
+
+
+@dataclass(frozen=True, slots=True)
 class Circuit:
     """One circuit block as read.
 
-    ``problems``: findings that make every claim on this circuit unchecked (a line that does not parse, a part of a kind that
-    this version does not solve). ``span``: the fence's content. ``symbols``: free symbols of its values with their dimensions.
+    ``problems``: findings that make every claim on this circuit unchecked (a line that does not parse, say). ``span``: the
+    fence's content. ``symbols``: the free symbols of its values with their dimensions, in the order of the block.
     """
 
     name: str
@@ -130,6 +142,7 @@ class Circuit:
     span: Span
     problems: tuple[Finding, ...] = ()
     symbols: tuple[tuple[str, Dimension], ...] = ()
+    cases: tuple[Case, ...] = ()
 
     def element(self, name: str) -> Element | None:
         """The part of that name."""
