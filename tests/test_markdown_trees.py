@@ -5,6 +5,8 @@ Markdown 0.29 (sections named, the examples our own), against the parser alone, 
 from __future__ import annotations
 
 import re
+import subprocess
+import sys
 import time
 
 import pytest
@@ -167,3 +169,16 @@ def test_deeper_marks_are_passed_over_but_their_text_is_not():
     page = "".join(f"*a{depth} " for depth in range(100)) + "b" + "*" * 100
     texts = [inline.text.text for inline in inlines(read_page(page)[0].inlines) if inline.kind == "text"]
     assert "".join(texts).split() == [f"a{depth}" for depth in range(100)] + ["b"]
+
+
+def test_plugins_are_imported_only_for_pages_that_need_them():
+    script = """
+import sys
+from calccheck.read.markdown import read_page
+for page in ("a `b`", "$c$", "[^d]"):
+    read_page(page)
+    print(*sorted(name for name in sys.modules if name in ("mdit_py_plugins.dollarmath", "mdit_py_plugins.footnote")))
+"""
+    run = subprocess.run([sys.executable, "-c", script], capture_output=True, text=True, check=True)
+    maths, footnotes = "mdit_py_plugins.dollarmath", "mdit_py_plugins.footnote"
+    assert run.stdout.split("\n") == ["", maths, f"{maths} {footnotes}", ""]
