@@ -63,7 +63,8 @@ def test_behind_it_stand_claim_recomputed_value_deviation_and_slip():
 
 def test_what_stands_is_named_only_when_asked_and_assumptions_always():
     short, long = to_terminal([report()]), to_terminal([report()], verbose=True)
-    assert "cut off" not in short and ":3:15: rounded: cut off" in long
+    assert "cut off" not in short and ":3:15: rounded: V_e = 5 V; cut off" in long
+    assert ": given: given x = 1 V\n" in long
     assert ":2:6: agrees: V_b = 12 V" in long and ": agrees:" not in short
     assert "sheets/TS-101.md: given: x = 1 V\n" in short
     assert "accepted: comes to 5 V; accepted by QD: log 4" in short

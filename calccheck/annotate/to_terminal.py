@@ -49,13 +49,20 @@ def _entry_lines(row: Entry, report: Report, verbose: bool, colour: bool) -> Ite
         failing = _failing(row, report)
         line = report.reading.sheet.line_column(failing[0].span.start)[0] if failing else row.line
         first = where if line == row.line else _where(report, failing[0].span)
-        yield f"{first}: {_word(row.kind, colour)}: {one_line(row.message or row.text)}"
+        yield f"{first}: {_word(row.kind, colour)}: {one_line(_said(row))}"
         yield from _details(row)
         for step in failing[1:]:
             yield f"{_where(report, step.span)}: {_word(row.kind, colour)}: {one_line(step.message)}"
     for caution in row.cautions:
         yield f"{where}: {_word('caution', colour)}: {one_line(caution)}"
         yield _detail("claim", row.text)
+
+
+def _said(row: Entry) -> str:
+    """The message; of what stands, and of an assumption, the claim first."""
+    if row.kind in ("agrees", "rounded"):
+        return f"{row.text}; {row.message}" if row.message else row.text
+    return row.text if row.kind == "given" else row.message
 
 
 def _failing(row: Entry, report: Report) -> list[Step]:
