@@ -20,10 +20,14 @@ _TAGS = {"emphasis": "em", "strong": "strong", "strike": "s"}
 
 @dataclass(frozen=True, slots=True)
 class Setting:
-    """What the walk needs at every step. ``following``: of each listed entry, the one after it in the sheet."""
+    """What the walk needs at every step.
+
+    ``levels``: of each heading by its offset. ``following``: of each listed entry, the one after it in the sheet.
+    """
 
     sheet: Sheet
     where: Places
+    levels: dict[int, int]
     following: dict[str, str]
 
 
@@ -55,7 +59,7 @@ def word_html(entry: Entry, key: str, target: str) -> str:
 
 
 def _heading(s: Setting, b: Block) -> str:
-    level = min(6, b.level + 1)
+    level = min(6, s.levels[b.span.start] + 1)
     return f"<h{level}>{_inlines(s, b.inlines)}</h{level}>\n{_notes(s, b.inlines)}"
 
 

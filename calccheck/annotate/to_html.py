@@ -13,6 +13,7 @@ from itertools import pairwise
 from pathlib import Path
 
 from calccheck.annotate.characters import told
+from calccheck.annotate.headings import heading_levels
 from calccheck.annotate.html_page import Setting, blocks_html, said, word_html
 from calccheck.annotate.marks import MARKS
 from calccheck.annotate.places import Places, places
@@ -41,6 +42,7 @@ def to_html(report: Report) -> str:
     listed = worst_first(rows)
     order = sorted(listed, key=lambda e: e.span.start)
     following = {a.key: b.key for a, b in pairwise(order)}
+    setting = Setting(reading.sheet, where, heading_levels(reading.page), following)
     title = reading.title.get("subject") or reading.title.get("sheet") or reading.sheet.name
     style = _style()
     lock = b64encode(sha256(style.encode("utf-8")).digest()).decode("ascii")
@@ -52,7 +54,7 @@ def to_html(report: Report) -> str:
         f"<title>{escape(MARKS[report.verdict].label)}: {escape(told(title))}</title>\n<style>{style}</style>\n</head>\n<body>\n"
         '<a class="skip" href="#sheet">To the sheet</a>\n'
         f"{_head(report, title)}{_summary(report)}{_list(listed, where)}"
-        f'<main id="sheet" class="sheet">\n{blocks_html(Setting(reading.sheet, where, following), reading.page)}</main>\n'
+        f'<main id="sheet" class="sheet">\n{blocks_html(setting, reading.page)}</main>\n'
         f"{_record(report, rows, where)}</body>\n</html>\n"
     )
 

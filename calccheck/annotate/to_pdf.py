@@ -12,10 +12,11 @@ from pathlib import Path, PurePath
 from tempfile import TemporaryDirectory
 
 from calccheck.annotate.characters import told
+from calccheck.annotate.headings import heading_levels
 from calccheck.annotate.marks import MARKS
 from calccheck.annotate.places import places
 from calccheck.annotate.record import TITLE_FIELDS, Entry, comment_text, digest, entries
-from calccheck.annotate.typst_page import Setting, heading_levels, typeset
+from calccheck.annotate.typst_page import Setting, typeset
 from calccheck.annotate.typst_record import Words, notes, record, summary
 from calccheck.annotate.typst_text import literal
 from calccheck.model import Report

@@ -9,7 +9,7 @@ from calccheck.annotate.places import Places, marks_in, runs
 from calccheck.annotate.typst_marks import commented, line_number, mark_source, run_source
 from calccheck.annotate.typst_text import literal, shown
 from calccheck.annotate.typst_working import math_row
-from calccheck.document import Block, Inline, blocks
+from calccheck.document import Block, Inline
 from calccheck.model import Judged
 from calccheck.source import Piece, Sheet
 
@@ -39,16 +39,6 @@ class Setting:
     def deeper(self) -> Setting:
         """The setting inside one more container."""
         return replace(self, deep=self.deep + 1)
-
-
-def heading_levels(page: Sequence[Block]) -> dict[int, int]:
-    """Levels as tagged documents demand them (ISO 14289-1, 7.4.2): beginning at 1, none skipped on the way down."""
-    levels: dict[int, int] = {}
-    last = 0
-    for block in blocks(tuple(page)):
-        if block.kind == "heading":
-            last = levels[block.span.start] = min(block.level, last + 1)
-    return levels
 
 
 def typeset(s: Setting, children: Sequence[Block]) -> str:
