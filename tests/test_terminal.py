@@ -61,6 +61,12 @@ def test_behind_it_stand_claim_recomputed_value_deviation_and_slip():
     assert all(line.startswith("    ") for line in first[1:])
 
 
+def test_a_finding_says_what_to_write_instead():
+    lines = to_terminal([report()]).split("\n")
+    at = lines.index("sheets/TS-101.md:2:1: caution: bus is an odd name")
+    assert lines[at + 1].split() == ["write", "Rbus"]
+
+
 def test_what_stands_is_named_only_when_asked_and_assumptions_always():
     short, long = to_terminal([report()]), to_terminal([report()], verbose=True)
     assert "cut off" not in short and ":3:15: rounded: V_e = 5 V; cut off" in long

@@ -62,7 +62,7 @@ def _said(row: Entry) -> str:
     """The message; of what stands, and of an assumption, the claim first."""
     if row.kind in ("agrees", "rounded"):
         return f"{row.text}; {row.message}" if row.message else row.text
-    return row.text if row.kind == "given" else row.message
+    return row.text if row.kind == "given" else row.message or row.text
 
 
 def _failing(row: Entry, report: Report) -> list[Step]:
@@ -74,19 +74,18 @@ def _failing(row: Entry, report: Report) -> list[Step]:
 
 
 def _details(row: Entry) -> Iterator[str]:
-    """The claim, its recomputed value, the deviation, and what may have gone wrong."""
-    if row.kind not in ("differs", "unchecked"):
-        return
-    yield _detail("claim", row.text)
-    if row.computed:
-        rests = {"circuit": ", from the circuit", "working": ", from the sheet's own working"}.get(row.basis, "")
-        yield _detail("recomputed", row.computed + rests)
-    if row.deviation:
-        yield _detail("deviation", row.deviation)
+    """The claim, its recomputed value, the deviation, what may have gone wrong, and what to write instead."""
+    if row.kind in ("differs", "unchecked"):
+        yield _detail("claim", row.text)
+        if row.computed:
+            rests = {"circuit": ", from the circuit", "working": ", from the sheet's own working"}.get(row.basis, "")
+            yield _detail("recomputed", row.computed + rests)
+        if row.deviation:
+            yield _detail("deviation", row.deviation)
     for told in row.told:
         if told.startswith("Write: "):
             yield _detail("write", told.removeprefix("Write: "))
-        elif told != row.message:
+        elif row.kind == "differs" and told != row.message:
             yield _detail("likely", told)
 
 
