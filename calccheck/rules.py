@@ -36,9 +36,15 @@ RULES: dict[str, Rule] = {
     "untraced": Rule("caution", "A printed number stands for nothing in the sheet", "sheet-language.md#chains"),
     "waiver": Rule("error", "A waiver that cannot be read, has lapsed, or waives nothing", "sheet-language.md#waivers"),
     "waiver-idle": Rule("caution", "A waiver whose claim stands without it", "sheet-language.md#waivers"),
+    "limit": Rule("error", "More than the program reads", "limits.md#sizes"),
     "fence": Rule("error", "A fence is not closed", "sheet-language.md#a-sheet"),
     "signature": Rule("error", "A signature cannot be read or is void", "reviewing.md#signatures"),
-    "reference": Rule("error", "A value from another sheet does not stand there", "reviewing.md#values-from-other-sheets"),
+    "reference": Rule(
+        "error", "A value from another sheet does not stand there", "reviewing.md#values-from-other-sheets"
+    ),
+    "reference-open": Rule(
+        "caution", "A value from another sheet was not looked up", "reviewing.md#values-from-other-sheets"
+    ),
     "hazard": Rule("caution", "A hazard that the sheet itself names", "reviewing.md#cautions"),
     "touch-voltage": Rule("caution", "Voltages dangerous to touch", "reviewing.md#cautions"),
     "mains": Rule("caution", "Sources at mains frequency", "reviewing.md#cautions"),

@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 from collections.abc import Sequence
+from itertools import pairwise
 
 from calccheck.arithmetic import Amount, DimensionFault, Doubt, evaluate
 from calccheck.document import Block, blocks, inlines
@@ -14,11 +15,15 @@ from calccheck.read.claims import assumption, read_claims
 from calccheck.read.markdown import read_page
 from calccheck.read.signatures import read_signatures
 from calccheck.read.titleblock import read_titleblock
-from calccheck.source import Piece, Sheet
+from calccheck.rules import RULES
+from calccheck.source import Piece, Sheet, Span
 
 
 def read_sheet(sheet: Sheet, repository: Settings) -> Reading:
     """Everything that a sheet says, with its places. ``repository``: settings that the sheet's own ``check:`` overrides."""
+    long = _too_long(sheet)
+    if long is not None:
+        return Reading(sheet, (), True, {}, repository, (), (), (long,))
     page = read_page(sheet.text)
     front = page[0] if page and page[0].kind == "front matter" else None
     title, settings, findings = read_titleblock(front, repository)
@@ -40,6 +45,25 @@ def read_sheet(sheet: Sheet, repository: Settings) -> Reading:
     return Reading(
         sheet, page, True, title, settings, tuple(circuits), tuple(found.claims), tuple(every), found.not_read, signatures
     )  # fmt: skip
+
+
+LONGEST_LINE = 100_000  # characters; dense mark-up on a longer line takes minutes, and nobody writes one by hand
+LONGEST_SHEET = 5_000_000
+
+
+def _too_long(sheet: Sheet) -> Finding | None:
+    """A limit said aloud, for what no person wrote."""
+    starts = [*sheet.line_starts, len(sheet.text)]
+    for start, end in pairwise(starts):
+        if end - start > LONGEST_LINE:
+            message = (
+                f"a line of more than {LONGEST_LINE:,} characters: nothing in this sheet was checked; part the line"
+            )
+            return Finding("limit", RULES["limit"].severity, message, Span(start, start + 1))
+    if len(sheet.text) > LONGEST_SHEET:
+        message = f"more than {LONGEST_SHEET:,} characters: nothing in this sheet was checked; part the sheet"
+        return Finding("limit", RULES["limit"].severity, message, Span(0, 1))
+    return None
 
 
 def _word(fence: Block) -> str:
