@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import re
 from collections.abc import Sequence
 from itertools import pairwise
 
@@ -23,6 +24,8 @@ def read_sheet(sheet: Sheet, repository: Settings) -> Reading:
     """Everything that a sheet says, with its places. ``repository``: settings that the sheet's own ``check:`` overrides."""
     long = _too_long(sheet)
     if long is not None:
+        if not _MAY_BE_A_SHEET.search(sheet.text):
+            return Reading(sheet, (), False, {}, repository, (), (), ())
         return Reading(sheet, (), True, {}, repository, (), (), (long,))
     page = read_page(sheet.text)
     front = page[0] if page and page[0].kind == "front matter" else None
@@ -47,6 +50,7 @@ def read_sheet(sheet: Sheet, repository: Settings) -> Reading:
     )  # fmt: skip
 
 
+_MAY_BE_A_SHEET = re.compile(r"^(?:[ \t>]*(?:`{3,}|~{3,})\s*(?:circuit|working)\b|sheet:)", re.MULTILINE)
 LONGEST_LINE = 100_000  # characters; dense mark-up on a longer line takes minutes, and nobody writes one by hand
 LONGEST_SHEET = 5_000_000
 
