@@ -7,7 +7,8 @@ from __future__ import annotations
 
 import re
 from base64 import b64encode
-from dataclasses import dataclass, field
+from dataclasses import dataclass, field, replace
+from datetime import date
 from hashlib import sha256
 from html.parser import HTMLParser
 from itertools import pairwise
@@ -18,6 +19,8 @@ from annotate_fixture import EXAMPLE, HOSTILE, example, hostile, report_of, said
 from calccheck.annotate.marks import MARKS
 from calccheck.annotate.record import LIMITS, entries
 from calccheck.annotate.to_html import to_html
+from calccheck.model import Finding, Settings, Signature
+from calccheck.source import Span
 
 VOID = {"meta", "br", "hr"}  # of the elements without an end (HTML Living Standard, 13.1.2) those that the page uses
 TAGS = frozenset(
@@ -283,3 +286,15 @@ def test_a_mark_inside_a_link_is_no_link_in_a_link():
 def test_same_report_same_page():
     assert to_html(example()) == to_html(example())
     assert HOSTILE.splitlines()[1] not in to_html(hostile())  # never unescaped
+
+
+def test_settings_and_signatures_stand_in_the_record():
+    report = example()
+    holds = Signature("originator", "A <b>", date(2026, 3, 4), 1, "0", {}, Span(0, 3))
+    doubted = Signature("checker", "C D", date(2026, 3, 5), 1, "0", {}, Span(4, 7))
+    void = Finding("signature", "error", "the checker's signature is void", doubted.span)
+    reading = replace(report.reading, signatures=(holds, doubted), settings=Settings(on=date(2026, 4, 1)))
+    shown = flat(parsed(to_html(replace(report, reading=reading, findings=(void,)))).text())
+    assert "carry 0.5 %, approx 5 %, phasors rms, derate 1, preferred none, days judged on 2026-04-01" in shown
+    assert "originatorA <b>2026-03-04holds" in shown
+    assert "checkerC D2026-03-05see the findings" in shown

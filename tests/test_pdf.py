@@ -21,7 +21,8 @@ from pypdf import PageObject, PdfReader
 from pypdf.generic import DictionaryObject, IndirectObject
 
 from calccheck.annotate.marks import MARKS
-from calccheck.annotate.record import LIMITS, SIGNATORIES, comment_text, entries
+from calccheck.annotate.record import LIMITS, comment_text, entries
+from calccheck.annotate.record_parts import SIGNATORIES
 from calccheck.annotate.to_pdf import to_pdf
 from calccheck.model import Report
 

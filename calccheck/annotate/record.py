@@ -7,12 +7,11 @@ from __future__ import annotations
 
 from dataclasses import dataclass
 from fractions import Fraction
-from hashlib import sha256
 
 from calccheck.annotate.marks import MARKS
 from calccheck.arithmetic import Amount
 from calccheck.formula import Node, Number, Range, Unary, numbers
-from calccheck.model import CircuitFigures, Claim, Finding, Judged, Member, Report
+from calccheck.model import Claim, Finding, Judged, Member, Report
 from calccheck.printing import shown
 from calccheck.rules import RULES
 from calccheck.source import Span
@@ -20,24 +19,6 @@ from calccheck.units import PLAIN, UNITS, Unit, digits
 
 NOTED = ("differs", "unchecked", "error")  # what is to be mended: margin note and comment
 BESIDE = (*NOTED, "caution", "accepted")  # what a reviewer should see where it stands
-
-TITLE_FIELDS = {
-    "project": "Project", "subject": "Subject", "sheet": "Sheet", "revision": "Revision", "by": "By", "date": "Date",
-    "checked": "Checked", "approved": "Approved",
-}  # fmt: skip
-"""Front matter fields of the title block, in the trade's order, and how they are lettered."""
-
-BASES = {"circuit": "circuit", "working": "working", "": "none"}
-"""What a claim's truth rests on: the solved circuit, the sheet's own working, nothing that could be computed."""
-
-MEANINGS = {
-    "differs": "is not the recomputed value",
-    "unchecked": "could not be read, resolved or solved: not vouched for",
-    "accepted": "differs, but stands under a waiver that names both values",
-    "rounded": "off by no more than rounding carried on, or a declared approximation, explains",
-    "agrees": "is the recomputed value to the last place printed",
-    "given": "an assumption, checked against nothing",
-}
 
 LIMITS = (
     "Every claim listed as agreeing was recomputed from the circuit and the working as they stand in this sheet. Such a "
@@ -53,9 +34,6 @@ LIMITS = (
     "practice decide.",
 )
 """What such a check cannot show: an opening sentence, the points, and a closing one."""
-
-_RAISED = str.maketrans("0123456789-", "⁰¹²³⁴⁵⁶⁷⁸⁹⁻")
-SIGNATORIES = ("Originator", "Checker", "Approver")
 
 
 @dataclass(frozen=True, slots=True)
@@ -214,15 +192,6 @@ def worst_first(rows: tuple[Entry, ...]) -> list[Entry]:
     return sorted(wanted, key=lambda e: (order.index(e.kind), -e.size, e.line))
 
 
-def counts(report: Report) -> list[tuple[str, list[int]]]:
-    """Per verdict, worst first: the number of claims on each basis in the order of ``BASES``, then in all."""
-    table: list[tuple[str, list[int]]] = []
-    for verdict in (name for name in MARKS if name in report.counts):
-        row = [sum(j.verdict == verdict and j.basis == basis for j in report.claims) for basis in BASES]
-        table.append((verdict, [*row, sum(row)]))
-    return table
-
-
 def headline(report: Report) -> str:
     """The verdict in one sentence."""
     n = report.counts
@@ -236,36 +205,3 @@ def headline(report: Report) -> str:
     if parts:
         return "; ".join(parts) + "."
     return f"All {total} claims stand." if total else "The sheet makes no claims."
-
-
-def digest(report: Report) -> str:
-    """SHA-256 of the sheet as UTF-8, in hexadecimal."""
-    return sha256(report.reading.sheet.text.encode("utf-8", "surrogatepass")).hexdigest()
-
-
-def waiver_line(claim: Claim) -> str:
-    """A waiver as one line: who accepts what, why, until when."""
-    w = claim.waiver
-    if w is None:
-        return ""
-    until = f" until {w.until.isoformat()}" if w.until else ""
-    return f"Accepted by {w.by}{until}: {w.reason}"
-
-
-def given_notes(claim: Claim) -> str:
-    """What stands behind an assumption: the sheet it comes from."""
-    return f"from {claim.from_sheet}" if claim.from_sheet else "stated in this sheet"
-
-
-def figure_cells(figures: CircuitFigures) -> tuple[str, str, str]:
-    """Gap between the routes, current residual, power balance, two figures each."""
-    return (_figure(figures.route_gap), _figure(figures.kcl_residual), _figure(figures.power_balance))
-
-
-def _figure(value: float | None) -> str:
-    if value is None:
-        return "not solved"
-    if value == 0:
-        return "0"
-    mantissa, exponent = f"{value:.1e}".split("e")
-    return f"{mantissa} × 10{str(int(exponent)).translate(_RAISED)}"

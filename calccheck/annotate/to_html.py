@@ -12,24 +12,23 @@ from html import escape
 from itertools import pairwise
 from pathlib import Path
 
+from calccheck import __version__
 from calccheck.annotate.characters import told
 from calccheck.annotate.headings import heading_levels
 from calccheck.annotate.html_page import Setting, blocks_html, said, word_html
 from calccheck.annotate.marks import MARKS
 from calccheck.annotate.places import Places, places
-from calccheck.annotate.record import (
+from calccheck.annotate.record import LIMITS, Entry, entries, headline, worst_first
+from calccheck.annotate.record_parts import (
     BASES,
-    LIMITS,
     MEANINGS,
     TITLE_FIELDS,
-    Entry,
     counts,
     digest,
-    entries,
     figure_cells,
     given_notes,
-    headline,
-    worst_first,
+    settings_line,
+    signature_rows,
 )
 from calccheck.model import Report
 
@@ -141,7 +140,8 @@ def _record(report: Report, rows: Sequence[Entry], where: Places) -> str:
     opening, points, closing = LIMITS
     return (
         '<section aria-labelledby="record">\n<h2 id="record">Check record</h2>\n'
-        f'<p class="soft">SHA-256 of the sheet as checked: <code>{digest(report)}</code></p>\n'
+        f'<p class="soft">SHA-256 of the sheet as checked: <code>{digest(report)}</code><br>\n'
+        f"Judged with {said(settings_line(report.reading.settings))}.</p>\n"
         + _part("Claims", ("Mark", "Line", "As written", "Printed", "Recomputed", "Deviation", "Basis"), claims)
         + _part("Findings", ("Mark", "Line", "Finding"), findings)
         + _part(
@@ -151,9 +151,10 @@ def _record(report: Report, rows: Sequence[Entry], where: Places) -> str:
         )
         + _part("Givens, checked against nothing", ("Line", "As written", "Source"), _givens(report, rows))
         + _part("Waivers", ("Line", "As written", "State"), _waivers(report, rows))
+        + _part("Signatures in the sheet", ("Role", "Name", "Date", "State"), _signed(report))
         + f"<h3>What this check cannot show</h3>\n<p>{opening}</p>\n<ul>\n"
         + "".join(f"<li>{p}</li>\n" for p in points)
-        + f"</ul>\n<p>{closing}</p>\n</section>\n"
+        + f'</ul>\n<p>{closing}</p>\n<p class="soft">Checked by calccheck {__version__}.</p>\n</section>\n'
     )
 
 
@@ -206,3 +207,7 @@ def _waivers(report: Report, rows: Sequence[Entry]) -> str:
         for j, e in zip(report.claims, rows, strict=False)
         if j.claim.waiver is not None
     )
+
+
+def _signed(report: Report) -> str:
+    return "".join(_row(map(said, row)) for row in signature_rows(report))

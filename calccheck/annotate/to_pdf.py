@@ -11,11 +11,13 @@ from datetime import UTC, date, datetime
 from pathlib import Path, PurePath
 from tempfile import TemporaryDirectory
 
+from calccheck import __version__
 from calccheck.annotate.characters import told
 from calccheck.annotate.headings import heading_levels
 from calccheck.annotate.marks import MARKS
 from calccheck.annotate.places import places
-from calccheck.annotate.record import TITLE_FIELDS, Entry, comment_text, digest, entries
+from calccheck.annotate.record import Entry, comment_text, entries
+from calccheck.annotate.record_parts import TITLE_FIELDS, digest
 from calccheck.annotate.typst_page import Setting, typeset
 from calccheck.annotate.typst_record import Words, notes, record, summary
 from calccheck.annotate.typst_text import literal
@@ -118,7 +120,7 @@ def _paper(w: Words, place_in_set: str) -> str:
     return (
         f"#show: paper.with(title: {literal(name or 'Calc sheet')}, fields: ({fields}), "
         f"place-in-set: {literal(place_in_set)}, date: datetime(year: {day.year}, month: {day.month}, day: {day.day}), "
-        f"foot: [Checked by calccheck: arithmetic and circuit laws, not an approval. Source SHA-256 "
+        f"foot: [Checked by calccheck {__version__}: arithmetic and circuit laws, not an approval. Source SHA-256 "
         f"{digest(w.report)[:12]}…], notes: {notes(w)})\n"
     )
 

@@ -6,22 +6,19 @@ from collections.abc import Sequence
 from dataclasses import dataclass
 
 from calccheck.annotate.marks import MARKS
-from calccheck.annotate.record import (
+from calccheck.annotate.record import BESIDE, LIMITS, Entry, headline, note_lines, worst_first
+from calccheck.annotate.record_parts import (
     BASES,
-    BESIDE,
-    LIMITS,
     MEANINGS,
     SIGNATORIES,
     TITLE_FIELDS,
-    Entry,
     counts,
     digest,
     figure_cells,
     given_notes,
-    headline,
-    note_lines,
+    settings_line,
+    signature_rows,
     waiver_line,
-    worst_first,
 )
 from calccheck.annotate.typst_text import literal, shown
 from calccheck.model import Report
@@ -92,10 +89,10 @@ def record(w: Words) -> str:
     listed = "".join(f"[{w.say(p)}]," for p in points)
     signatories = "".join(f"{literal(s)}," for s in SIGNATORIES)
     return (
-        f"#record-head({literal(digest(w.report))})\n"
+        f"#record-head({literal(digest(w.report))}, [{w.say(settings_line(w.report.reading.settings))}])\n"
         f"#record-claims(({claims}))\n#record-findings(({findings}))\n"
         f"#record-circuits(({_circuits(w)}))\n#record-givens(({_givens(w)}))\n#record-waivers(({_waivers(w)}))\n"
-        f"#record-limits([{w.say(opening)}], ({listed}), [{w.say(closing)}])\n#signatures(({signatories}))\n"
+        f"#record-limits([{w.say(opening)}], ({listed}), [{w.say(closing)}])\n#signatures(({_signed(w)}), ({signatories}))\n"
     )
 
 
@@ -142,6 +139,10 @@ def _waivers(w: Words) -> str:
             cells = [str(e.line), judged.claim.waiver.text, waiver_line(judged.claim), state]
             rows += "(" + "".join(f"[{w.say(c)}]," for c in cells) + "),"
     return rows
+
+
+def _signed(w: Words) -> str:
+    return "".join("(" + "".join(f"[{w.say(c)}]," for c in row) + ")," for row in signature_rows(w.report))
 
 
 def _bool(value: bool) -> str:

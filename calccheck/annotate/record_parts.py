@@ -1,0 +1,97 @@
+"""What stands around the entries of the record: title block, counts, settings, circuits, givens, waivers, signatures."""
+
+from __future__ import annotations
+
+from hashlib import sha256
+
+from calccheck.annotate.marks import MARKS
+from calccheck.model import ROLES, CircuitFigures, Claim, Report, Settings
+from calccheck.units import digits
+
+TITLE_FIELDS = {
+    "project": "Project", "subject": "Subject", "sheet": "Sheet", "revision": "Revision", "by": "By", "date": "Date",
+    "checked": "Checked", "approved": "Approved",
+}  # fmt: skip
+"""Front matter fields of the title block, in the trade's order, and how they are lettered."""
+
+BASES = {"circuit": "circuit", "working": "working", "": "none"}
+"""What a claim's truth rests on: the solved circuit, the sheet's own working, nothing that could be computed."""
+
+MEANINGS = {
+    "differs": "is not the recomputed value",
+    "unchecked": "could not be read, resolved or solved: not vouched for",
+    "accepted": "differs, but stands under a waiver that names both values",
+    "rounded": "off by no more than rounding carried on, or a declared approximation, explains",
+    "agrees": "is the recomputed value to the last place printed",
+    "given": "an assumption, checked against nothing",
+}
+
+_RAISED = str.maketrans("0123456789-", "⁰¹²³⁴⁵⁶⁷⁸⁹⁻")
+SIGNATORIES = tuple(role.capitalize() for role in ROLES)
+
+
+def counts(report: Report) -> list[tuple[str, list[int]]]:
+    """Per verdict, worst first: the number of claims on each basis in the order of ``BASES``, then in all."""
+    table: list[tuple[str, list[int]]] = []
+    for verdict in (name for name in MARKS if name in report.counts):
+        row = [sum(j.verdict == verdict and j.basis == basis for j in report.claims) for basis in BASES]
+        table.append((verdict, [*row, sum(row)]))
+    return table
+
+
+def digest(report: Report) -> str:
+    """SHA-256 of the sheet as UTF-8, in hexadecimal."""
+    return sha256(report.reading.sheet.text.encode("utf-8", "surrogatepass")).hexdigest()
+
+
+def waiver_line(claim: Claim) -> str:
+    """A waiver as one line: who accepts what, why, until when."""
+    w = claim.waiver
+    if w is None:
+        return ""
+    until = f" until {w.until.isoformat()}" if w.until else ""
+    return f"Accepted by {w.by}{until}: {w.reason}"
+
+
+def given_notes(claim: Claim) -> str:
+    """What stands behind an assumption: the sheet it comes from."""
+    return f"from {claim.from_sheet}" if claim.from_sheet else "stated in this sheet"
+
+
+def figure_cells(figures: CircuitFigures) -> tuple[str, str, str]:
+    """Gap between the routes, current residual, power balance, two figures each."""
+    return (_figure(figures.route_gap), _figure(figures.kcl_residual), _figure(figures.power_balance))
+
+
+def _figure(value: float | None) -> str:
+    if value is None:
+        return "not solved"
+    if value == 0:
+        return "0"
+    mantissa, exponent = f"{value:.1e}".split("e")
+    return f"{mantissa} × 10{str(int(exponent)).translate(_RAISED)}"
+
+
+def settings_line(settings: Settings) -> str:
+    """The settings that the sheet was judged with, as one line."""
+    words = [
+        f"carry {digits(100 * settings.carry, 3)} %",
+        f"approx {digits(100 * settings.approx, 3)} %",
+        f"phasors {settings.phasors}",
+        f"derate {digits(settings.derate, 3)}",
+        f"preferred {settings.preferred or 'none'}",
+    ]
+    if settings.frequency:
+        words.append(f"frequency {settings.frequency}")
+    if settings.on:
+        words.append(f"days judged on {settings.on.isoformat()}")
+    return ", ".join(words)
+
+
+def signature_rows(report: Report) -> list[tuple[str, str, str, str]]:
+    """The signatures in the sheet's front matter: role, name, date, and whether each still holds."""
+    doubted = {f.span for f in report.findings}
+    return [
+        (s.role, s.name, s.on.isoformat(), "see the findings" if s.span in doubted else "holds")
+        for s in report.reading.signatures
+    ]
