@@ -7,13 +7,13 @@ import os
 import sys
 from collections.abc import Sequence
 from dataclasses import replace
-from datetime import date
 from functools import partial
 from pathlib import Path
 from typing import TextIO
 
 from calccheck import __version__
 from calccheck.batch import run
+from calccheck.citing import Run, find_sheets
 from calccheck.files import Source, Unusable, decoded, read_text, settings_table, sources
 from calccheck.model import Report, Settings
 from calccheck.source import Sheet
@@ -25,7 +25,7 @@ def check(options: argparse.Namespace) -> int:
     """``calccheck check``: findings on standard output, problems with files on standard error."""
     found, problems = gathered(options.paths)
     reports = []
-    for outcome in run(partial(brief_report_on, on=options.on), found, _name, options.jobs):
+    for outcome in run(partial(brief_report_on, within=run_of(options)), found, _name, options.jobs):
         if outcome.value is not None:
             reports.append(outcome.value)
         else:
@@ -84,16 +84,22 @@ def sheet_of(source: Source) -> Sheet:
     return Sheet(source.name, read_text(source.path) if source.text is None else source.text)
 
 
-def report_on(source: Source, on: date | None) -> Report:
-    """The report on one sheet. Raises ``Unusable`` where the sheet or its repository's settings cannot be read."""
+def run_of(options: argparse.Namespace) -> Run:
+    """The run of a command over several sheets."""
+    return Run(tuple(options.paths), options.on)
+
+
+def report_on(source: Source, within: Run) -> Report:
+    """The report on one sheet. Raises ``Unusable`` where a sheet or its repository's settings cannot be read."""
     from calccheck.pipeline import check as checked  # late: --help and --version need no solver
 
-    return checked(sheet_of(source), replace(settings_for(source), on=on))
+    find = partial(find_sheets, citing=source.path, run=within)
+    return checked(sheet_of(source), replace(settings_for(source), on=within.on), find)
 
 
-def brief_report_on(source: Source, on: date | None) -> Report:
+def brief_report_on(source: Source, within: Run) -> Report:
     """The report without its page and solutions, for outputs that walk neither: so it travels light between processes."""
-    return brief(report_on(source, on))
+    return brief(report_on(source, within))
 
 
 def brief(report: Report) -> Report:

@@ -6,14 +6,14 @@ import argparse
 import sys
 from collections.abc import Sequence
 from dataclasses import dataclass
-from datetime import date
 from functools import partial
 from pathlib import Path
 
 from calccheck.annotate.to_terminal import totals
 from calccheck.annotate.visible import visible
 from calccheck.batch import run
-from calccheck.commands import brief, complain, gathered, in_colour, report_on, sheet_of, status
+from calccheck.citing import Run
+from calccheck.commands import brief, complain, gathered, in_colour, report_on, run_of, sheet_of, status
 from calccheck.edits import stray, unmark
 from calccheck.files import MARKED, Source, Unusable, write_whole
 from calccheck.model import Report
@@ -43,7 +43,7 @@ def mark(options: argparse.Namespace) -> int:
         raise Unusable("mark", "standard input has no name to write a copy by; name a file")
     found, problems = gathered(options.paths)
     orders = _orders(found, options, problems)
-    task = remove_marks if options.remove else partial(write_marked, form=options.to, on=options.on)
+    task = remove_marks if options.remove else partial(write_marked, form=options.to, within=run_of(options))
     reports: list[Report] = []
     for order, outcome in zip(orders, run(task, orders, _name, options.jobs), strict=True):
         if outcome.value is None:
@@ -84,11 +84,11 @@ def _copy(source: Source, options: argparse.Namespace) -> Path:
     return Path(options.output) / source.within.with_name(f"{stem}{infix}.{options.to}")
 
 
-def write_marked(order: Order, form: str, on: date | None) -> tuple[Report | None, bool]:
+def write_marked(order: Order, form: str, within: Run) -> tuple[Report | None, bool]:
     """Mark one sheet and write it; its report, and whether there was anything to write. Raises ``Unusable``."""
     _refuse_existing(order)
     sheet = sheet_of(order.source)
-    report = report_on(order.source, on)
+    report = report_on(order.source, within)
     if not report.reading.is_calc:
         return brief(report), False
     if form == "md":

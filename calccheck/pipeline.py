@@ -9,6 +9,7 @@ from fractions import Fraction
 from calccheck.arithmetic import Doubt
 from calccheck.edits import stray, unmark
 from calccheck.judge.quantities import frequencies
+from calccheck.judge.references import Find, reference_findings
 from calccheck.judge.scope import Ledger, Solve
 from calccheck.judge.sheet import judge_sheet
 from calccheck.judge.symbols import instance, points
@@ -22,13 +23,17 @@ from calccheck.solve import Unsolvable, solve, solve_batch
 from calccheck.source import Sheet, whole
 
 
-def check(sheet: Sheet, settings: Settings | None = None) -> Report:
-    """The report on one sheet. Marks of an earlier run are taken out first; no sheet makes this raise."""
+def check(sheet: Sheet, settings: Settings | None = None, find: Find | None = None) -> Report:
+    """The report on one sheet. Marks of an earlier run are taken out first; no sheet makes this raise.
+
+    ``find``: gives the reports of other sheets by their number, for values that this one takes from them.
+    """
     reading = read_sheet(Sheet(sheet.name, unmark(sheet.text)), settings or Settings())
     solve_once = solver()
     solutions, faults = _solved(reading.circuits, solve_once)
     judged, findings = judge_sheet(reading, solve_once, reading.settings.on or date.today(), solve_batch)
-    beside = (*_stray_marks(reading), *signature_findings(reading))
+    elsewhere = reference_findings(reading, judged, find)
+    beside = (*_stray_marks(reading), *signature_findings(reading), *elsewhere)
     every = sorted((*reading.findings, *beside, *faults, *findings), key=lambda f: f.span.start)
     return Report(
         reading,

@@ -11,6 +11,7 @@ from pathlib import Path
 
 from calccheck.annotate.to_terminal import sheet_lines
 from calccheck.annotate.visible import visible
+from calccheck.citing import Run
 from calccheck.commands import MEND, STANDS, in_colour, report_on, settings_for
 from calccheck.document import Block
 from calccheck.edits import newline, stray, unmark
@@ -32,7 +33,7 @@ def sign(options: argparse.Namespace) -> int:
     source = Source(Path(options.sheet), Path(Path(options.sheet).name))
     text = read_text(source.path)
     _refuse_marked(source, text)
-    report = report_on(replace(source, text=text), day)
+    report = report_on(replace(source, text=text), Run((options.sheet,), day))
     if not report.reading.is_calc:
         raise Unusable(source.name, "not a calc sheet; there is nothing to sign")
     why = _why_not(report, options.role, name)
