@@ -21,6 +21,7 @@ from scipy.sparse.linalg import spsolve
 from calccheck.model import Finding, State
 from calccheck.solve import Unsolvable, solve, solve_batch, state, total
 from calccheck.solve.agreement import compared
+from calccheck.solve.branches import network_of
 from calccheck.solve.elimination import solve_float
 from calccheck.source import Span
 
@@ -391,13 +392,13 @@ def test_a_route_that_strays_shows_in_the_gap(parts, volts, amperes, gap):
         {n: v + volts for n, v in solution.nodal.potentials.items()},
         {n: i + amperes for n, i in solution.nodal.currents.items()},
     )
-    assert compared(made, strayed, solution.parts, True).gap == pytest.approx(gap, rel=0.2, abs=0)
+    assert compared(network_of(made), strayed, solution.parts).gap == pytest.approx(gap, rel=0.2, abs=0)
 
 
 def test_a_single_value_that_is_no_number_shows_in_every_figure():
     solution = solve(KUPHALDT)
     spoilt = State(solution.nodal.potentials, {**solution.nodal.currents, "R3": math.nan})
-    figures = compared(KUPHALDT, spoilt, solution.parts, True)
+    figures = compared(network_of(KUPHALDT), spoilt, solution.parts)
     assert (figures.gap, figures.residual, figures.balance) == (math.inf, math.inf, math.inf)
 
 

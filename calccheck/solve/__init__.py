@@ -5,17 +5,20 @@ Importing this costs next to nothing: numpy is imported with ``nodal``, when the
 
 from __future__ import annotations
 
+import math
 from collections.abc import Sequence
+from fractions import Fraction
 
 from calccheck.model import Circuit, Finding, Solution, State
 from calccheck.solve.agreement import compared, state, total
-from calccheck.solve.at_dc import fault
+from calccheck.solve.branches import DC, network_of
 from calccheck.solve.elimination import Singular
+from calccheck.solve.part_faults import fault, part_faults
 from calccheck.solve.singular import is_singular, singular_faults, suspects
 from calccheck.solve.structure import faults
 from calccheck.solve.superposition import is_exact, part_states
 
-__all__ = ["Unsolvable", "solve", "solve_batch", "state", "total"]
+__all__ = ["Unsolvable", "frequencies", "solve", "solve_batch", "state", "total"]
 
 
 class Unsolvable(Exception):
@@ -26,33 +29,52 @@ class Unsolvable(Exception):
         self.findings = findings
 
 
-def solve(circuit: Circuit) -> Solution:
-    """The circuit at DC: nodal in floating point, and each independent source alone, in rationals up to 25 nodes.
+def frequencies(circuit: Circuit) -> tuple[Fraction, ...]:
+    """The distinct frequencies of a circuit's independent sources in hertz, rising; 0 for DC."""
+    return tuple(sorted({e.frequency or DC for e in circuit.sources()}))
 
-    Raises ``Unsolvable`` with every reason found.
+
+def solve(circuit: Circuit, frequency: Fraction | None = None) -> Solution:
+    """The circuit at a frequency in hertz; ``None`` or 0: DC, ``model.UNSTATED``: an AC frequency that nothing depends on.
+
+    Only the sources of that frequency act. Nodal in floating point, and each of those sources alone: at DC in rationals up to
+    25 nodes, at AC in complex numbers. Raises ``Unsolvable`` with every reason found.
     """
-    found = circuit.problems or faults(circuit)
+    at = frequency or DC
+    found = circuit.problems or _empty(circuit) or part_faults(circuit, at)
     if found:
         raise Unsolvable(found)
-    if not is_exact(circuit) and suspects(circuit) and is_singular(circuit):
-        raise Unsolvable(singular_faults(circuit))
+    network = network_of(circuit, at)
+    if found := faults(network):
+        raise Unsolvable(found)
+    if not at and not is_exact(network) and suspects(network) and is_singular(network):
+        raise Unsolvable(singular_faults(network))
     from calccheck.solve.nodal import nodal_state  # late: numpy
 
     try:
-        return compared(circuit, nodal_state(circuit), part_states(circuit), is_exact(circuit))
+        solution = compared(network, nodal_state(network), part_states(network))
+        if not math.isfinite(solution.volts + solution.amperes):
+            raise OverflowError
     except Singular:
-        raise Unsolvable(singular_faults(circuit)) from None
+        raise Unsolvable(singular_faults(network)) from None
     except OverflowError:
         text = "The values lie so far apart that voltages or currents here fit no number. Check the exponents."
         raise Unsolvable((fault(text, circuit.span),)) from None
+    return solution
 
 
-def solve_batch(circuits: Sequence[Circuit]) -> list[State | None]:
-    """The nodal states of many variants of a circuit at once, for trying hypotheses.
+def _empty(circuit: Circuit) -> tuple[Finding, ...]:
+    if circuit.elements:
+        return ()
+    return (fault("The circuit block has no parts. Write each on a line, as in: R1: 4.7 kΩ, a to b", circuit.span),)
+
+
+def solve_batch(circuits: Sequence[Circuit], frequency: Fraction | None = None) -> list[State | None]:
+    """The nodal states of many variants of a circuit at once, all at one frequency, for trying hypotheses.
 
     ``None`` for a circuit that has problems, or whose equations are singular or too near to it to be trusted. Quickest when
     the variants share their names and most of their ``Element`` objects.
     """
     from calccheck.solve.nodal import batch_states  # late: numpy
 
-    return batch_states(circuits)
+    return batch_states(circuits, frequency or DC)

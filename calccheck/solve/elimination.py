@@ -13,11 +13,12 @@ from fractions import Fraction
 from math import gcd, lcm
 from typing import TypeVar
 
-from calccheck.arithmetic import Real
+from calccheck.arithmetic import Value, real, size
 
-Row = dict[int, Real]
-N = TypeVar("N", int, float)
+Row = dict[int, Value]
+N = TypeVar("N", int, complex)
 _SAFE = 0.1  # a floating-point pivot is no less than this part of the largest coefficient of its row
+_CANCELLED = 1e-13  # what two terms leave of each other is rounding, where it is less than this part of them
 
 
 class Singular(Exception):
@@ -34,16 +35,32 @@ def solve_exact(rows: Sequence[Row]) -> list[Row]:
 
 
 def solve_float(rows: Sequence[Row]) -> list[Row]:
-    """As ``solve_exact``, in floating point; rows that depend on one another may go unnoticed."""
-    steps = _steps(
-        [{j: float(x) for j, x in row.items() if x} for row in rows], lambda sizes: _SAFE * max(sizes), _subtracted
-    )
+    """As ``solve_exact``, in real or complex floating point.
+
+    Coefficients that cancel but for rounding count as zero. Where that takes several steps it may go unnoticed.
+    """
+    steps = _steps([_rounded(row) for row in rows], lambda sizes: _SAFE * max(sizes), _subtracted)
     return _substituted(steps, 1.0)
 
 
+def added(a: Row, b: Row, factor: float) -> Row:
+    """a + factor · b in floating point; what cancels but for rounding is left out."""
+    total = dict(a)
+    for j, x in b.items():
+        before, term = total.get(j, 0.0), factor * x
+        total[j] = before + term
+        if size(total[j]) <= _CANCELLED * size(term):
+            del total[j]
+    return total
+
+
+def _rounded(row: Row) -> dict[int, complex]:
+    return {j: x if isinstance(x, complex) else float(x) for j, x in row.items() if x}
+
+
 def _whole(row: Row) -> dict[int, int]:
-    """The row times the number that makes it whole."""
-    pairs = [(j, Fraction(x)) for j, x in row.items() if x]
+    """The row times the number that makes it whole; a phasor cannot be made so."""
+    pairs = [(j, x if isinstance(x, Fraction) else Fraction(real(x))) for j, x in row.items() if x]
     multiple = lcm(*(x.denominator for _, x in pairs))
     return {j: x.numerator * (multiple // x.denominator) for j, x in pairs}
 
@@ -60,19 +77,24 @@ def _combined(row: dict[int, int], by: dict[int, int], column: int) -> dict[int,
     return {j: x // common for j, x in new.items() if x}
 
 
-def _subtracted(row: dict[int, float], by: dict[int, float], column: int) -> dict[int, float]:
+def _subtracted(row: dict[int, complex], by: dict[int, complex], column: int) -> dict[int, complex]:
     """The row freed of a column by a multiple of another."""
     factor = row[column] / by[column]
     new = dict(row)
     for j, x in by.items():
-        new[j] = new.get(j, 0.0) - factor * x
-    del new[column]
-    return {j: x for j, x in new.items() if x}
+        term = factor * x
+        left = new.get(j, 0.0) - term
+        if abs(left) <= _CANCELLED * abs(term):
+            new.pop(j, None)
+        else:
+            new[j] = left
+    new.pop(column, None)
+    return new
 
 
 def _steps(
     rows: list[dict[int, N]],
-    floor: Callable[[list[N]], float],
+    floor: Callable[[Sequence[float]], float],
     cancel: Callable[[dict[int, N], dict[int, N], int], dict[int, N]],
 ) -> list[tuple[int, dict[int, N]]]:
     """The columns in the order in which they are settled, each with a row free of the columns settled before it."""
@@ -85,8 +107,9 @@ def _steps(
         heads = [j for j in row if j >= 0]
         if not heads:
             raise Singular
-        least = floor([abs(row[j]) for j in heads])
-        column = min((j for j in heads if abs(row[j]) >= least), key=lambda j: len(sharing[j]))
+        sizes: list[float] = [abs(row[j]) for j in heads]
+        least = floor(sizes)
+        column = min((j for j, x in zip(heads, sizes, strict=True) if x >= least), key=lambda j: len(sharing[j]))
         for j in heads:
             sharing[j].remove(k)
         for r in sharing[column]:
@@ -100,7 +123,7 @@ def _steps(
     return steps
 
 
-def _substituted(steps: list[tuple[int, dict[int, N]]], one: Real) -> list[Row]:
+def _substituted(steps: list[tuple[int, dict[int, N]]], one: Fraction | float) -> list[Row]:
     """The unknowns from the last step back to the first."""
     solved: list[Row] = [{} for _ in steps]
     for column, row in reversed(steps):

@@ -1,4 +1,4 @@
-"""Second route: each independent source by itself, in exact rational arithmetic.
+"""Second route: each independent source by itself; in exact rational arithmetic at DC.
 
 The circuit is rebuilt with all independent sources zeroed: nodes joined by links and by zeroed voltage sources become one
 group, gaps and zeroed current sources are gone. One source at a time is then put back into this smaller circuit, a voltage
@@ -6,119 +6,161 @@ source as a step of potential inside its group, a current source as a current in
 zeroed is the same for every source, so one elimination serves all of them. The currents through the joined branches follow
 from the sums of currents at the nodes, from the ends of their tree inwards.
 
+At AC the same runs in Python's complex numbers: ω = 2πf is not rational, so nothing there would be exact.
+
 A combination is a mapping from column to coefficient: unknowns have columns from 0 on, strengths of sources from −1 down.
 """
 
 from __future__ import annotations
 
 from collections import defaultdict
-from collections.abc import Callable
-from dataclasses import dataclass
+from collections.abc import Callable, Sequence
+from dataclasses import dataclass, replace
 from fractions import Fraction
 
-from calccheck.arithmetic import Real
-from calccheck.model import Circuit, Control, Element, State
-from calccheck.solve.at_dc import role, value
-from calccheck.solve.elimination import Row, solve_exact, solve_float
+from calccheck.arithmetic import Value, real
+from calccheck.model import Control, State
+from calccheck.solve.branches import Branch, Network, Role, with_terminals
+from calccheck.solve.elimination import Row, added, solve_exact, solve_float
 
 EXACT_NODES = 25  # beyond, the rationals grow too long
 
 
 @dataclass(frozen=True, slots=True)
 class _Rebuilt:
-    """The circuit with its sources zeroed.
+    """The network with its sources zeroed.
 
-    ``group``: the unknown of every node, ``None`` for the reference's. ``potential``: of every node, by columns. ``tree``:
-    the joined branches as (branch, node, node before it), ends last. ``own``: columns of the parts whose current is an
-    unknown. ``strength``: columns of the sources. ``number``: how a value is carried.
+    ``number``: how a value is carried. ``named``: the branches by name. ``own``: columns of those whose current is an
+    unknown. ``strength``: columns of the sources, by part. ``group``: the unknown of every node, ``None`` for the
+    reference's. ``potential``: of every node, by columns. ``tree``: the joined branches as (branch, node, node before it),
+    ends last.
     """
 
-    circuit: Circuit
-    number: Callable[[Fraction], Real]
+    network: Network
+    number: Callable[[Value], Value]
+    named: dict[str, Branch]
     own: dict[str, int]
     strength: dict[str, int]
     group: dict[str, int | None]
     potential: dict[str, Row]
-    tree: list[tuple[Element, str, str]]
+    tree: list[tuple[Branch, str, str]]
 
 
-def part_states(circuit: Circuit) -> dict[str, State]:
-    """The state with each independent source alone, by its name, of a circuit whose structure is sound.
+def part_states(network: Network) -> dict[str, State]:
+    """The state with each independent source of the frequency alone, by its name, of a network whose structure is sound.
 
-    Rationals up to ``EXACT_NODES`` nodes, floats beyond. Raises ``Singular``.
+    Rationals at DC up to ``EXACT_NODES`` nodes, floats beyond, complex numbers at AC. Raises ``Singular``.
     """
-    exact = is_exact(circuit)
-    rebuilt = _rebuilt(circuit, Fraction if exact else float)
+    exact = is_exact(network)
+    rebuilt = _rebuilt(network, exact)
     flows = _flows(rebuilt)
-    rows = _equations(rebuilt, flows)
+    rows = _equations(rebuilt, flows, exact)
     solved = solve_exact(rows) if exact else solve_float(rows)
     return {name: _state(rebuilt, flows, solved, column) for name, column in rebuilt.strength.items()}
 
 
-def is_exact(circuit: Circuit) -> bool:
-    """Whether this route works the circuit in rationals."""
-    return len(circuit.nodes()) <= EXACT_NODES
+def is_exact(network: Network) -> bool:
+    """Whether this route works the network in rationals."""
+    return not network.frequency and len(network.nodes) <= EXACT_NODES
 
 
-def check_rank(circuit: Circuit) -> None:
-    """Raises ``Singular`` where, and only where, the equations have no single solution; exact at any size."""
-    rebuilt = _rebuilt(circuit, Fraction)
-    solve_exact(_equations(rebuilt, _flows(rebuilt)))
+def check_rank(network: Network) -> None:
+    """Raises ``Singular`` where the equations have no single solution: at DC where and only where, exact at any size."""
+    exact = not network.frequency
+    rebuilt = _rebuilt(network, exact)
+    rows = _equations(rebuilt, _flows(rebuilt), exact)
+    if exact:
+        solve_exact(rows)
+    else:
+        solve_float(rows)
 
 
-def _rebuilt(circuit: Circuit, number: Callable[[Fraction], Real]) -> _Rebuilt:
-    steering = {e.control.part for e in circuit.elements if e.control is not None}
+def responses(network: Network, amplifiers: Sequence[Branch]) -> list[list[Value]]:
+    """How each amplifier's input voltage answers to one volt at each amplifier's output, with no source at work.
+
+    Raises ``Singular`` where the outputs cannot be set like that.
+    """
+    held = {
+        b.name: replace(b, role="voltage", value=Fraction(1), part=replace(b.part, name=b.name)) for b in amplifiers
+    }
+    zeroed: dict[str, Role] = {"voltage": "link", "current": "gap"}
+    branches = [held.get(b.name) or replace(b, role=zeroed.get(b.role, b.role)) for b in network.branches]
+    states = part_states(replace(network, branches=tuple(branches)))
+    rows = []
+    for b in amplifiers:
+        control = b.control or Control()
+        by_output = (states[out.name].potentials for out in amplifiers)
+        rows.append([volts[control.plus] - volts[control.minus] for volts in by_output])
+    return rows
+
+
+def _rational(x: Value) -> Value:
+    return x if isinstance(x, Fraction) else Fraction(real(x))
+
+
+def _floating(x: Value) -> Value:
+    return float(real(x))
+
+
+def _complex(x: Value) -> Value:
+    return complex(x)
+
+
+def _rebuilt(network: Network, exact: bool) -> _Rebuilt:
+    steering = {b.control.part for b in network.branches if b.control is not None}
     unknown = [
-        e.name
-        for e in circuit.elements
-        if role(e) == "controlled voltage"
-        or (e.name in steering and role(e) in ("link", "voltage", "controlled current"))
+        b.name
+        for b in network.branches
+        if b.role in ("controlled voltage", "nullor")
+        or (b.name in steering and b.role in ("link", "voltage", "controlled current"))
     ]
-    strength = {e.name: -1 - k for k, e in enumerate(circuit.sources())}
+    sources = dict.fromkeys(b.part.name for b in network.branches if b.role in ("voltage", "current"))
+    strength = {name: -1 - k for k, name in enumerate(sources)}
     own = {name: k for k, name in enumerate(unknown)}
-    rebuilt = _Rebuilt(circuit, number, own, strength, {}, {}, [])
+    number = _complex if network.frequency else _rational if exact else _floating
+    rebuilt = _Rebuilt(network, number, {b.name: b for b in network.branches}, own, strength, {}, {}, [])
     _join(rebuilt)
     return rebuilt
 
 
-def _joins(e: Element, rebuilt: _Rebuilt) -> bool:
-    """Whether the part's two nodes are one once the sources are zeroed, and nothing needs its current before that."""
-    return role(e) in ("link", "voltage") and e.name not in rebuilt.own
+def _joins(b: Branch, rebuilt: _Rebuilt) -> bool:
+    """Whether the branch's two nodes are one once the sources are zeroed, and nothing needs its current before that."""
+    return b.role in ("link", "voltage") and b.name not in rebuilt.own
 
 
 def _join(rebuilt: _Rebuilt) -> None:
     """Walks the joined branches from node to node and gives every node its group and its potential."""
-    branches: dict[str, list[Element]] = defaultdict(list)
-    for e in rebuilt.circuit.elements:
-        if _joins(e, rebuilt):
-            branches[e.plus].append(e)
-            branches[e.minus].append(e)
+    branches: dict[str, list[Branch]] = defaultdict(list)
+    for b in rebuilt.network.branches:
+        if _joins(b, rebuilt):
+            branches[b.plus].append(b)
+            branches[b.minus].append(b)
     group, potential = rebuilt.group, rebuilt.potential
-    free = len(rebuilt.own)
-    for start in (rebuilt.circuit.reference, *rebuilt.circuit.nodes()):
+    free, reference = len(rebuilt.own), rebuilt.network.circuit.reference
+    for start in (reference, *rebuilt.network.nodes):
         if start in group:
             continue
-        group[start] = None if start == rebuilt.circuit.reference else free
+        group[start] = None if start == reference else free
         potential[start] = {} if group[start] is None else {free: rebuilt.number(Fraction(1))}
         free += group[start] is not None
         reached = [start]
         for node in reached:
-            for e in branches[node]:
-                far = e.minus if e.plus == node else e.plus
+            for b in branches[node]:
+                far = b.minus if b.plus == node else b.plus
                 if far in group:
                     continue
                 group[far] = group[start]
-                potential[far] = _sum(potential[node], _step(e, rebuilt), -1 if e.plus == node else 1)
-                rebuilt.tree.append((e, far, node))
+                potential[far] = _sum(potential[node], _step(b, rebuilt), -1 if b.plus == node else 1)
+                rebuilt.tree.append((b, far, node))
                 reached.append(far)
 
 
-def _step(e: Element, rebuilt: _Rebuilt) -> Row:
+def _step(b: Branch, rebuilt: _Rebuilt) -> Row:
     """The voltage of a link, or of a voltage source that stands alone."""
-    return {rebuilt.strength[e.name]: rebuilt.number(value(e))} if role(e) == "voltage" else {}
+    return {rebuilt.strength[b.part.name]: rebuilt.number(b.value)} if b.role == "voltage" else {}
 
 
-def _sum(a: Row, b: Row, factor: Real) -> Row:
+def _sum(a: Row, b: Row, factor: int) -> Row:
     """a + factor · b."""
     total = dict(a)
     for j, x in b.items():
@@ -126,7 +168,7 @@ def _sum(a: Row, b: Row, factor: Real) -> Row:
     return total
 
 
-def _scaled(a: Row, factor: Real) -> Row:
+def _scaled(a: Row, factor: Value) -> Row:
     return {j: factor * x for j, x in a.items()}
 
 
@@ -135,64 +177,68 @@ def _across(plus: str, minus: str, rebuilt: _Rebuilt) -> Row:
 
 
 def _flows(rebuilt: _Rebuilt) -> dict[str, Row]:
-    """The currents of the parts that are not joined, as combinations."""
-    return {e.name: _current(e, rebuilt) for e in rebuilt.circuit.elements if not _joins(e, rebuilt)}
+    """The currents of the branches that are not joined, as combinations."""
+    return {b.name: _current(b, rebuilt) for b in rebuilt.network.branches if not _joins(b, rebuilt)}
 
 
-def _current(e: Element, rebuilt: _Rebuilt) -> Row:
-    """The current of a part that is not joined."""
-    if e.name in rebuilt.own:
-        return {rebuilt.own[e.name]: rebuilt.number(Fraction(1))}
-    match role(e):
-        case "resistor":
-            return _scaled(_across(e.plus, e.minus, rebuilt), 1 / rebuilt.number(value(e)))
+def _current(b: Branch, rebuilt: _Rebuilt) -> Row:
+    """The current of a branch that is not joined."""
+    if b.name in rebuilt.own:
+        return {rebuilt.own[b.name]: rebuilt.number(Fraction(1))}
+    match b.role:
+        case "impedance":
+            return _scaled(_across(b.plus, b.minus, rebuilt), 1 / rebuilt.number(b.value))
         case "current":
-            return {rebuilt.strength[e.name]: rebuilt.number(value(e))}
+            return {rebuilt.strength[b.part.name]: rebuilt.number(b.value)}
         case "controlled current":
-            return _control(e, rebuilt)
+            return _scaled(_steering(b, rebuilt), rebuilt.number(b.value))
     return {}
 
 
-def _control(e: Element, rebuilt: _Rebuilt) -> Row:
-    """What a controlled source puts out: its gain times what steers it."""
-    control = e.control or Control()
+def _steering(b: Branch, rebuilt: _Rebuilt) -> Row:
+    """The current or voltage that steers a branch."""
+    control = b.control or Control()
     if control.part:
-        part = rebuilt.circuit.element(control.part)
-        steer = {} if part is None else _current(part, rebuilt)
-    else:
-        steer = _across(control.plus, control.minus, rebuilt)
-    return _scaled(steer, rebuilt.number(value(e)))
+        return _current(rebuilt.named[control.part], rebuilt)
+    return _across(control.plus, control.minus, rebuilt)
 
 
-def _equations(rebuilt: _Rebuilt, flows: dict[str, Row]) -> list[Row]:
-    """The laws of the parts whose current is an unknown, then the sum of the currents leaving each group."""
+def _equations(rebuilt: _Rebuilt, flows: dict[str, Row], exact: bool) -> list[Row]:
+    """The laws of the branches whose current is an unknown, then the sum of the currents leaving each group."""
     rows: list[Row] = [{} for _ in rebuilt.own]
     rows += [{} for _ in {g for g in rebuilt.group.values() if g is not None}]
-    for e in rebuilt.circuit.elements:
-        here, there = rebuilt.group[e.plus], rebuilt.group[e.minus]
-        flow = flows.get(e.name, {})
+    plus = _sum if exact else added
+    for b in rebuilt.network.branches:
+        here, there = rebuilt.group[b.plus], rebuilt.group[b.minus]
+        flow = flows.get(b.name, {})
         if here != there:
             for at, sign in ((here, 1), (there, -1)):
                 if at is not None:
-                    rows[at] = _sum(rows[at], flow, sign)
-        if e.name in rebuilt.own:
-            rows[rebuilt.own[e.name]] = _law(e, rebuilt)
+                    rows[at] = plus(rows[at], flow, sign)
+        if b.name in rebuilt.own:
+            rows[rebuilt.own[b.name]] = _law(b, rebuilt)
     return rows
 
 
-def _law(e: Element, rebuilt: _Rebuilt) -> Row:
-    """What is zero in a part whose current is an unknown."""
-    if role(e) == "controlled current":
-        return _sum({rebuilt.own[e.name]: rebuilt.number(Fraction(1))}, _control(e, rebuilt), -1)
-    put_out = _control(e, rebuilt) if role(e) == "controlled voltage" else _step(e, rebuilt)
-    return _sum(_across(e.plus, e.minus, rebuilt), put_out, -1)
+def _law(b: Branch, rebuilt: _Rebuilt) -> Row:
+    """What is zero in a branch whose current is an unknown."""
+    match b.role:
+        case "nullor":
+            return _steering(b, rebuilt)
+        case "controlled current":
+            put_out = _scaled(_steering(b, rebuilt), rebuilt.number(b.value))
+            return _sum({rebuilt.own[b.name]: rebuilt.number(Fraction(1))}, put_out, -1)
+        case "controlled voltage":
+            put_out = _scaled(_steering(b, rebuilt), rebuilt.number(b.value))
+            return _sum(_across(b.plus, b.minus, rebuilt), put_out, -1)
+    return _sum(_across(b.plus, b.minus, rebuilt), _step(b, rebuilt), -1)
 
 
 def _state(rebuilt: _Rebuilt, flows: dict[str, Row], solved: list[Row], column: int) -> State:
     """Everything with the source of that column at its strength and all others zeroed."""
     zero = rebuilt.number(Fraction(0))
 
-    def worked(combination: Row) -> Real:
+    def worked(combination: Row) -> Value:
         total = combination.get(column, zero)
         for j, x in combination.items():
             if j >= 0 and (y := solved[j].get(column)):
@@ -202,13 +248,14 @@ def _state(rebuilt: _Rebuilt, flows: dict[str, Row], solved: list[Row], column: 
     potentials = {node: worked(rebuilt.potential[node]) for node in rebuilt.potential}
     currents = {name: worked(flow) for name, flow in flows.items()}
     leaving = dict.fromkeys((n for _, *ends in rebuilt.tree for n in ends), zero)
-    for e in rebuilt.circuit.elements:
-        if e.name in currents:
-            if e.plus in leaving:
-                leaving[e.plus] += currents[e.name]
-            if e.minus in leaving:
-                leaving[e.minus] -= currents[e.name]
-    for e, node, before in reversed(rebuilt.tree):
-        currents[e.name] = leaving[node] if e.minus == node else -leaving[node]
+    for b in rebuilt.network.branches:
+        if b.name in currents:
+            if b.plus in leaving:
+                leaving[b.plus] += currents[b.name]
+            if b.minus in leaving:
+                leaving[b.minus] -= currents[b.name]
+    for b, node, before in reversed(rebuilt.tree):
+        currents[b.name] = leaving[node] if b.minus == node else -leaving[node]
         leaving[before] += leaving[node]
-    return State(potentials, {e.name: currents[e.name] for e in rebuilt.circuit.elements})
+    ordered = {b.name: currents[b.name] for b in rebuilt.network.branches}
+    return State(potentials, with_terminals(rebuilt.network.circuit, ordered))
