@@ -20,7 +20,8 @@ from calccheck.model import Judged, Member
 from calccheck.source import NOWHERE, Piece, Sheet
 
 _RELATION_AT_END = re.compile(r"\s*(?:[=≈<≤>≥]|~=|<=|>=|&)+\s*$")
-_LONGEST_HEAD = 30
+_LONGEST_HEAD = 30  # characters
+_UNBROKEN = 24  # characters
 
 
 def math_row(sheet: Sheet, where: Places, judged: dict[str, Judged], missing: frozenset[str], line: Piece) -> str:
@@ -74,15 +75,17 @@ def _around(line: Piece, members: list[Member], missing: frozenset[str]) -> tupl
 
 
 def _formula(sheet: Sheet, members: Iterable[Member]) -> str:
-    """Each member with its relation as one equation, so that a chain breaks before its relations.
+    """Each member with its relation as one equation, so that a chain breaks before its relations, a short one never within.
 
     The sheet's own characters are the alternative text.
     """
-    return " ".join(
-        f"#formula({literal(told(f'{m.relation} {m.text}'.strip()))}, "
-        f"${relation(m.relation)} {mathematics(m.node, sheet.text)}$);"
-        for m in members
-    )
+    return " ".join(_equation(sheet, m) for m in members)
+
+
+def _equation(sheet: Sheet, m: Member) -> str:
+    alt = f"{m.relation} {m.text}".strip()
+    source = f"#formula({literal(told(alt))}, ${relation(m.relation)} {mathematics(m.node, sheet.text)}$);"
+    return f"#box[{source}];" if len(m.text) <= _UNBROKEN else source
 
 
 def _step_mark(line: Piece, judged: Judged) -> str:
