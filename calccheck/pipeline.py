@@ -8,6 +8,7 @@ from fractions import Fraction
 
 from calccheck.arithmetic import Doubt
 from calccheck.edits import stray, unmark
+from calccheck.judge.cautions import caution_findings
 from calccheck.judge.quantities import frequencies
 from calccheck.judge.references import Find, reference_findings
 from calccheck.judge.scope import Ledger, Solve
@@ -33,7 +34,8 @@ def check(sheet: Sheet, settings: Settings | None = None, find: Find | None = No
     solutions, faults = _solved(reading.circuits, solve_once)
     judged, findings = judge_sheet(reading, solve_once, reading.settings.on or date.today(), solve_batch)
     elsewhere = reference_findings(reading, judged, find)
-    beside = (*_stray_marks(reading), *signature_findings(reading), *elsewhere)
+    cautions = caution_findings(reading, solutions)
+    beside = (*_stray_marks(reading), *signature_findings(reading), *elsewhere, *cautions)
     every = sorted((*reading.findings, *beside, *faults, *findings), key=lambda f: f.span.start)
     return Report(
         reading,
