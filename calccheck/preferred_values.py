@@ -17,21 +17,23 @@ SERIES: dict[str, tuple[int, ...]] = {
     "E3": _E24[::8], "E6": _E24[::4], "E12": _E24[::2], "E24": _E24,
     "E48": _three_figures(48), "E96": _three_figures(96), "E192": _three_figures(192),
 }  # fmt: skip
-_USUAL = ("E12", "E24", "E96", "E192")
 
 
 def neighbours(value: Fraction) -> tuple[Fraction, ...]:
-    """The next lower and next higher value in the coarsest of E12, E24, E96, E192 that holds this one; else nothing."""
-    for name in _USUAL:
-        series = SERIES[name]
-        decade = _decade(value, len(str(series[0])))
-        digits = value / decade
-        if digits.denominator == 1 and int(digits) in series:
-            at = series.index(int(digits))
-            low = series[at - 1] if at else Fraction(series[-1], 10)
-            high = series[at + 1] if at + 1 < len(series) else series[0] * 10
-            return low * decade, high * decade
-    return ()
+    """The next lower and next higher values in E12 and in E24, or else in E96 or E192; nothing for no preferred value."""
+    found = [v for name in ("E12", "E24") for v in _beside(value, SERIES[name])]
+    return tuple(dict.fromkeys(found or _beside(value, SERIES["E96"]) or _beside(value, SERIES["E192"])))
+
+
+def _beside(value: Fraction, series: tuple[int, ...]) -> tuple[Fraction, ...]:
+    decade = _decade(value, len(str(series[0])))
+    digits = value / decade
+    if digits.denominator != 1 or int(digits) not in series:
+        return ()
+    at = series.index(int(digits))
+    low = series[at - 1] if at else Fraction(series[-1], 10)
+    high = series[at + 1] if at + 1 < len(series) else series[0] * 10
+    return low * decade, high * decade
 
 
 def _decade(value: Fraction, figures: int) -> Fraction:

@@ -82,10 +82,14 @@ def _formula_before(w: Worked, case: Case) -> Node | None:
     return bare[-1].node if bare else None
 
 
-def aligned(formula: Node, put_in: Node) -> list[tuple[Number, Node]] | None:
-    """The numbers of a substitution, each with the piece of the formula that it stands for; ``None`` for another shape."""
+def aligned(formula: Node, put_in: Node) -> list[tuple[Node, Node]] | None:
+    """The numbers of a substitution, signed or not, each with the piece of the formula that it stands for.
+
+    ``None`` for a substitution of another shape than the formula's.
+    """
     formula, put_in = _open(formula), _open(put_in)
-    if isinstance(put_in, Number) and not (isinstance(formula, Number) and formula.digits == put_in.digits):
+    same = isinstance(put_in, Number) and isinstance(formula, Number) and formula.digits == put_in.digits
+    if printed(put_in) is not None and not same and type(formula) is not type(put_in):
         return [(put_in, formula)]
     match formula, put_in:
         case Unary(), Unary() if formula.sign == put_in.sign:
@@ -111,7 +115,7 @@ def _open(node: Node) -> Node:
     return node
 
 
-def _stands_for(n: Number, piece: Node, case: Case) -> bool:
+def _stands_for(n: Node, piece: Node, case: Case) -> bool:
     """Whether a number is its piece's value, rounded or not, or a value printed above for it that stands."""
     p, amount = printed(n), _amount(piece, case)
     if p is None or amount is None or isinstance(amount.value, complex):
@@ -129,7 +133,7 @@ def _amount(piece: Node, case: Case) -> Amount | None:
         return None
 
 
-def _any_part(w: Worked, case: Case) -> Iterator[tuple[Number, Node]]:
+def _any_part(w: Worked, case: Case) -> Iterator[tuple[Node, Node]]:
     """Every number with every part and assumption of its dimension that it might have been meant for."""
     words = [e.name for c in case.ledger.circuits for e in c.elements if e.stated is not None]
     words += [d.name for d in case.ledger.names.values() if d.given]
@@ -142,11 +146,11 @@ def _any_part(w: Worked, case: Case) -> Iterator[tuple[Number, Node]]:
                 yield n, piece
 
 
-def _with_piece(node: Node, number: Number, piece: Node) -> Node:
+def _with_piece(node: Node, number: Node, piece: Node) -> Node:
     """The expression with a piece in the place of a number, wherever the number is printed alike."""
+    if printed(node) is not None and printed(node) == printed(number):
+        return Group(piece, node.span)
     match node:
-        case Number() if (node.digits, node.unit) == (number.digits, number.unit):
-            return Group(piece, node.span)
         case Unary():
             return replace(node, operand=_with_piece(node.operand, number, piece))
         case Group():
@@ -169,8 +173,10 @@ def _reaches(w: Worked, mended: Node, case: Case) -> bool:
         return False
 
 
-def _put_in(number: Number, piece: Node, w: Worked, case: Case) -> str:
-    amount = _amount(piece, case)
-    value = shown(amount, number.unit) if amount is not None else ""
+def _put_in(number: Node, piece: Node, w: Worked, case: Case) -> str:
+    amount, p = _amount(piece, case), printed(number)
+    assert p is not None
+    value = shown(amount, p.written_in) if amount is not None else ""
     belongs = f"{piece.text or piece.word} = {value}" if isinstance(piece, Reference) else value
-    return f"{number.digits} {number.unit.text}".strip() + f" put in where {belongs} belongs in {w.member.text}"
+    put = f"{p.digits} {p.written_in.text}".strip().replace("-", "−")
+    return f"{put} put in where {belongs} belongs in {w.member.text}"
