@@ -9,9 +9,10 @@ from __future__ import annotations
 import math
 import re
 from dataclasses import dataclass
-from decimal import Decimal
+from decimal import ROUND_HALF_UP, Decimal, localcontext
 from fractions import Fraction
 from functools import lru_cache
+from typing import Any
 
 # Exponents of volt, ampere, second, metre, kelvin. Halves occur under a root.
 Dimension = tuple[int | Fraction, ...]
@@ -132,25 +133,30 @@ def times(a: Unit, b: Unit, sign: int = 1) -> Unit:
     return Unit(f"{a.text}{'·' if sign > 0 else '/'}{b.text}", a.factor * b.factor**sign, dimension)
 
 
-@lru_cache(maxsize=256)
+# Words that pint is asked about. It would read others too, but not as an engineer does: Rs as ronnaseconds, mu as a mass,
+# 3 dB as a factor, 20 degF as a multiple of 256 K; and an unknown name is to stay unknown.
+BEYOND = frozenset("inch ft yd mi mil lb oz lbf kgf psi atm torr hp rpm mph knot gal acre eV cal Btu gauss".split())
+
+
+@lru_cache(maxsize=len(BEYOND))
 def beyond_table(word: str) -> Unit | None:
-    """A unit that the table lacks, by pint: ``ft``, ``rpm``, ``lbf``. ``None`` where pint knows no such unit either."""
-    if not re.fullmatch(r"[A-Za-z_]{2,}", word):  # single letters are names; pint would take some for constants
+    """A unit that the table lacks, by pint: ``ft``, ``rpm``, ``lbf``. ``None`` for any other word."""
+    if word not in BEYOND:
         return None
+    quantity = _registry().Quantity(1, word).to_base_units()
+    dimension = _from_pint({name: int(exponent) for name, exponent in quantity.dimensionality.items()})
+    return Unit(word, Fraction(float(quantity.magnitude)), dimension)
+
+
+@lru_cache(maxsize=1)
+def _registry() -> Any:
     import pint  # late: 0.1 s
 
-    try:
-        quantity = pint.UnitRegistry().Quantity(1, word).to_base_units()
-    except Exception:  # pint raises its own and the standard library's errors alike for a word it cannot read
-        return None
-    dimension = _from_pint({name: int(float(str(exponent))) for name, exponent in quantity.dimensionality.items()})
-    return None if dimension is None else Unit(word, Fraction(float(quantity.magnitude)), dimension)
+    return pint.UnitRegistry()
 
 
-def _from_pint(powers: dict[str, int]) -> Dimension | None:
+def _from_pint(powers: dict[str, int]) -> Dimension:
     """Mass, length, time, current, temperature exponents in terms of V, A, s, m, K: kg is V·A·s³/m²."""
-    if set(powers) - {"[mass]", "[length]", "[time]", "[current]", "[temperature]"}:
-        return None
     mass, length, time, current, heat = (
         powers.get(k, 0) for k in ("[mass]", "[length]", "[time]", "[current]", "[temperature]")
     )
@@ -190,13 +196,14 @@ def digits(value: float | Fraction, figures: int) -> str:
     """A number rounded to significant figures, half away from zero, without exponent where it stays readable."""
     if value == 0:
         return "0"
-    exact = Decimal(value) if isinstance(value, float) else Decimal(value.numerator) / Decimal(value.denominator)
-    if not exact.is_finite():
-        return str(float(value))
-    place = exact.adjusted() - figures + 1
-    rounded = exact.quantize(Decimal(1).scaleb(place)) if abs(exact.adjusted()) < 25 else +exact
-    if rounded == exact and place < 0:
-        rounded = rounded.normalize()  # an exact value needs no zeros at its end
+    with localcontext(prec=figures + 40, rounding=ROUND_HALF_UP):
+        exact = Decimal(value) if isinstance(value, float) else Decimal(value.numerator) / Decimal(value.denominator)
+        if not exact.is_finite():
+            return str(float(value))
+        place = exact.adjusted() - figures + 1
+        rounded = exact.quantize(Decimal(1).scaleb(place)) if abs(exact.adjusted()) < 25 else +exact
+        if rounded == exact and place < 0:
+            rounded = rounded.normalize()  # an exact value needs no zeros at its end
     if -5 <= exact.adjusted() < 7:
         return f"{rounded:f}"
     return f"{float(exact):.{figures - 1}e}"
