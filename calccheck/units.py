@@ -7,7 +7,6 @@ authority. Pint itself is imported only for a unit that the table lacks, because
 from __future__ import annotations
 
 import math
-import re
 from dataclasses import dataclass
 from decimal import ROUND_HALF_UP, Decimal, localcontext
 from fractions import Fraction
@@ -134,8 +133,11 @@ def times(a: Unit, b: Unit, sign: int = 1) -> Unit:
 
 
 # Words that pint is asked about. It would read others too, but not as an engineer does: Rs as ronnaseconds, mu as a mass,
-# 3 dB as a factor, 20 degF as a multiple of 256 K; and an unknown name is to stay unknown.
-BEYOND = frozenset("inch ft yd mi mil lb oz lbf kgf psi atm torr hp rpm mph knot gal acre eV cal Btu gauss".split())
+# 3 dB as a factor, 20 degF as a multiple of 256 K; and an unknown name is to stay unknown. Units of which there are several
+# (hp, gal, cal, Btu) are left out.
+BEYOND = {
+    "inch", "ft", "yd", "mi", "mil", "acre", "lb", "oz", "lbf", "kgf", "psi", "atm", "torr", "rpm", "mph", "knot", "eV",
+}  # fmt: skip
 
 
 @lru_cache(maxsize=len(BEYOND))
