@@ -55,20 +55,30 @@ def _stray_marks(reading: Reading) -> list[Finding]:
 def solver() -> Solve:
     """A solver that solves each circuit once at each frequency and raises ``Doubt`` where one cannot be solved."""
     known: dict[tuple[Circuit, Fraction], Solution | Doubt] = {}
+    seen: dict[
+        tuple[int, Fraction], tuple[Circuit, Solution | Doubt]
+    ] = {}  # hashing a circuit costs more than looking it up
 
     def solve_once(circuit: Circuit, frequency: Fraction = Fraction(0)) -> Solution:
-        if (circuit, frequency) not in known:
-            try:
-                known[circuit, frequency] = solve(circuit, *([frequency] if frequency else []))
-            except Unsolvable as u:
-                first = u.findings[0]
-                known[circuit, frequency] = Doubt(f"its circuit cannot be solved: {first.message}", first.span)
-        found = known[circuit, frequency]
+        here = (id(circuit), frequency)
+        if here not in seen:
+            if (circuit, frequency) not in known:
+                known[circuit, frequency] = _solution(circuit, frequency)
+            seen[here] = (circuit, known[circuit, frequency])  # kept, so that no other circuit gets its id
+        found = seen[here][1]
         if isinstance(found, Doubt):
             raise Doubt(found.reason, found.span)
         return found
 
     return solve_once
+
+
+def _solution(circuit: Circuit, frequency: Fraction) -> Solution | Doubt:
+    try:
+        return solve(circuit, *([frequency] if frequency else []))
+    except Unsolvable as u:
+        first = u.findings[0]
+        return Doubt(f"its circuit cannot be solved: {first.message}", first.span)
 
 
 def _solved(circuits: Sequence[Circuit], solve_once: Solve) -> tuple[list[list[Solution]], list[Finding]]:

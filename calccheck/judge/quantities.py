@@ -142,7 +142,12 @@ def circuit_of(key: Key, ledger: Ledger, span: Span) -> Circuit:
     if circuit.problems:
         first = circuit.problems[0]
         raise Doubt(f"its circuit is not solved: {first.message}", span)
-    return with_changes(circuit, key, span)
+    if not key.changes:
+        return circuit
+    known = (key.circuit, key.changes)
+    if known not in ledger.variants:
+        ledger.variants[known] = with_changes(circuit, key, span)
+    return ledger.variants[known]
 
 
 def with_changes(circuit: Circuit, key: Key, span: Span) -> Circuit:

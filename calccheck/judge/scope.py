@@ -78,7 +78,10 @@ class Solve(Protocol):
 
 @dataclass(slots=True)
 class Ledger:
-    """The sheet's circuits, and what its claims have established up to the present one."""
+    """The sheet's circuits, and what its claims have established up to the present one.
+
+    ``amounts`` and ``variants`` keep what was worked out once: quantities by key, changed circuits by their changes.
+    """
 
     circuits: tuple[Circuit, ...]
     solve: Solve
@@ -86,6 +89,8 @@ class Ledger:
     names: dict[str, Defined] = field(default_factory=dict)
     results: list[Result] = field(default_factory=list)
     symbols: Mapping[str, Amount] = field(default_factory=dict)
+    amounts: dict[Key, Amount] = field(default_factory=dict)
+    variants: dict[object, Circuit] = field(default_factory=dict)
 
 
 Sort = Literal["quantity", "part", "name", "constant"]
