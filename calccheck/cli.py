@@ -76,6 +76,14 @@ def _command(options: argparse.Namespace) -> int:
                 from calccheck.signing import sign
 
                 return sign(options)
+            case "register":
+                from calccheck.registering import register
+
+                return register(options)
+            case "blank":
+                from calccheck.blank import blank
+
+                return blank(options)
             case _:
                 return working(options)
     except (KeyboardInterrupt, BrokenPipeError):
@@ -137,7 +145,29 @@ def arguments() -> argparse.ArgumentParser:
     three.add_argument("sheet", metavar="SHEET", help="the sheet; - is standard input")
     three.add_argument("quantity", metavar="QUANTITY", help='as in a sheet: V_bus, "I_RL due to Vb", "R_{a,b}"')
     _sign_arguments(commands)
+    _register_arguments(commands)
+    six = commands.add_parser(
+        "blank", help="print empty tables for a sheet that holds its circuit",
+        description="Print the superposition table and the list of quantities of a sheet's circuits in the sheet's own language, "
+        "with empty cells to fill in by hand. It never fills in a value. Writes no file.",
+    )  # fmt: skip
+    six.add_argument("sheet", metavar="SHEET", help="the sheet; - is standard input")
     return parser
+
+
+def _register_arguments(commands: argparse._SubParsersAction[argparse.ArgumentParser]) -> None:
+    five = commands.add_parser(
+        "register", help="list the sheets: verdict, signatures, what is to be mended, what is open", epilog=_STATUS,
+        formatter_class=argparse.RawDescriptionHelpFormatter,
+        description="List the calc sheets with their verdicts and signatures, what is to be mended (claims, void signatures,\n"
+        "numbers given twice, gaps in title blocks) and what is open (signatures missing, assumptions without a source).\n"
+        "What is open does not count for the exit status. Writes no file.",
+    )  # fmt: skip
+    _paths(five, "sheets, or folders to search for *.md (default: this folder); - is standard input")
+    five.add_argument(
+        "--format", choices=("text", "markdown", "json"), default="text", help="how to print it (default text)"
+    )
+    _common(five)
 
 
 def _sign_arguments(commands: argparse._SubParsersAction[argparse.ArgumentParser]) -> None:

@@ -133,10 +133,10 @@ def times(a: Unit, b: Unit, sign: int = 1) -> Unit:
 
 
 # Words that pint is asked about. It would read others too, but not as an engineer does: Rs as ronnaseconds, mu as a mass,
-# 3 dB as a factor, 20 degF as a multiple of 256 K; and an unknown name is to stay unknown. Units of which there are several
-# (hp, gal, cal, Btu) are left out.
+# mil as an angle, 20 degF as a multiple of 256 K; and an unknown name is to stay unknown. Units of which there are several
+# (hp, gal, acre, cal, Btu) are left out.
 BEYOND = {
-    "inch", "ft", "yd", "mi", "mil", "acre", "lb", "oz", "lbf", "kgf", "psi", "atm", "torr", "rpm", "mph", "knot", "eV",
+    "inch", "ft", "yd", "mi", "lb", "oz", "lbf", "kgf", "psi", "atm", "torr", "rpm", "mph", "knot", "eV",
 }  # fmt: skip
 
 

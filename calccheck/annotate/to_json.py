@@ -14,7 +14,7 @@ from calccheck.source import Sheet, Span
 from calccheck.units import Dimension, unit_of
 
 FORM = 1
-_SURROGATES = {code: f"\\u{code:04x}" for code in range(0xD800, 0xE000)}  # odd bytes of a file name
+SURROGATES = {code: f"\\u{code:04x}" for code in range(0xD800, 0xE000)}  # odd bytes of a file name
 Record = dict[str, Any]
 
 
@@ -27,7 +27,7 @@ def to_json(reports: Sequence[Report], program: str) -> str:
         "summary": _summary(sheets, len(reports) - len(sheets)),
         "sheets": [_sheet(r) for r in sheets],
     }
-    return json.dumps(record, ensure_ascii=False, indent=2, allow_nan=False).translate(_SURROGATES) + "\n"
+    return json.dumps(record, ensure_ascii=False, indent=2, allow_nan=False).translate(SURROGATES) + "\n"
 
 
 def digest(text: str) -> str:
