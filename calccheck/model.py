@@ -6,6 +6,7 @@ from collections.abc import Mapping
 from dataclasses import dataclass, field
 from datetime import date
 from fractions import Fraction
+from functools import cached_property
 from typing import Literal, get_args
 
 from calccheck.arithmetic import Amount, Value
@@ -128,7 +129,7 @@ class Case:
     span: Span
 
 
-@dataclass(frozen=True, slots=True)
+@dataclass(frozen=True)
 class Circuit:
     """One circuit block as read.
 
@@ -144,12 +145,28 @@ class Circuit:
     symbols: tuple[tuple[str, Dimension], ...] = ()
     cases: tuple[Case, ...] = ()
 
+    def __hash__(self) -> int:
+        """The hash of the fields, worked out once: a circuit is looked up hundreds of times in one sheet."""
+        return self._hash
+
+    @cached_property
+    def _hash(self) -> int:
+        return hash((self.name, self.elements, self.reference, self.span, self.problems))
+
+    @cached_property
+    def _by_name(self) -> dict[str, Element]:
+        return {e.name: e for e in reversed(self.elements)}
+
     def element(self, name: str) -> Element | None:
         """The part of that name."""
-        return next((e for e in self.elements if e.name == name), None)
+        return self._by_name.get(name)
 
     def nodes(self) -> tuple[str, ...]:
         """All nodes, in the order in which the block names them, the reference wherever it stands."""
+        return self._nodes
+
+    @cached_property
+    def _nodes(self) -> tuple[str, ...]:
         names: dict[str, None] = {}
         for e in self.elements:
             for node in (e.plus, e.minus, *(n for _, n in e.terminals)):
@@ -159,7 +176,16 @@ class Circuit:
 
     def sources(self) -> tuple[Element, ...]:
         """The independent sources of every frequency, parts with a drop of their hand model among them."""
+        return self._sources
+
+    @cached_property
+    def _sources(self) -> tuple[Element, ...]:
         return tuple(e for e in self.elements if e.is_source)
+
+    @cached_property
+    def frequencies(self) -> tuple[Fraction, ...]:
+        """The frequencies of the independent sources, 0 for DC, rising; DC alone where there is no source."""
+        return tuple(sorted({s.frequency or Fraction(0) for s in self._sources})) or (Fraction(0),)
 
 
 @dataclass(frozen=True, slots=True)

@@ -82,7 +82,37 @@ def _power(key: Key, circuit: Circuit, ledger: Ledger, span: Span) -> Amount:
 
 def frequencies(circuit: Circuit) -> tuple[Fraction, ...]:
     """The frequencies of a circuit's independent sources, 0 for DC, rising; DC alone where there is no source."""
-    return tuple(sorted({s.frequency or Fraction(0) for s in circuit.sources()})) or (Fraction(0),)
+    return circuit.frequencies
+
+
+def values_around(key: Key, ledger: Ledger, span: Span) -> list[Amount]:
+    """Every voltage, current and power of a quantity's circuit under its own qualifiers, worked out once."""
+    known = Key(key.circuit, "", (), key.due_to, key.changes, key.frequency)
+    if known not in ledger.around:
+        try:
+            ledger.around[known] = _all_values(key, ledger, span)
+        except Doubt:
+            ledger.around[known] = []
+    return ledger.around[known]
+
+
+def _all_values(key: Key, ledger: Ledger, span: Span) -> list[Amount]:
+    circuit = circuit_of(key, ledger, span)
+    acting = _acting(key, circuit, span)
+    if len(acting) > 1:
+        return []
+    state = _state(circuit, key, acting[0], ledger, span)
+    found = [Amount(plainest(v), VOLT) for v in state.potentials.values()]
+    for e in circuit.elements:
+        current = state.currents.get(e.name)
+        if current is None or not e.plus:
+            continue
+        voltage = state.potentials[e.plus] - state.potentials[e.minus]
+        power = (
+            voltage * current if acting[0] == 0 else _half(acting[0], ledger) * voltage * complex(current).conjugate()
+        )
+        found += [Amount(plainest(voltage), VOLT), Amount(plainest(current), AMPERE), Amount(trimmed(power), WATT)]
+    return found
 
 
 def _acting(key: Key, circuit: Circuit, span: Span) -> tuple[Fraction, ...]:
@@ -177,13 +207,31 @@ def check_sources(names: Iterable[str], circuit: Circuit, span: Span) -> None:
 
 
 def _summed(q: Linear, key: Key, frequency: Fraction, ledger: Ledger, span: Span) -> Value:
-    """The sum over the sources that act, or the nodal value of the whole where no route is exact."""
-    solution = solved(q.circuit, ledger, span, frequency)
+    """The quantity with the sources that act on it."""
+    return plainest(q.read(_state(q.circuit, key, frequency, ledger, span)))
+
+
+def _state(circuit: Circuit, key: Key, frequency: Fraction, ledger: Ledger, span: Span) -> State:
+    """The sum of the states of the sources that act, or the nodal state of the whole where no route is exact."""
+    solution = solved(circuit, ledger, span, frequency)
     if not key.due_to and not solution.exact:
-        return plainest(q.read(solution.nodal))
-    check_sources(key.due_to, q.circuit, span)
-    acting = [s for name, s in solution.parts.items() if not key.due_to or name in key.due_to]
-    return plainest(sum((q.read(s) for s in acting), start=Fraction(0)))
+        return solution.nodal
+    known = (circuit, key.due_to, frequency)
+    if known not in ledger.states:
+        check_sources(key.due_to, circuit, span)
+        acting = [s for name, s in solution.parts.items() if not key.due_to or name in key.due_to]
+        ledger.states[known] = _added(acting, solution.nodal)
+    return ledger.states[known]
+
+
+def _added(states: list[State], like: State) -> State:
+    if len(states) == 1:
+        return states[0]
+    zero = Fraction(0)
+    return State(
+        {n: sum((s.potentials[n] for s in states), start=zero) for n in like.potentials},
+        {n: sum((s.currents[n] for s in states), start=zero) for n in like.currents},
+    )
 
 
 def solved(circuit: Circuit, ledger: Ledger, span: Span, frequency: Fraction = DC) -> Solution:

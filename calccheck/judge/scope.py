@@ -14,7 +14,7 @@ from calccheck.component_code import component_code
 from calccheck.formula import Change, ChangeKind, Node, Reference
 from calccheck.judge.phasors import PrintedPhasor
 from calccheck.judge.rounding import Printed
-from calccheck.model import Basis, Circuit, Element, Settings, Solution, Verdict
+from calccheck.model import Basis, Circuit, Element, Settings, Solution, State, Verdict
 
 QUANTITY_LETTERS = {"V", "I", "P", "R", "Z", "Isc", "S", "Q"}
 _TWO_NODES = {"R", "Z", "Isc"}
@@ -80,7 +80,8 @@ class Solve(Protocol):
 class Ledger:
     """The sheet's circuits, and what its claims have established up to the present one.
 
-    ``amounts`` and ``variants`` keep what was worked out once: quantities by key, changed circuits by their changes.
+    ``amounts``, ``variants``, ``states`` and ``around`` keep what was worked out once: quantities by key, changed circuits by
+    their changes, states by the sources that act, all values of a circuit.
     """
 
     circuits: tuple[Circuit, ...]
@@ -91,6 +92,8 @@ class Ledger:
     symbols: Mapping[str, Amount] = field(default_factory=dict)
     amounts: dict[Key, Amount] = field(default_factory=dict)
     variants: dict[object, Circuit] = field(default_factory=dict)
+    states: dict[object, State] = field(default_factory=dict)
+    around: dict[Key, list[Amount]] = field(default_factory=dict)
 
 
 Sort = Literal["quantity", "part", "name", "constant"]

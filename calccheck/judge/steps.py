@@ -2,12 +2,24 @@
 
 from __future__ import annotations
 
-from collections.abc import Iterator, Sequence
+from collections.abc import Sequence
 from dataclasses import dataclass, field, replace
 from fractions import Fraction
 from itertools import takewhile
 
-from calccheck.arithmetic import COHERENT, ICE, Amount, DimensionFault, Doubt, Real, decibels, evaluate, literal, real, size
+from calccheck.arithmetic import (
+    COHERENT,
+    ICE,
+    Amount,
+    DimensionFault,
+    Doubt,
+    Real,
+    decibels,
+    evaluate,
+    literal,
+    real,
+    size,
+)
 from calccheck.formula import Binary, Node, Number, numbers, references
 from calccheck.judge import quantities, say
 from calccheck.judge.laws import followed
@@ -57,7 +69,7 @@ class Ground:
         constants = [literal(n) for found in fixed for n in found]
         pieces = [a for m in before for a in worked_pieces(m.node, self.names.amount)]
         repeated = [literal(n) for m in before for n in numbers(m.node)]
-        return Meanings([*self.exact_values(), *constants], pieces, [*self.circuit_values()], repeated)
+        return Meanings([*self.exact_values(), *constants], pieces, self.circuit_values(), repeated)
 
     def exact_values(self) -> list[Amount]:
         """Values of parts and givens, and of what ``with … as`` puts in their place."""
@@ -69,23 +81,12 @@ class Ground:
         key = self.source.key
         return [*found, *(v for _, _, v in key.changes if v is not None)] if key else found
 
-    def circuit_values(self) -> Iterator[Amount]:
+    def circuit_values(self) -> list[Amount]:
         """Voltages, currents and powers of the truth's circuit under its own qualifiers, printed or not."""
         key = self.source.key
         if key is None or key.circuit < 0 or key.letter not in ("V", "I", "P"):
-            return
-        try:
-            circuit = quantities.circuit_of(key, self.ledger, self.source.member.span)
-        except Doubt:
-            return
-        wanted = [("V", n) for n in circuit.nodes()] + [(x, e.name) for e in circuit.elements for x in ("V", "I", "P")]
-        for letter, name in wanted:
-            try:
-                yield quantities.amount(
-                    replace(key, letter=letter, subscripts=(name,)), self.ledger, self.source.member.span
-                )
-            except Doubt:
-                continue
+            return []
+        return quantities.values_around(key, self.ledger, self.source.member.span)
 
     def say_untraced(self, traced: Sequence[Traced]) -> None:
         """The caution about numbers that stand for nothing."""
