@@ -81,7 +81,7 @@ def _command(options: argparse.Namespace) -> int:
 
                 return register(options)
             case "blank":
-                from calccheck.blank import blank
+                from calccheck.blanking import blank
 
                 return blank(options)
             case _:
