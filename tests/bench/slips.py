@@ -64,7 +64,7 @@ def wrong(seed):
     text, shown, unit = seed.claim()
     off = abs(shown - seed.truth)
     may_be_rounded = text.count(" = ") > 1 or text.split()[-2].endswith("0")
-    return off > 1.001 * unit and not (may_be_rounded and off <= 0.005 * abs(seed.truth))
+    return off > 1.001 * unit and not (may_be_rounded and off <= 0.005001 * abs(seed.truth))
 
 
 def seeds_of(kind, bench, wanted):
@@ -83,7 +83,7 @@ def judged(parts, seeds):
     """The judgement of each seed's claim, all on one sheet."""
     text = "\n\n".join([hand.circuit_block(parts), *(f"`{s.claim()[0]}`" for s in seeds)])
     versions = [(f"version {k}", hand.circuit_block(s.earlier)) for k, s in enumerate(seeds) if s.earlier]
-    report = check(Sheet("bench.md", text), Settings(), lambda: versions)
+    report = check(Sheet("bench.md", text), Settings(), earlier=lambda: versions)
     assert len(report.claims) == len(seeds), text
     return report.claims
 

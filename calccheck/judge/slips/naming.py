@@ -1,7 +1,8 @@
 """The slips that fit a wrong value, likeliest first.
 
 A slip is the likelier, the commoner it is and the fewer values of its kind were tried: one that could have given any of fifty
-numbers met this one by chance fifty times as easily as one that could only have given this.
+numbers met this one by chance fifty times as easily as one that could only have given this. What is hardly likelier than chance
+is not named.
 """
 
 from __future__ import annotations
@@ -21,6 +22,7 @@ from calccheck.model import Slip
 
 UNDECIDED = 3  # kinds that may fit before the number decides nothing
 _ALIKE = 3  # fits of one kind that a sentence names
+_ODDS = 8  # how many times likelier than chance a slip must be to be named; tests/bench/slips.py shows what that costs
 _WORKING_RIGHT = 0.02  # how much rarer a slip with the circuit is, where the working before the value is right
 
 
@@ -63,7 +65,17 @@ def _fitting(kind: SlipKind, tried: Sequence[tuple[Guess, Value | None]], case: 
     score = kind.common * best / others
     if kind.of in ("sources", "circuit") and right_substitution(case) is not None:
         score *= _WORKING_RIGHT
+    if score < _ODDS * _chance(case) and not any(guess.certain for guess, *_ in met.values()):
+        return None
     return _Fit(kind, tuple((g, v) for g, v, how in met.values() if how == best), score)
+
+
+def _chance(case: Case) -> float:
+    """How likely a wrong number without a slip is to be this one: one of all that lie as near the truth, or within 20 %."""
+    if case.printed is None or case.value is None:
+        return 0.0
+    off = max(float(size(case.value - case.truth)), 0.2 * float(size(case.truth)))
+    return float(case.printed.unit) / (2 * off) if off else 0.0
 
 
 def _how(guess: Guess, value: Value | None, case: Case) -> float:
