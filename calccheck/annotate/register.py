@@ -13,6 +13,7 @@ from calccheck.signatures import digest_of, why_void
 from calccheck.source import Span
 
 FIELDS = ("project", "subject", "sheet", "revision", "by", "date")  # a title block has them all (common practice)
+ASSUMED = "assumed without a source: "
 
 
 @dataclass(frozen=True, slots=True)
@@ -134,7 +135,7 @@ def _open(report: Report) -> Iterator[Remark]:
     for j in report.claims:
         if j.verdict == "given" and not j.claim.from_sheet:
             words = " ".join(j.claim.text.split()).removeprefix("given ")
-            yield Remark("assumption", _line(report, j.claim.span), f"assumed without a source: {words}")
+            yield Remark("assumption", _line(report, j.claim.span), ASSUMED + words)
 
 
 def _line(report: Report, span: Span) -> int:

@@ -3,19 +3,19 @@
 from __future__ import annotations
 
 import json
-from collections.abc import Callable, Sequence
+from collections.abc import Sequence
 from datetime import date
 from typing import Any
 
 from calccheck.annotate.marks import MARKS
 from calccheck.annotate.record import LIMITS
-from calccheck.annotate.register import Remark, Row, Signed
+from calccheck.annotate.register import ASSUMED, Remark, Row, Signed
 from calccheck.annotate.to_json import SURROGATES
 from calccheck.annotate.to_markdown import escaped
 from calccheck.annotate.visible import one_line, visible
 from calccheck.model import ROLES
 
-FORM = 1  # of the JSON register, described in docs/report-json.md
+FORM = 1  # of the JSON register, described in docs/reviewing.md
 _COLUMNS = ("sheet", "rev", "date", "verdict", "claims", "failing", "given", *ROLES, "subject")
 _NUMBERS = ("claims", "failing", "given")
 _NONE = "-"
@@ -74,12 +74,21 @@ def _signature(signed: Signed | None) -> str:
 
 def _lists(rows: Sequence[Row]) -> list[tuple[str, list[tuple[Row, Remark]]]]:
     """The two lists of remarks, without an empty one."""
-    kinds: list[tuple[str, Callable[[Row], tuple[Remark, ...]]]] = [
-        ("To mend", lambda row: row.to_mend),
-        ("Open", lambda row: row.open),
+    lists = [
+        ("To mend", [(row, r) for row in rows for r in row.to_mend]),
+        ("Open", [(row, r) for row in rows for r in _together(row.open)]),
     ]
-    lists = [(title, [(row, r) for row in rows for r in of(row)]) for title, of in kinds]
     return [(title, remarks) for title, remarks in lists if remarks]
+
+
+def _together(remarks: Sequence[Remark]) -> list[Remark]:
+    """The assumptions of a sheet in one remark, by their names; a sheet may have dozens."""
+    assumed = [r for r in remarks if r.kind == "assumption"]
+    if len(assumed) < 2:
+        return list(remarks)
+    names = ", ".join(r.message.removeprefix(ASSUMED).partition(" =")[0] for r in assumed)
+    listed = f"{len(assumed)} values {ASSUMED}{names}"
+    return [*(r for r in remarks if r.kind != "assumption"), Remark("assumption", assumed[0].line, listed)]
 
 
 # --- JSON -----------------------------------------------------------------------------------------------------------
