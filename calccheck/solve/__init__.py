@@ -37,8 +37,9 @@ def frequencies(circuit: Circuit) -> tuple[Fraction, ...]:
 def solve(circuit: Circuit, frequency: Fraction | None = None) -> Solution:
     """The circuit at a frequency in hertz; ``None`` or 0: DC, ``model.UNSTATED``: an AC frequency that nothing depends on.
 
-    Only the sources of that frequency act. Nodal in floating point, and each of those sources alone: at DC in rationals up to
-    25 nodes, at AC in complex numbers. Raises ``Unsolvable`` with every reason found.
+    Only the sources of that frequency act. Nodal in floating point, and each of those sources alone: exactly up to 25 nodes at
+    DC and 12 at AC (there for 2πf and phasors as floating-point numbers), in floating point beyond. Raises ``Unsolvable``
+    with every reason found.
     """
     at = frequency or DC
     found = circuit.problems or _empty(circuit) or part_faults(circuit, at)
@@ -47,7 +48,7 @@ def solve(circuit: Circuit, frequency: Fraction | None = None) -> Solution:
     network = network_of(circuit, at)
     if found := faults(network):
         raise Unsolvable(found)
-    if not at and not is_exact(network) and suspects(network) and is_singular(network):
+    if (at or not is_exact(network)) and suspects(network) and is_singular(network):
         raise Unsolvable(singular_faults(network))
     from calccheck.solve.nodal import nodal_state  # late: numpy
 

@@ -11,14 +11,11 @@ from __future__ import annotations
 from collections.abc import Callable, Sequence
 from fractions import Fraction
 from math import gcd, lcm
-from typing import TypeVar
+from typing import Any, TypeVar
 
-from calccheck.arithmetic import Value, real, size
-
-Row = dict[int, Value]
+Row = dict[int, Any]  # all coefficients of one kind: rational, floating-point, complex
 N = TypeVar("N", int, complex)
 _SAFE = 0.1  # a floating-point pivot is no less than this part of the largest coefficient of its row
-_CANCELLED = 1e-13  # what two terms leave of each other is rounding, where it is less than this part of them
 
 
 class Singular(Exception):
@@ -35,32 +32,14 @@ def solve_exact(rows: Sequence[Row]) -> list[Row]:
 
 
 def solve_float(rows: Sequence[Row]) -> list[Row]:
-    """As ``solve_exact``, in real or complex floating point.
-
-    Coefficients that cancel but for rounding count as zero. Where that takes several steps it may go unnoticed.
-    """
-    steps = _steps([_rounded(row) for row in rows], lambda sizes: _SAFE * max(sizes), _subtracted)
+    """As ``solve_exact``, in real or complex floating point; rows that depend on one another may go unnoticed."""
+    steps = _steps([{j: x for j, x in row.items() if x} for row in rows], lambda sizes: _SAFE * max(sizes), _subtracted)
     return _substituted(steps, 1.0)
 
 
-def added(a: Row, b: Row, factor: float) -> Row:
-    """a + factor · b in floating point; what cancels but for rounding is left out."""
-    total = dict(a)
-    for j, x in b.items():
-        before, term = total.get(j, 0.0), factor * x
-        total[j] = before + term
-        if size(total[j]) <= _CANCELLED * size(term):
-            del total[j]
-    return total
-
-
-def _rounded(row: Row) -> dict[int, complex]:
-    return {j: x if isinstance(x, complex) else float(x) for j, x in row.items() if x}
-
-
 def _whole(row: Row) -> dict[int, int]:
-    """The row times the number that makes it whole; a phasor cannot be made so."""
-    pairs = [(j, x if isinstance(x, Fraction) else Fraction(real(x))) for j, x in row.items() if x]
+    """The row times the number that makes it whole."""
+    pairs = [(j, Fraction(x)) for j, x in row.items() if x]
     multiple = lcm(*(x.denominator for _, x in pairs))
     return {j: x.numerator * (multiple // x.denominator) for j, x in pairs}
 
@@ -82,14 +61,9 @@ def _subtracted(row: dict[int, complex], by: dict[int, complex], column: int) ->
     factor = row[column] / by[column]
     new = dict(row)
     for j, x in by.items():
-        term = factor * x
-        left = new.get(j, 0.0) - term
-        if abs(left) <= _CANCELLED * abs(term):
-            new.pop(j, None)
-        else:
-            new[j] = left
-    new.pop(column, None)
-    return new
+        new[j] = new.get(j, 0.0) - factor * x
+    del new[column]
+    return {j: x for j, x in new.items() if x}
 
 
 def _steps(

@@ -1,6 +1,8 @@
 """What makes the equations of a network singular whose structure is sound: gains, negative resistances, resonance, missing feedback.
 
 The branches that can do so are moved a little in value, one by one: where that alone cures the equations, its value is at fault.
+At AC, where 2πf is rounded, a network counts as singular when a move of one part in 10¹² changes a voltage or current by more
+than one part in a thousand.
 """
 
 from __future__ import annotations
@@ -15,16 +17,22 @@ from calccheck.solve.branches import Branch, Network
 from calccheck.solve.elimination import Singular
 from calccheck.solve.part_faults import fault, hertz
 from calccheck.solve.structure import cut_sets, listed, loops, named, shown
-from calccheck.solve.superposition import EXACT_NODES, check_rank, responses
+from calccheck.solve.superposition import EXACT_NODES, responses, stirred
 from calccheck.units import NONE, OHM
 
 _STEERED = ("controlled voltage", "controlled current", "nullor")
 _STILL = 1e-9  # volts at an amplifier's inputs for a volt at an output, below which there is no feedback
+_DOUBTFUL = 1e10  # condition at AC from which a closer look is taken; a move of 1e-12 shows from about 1e12
+_MOVE = Fraction(1, 10**12)
 
 
 def suspects(network: Network) -> tuple[Branch, ...]:
     """The branches without which a network of sound structure always has a single solution."""
-    return tuple(b for b in network.branches if b.role in _STEERED or _is_reactive(b) or _is_negative(b))
+    found = [b for b in network.branches if b.role in _STEERED or _is_negative(b)]
+    reactive = [b for b in network.branches if _is_reactive(b)]
+    if found or len({complex(b.value).imag > 0 for b in reactive}) > 1:
+        found += reactive
+    return tuple(found)
 
 
 def _is_reactive(b: Branch) -> bool:
@@ -32,20 +40,33 @@ def _is_reactive(b: Branch) -> bool:
 
 
 def _is_negative(b: Branch) -> bool:
-    return b.role == "impedance" and not isinstance(b.value, complex) and b.value < 0
+    return b.role == "impedance" and b.value.real < 0
 
 
 def is_singular(network: Network) -> bool:
-    """By rank, in exact arithmetic at DC up to ``EXACT_NODES`` nodes; by the condition of the equations at DC beyond."""
-    if not network.frequency and len(network.nodes) > EXACT_NODES:
-        from calccheck.solve.nodal import SINGULAR, condition  # late: numpy
+    """At DC by rank, in exact arithmetic up to ``EXACT_NODES`` nodes, by the condition beyond; at AC by what a move does."""
+    from calccheck.solve.nodal import SINGULAR, condition  # late: numpy
 
+    if network.frequency:
+        return not condition(network) < _DOUBTFUL and _is_touchy(network)
+    if len(network.nodes) > EXACT_NODES:
         return not condition(network) < SINGULAR
     try:
-        check_rank(network)
+        stirred(network)
     except Singular:
         return True
     return False
+
+
+def _is_touchy(network: Network) -> bool:
+    """Whether a move of every value by a few parts in 10¹² moves any unknown by more than a thousandth."""
+    try:
+        pairs = zip(
+            stirred(network), stirred(_nudged(network, [b for b in network.branches if b.value], _MOVE)), strict=True
+        )
+        return any(abs(complex(a - b)) > 1e-3 * abs(complex(a)) for a, b in pairs)
+    except (Singular, OverflowError):
+        return True
 
 
 def singular_faults(network: Network) -> tuple[Finding, ...]:
@@ -53,28 +74,23 @@ def singular_faults(network: Network) -> tuple[Finding, ...]:
 
     When other values would not help either, an amplifier lacks feedback, or controlled sources stand in a loop or a cut set.
     """
-    parts = suspects(network)
-    other = _nudged(network, [b for b in network.branches if b.value])
+    other = _nudged(network, network.branches)
     if is_singular(other):
-        found = _feedback_faults(other) or loops(network, ("link", "voltage", "controlled voltage"))
-        found += cut_sets(network, ("current", "controlled current"))
-        return tuple(found) or (_whole_fault(network, parts),)
-    alone = [b for b in parts if not is_singular(_nudged(network, [b]))]
+        plain = replace(network, branches=tuple(b for b in network.branches if b.part.kind != "transformer"))
+        found = _feedback_faults(other) or loops(plain, ("link", "voltage", "controlled voltage"))
+        found += cut_sets(plain, ("current", "controlled current"))
+        return tuple(found) or (_whole_fault(network),)
+    alone = [b for b in suspects(network) if not is_singular(_nudged(network, [b]))]
     reactive = [b for b in alone if _is_reactive(b)]
     found = [_resonance_fault(reactive, network)] if reactive else []
     found += [_gain_fault(b, network) for b in alone if not _is_reactive(b)]
-    return tuple(found) or (_whole_fault(network, parts),)
+    return tuple(found) or (_whole_fault(network),)
 
 
-def _nudged(network: Network, branches: Sequence[Branch]) -> Network:
-    """The network with those values moved a little, by factors that no one would choose for a gain."""
-    moved = {b.name: _moved(b, k) for k, b in enumerate(branches)}
+def _nudged(network: Network, branches: Sequence[Branch], step: Fraction = Fraction(12, 7907)) -> Network:
+    """The network with those values moved a little, each by a factor of its own that no one would choose for a gain."""
+    moved = {b.name: replace(b, value=(b.value or Fraction(1)) * (1 + (k + 1) * step)) for k, b in enumerate(branches)}
     return replace(network, branches=tuple(moved.get(b.name, b) for b in network.branches))
-
-
-def _moved(b: Branch, k: int) -> Branch:
-    factor = Fraction(7919 + 12 * k, 7907)
-    return replace(b, value=(b.value or Fraction(1)) * factor)
 
 
 def _feedback_faults(network: Network) -> list[Finding]:
@@ -110,7 +126,9 @@ def _resonance_fault(branches: Sequence[Branch], network: Network) -> Finding:
 
 
 def _gain_fault(b: Branch, network: Network) -> Finding:
-    if b.role == "impedance":
+    if b.role == "nullor":
+        what, check = f"The feedback of {b.part.name} to its plus input", "what leads from its output to its two inputs"
+    elif b.role == "impedance":
         what, check = f"The resistance {b.part.name} of {shown(b.value, OHM)}", "its value and sign"
     elif b.part.kind.startswith("controlled"):
         what = f"The controlled source {b.part.name} with its gain of {shown(b.value, NONE)}"
@@ -123,7 +141,20 @@ def _gain_fault(b: Branch, network: Network) -> Finding:
     )
 
 
-def _whole_fault(network: Network, branches: Sequence[Branch]) -> Finding:
-    names = listed(dict.fromkeys(b.part.name for b in branches)) if branches else "its parts"
-    span = branches[0].part.span if branches else network.circuit.span
-    return fault(f"With {names} the circuit has no single solution. Check what controls them, gains and signs.", span)
+def _whole_fault(network: Network) -> Finding:
+    """Names the parts that a resistance in their place would free, or else all that may be at fault."""
+    stiff = [
+        b for b in network.branches if b.role not in ("impedance", "gap") and not is_singular(_softened(network, b))
+    ]
+    branches = stiff or suspects(network) or network.branches
+    names = list(dict.fromkeys(b.part.name for b in branches))
+    if len(names) == 1:
+        return _gain_fault(branches[0], network)
+    text = f"{listed(names)} set the same voltage or current, or cancel each other, so that the circuit has no single solution."
+    return fault(f"{text} Check terminals, gains and signs, or take one out.", branches[0].part.span)
+
+
+def _softened(network: Network, b: Branch) -> Network:
+    """The network with a resistance in a branch's place."""
+    soft = replace(b, role="impedance", value=Fraction(7919, 7907), control=None)
+    return replace(network, branches=tuple(soft if x is b else x for x in network.branches))

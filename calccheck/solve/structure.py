@@ -169,7 +169,7 @@ def _path(tree: dict[str, list[tuple[Branch, str]]], start: str, end: str) -> li
 def _loop_fault(closing: Branch, path: Sequence[tuple[Branch, int]], network: Network) -> Finding:
     branches = sorted((closing, *(b for b, _ in path)), key=lambda b: b.part.span.start)
     total = _added([(sign, b.value) for b, sign in ((closing, 1), *path) if b.role == "voltage"])
-    volts = shown(total if isinstance(total, complex) else size(total), VOLT)
+    volts = shown(size(total), VOLT)
     if not path:
         what = f"{named(closing, network)} has both ends at node {closing.plus}"
         why = f"no node stands {volts} above itself" if total else "nothing determines the current in it"

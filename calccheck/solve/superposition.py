@@ -1,4 +1,4 @@
-"""Second route: each independent source by itself; in exact rational arithmetic at DC.
+"""Second route: each independent source by itself, in exact rational arithmetic.
 
 The circuit is rebuilt with all independent sources zeroed: nodes joined by links and by zeroed voltage sources become one
 group, gaps and zeroed current sources are gone. One source at a time is then put back into this smaller circuit, a voltage
@@ -6,7 +6,8 @@ source as a step of potential inside its group, a current source as a current in
 zeroed is the same for every source, so one elimination serves all of them. The currents through the joined branches follow
 from the sums of currents at the nodes, from the ends of their tree inwards.
 
-At AC the same runs in Python's complex numbers: ω = 2πf is not rational, so nothing there would be exact.
+At AC the rationals are complex, and every reactance is taken for the floating-point number next to it; what comes out is
+rounded to floating-point numbers once. Networks of more nodes are worked in floating point.
 
 A combination is a mapping from column to coefficient: unknowns have columns from 0 on, strengths of sources from −1 down.
 """
@@ -17,13 +18,19 @@ from collections import defaultdict
 from collections.abc import Callable, Sequence
 from dataclasses import dataclass, replace
 from fractions import Fraction
+from typing import Any
 
-from calccheck.arithmetic import Value, real
+from calccheck.arithmetic import Value
 from calccheck.model import Control, State
 from calccheck.solve.branches import Branch, Network, Role, with_terminals
-from calccheck.solve.elimination import Row, added, solve_exact, solve_float
+from calccheck.solve.elimination import Row, solve_exact, solve_float
+from calccheck.solve.gaussian import gaussian, solve_gaussian
 
+NUMBERS: dict[tuple[bool, bool], Callable[[Any], Any]] = {  # how a value is carried: at AC, exactly
+    (False, True): Fraction, (False, False): float, (True, True): gaussian, (True, False): complex,
+}  # fmt: skip
 EXACT_NODES = 25  # beyond, the rationals grow too long
+EXACT_NODES_AC = 12  # the same, for twice as many equations and longer numbers
 
 
 @dataclass(frozen=True, slots=True)
@@ -37,7 +44,7 @@ class _Rebuilt:
     """
 
     network: Network
-    number: Callable[[Value], Value]
+    number: Callable[[Value], Any]
     named: dict[str, Branch]
     own: dict[str, int]
     strength: dict[str, int]
@@ -49,30 +56,33 @@ class _Rebuilt:
 def part_states(network: Network) -> dict[str, State]:
     """The state with each independent source of the frequency alone, by its name, of a network whose structure is sound.
 
-    Rationals at DC up to ``EXACT_NODES`` nodes, floats beyond, complex numbers at AC. Raises ``Singular``.
+    Rationals at DC and complex numbers at AC, both worked exactly where ``is_exact``; else floating point. Raises
+    ``Singular``, where exact only where the equations depend on one another.
     """
     exact = is_exact(network)
     rebuilt = _rebuilt(network, exact)
     flows = _flows(rebuilt)
-    rows = _equations(rebuilt, flows, exact)
-    solved = solve_exact(rows) if exact else solve_float(rows)
+    rows = _equations(rebuilt, flows)
+    solved = (solve_float if not exact else solve_gaussian if network.frequency else solve_exact)(rows)
     return {name: _state(rebuilt, flows, solved, column) for name, column in rebuilt.strength.items()}
 
 
 def is_exact(network: Network) -> bool:
-    """Whether this route works the network in rationals."""
-    return not network.frequency and len(network.nodes) <= EXACT_NODES
+    """Whether this route works the network without rounding."""
+    return len(network.nodes) <= (EXACT_NODES_AC if network.frequency else EXACT_NODES)
 
 
-def check_rank(network: Network) -> None:
-    """Raises ``Singular`` where the equations have no single solution: at DC where and only where, exact at any size."""
-    exact = not network.frequency
-    rebuilt = _rebuilt(network, exact)
-    rows = _equations(rebuilt, _flows(rebuilt), exact)
-    if exact:
-        solve_exact(rows)
-    else:
-        solve_float(rows)
+def stirred(network: Network) -> list[Any]:
+    """All unknowns when every equation is stirred by a number of its own, so that no way to swing is left out; exact.
+
+    Raises ``Singular`` where, and only where, the equations have no single solution, at any size.
+    """
+    rebuilt = _rebuilt(network, True)
+    rows = _equations(rebuilt, _flows(rebuilt))
+    shaken = [
+        {j: x for j, x in row.items() if j >= 0} | {-1: rebuilt.number(Fraction(k))} for k, row in enumerate(rows, 2)
+    ]
+    return [x[-1] for x in (solve_gaussian if network.frequency else solve_exact)(shaken)]
 
 
 def responses(network: Network, amplifiers: Sequence[Branch]) -> list[list[Value]]:
@@ -94,18 +104,6 @@ def responses(network: Network, amplifiers: Sequence[Branch]) -> list[list[Value
     return rows
 
 
-def _rational(x: Value) -> Value:
-    return x if isinstance(x, Fraction) else Fraction(real(x))
-
-
-def _floating(x: Value) -> Value:
-    return float(real(x))
-
-
-def _complex(x: Value) -> Value:
-    return complex(x)
-
-
 def _rebuilt(network: Network, exact: bool) -> _Rebuilt:
     steering = {b.control.part for b in network.branches if b.control is not None}
     unknown = [
@@ -117,7 +115,7 @@ def _rebuilt(network: Network, exact: bool) -> _Rebuilt:
     sources = dict.fromkeys(b.part.name for b in network.branches if b.role in ("voltage", "current"))
     strength = {name: -1 - k for k, name in enumerate(sources)}
     own = {name: k for k, name in enumerate(unknown)}
-    number = _complex if network.frequency else _rational if exact else _floating
+    number = NUMBERS[bool(network.frequency), exact]
     rebuilt = _Rebuilt(network, number, {b.name: b for b in network.branches}, own, strength, {}, {}, [])
     _join(rebuilt)
     return rebuilt
@@ -168,7 +166,7 @@ def _sum(a: Row, b: Row, factor: int) -> Row:
     return total
 
 
-def _scaled(a: Row, factor: Value) -> Row:
+def _scaled(a: Row, factor: Any) -> Row:
     return {j: factor * x for j, x in a.items()}
 
 
@@ -203,18 +201,17 @@ def _steering(b: Branch, rebuilt: _Rebuilt) -> Row:
     return _across(control.plus, control.minus, rebuilt)
 
 
-def _equations(rebuilt: _Rebuilt, flows: dict[str, Row], exact: bool) -> list[Row]:
+def _equations(rebuilt: _Rebuilt, flows: dict[str, Row]) -> list[Row]:
     """The laws of the branches whose current is an unknown, then the sum of the currents leaving each group."""
     rows: list[Row] = [{} for _ in rebuilt.own]
     rows += [{} for _ in {g for g in rebuilt.group.values() if g is not None}]
-    plus = _sum if exact else added
     for b in rebuilt.network.branches:
         here, there = rebuilt.group[b.plus], rebuilt.group[b.minus]
         flow = flows.get(b.name, {})
         if here != there:
             for at, sign in ((here, 1), (there, -1)):
                 if at is not None:
-                    rows[at] = plus(rows[at], flow, sign)
+                    rows[at] = _sum(rows[at], flow, sign)
         if b.name in rebuilt.own:
             rows[rebuilt.own[b.name]] = _law(b, rebuilt)
     return rows
@@ -238,7 +235,7 @@ def _state(rebuilt: _Rebuilt, flows: dict[str, Row], solved: list[Row], column: 
     """Everything with the source of that column at its strength and all others zeroed."""
     zero = rebuilt.number(Fraction(0))
 
-    def worked(combination: Row) -> Value:
+    def worked(combination: Row) -> Any:
         total = combination.get(column, zero)
         for j, x in combination.items():
             if j >= 0 and (y := solved[j].get(column)):
@@ -257,5 +254,6 @@ def _state(rebuilt: _Rebuilt, flows: dict[str, Row], solved: list[Row], column: 
     for b, node, before in reversed(rebuilt.tree):
         currents[b.name] = leaving[node] if b.minus == node else -leaving[node]
         leaving[before] += leaving[node]
-    ordered = {b.name: currents[b.name] for b in rebuilt.network.branches}
-    return State(potentials, with_terminals(rebuilt.network.circuit, ordered))
+    done: Callable[[Any], Value] = complex if rebuilt.network.frequency else lambda x: x
+    ordered = {b.name: done(currents[b.name]) for b in rebuilt.network.branches}
+    return State({node: done(v) for node, v in potentials.items()}, with_terminals(rebuilt.network.circuit, ordered))
