@@ -69,12 +69,12 @@ def test_the_circuit_of_the_first_page() -> None:
 
 
 def test_the_name_and_the_other_statements() -> None:
-    _, result = reading(
-        "given Tc = 0.0039 /K\nR1: 5 Ω, a to gnd\ncase hot day: R1 = 4k7; R1 open", info="circuit bridge"
-    )
+    _, result = reading("given Tc = 0.0039 /K\nR1: 5 Ω, a to gnd\ncase hot day: R1 open", info="circuit bridge")
     assert result.circuit.name == "bridge"
     assert [g.text for g in result.givens] == ["given Tc = 0.0039 /K"]
-    assert [(c.name, [p.text for p in c.changes]) for c in result.cases] == [("hot day", ["R1 = 4k7", "R1 open"])]
+    assert [(c.name, [(x.part, x.what) for x in c.changes]) for c in result.circuit.cases] == [
+        ("hot day", [("R1", "open")])
+    ]
     assert result.findings == ()
 
 
@@ -143,12 +143,8 @@ def test_values_from_givens() -> None:
     assert part("R1: R Ω, a to b", R=Amount(Fraction(10))).value == 10
     assert part("R1: 2*R, a to b", R=Amount(Fraction(10), OHM)).value == 20
     assert part("R1: π * 2 Ω, a to b").value == Fraction(math.pi) * 2
-    _, result = reading("R1: R Ω, a to gnd\nZ1: Z, a to gnd\nE1: Z / (1 Ω) * V_a, b to gnd",
-                        {"R": Amount(Fraction(10), OHM), "Z": Amount(3 + 4j, OHM)})  # fmt: skip
-    messages = [f.message for f in result.findings]
-    assert "the value has a unit already; leave out Ω" in messages[0]
-    assert "Z1 (line 3) is an impedance" in messages[1]
-    assert "is complex" in messages[2]
+    _, result = reading("R1: R Ω, a to gnd", {"R": Amount(Fraction(10), OHM)})
+    assert ["the value has a unit already; leave out Ω" in f.message for f in result.findings] == [True]
     assert part("V1: V_ref, a to b", V_ref=Amount(Fraction(5), VOLT)).value == 5
 
 
@@ -212,44 +208,6 @@ def test_ratings() -> None:
     ]  # fmt: skip
 
 
-# --- what is read and not solved ------------------------------------------------------------------------------------
-
-
-@pytest.mark.parametrize(
-    ("line", "kind", "terminals", "says"),
-    [
-        ("U1: op-amp, plus a, minus b, out o, swing −0.2 V to 4.8 V", "op-amp", {"plus": "a", "minus": "b", "out": "o"}, "an op-amp"),
-        ("T1: transformer 10:1, a to b, c to d", "transformer",
-         {"first from": "a", "first to": "b", "second from": "c", "second to": "d"}, "a transformer"),
-        ("Q1: npn, base a, collector b, emitter e, V_BE 0.65 V, beta 150", "transistor",
-         {"base": "a", "collector": "b", "emitter": "e"}, "a transistor"),
-        ("Q1: pnp, base a, collector b, emitter e, V_BE 0.65 V, beta 150, saturated, V_CE 0.2 V, max 1 W", "transistor",
-         {"base": "a", "collector": "b", "emitter": "e"}, "a transistor"),
-        ("D1: diode, a to b, drop 0.6 V, blocking", "diode", {}, "a diode"),
-        ("Z1: (30 + j40) Ω, a to b", "impedance", {}, "an impedance"),
-        ("Z1: −j40.5 kΩ, a to b", "impedance", {}, "an impedance"),
-        ("Z1: 50 Ω ∠ −30°, a to b", "impedance", {}, "an impedance"),
-        ("V1: 10 V ∠ 30°, a to b", "voltage source", {}, "a phasor"),
-        ("V1: 10 ∠ 0.5 rad V, a to b, 50 Hz", "voltage source", {}, "a phasor"),
-        ("I1: 3 mA, a to b, 1 kHz", "current source", {}, "a source of 1 kHz"),
-        ("R1: R Ω, a to b", "resistor", {}, "the free symbol R "),
-        ("R1: 2*R Ω, a to b", "resistor", {}, "the free symbol R "),
-        ("R1: (R + 2) kΩ, a to b", "resistor", {}, "the free symbol R "),
-        ("V1: Vin V, a to b", "voltage source", {}, "the free symbol Vin "),
-    ],
-)  # fmt: skip
-def test_not_solved_here(line: str, kind: str, terminals: dict[str, str], says: str) -> None:
-    sheet, result = reading(f"Rs: 50 Ω, a to gnd\n{line}")
-    element = result.circuit.elements[-1]
-    assert (element.kind, element.value, dict(element.terminals)) == (kind, None, terminals)
-    (finding,) = result.findings
-    assert finding.kind == "not-solved-here"
-    assert f"{element.name} (line 3)" in finding.message
-    assert says in finding.message
-    assert result.circuit.problems == (finding,)
-    assert placed(sheet, finding.span) == (2, 1, line)
-
-
 # --- lines that cannot be read --------------------------------------------------------------------------------------
 
 
@@ -311,7 +269,7 @@ def test_slips_of_the_pen(line: str, column: int, under: str, says: str, suggest
     assert result.circuit.problems == (finding,)
     assert [e.name for e in result.circuit.elements] == ["R0", "R00"]
     _, again = reading(f"R0: 1 Ω, a to gnd\nR00: 1 Ω, 1 to 2\n{suggestion}")
-    assert [f.kind for f in again.findings if f.kind != "not-solved-here"] == []
+    assert again.findings == ()
 
 
 # line, column, text under the span, a part of the message; no corrected line can be offered
@@ -343,7 +301,7 @@ def test_slips_of_the_pen(line: str, column: int, under: str, says: str, suggest
         ("R1: 5 Ω, a to b, 50 Hz", 18, "50 Hz", "a frequency belongs to a source"),
         ("X1: short ±5 %, a to b", 11, "±5 %", "a tolerance belongs behind a value"),
         ("X1: short, a to b, ±5 %", 20, "±5 %", "expected NAME: short, NODE to NODE"),
-        ("V1: 10 V ∠ 30, a to b", 10, "∠", "an angle is a number and ° or rad"),
+        ("V1: 10 V ∠ 30, a to b", 12, "30", "an angle is written with ° or rad"),
         ("E1: V_a * V_a / (1 V), a to b", 5, "V_a * V_a / (1 V)", "not proportional"),
         ("E1: 2 * V_a + 1 V, a to b", 5, "2 * V_a + 1 V", "not proportional"),
         ("E1: |V_a|, a to b", 5, "|V_a|", "not proportional"),
@@ -379,7 +337,6 @@ def test_slips_of_the_pen(line: str, column: int, under: str, says: str, suggest
         ("X1: short circuit, a to b", 11, "circuit", "expected a comma behind short"),
         ("U1: op-amp, plus a b, minus b, out c", 13, "plus a b", "expected a node behind plus"),
         ("R1: 1e300 Ω / 1e-300 / 1e-300, a to b", 5, "1e300 Ω / 1e-300 / 1e-300", "does not fit"),
-        ("E1: gain * V_a, a to b", 5, "gain", "gain has no value"),
         ("E1: 2 * V_a V, a to b", 5, "2 * V_a V", "leave out V"),
         ("E1: 2 * V_a ±1 V, a to b", 13, "±1 V", "the tolerance of a gain is written ±5 %"),
         ("F1: 2 * I_{R0,a}, a to b", 9, "I_{R0,a}", "R0 has two terminals; write I_R0"),
@@ -402,7 +359,6 @@ def test_lines_without_a_corrected_form(line: str, column: int, under: str, says
         ("R1: 5 Ω ±0.1 V, a to b", 9, "±0.1 V", "the tolerance is a voltage, the value a resistance"),
         ("R1: 5 Ω +10 %/−1 Ω, a to b", 9, "+10 %/−1 Ω", "two sides of a tolerance"),
         ("R1: 5 Ω + 3 V, a to b", 5, "5 Ω + 3 V", "cannot be added"),
-        ("V1: 3 + j4 V, a to b", 5, "3 + j4 V", "cannot be added"),
     ],
 )
 def test_dimensions_that_do_not_fit(line: str, column: int, under: str, says: str) -> None:
@@ -507,19 +463,6 @@ def test_a_negative_resistance_is_a_caution() -> None:
     assert [e.value for e in result.circuit.elements] == [-5, -500, -5]
 
 
-def test_cases_are_called_apart() -> None:
-    _, result = reading("R1: 1 Ω, a to gnd\ncase hot: R1 = 3.3 Ω\ncase hot: R1 open\ncase odd: R1 beta 80")
-    assert [(f.kind, f.message) for f in result.findings] == [("circuit-name", "two cases are called hot")]
-    assert [c.name for c in result.cases] == ["hot", "odd"]
-
-
-def test_steering_by_parts_of_several_terminals() -> None:
-    transistor = "Q1: npn, base a, collector b, emitter gnd, V_BE 0.65 V, beta 150"
-    _, result = reading(f"{transistor}\nF1: 2 * I_{{Q1,c}}, a to gnd\nE1: 2 * V_Q1, a to gnd")
-    assert result.circuit.elements[1].control == Control(part="Q1")
-    assert "Q1 has several terminals; write a voltage between two nodes" in result.findings[-1].message
-
-
 def test_circuit_names() -> None:
     sheet, result = reading("R1: 1 Ω, a to gnd", info="circuit left-hand")
     assert kinds(result) == ["circuit-name"]
@@ -605,7 +548,7 @@ def test_any_text_is_read_or_told(text: str) -> None:
     assert result.circuit.problems == tuple(f for f in result.findings if f.severity == "error")
     if not result.circuit.problems:
         lines = [line.partition("#")[0].strip() for line in sheet.text.split("\n")]
-        told = len(result.circuit.elements) + len(result.givens) + len(result.cases)
+        told = len(result.circuit.elements) + len(result.givens) + len(result.circuit.cases)
         assert told == sum(bool(line) and not line.startswith("reference") for line in lines)
 
 

@@ -9,9 +9,9 @@ from fractions import Fraction
 from calccheck.arithmetic import DimensionFault, Doubt
 from calccheck.formula import Number
 from calccheck.model import Rating, Tolerance
-from calccheck.read.expression import parse
+from calccheck.read.expression import hertz, parse
 from calccheck.source import Piece, Span
-from calccheck.units import AMPERE, HERTZ, LOOKALIKES, NONE, VOLT, WATT, Dimension, words
+from calccheck.units import AMPERE, LOOKALIKES, NONE, VOLT, WATT, Dimension, words
 
 _BOTH = r"(?:±|\+\s*/\s*-|\+-)"
 _DIGITS = r"\d*\.?\d+"
@@ -107,10 +107,13 @@ def read_rating(piece: Piece) -> Rating:
     return Rating(_size(node), node.unit.dimension, piece.text, piece.span())
 
 
-def is_frequency(piece: Piece) -> bool:
-    """Whether a text is a frequency: ``50 Hz``."""
+def read_frequency(piece: Piece) -> Fraction | None:
+    """A frequency in hertz, where a text is one: ``50 Hz``, ``314 rad/s``. Raises ``Doubt`` for a frequency of zero or below."""
     try:
         node = parse(piece)
     except Doubt:
-        return False
-    return isinstance(node, Number) and node.unit.dimension == HERTZ
+        return None
+    found = hertz(node)
+    if found is not None and found <= 0:
+        raise Doubt("a source of no frequency is DC; leave this out", piece.span())
+    return found

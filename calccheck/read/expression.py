@@ -5,6 +5,7 @@ What two engineers would read differently is a ``Doubt``, never a guess.
 
 from __future__ import annotations
 
+import math
 import re
 from dataclasses import replace
 from decimal import Decimal, InvalidOperation
@@ -88,6 +89,16 @@ def parse_chain(piece: Piece, seen: list[Token] | None = None) -> tuple[Member, 
             continue
         p.expect_end()
         return tuple(members)
+
+
+def hertz(node: Node) -> Fraction | None:
+    """A printed frequency in hertz, an angular one (rad/s) over 2π; ``None`` for anything else."""
+    if not isinstance(node, Number) or node.unit.dimension != HERTZ:
+        return None
+    value = Fraction(node.digits) * node.unit.factor
+    if node.unit.text.endswith("Hz"):
+        return value
+    return value / (2 * Fraction(math.pi)) if node.unit.text in ("rad/s", "mrad/s") else None
 
 
 def parse_qualifiers(piece: Piece) -> Qualifiers:
@@ -494,10 +505,10 @@ class Parser:
         if t.kind == "word" and t.text == "dc":
             return Fraction(0)
         if t.kind == "number":
-            number = self.number(t)
-            if isinstance(number, Number) and number.unit.dimension == HERTZ:
-                return Fraction(number.digits) * number.unit.factor
-        self.fail(f"expected a frequency or dc behind at, found {self.shown(t)}", t)
+            found = hertz(self.number(t))
+            if found is not None:
+                return found
+        self.fail(f"expected a frequency (50 Hz, 314 rad/s) or dc behind at, found {self.shown(t)}", t)
 
 
 def _is_power_of_numbers(node: Node) -> bool:

@@ -44,6 +44,16 @@ def plain_name(text: str) -> str:
     return text.translate(LOOKALIKES)
 
 
+def reads_as_quantity(name: str) -> bool:
+    """Whether a name looks like a voltage, current or power: ``V_x``."""
+    return _QUANTITY.match(name) is not None
+
+
+def listed(names: Sequence[str], joint: str = "and") -> str:
+    """``a, b and c``."""
+    return names[0] if len(names) == 1 else f"{', '.join(names[:-1])} {joint} {names[-1]}"
+
+
 def nearest(name: str, known: Collection[str]) -> str:
     """The known name that looks most like a mistyped one; empty where none does, and among too many to look through."""
     near = get_close_matches(name, list(known), 1) if len(known) <= _MANY else []
@@ -55,8 +65,13 @@ def customary(name: str) -> tuple[Dimension, ...]:
     return _CUSTOM[name[0]] if _BY_CUSTOM.match(name) else ()
 
 
-def check_names(parts: Sequence[Named], nodes: Sequence[Named], sheet: Sheet) -> list[Finding]:
-    """Names that are not allowed, used twice, or differ only in case. Each spelling of a node stands in ``nodes`` once."""
+def check_names(
+    parts: Sequence[Named], nodes: Sequence[Named], symbols: Sequence[Named], sheet: Sheet
+) -> list[Finding]:
+    """Names that are not allowed, used twice, or differ only in case.
+
+    Each spelling of a node or free symbol stands once. Symbols are held against each other only.
+    """
     first_node = {n.name: n for n in nodes}
     first_part: dict[str, Named] = {}
     used = {n.name for n in (*parts, *nodes)}
@@ -66,14 +81,14 @@ def check_names(parts: Sequence[Named], nodes: Sequence[Named], sheet: Sheet) ->
         if fault:
             found.append(_finding(part, fault, used))
         first_part.setdefault(part.name, part)
-    return found + _differing_in_case((*first_part.values(), *nodes), sheet)
+    return found + _differing_in_case((*first_part.values(), *nodes), sheet) + _differing_in_case(symbols, sheet)
 
 
 def _fault(part: Named, other: Named | None, node: Named | None, sheet: Sheet) -> str:
     """Why a part may not be called so; empty when it may."""
     if part.name in NOT_FOR_PARTS:
         return f"{part.name} is a word of the language; a part is called otherwise"
-    if _QUANTITY.match(part.name):
+    if reads_as_quantity(part.name):
         return f"{part.name} reads as a quantity; a part is called otherwise"
     if other:
         return f"{part.name} names two parts, on lines {_line(other, sheet)} and {_line(part, sheet)}"
@@ -90,7 +105,7 @@ def _renamed(part: Named, used: Collection[str]) -> str:
     """The part's line under the next free name: ``V_x`` as ``Vx``, a second ``R1`` as ``R2``."""
     if part.line is None:
         return ""
-    name = part.name.replace("_", "", 1) if _QUANTITY.match(part.name) else part.name
+    name = part.name.replace("_", "", 1) if reads_as_quantity(part.name) else part.name
     m = _ORDINAL.fullmatch(name)
     stem, number = (m[1], int(m[2] or 0)) if m else (name, 0)
     for _ in range(len(used) + 1):

@@ -5,12 +5,12 @@ from __future__ import annotations
 import re
 from collections.abc import Mapping
 from dataclasses import dataclass, field
+from fractions import Fraction
 
 from calccheck.arithmetic import Doubt
-from calccheck.formula import Node, Number, Range, Unary
 from calccheck.model import Kind, Rating
-from calccheck.read.attributes import is_frequency, is_rating, is_tolerance, read_rating, split_tolerance
-from calccheck.read.expression import parse_value
+from calccheck.read.attributes import is_rating, is_tolerance, read_frequency, read_rating, split_tolerance
+from calccheck.read.model_values import ModelValue, read_model_value
 from calccheck.read.names import NODE, WORD, plain_name
 from calccheck.source import Piece, Span
 from calccheck.units import NONE, VOLT, Dimension, words
@@ -58,7 +58,7 @@ _HEAD = re.compile(r"(?P<name>[^:,]*?)\s*:\s*(?P<rest>.*)", re.DOTALL)
 _WORD = re.compile(WORD)
 _PAIR = re.compile(rf"({NODE})\s+to\s+({NODE})")
 _KIND = re.compile(r"(op-amp|[a-z]+)(?![\w-])")
-_RATIO = re.compile(r"transformer\s+\d+(?:\.\d+)?\s*:\s*\d+(?:\.\d+)?")
+_RATIO = re.compile(r"transformer\s+(\d{1,9}(?:\.\d{1,9})?)\s*:\s*(\d{1,9}(?:\.\d{1,9})?)")
 _ATTRIBUTE = re.compile(r"(?P<word>[^\W\d]\w*)(?:\s+(?P<rest>.*))?", re.DOTALL)
 _NODE = re.compile(NODE)
 
@@ -68,7 +68,7 @@ class PartLine:
     """A part's line as split.
 
     ``line``: all of it; ``body``: what of it stands before a comment; ``what``: the part's value or kind as written, without
-    the tolerance; ``nodes``: in the order in which they stand.
+    the tolerance; ``nodes``: in the order in which they stand; ``values``, ``flags``: of a part that is told by a word.
     """
 
     name: str
@@ -81,7 +81,10 @@ class PartLine:
     terminals: list[tuple[str, str]] = field(default_factory=list)
     tolerance: Piece | None = None
     ratings: list[Rating] = field(default_factory=list)
+    values: dict[str, ModelValue] = field(default_factory=dict)
+    flags: set[str] = field(default_factory=set)
     frequency: Piece | None = None
+    hertz: Fraction | None = None
 
     @property
     def ends(self) -> tuple[str, str]:
@@ -138,12 +141,18 @@ def _segments(piece: Piece) -> list[Piece]:
 def _shape(what: Piece) -> Shape:
     m = _KIND.match(what.text)
     shape = SHAPES.get(m[1], _PLAIN) if m else _PLAIN
-    if shape.kind == "transformer" and not _RATIO.fullmatch(what.text):
+    if shape.kind == "transformer" and not turns_ratio(what.text):
         raise Doubt(f"expected transformer 10:1, found {what.text}", what.span())
     if shape.kind not in (None, "transformer") and m and m.end() < len(what.text):
         rest = what.part(m.end(), len(what.text)).strip()
         raise Doubt(f"expected a comma behind {m[1]}, found {rest.text}", rest.span())
     return shape
+
+
+def turns_ratio(text: str) -> Fraction:
+    """The turns of the first pair over those of the second in ``transformer 10:1``; 0 for any other text."""
+    m = _RATIO.fullmatch(text)
+    return Fraction(m[1]) / Fraction(m[2]) if m and Fraction(m[2]) else Fraction(0)
 
 
 def _read_segments(part: PartLine, segments: list[Piece]) -> None:
@@ -158,8 +167,8 @@ def _read_segments(part: PartLine, segments: list[Piece]) -> None:
             _add_tolerance(part, segment)
         elif shape.kind and _by_word(part, segment, seen):
             continue
-        elif not shape.kind and len(part.nodes) == 2 and not part.frequency and is_frequency(segment):
-            part.frequency = segment
+        elif not shape.kind and len(part.nodes) == 2 and not part.frequency and (hertz := read_frequency(segment)):
+            part.frequency, part.hertz = segment, hertz
         else:
             raise _unexpected(part, before, segment)
     missing = [word for word in (*shape.terminals, *shape.needed) if word not in seen]
@@ -188,7 +197,7 @@ def _add_pair(part: PartLine, segment: Piece, pair: re.Match[str]) -> None:
         raise Doubt(f"both ends of {part.name} lie at {ends[0][0]}", segment.span())
     if part.shape.kind == "transformer":
         side = "second" if part.nodes else "first"
-        part.terminals += [(f"{side} {end}", name) for end, (name, _) in zip(("from", "to"), ends, strict=True)]
+        part.terminals += [(f"{side}{end}", name) for end, (name, _) in zip("+-", ends, strict=True)]
     part.nodes += ends
 
 
@@ -215,25 +224,14 @@ def _by_word(part: PartLine, segment: Piece, seen: set[str]) -> bool:
         raise Doubt(f"{word} stands twice", segment.span())
     seen.add(word)
     if word in part.shape.flags:
+        part.flags.add(word)
         return not m["rest"]
     rest = segment.part(*m.span("rest")) if m["rest"] else segment.part(len(segment.text), len(segment.text))
     if word in part.shape.values:
-        _check_value(word, rest, part.shape.values[word], segment)
+        part.values[word] = read_model_value(word, rest, part.shape.values[word], segment.span())
     elif _NODE.fullmatch(rest.text):
         part.terminals.append((word, plain_name(rest.text)))
         part.nodes.append((plain_name(rest.text), rest.span()))
     else:
         raise Doubt(f"expected a node behind {word}, found {rest.text or 'nothing'}", segment.span())
     return True
-
-
-def _check_value(word: str, value: Piece, dimension: Dimension, segment: Piece) -> None:
-    node = parse_value(value) if value.text else None
-    ends: tuple[Node | None, ...] = (node.low, node.high) if isinstance(node, Range) and word == "swing" else (node,)
-    if word == "swing" and len(ends) != 2:
-        raise Doubt("expected swing 0.2 V to 4.8 V", segment.span())
-    for end in ends:
-        while isinstance(end, Unary) and end.sign != "√":
-            end = end.operand
-        if not isinstance(end, Number) or end.unit.dimension != dimension:
-            raise Doubt(f"expected {words(dimension)} behind {word}, found {value.text or 'nothing'}", segment.span())

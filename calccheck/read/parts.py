@@ -2,76 +2,101 @@
 
 from __future__ import annotations
 
+from dataclasses import replace
+
 from calccheck.arithmetic import Doubt
-from calccheck.model import Element, Finding, Kind
+from calccheck.model import UNSTATED, Device, Element, Finding
 from calccheck.read.attributes import read_tolerance
 from calccheck.read.names import customary
-from calccheck.read.part_lines import PartLine
-from calccheck.read.part_values import Value, read_value
+from calccheck.read.part_lines import PartLine, turns_ratio
+from calccheck.read.part_values import SOURCES, Value, read_value, write
+from calccheck.read.symbols import Written
 from calccheck.read.value_names import Scope
 from calccheck.rules import RULES
-from calccheck.source import Sheet, Span
-from calccheck.units import AMPERE, FARAD, HENRY, OHM, VOLT, Dimension, words
-
-_DIMENSIONS: dict[Kind, Dimension] = {
-    "resistor": OHM, "impedance": OHM, "voltage source": VOLT, "controlled voltage source": VOLT, "current source": AMPERE,
-    "controlled current source": AMPERE, "capacitor": FARAD, "inductor": HENRY,
-}  # fmt: skip
-_UNSOLVED: dict[Kind, str] = {
-    "op-amp": "is an op-amp", "transformer": "is a transformer", "transistor": "is a transistor", "diode": "is a diode",
-}  # fmt: skip
-_SOURCES: tuple[Kind, ...] = ("voltage source", "current source")
+from calccheck.source import Span
+from calccheck.units import words
 
 
-def read_part(part: PartLine, scope: Scope, sheet: Sheet) -> tuple[Element, list[Finding]]:
-    """The part and what is to be said of it. Raises ``Doubt`` or ``DimensionFault`` where it cannot be read."""
-    value = read_part_value(part, scope)
-    tolerance = read_tolerance(part.tolerance, _tolerated(value)) if part.tolerance else None
-    if tolerance and value.control and not tolerance.relative:
-        raise Doubt("the tolerance of a gain is written ±5 %", tolerance.span)
-    plus, minus = part.ends
-    element = Element(
-        part.name, value.kind, plus, minus, part.body.span(), value.value, value.stated, part.what.text, value.control,
-        tolerance, tuple(part.ratings), tuple(part.terminals),
-    )  # fmt: skip
-    return element, [*_cautions(part, element), *_not_solved(part, value, sheet)]
-
-
-def read_part_value(part: PartLine, scope: Scope) -> Value:
-    """The kind and value of a part, a source's frequency taken into account."""
+def write_part(part: PartLine, scope: Scope) -> Written | None:
+    """A part's value parsed; ``None`` for a part that is told by a word. Raises ``Doubt`` where it cannot be read."""
     if part.shape.kind:
-        return Value(part.shape.kind, unsolved=_UNSOLVED.get(part.shape.kind, ""))
+        return None
     try:
-        value = read_value(part.what, part.name, scope)
+        return write(part.what, part.name, scope)
     except Doubt as doubt:
         doubt.span = doubt.span or part.what.span()
         raise
-    if part.frequency is None:
-        return value
-    if value.kind not in _SOURCES:
-        raise Doubt(f"a frequency belongs to a source; {part.name} is none", part.frequency.span())
-    return Value(value.kind, unsolved=value.unsolved or f"is a source of {part.frequency.text}")
 
 
-def _tolerated(value: Value) -> Dimension | None:
-    """The dimension that an absolute tolerance of this value has; a conductance has one in siemens."""
-    return value.stated.dimension if value.stated else None if value.unsolved else _DIMENSIONS.get(value.kind)
+def read_part(part: PartLine, written: Written | None, scope: Scope) -> tuple[Element, list[Finding]]:
+    """The part and what is to be said of it. Raises ``Doubt`` or ``DimensionFault`` where it cannot be read."""
+    if written is None:
+        return _by_word(part), []
+    try:
+        value = read_value(written, scope)
+    except Doubt as doubt:
+        doubt.span = doubt.span or part.what.span()
+        raise
+    plus, minus = part.ends
+    tolerance = read_tolerance(part.tolerance, value.dimension) if part.tolerance else None
+    if tolerance and not tolerance.relative and (value.control or value.kind == "impedance"):
+        what = "a gain" if value.control else "an impedance"
+        raise Doubt(f"the tolerance of {what} is written ±5 %", tolerance.span)
+    element = Element(
+        part.name, value.kind, plus, minus, part.body.span(), value.value, value.stated, part.what.text, value.control,
+        tolerance, tuple(part.ratings), phasor=value.phasor, formula=value.node if value.symbolic else None,
+    )  # fmt: skip
+    return _alternating(element, part, value), _cautions(part, element, value)
 
 
-def _not_solved(part: PartLine, value: Value, sheet: Sheet) -> list[Finding]:
-    if not value.unsolved:
-        return []
-    line, _ = sheet.line_column(part.name_span.start)
-    message = f"{part.name} (line {line}) {value.unsolved}, which this version reads but does not solve"
-    return [_finding("not-solved-here", message, part.body.span())]
+def _alternating(e: Element, part: PartLine, value: Value) -> Element:
+    """The part with its frequency: a source's as written, or one that the circuit must tell."""
+    if e.kind not in SOURCES:
+        if part.frequency is not None:
+            raise Doubt(f"a frequency belongs to a source; {part.name} is none", part.frequency.span())
+        return e
+    frequency = part.hertz or (UNSTATED if value.alternating else None)
+    if frequency is None or e.value is None:
+        return replace(e, frequency=frequency)
+    return replace(e, frequency=frequency, value=None, phasor=complex(e.value))
 
 
-def _cautions(part: PartLine, element: Element) -> list[Finding]:
+def _by_word(part: PartLine) -> Element:
+    """A link, a gap, or a part with a model."""
+    plus, minus = part.ends
+    kind = part.shape.kind
+    assert kind is not None
+    return Element(
+        part.name, kind, plus, minus, part.body.span(), written=part.what.text, ratings=tuple(part.ratings),
+        terminals=tuple(part.terminals), device=_device(part),
+    )  # fmt: skip
+
+
+def _device(part: PartLine) -> Device | None:
+    found = part.values
+    value = {word: v.value for word, v in found.items()}
+    tolerances = tuple((word, v.tolerance) for word, v in found.items() if v.tolerance)
+    match part.shape.kind:
+        case "op-amp":
+            swing = found.get("swing")
+            return Device(swing_low=swing.value if swing else None, swing_high=swing.high if swing else None)
+        case "transformer":
+            return Device(ratio=turns_ratio(part.what.text))
+        case "transistor":
+            return Device(
+                "saturated" if part.flags else "active", "pnp" if part.what.text == "pnp" else "npn",
+                value["beta"], value["V_BE"], value.get("V_CE"), tolerances=tolerances,
+            )  # fmt: skip
+        case "diode":
+            return Device("blocking" if part.flags else "conducting", drop=value["drop"], tolerances=tolerances)
+    return None
+
+
+def _cautions(part: PartLine, element: Element, value: Value) -> list[Finding]:
     found = []
-    dimension = element.stated.dimension if element.stated else _DIMENSIONS.get(element.kind)
     promised = customary(element.name)
-    if promised and dimension and dimension not in promised:
-        message = f"{element.name} is called like {words(promised[0])} and has the value of {words(dimension)}"
+    if promised and value.dimension not in promised:
+        message = f"{element.name} is called like {words(promised[0])} and has the value of {words(value.dimension)}"
         found.append(_finding("letter", message, part.name_span))
     if element.kind == "resistor" and element.value is not None and element.value < 0:
         message = f"{element.name} has a resistance below zero, {element.written}"

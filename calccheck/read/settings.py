@@ -13,7 +13,7 @@ from calccheck.model import Settings
 from calccheck.units import LOOKALIKES
 
 _FRACTION = re.compile(r"(\d{1,9}(?:\.\d{1,12})?|\.\d{1,12})\s*(%?)")
-_FREQUENCY = re.compile(r"\d+(?:\.\d+)?\s*[mkMG]?Hz")
+_FREQUENCY = re.compile(r"(\d+(?:\.\d+)?)\s*([mkMG]?Hz)")
 SERIES = ("E3", "E6", "E12", "E24", "E48", "E96", "E192")  # IEC 60063
 
 
@@ -72,9 +72,10 @@ def _series(key: str, text: str) -> str:
 
 
 def _frequency(key: str, text: str) -> str:
-    if not _FREQUENCY.fullmatch(text.translate(LOOKALIKES)):
+    m = _FREQUENCY.fullmatch(text.translate(LOOKALIKES))
+    if m is None or not Fraction(m[1]):
         raise SettingFault(f"{key} is a frequency such as 50 Hz, not {text}")
-    return text
+    return f"{m[1]} {m[2]}"
 
 
 _READERS: dict[str, Callable[[str, str], Fraction | str]] = {

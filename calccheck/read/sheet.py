@@ -39,7 +39,7 @@ def read_sheet(sheet: Sheet, repository: Settings) -> Reading:
     givens = _givens(page)
     circuits: list[Circuit] = []
     for fence in circuit_fences:
-        reading = read_circuit(fence, givens, sheet)
+        reading = read_circuit(fence, givens, sheet, settings.hertz)
         circuits.append(reading.circuit)
         findings = (*findings, *reading.findings)
     found = read_claims(page, _names(circuits), [given_lines(f) for f in circuit_fences])
