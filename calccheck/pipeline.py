@@ -2,9 +2,10 @@
 
 from __future__ import annotations
 
-from collections.abc import Sequence
+from collections.abc import Callable, Iterable, Sequence
 from datetime import date
 from fractions import Fraction
+from functools import cache
 
 from calccheck.arithmetic import Doubt
 from calccheck.edits import stray, unmark
@@ -13,6 +14,7 @@ from calccheck.judge.quantities import frequencies
 from calccheck.judge.references import Find, reference_findings
 from calccheck.judge.scope import Ledger, Solve
 from calccheck.judge.sheet import judge_sheet
+from calccheck.judge.slips.redo import Earlier
 from calccheck.judge.symbols import instance, points
 from calccheck.judge.working import work_out as worked_out
 from calccheck.model import Circuit, CircuitFigures, Finding, Reading, Report, Settings, Solution, WorkedQuantity
@@ -23,16 +25,23 @@ from calccheck.signatures import signature_findings
 from calccheck.solve import Unsolvable, solve, solve_batch
 from calccheck.source import Sheet, whole
 
+EarlierTexts = Callable[[], Iterable[tuple[str, str]]]
 
-def check(sheet: Sheet, settings: Settings | None = None, find: Find | None = None) -> Report:
+
+def check(
+    sheet: Sheet, settings: Settings | None = None, find: Find | None = None, earlier: EarlierTexts = tuple
+) -> Report:
     """The report on one sheet. Marks of an earlier run are taken out first; no sheet makes this raise.
 
     ``find``: gives the reports of other sheets by their number, for values that this one takes from them.
+    ``earlier``: gives the sheet's earlier versions, newest first, each with what it is called (a commit and its day); called
+    only where a claim differs.
     """
     reading = read_sheet(Sheet(sheet.name, unmark(sheet.text)), settings or Settings())
     solve_once = solver()
     solutions, faults = _solved(reading.circuits, solve_once)
-    judged, findings = judge_sheet(reading, solve_once, reading.settings.on or date.today(), solve_batch)
+    versions, on = _circuits_of(earlier, sheet.name), reading.settings.on or date.today()
+    judged, findings = judge_sheet(reading, solve_once, on, solve_batch, versions)
     elsewhere = reference_findings(reading, judged, find)
     cautions = caution_findings(reading, solutions)
     beside = (*_stray_marks(reading), *signature_findings(reading), *elsewhere, *cautions)
@@ -44,6 +53,17 @@ def check(sheet: Sheet, settings: Settings | None = None, find: Find | None = No
         _figures(reading, solutions),
         tuple(found[0] if found else None for found in solutions),
     )
+
+
+def _circuits_of(earlier: EarlierTexts, name: str) -> Callable[[], tuple[Earlier, ...]]:
+    """The circuits of the earlier versions, read once."""
+
+    @cache
+    def read() -> tuple[Earlier, ...]:
+        texts = ((label, Sheet(name, unmark(text))) for label, text in earlier())
+        return tuple(Earlier(label, read_sheet(sheet, Settings()).circuits) for label, sheet in texts)
+
+    return read
 
 
 def _stray_marks(reading: Reading) -> list[Finding]:
