@@ -73,6 +73,7 @@ def plainest(value: Value) -> Value:
 
 Lookup = Callable[[Reference], Amount]
 Literal = Callable[[Number], Amount]
+Note = Callable[[Node, Amount], None]
 
 
 def literal(number: Number) -> Amount:
@@ -83,15 +84,16 @@ def literal(number: Number) -> Amount:
     return Amount(value, number.unit.dimension, level=number.unit.text == "dB")
 
 
-def evaluate(node: Node, lookup: Lookup, number: Literal = literal) -> Amount:
+def evaluate(node: Node, lookup: Lookup, number: Literal = literal, note: Note | None = None) -> Amount:
     """The amount of an expression.
 
-    ``lookup`` gives the amount of a name or quantity and may raise ``Doubt``; ``number`` that of a printed number.
+    ``lookup`` gives the amount of a name or quantity and may raise ``Doubt``; ``number`` that of a printed number. ``note``
+    is told the amount of every piece as it is worked out.
     Raises ``Doubt`` for what two engineers would read differently, for division by zero and for powers out of range;
     ``DimensionFault`` for sums of unlike dimensions.
     """
 
-    def work(n: Node) -> Amount:
+    def plain(n: Node) -> Amount:
         match n:
             case Number():
                 return number(n)
@@ -113,6 +115,13 @@ def evaluate(node: Node, lookup: Lookup, number: Literal = literal) -> Amount:
             case Range():
                 raise Doubt("a range stands only as the value of a claim", n.span)
 
+    def noted(n: Node) -> Amount:
+        a = plain(n)
+        if note is not None:
+            note(n, a)
+        return a
+
+    work = plain if note is None else noted
     return work(node)
 
 

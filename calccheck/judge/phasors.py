@@ -7,10 +7,10 @@ import math
 from dataclasses import dataclass
 from fractions import Fraction
 
-from calccheck.arithmetic import Amount, Real, Value, plainest
+from calccheck.arithmetic import Amount, Real, Value, plainest, size
 from calccheck.formula import Binary, Group, Node, Number, Reference, Unary
 from calccheck.judge.rounding import SLACK, Fit, Printed, fit, printed
-from calccheck.units import NONE, PLAIN, Unit, times
+from calccheck.units import NONE, PLAIN, Dimension, Unit, times
 
 _TURN = 2 * math.pi
 
@@ -147,3 +147,11 @@ def parts(a: Amount) -> list[Amount]:
         Amount(v.real, a.dimension),
         Amount(v.imag, a.dimension),
     ]
+
+
+Sized = tuple[Dimension, float]  # dimension and magnitude: enough to tell what a printed number may round
+
+
+def sized(a: Amount) -> list[Sized]:
+    """The magnitudes under which an amount may stand printed: of a phasor its parts too."""
+    return [(p.dimension, float(size(p.value))) for p in parts(a)]

@@ -14,6 +14,7 @@ from fractions import Fraction
 from calccheck.arithmetic import Amount, Doubt, Real, Value, plainest, size, trimmed
 from calccheck.formula import Change
 from calccheck.judge.changes import DC, LAID_SHORT, changed, with_short, with_test_current
+from calccheck.judge.phasors import Sized, sized
 from calccheck.judge.scope import Key, Ledger
 from calccheck.model import Circuit, Element, Solution, State
 from calccheck.source import Span
@@ -85,12 +86,12 @@ def frequencies(circuit: Circuit) -> tuple[Fraction, ...]:
     return circuit.frequencies
 
 
-def values_around(key: Key, ledger: Ledger, span: Span) -> list[Amount]:
+def values_around(key: Key, ledger: Ledger, span: Span) -> list[Sized]:
     """Every voltage, current and power of a quantity's circuit under its own qualifiers, worked out once."""
     known = Key(key.circuit, "", (), key.due_to, key.changes, key.frequency)
     if known not in ledger.around:
         try:
-            ledger.around[known] = _all_values(key, ledger, span)
+            ledger.around[known] = [s for a in _all_values(key, ledger, span) for s in sized(a)]
         except Doubt:
             ledger.around[known] = []
     return ledger.around[known]

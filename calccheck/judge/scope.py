@@ -12,7 +12,7 @@ from typing import Literal, Protocol
 from calccheck.arithmetic import Amount, Doubt, Real, evaluate
 from calccheck.component_code import component_code
 from calccheck.formula import Change, ChangeKind, Node, Reference
-from calccheck.judge.phasors import PrintedPhasor
+from calccheck.judge.phasors import PrintedPhasor, Sized
 from calccheck.judge.rounding import Printed
 from calccheck.model import Basis, Circuit, Element, Settings, Solution, State, Verdict
 
@@ -93,7 +93,7 @@ class Ledger:
     amounts: dict[Key, Amount] = field(default_factory=dict)
     variants: dict[object, Circuit] = field(default_factory=dict)
     states: dict[object, State] = field(default_factory=dict)
-    around: dict[Key, list[Amount]] = field(default_factory=dict)
+    around: dict[Key, list[Sized]] = field(default_factory=dict)
 
 
 Sort = Literal["quantity", "part", "name", "constant"]

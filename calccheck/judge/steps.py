@@ -24,7 +24,7 @@ from calccheck.formula import Binary, Node, Number, numbers, references
 from calccheck.judge import quantities, say
 from calccheck.judge.laws import followed
 from calccheck.judge.members import Names, Worked, without_unit
-from calccheck.judge.phasors import PrintedPhasor, is_angle, nearest_turn, phasor_fit
+from calccheck.judge.phasors import PrintedPhasor, Sized, is_angle, nearest_turn, phasor_fit
 from calccheck.judge.rounding import SLACK, Printed, coarse, deviation, equal, fit, on_scale
 from calccheck.judge.scope import Key, Ledger
 from calccheck.judge.trace import Meanings, Reach, Traced, reach, trace, worked_pieces
@@ -81,7 +81,7 @@ class Ground:
         key = self.source.key
         return [*found, *(v for _, _, v in key.changes if v is not None)] if key else found
 
-    def circuit_values(self) -> list[Amount]:
+    def circuit_values(self) -> list[Sized]:
         """Voltages, currents and powers of the truth's circuit under its own qualifiers, printed or not."""
         key = self.source.key
         if key is None or key.circuit < 0 or key.letter not in ("V", "I", "P"):
@@ -351,7 +351,7 @@ def _largest(ground: Ground) -> Real:
     """What a bare zero is held to: the largest like value of the circuit, or of the formula where things cancel."""
     dimension = ground.truth.dimension
     pieces = worked_pieces(ground.source.node, ground.names.amount)
-    largest: Real = max((size(a.value) for a in pieces if a.dimension == dimension), default=0)
+    largest: Real = max((x for d, x in pieces if d == dimension), default=0)
     if ground.basis == "circuit" and ground.source.key is not None and ground.source.key.circuit >= 0:
         return max(largest, quantities.scale(ground.source.key, ground.ledger, dimension))
     return largest

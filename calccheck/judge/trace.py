@@ -4,14 +4,13 @@ from __future__ import annotations
 
 from collections.abc import Sequence
 from dataclasses import dataclass
-from fractions import Fraction
 
 from calccheck.arithmetic import Amount, DimensionFault, Doubt, Lookup, Real, Value, evaluate, literal, real, size
 from calccheck.formula import Binary, Node, Number, Reference, Unary, numbers, references, walk
-from calccheck.judge.phasors import parts
+from calccheck.judge.phasors import Sized, sized
 from calccheck.judge.rounding import SLACK, Printed, printed
 from calccheck.judge.scope import Ledger, Result
-from calccheck.units import NONE
+from calccheck.units import NONE, Dimension
 
 
 @dataclass(frozen=True, slots=True)
@@ -45,8 +44,8 @@ class Meanings:
     """
 
     exact: Sequence[Amount]
-    pieces: Sequence[Amount]
-    around: Sequence[Amount]
+    pieces: Sequence[Sized]
+    around: Sequence[Sized]
     repeated: Sequence[Amount]
 
 
@@ -65,23 +64,40 @@ def _exponents(node: Node) -> list[Node]:
 def _one(n: Number, meanings: Meanings, ledger: Ledger) -> Traced:
     p = printed(n)
     assert p is not None
-    rounds = [a for a in meanings.pieces if _rounds(p, a)]
-    if any(_same(p, a) for a in meanings.exact):
-        other = bool(n.unit.text) and any(not _same(p, a) for a in rounds)
-        return Traced(n, p.half if other else 0, True)
-    if _counts(n):
+    exactly = any(_same(p, a) for a in meanings.exact)
+    if not exactly and _counts(n):
         return Traced(n, 0, True)
-    rounds += [a for a in meanings.around if _rounds(p, a)]
+    x, room = float(size(p.value)), float(p.half)
+    rounds = _rounded_by(x, room, p.amount.dimension, meanings.pieces)
+    if exactly:
+        other = bool(n.unit.text) and any(abs(a - x) > _ALIKE * x for a in rounds)
+        return Traced(n, p.half if other else 0, True)
+    rounds += _rounded_by(x, room, p.amount.dimension, meanings.around)
     earlier = _earlier(p, ledger)
     if earlier is not None and earlier.stands:
-        several = len({size(a.value) for a in (*rounds, earlier.truth)}) > 1
-        return Traced(n, max(p.half, size(size(p.value) - size(earlier.truth.value))), True, several)
+        truth = float(size(earlier.truth.value))
+        return Traced(n, max(p.half, size(size(p.value) - size(earlier.truth.value))), True, _several([*rounds, truth]))
     if rounds:
-        return Traced(n, p.half, True, len({size(a.value) for a in rounds}) > 1)
+        return Traced(n, p.half, True, _several(rounds))
     if earlier is not None:
         return Traced(n, 0, True, faulty=earlier)
     plain = p.amount.dimension == NONE and not n.unit.text
     return Traced(n, 0, plain or any(_same(p, a) for a in meanings.repeated))
+
+
+_ALIKE = 1e-12
+
+
+def _several(values: Sequence[float]) -> bool:
+    """Whether these are more than one value."""
+    return max(values) - min(values) > _ALIKE * max(values)
+
+
+def _rounded_by(x: float, room: float, dimension: Dimension, found: Sequence[Sized]) -> list[float]:
+    """The magnitudes of which a printed one is a right rounding."""
+    if x == 0:
+        return []
+    return [a for d, a in found if abs(a - x) <= room + 1e-9 * a and d == dimension]
 
 
 def _counts(n: Number) -> bool:
@@ -103,22 +119,18 @@ def _earlier(p: Printed, ledger: Ledger) -> Result | None:
     return next((r for r in reversed(same) if r.stands), same[-1] if same else None)
 
 
-def _rounds(p: Printed, a: Amount) -> bool:
-    if a.dimension != p.amount.dimension or p.digits == 0:
-        return False
-    return size(size(a.value) - size(p.value)) <= p.half + SLACK * size(a.value)
-
-
-def worked_pieces(node: Node, lookup: Lookup) -> list[Amount]:
+def worked_pieces(node: Node, lookup: Lookup) -> list[Sized]:
     """The amounts of all pieces of an expression that can be worked out; a printed number is none."""
-    found = []
-    for piece in walk(node):
-        if printed(piece) is not None:
-            continue
-        try:
-            found += parts(evaluate(piece, lookup))
-        except (Doubt, DimensionFault):
-            continue
+    found: list[Sized] = []
+
+    def note(piece: Node, a: Amount) -> None:
+        if not isinstance(piece, Number) and printed(piece) is None:
+            found.extend(sized(a))
+
+    try:
+        evaluate(node, lookup, note=note)
+    except (Doubt, DimensionFault):
+        return found  # what was worked out before the trouble
     return found
 
 
@@ -163,14 +175,17 @@ def reach(node: Node, lookup: Lookup, traced: Sequence[Traced], spreads: dict[st
 
 
 def _moved(node: Node, lookup: Lookup, shifts: dict[object, Real]) -> Value:
+    """The member with some of its numbers moved, in floating point: their rooms are far larger than its error."""
+
     def number(n: Number) -> Amount:
         a = literal(n)
-        shift = shifts.get(n.span) or shifts.get((n.digits, n.unit.text), Fraction(0))
-        return Amount(a.value + shift, a.dimension, a.point)
+        shift = shifts.get(n.span) or shifts.get((n.digits, n.unit.text), 0)
+        return Amount(float(real(a.value)) + float(shift), a.dimension, a.point, level=a.level)
 
     def name(r: Reference) -> Amount:
         a = lookup(r)
-        return Amount(a.value + shifts.get(r.word, Fraction(0)), a.dimension, a.point)
+        value = a.value if isinstance(a.value, complex) else float(a.value)
+        return Amount(value + float(shifts.get(r.word, 0)), a.dimension, a.point, level=a.level)
 
     try:
         return evaluate(node, name, number).value
