@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 from collections.abc import Mapping
+from fractions import Fraction
 
 from calccheck.arithmetic import Amount
 from calccheck.document import Block, blocks
@@ -14,12 +15,12 @@ Placed = tuple[int, int, str]  # line in the block from 1, column from 1, the te
 
 
 def reading(
-    lines: str, givens: Mapping[str, Amount] | None = None, info: str = "circuit"
+    lines: str, givens: Mapping[str, Amount] | None = None, info: str = "circuit", hertz: Fraction = Fraction(0)
 ) -> tuple[Sheet, CircuitReading]:
     """The block that a fence of these lines holds; its first line is line 2 of the sheet."""
     sheet = Sheet("sheet.md", f"```{info}\n{lines}\n```\n")
     fence = next(b for b in blocks(read_page(sheet.text)) if b.kind == "fence")
-    return sheet, read_circuit(fence, givens or {}, sheet)
+    return sheet, read_circuit(fence, givens or {}, sheet, hertz)
 
 
 def made_reading(text: str) -> tuple[Sheet, CircuitReading]:
