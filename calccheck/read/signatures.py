@@ -69,7 +69,7 @@ def signature_lines(lines: Sequence[Piece]) -> range | None:
     for k in range(first + 1, len(lines)):
         if _BESIDE.fullmatch(lines[k].text):
             continue
-        if not lines[k].text.startswith((" ", "\t")):
+        if not lines[k].text.startswith((" ", "\t", "-")):  # a list may stand without indentation
             break
         stop = k + 1
     return range(first, stop)

@@ -134,7 +134,7 @@ def _by_yaml(text: str) -> _Entry:
     except yaml.MarkedYAMLError as e:
         conflict = _CONFLICT.search(text)
         if conflict:
-            reason = "a merge of two branches was left open here; keep what both wrote and delete the lines between"
+            reason = "a merge of two branches was left open here; settle it and delete the lines that git put in"
             raise _Fault(reason, *conflict.span()) from None
         mark = e.problem_mark or e.context_mark
         reason = " ".join(str(e.problem or e.context).split())
