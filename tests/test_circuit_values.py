@@ -218,7 +218,7 @@ def test_a_source_with_a_symbol_and_a_frequency() -> None:
 # a value with symbols, and the amounts of these; a given is the same number without the unit that the value states
 FORMULAS = [
     ("R Ω", OHM), ("2*R Ω", OHM), ("R*(1 + 0.5) Ω", OHM), ("(R ∥ (2*R)) Ω", OHM), ("(R/3) Ω", OHM), ("−R V", VOLT), ("R V", VOLT),
-    ("(R + 2) kΩ", NONE), ("(1 + R) * 350 Ω", NONE), ("R * T * 10 Ω", NONE), ("5 Ω * (1 + (T − 25) * R)", NONE), ("√R * 3 V", NONE),
+    ("(R + 2) kΩ", NONE), ("(1 + R) * 350 Ω", NONE), ("R * T * 10 Ω", NONE), ("5 Ω * (1 + (T + 25) * R)", NONE), ("√R * 3 V", NONE),
 ]  # fmt: skip
 
 
