@@ -42,7 +42,7 @@ class Comment:
 
 def add_comments(pdf: bytes, comments: dict[str, Comment], day: date) -> bytes:
     """The file with every link to ``annot:KEY`` (or ``annot:KEY+KEY``) turned into a highlight with those comments."""
-    reader = PdfReader(BytesIO(pdf))
+    reader = PdfReader(BytesIO(pdf), strict=True)
     parents = _structure_parents(reader)
     size = _whole(reader.trailer["/Size"])
     changed: dict[int, PdfObject] = {}
