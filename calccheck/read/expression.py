@@ -135,7 +135,8 @@ class Parser:
     def fail(self, reason: str, token: Token | None = None, suggestion: str = "") -> NoReturn:
         """Give up at a token."""
         t = token or self.now
-        raise Doubt(reason, self.piece.span(t.start, max(t.end, t.start + 1)), suggestion)
+        end = min(max(t.end, t.start + 1), len(self.piece.text))
+        raise Doubt(reason, self.piece.span(max(0, min(t.start, end - 1)), end), suggestion)
 
     def refuse_tall(self, node: Node) -> None:
         """Operations within operations may not pile up beyond what can be worked out."""
@@ -315,7 +316,8 @@ class Parser:
         if _CODE.fullmatch(written):
             self.fail(f"{written} may be a value code or a product; write the value with its unit, or 2 × R", t)
         if word.text.lower().endswith(("ohm", "ohms")):
-            right = f"{t.text} {word.text[0] if len(word.text) > 4 else ''}Ω".replace("K", "k")
+            prefix = word.text[: -4 if word.text.endswith("s") else -3]
+            right = f"{t.text} {prefix.replace('K', 'k')}Ω"
             self.fail(f"{word.text} is no unit here; write {right}", word)
         if word.text[0] in "πω":
             self.fail(
