@@ -48,13 +48,12 @@ def _explained(j: Judged, misses: Sequence[Miss | None], redo: Redo) -> Judged:
     miss = next((m for m in misses if m is not None), None)
     if j.verdict != "differs" or miss is None:
         return j
-    from calccheck.judge.slips.naming import UNDECIDED, name_slips  # late: most sheets have no claim that differs
+    from calccheck.judge.slips.naming import name_slips  # late: most sheets have no claim that differs
 
-    slips = name_slips(miss, redo)
-    if len(slips) > UNDECIDED:
-        j = replace(
-            j, message=f"{j.message}; {len(slips)} kinds of slip fit, so the number does not decide between them"
-        )
+    slips, undecided = name_slips(miss, redo)
+    if undecided:
+        told = f"{len(slips)} kinds of slip give this number, so it does not decide between them"
+        j = replace(j, message=f"{j.message}; {told}")
     return replace(j, slips=slips)
 
 

@@ -35,11 +35,14 @@ class _Fit:
     score: float
 
 
-def name_slips(miss: Miss, redo: Redo) -> tuple[Slip, ...]:
-    """The slips that explain the first value of a chain that differs, likeliest first."""
+def name_slips(miss: Miss, redo: Redo) -> tuple[tuple[Slip, ...], bool]:
+    """The slips that explain the first value of a chain that differs, likeliest first; and whether they are too many to decide.
+
+    A slip that the working itself shows decides, whatever else would give the number.
+    """
     case = case_of(miss, redo)
     if case is None:
-        return ()
+        return (), False
     figures = case.printed.figures if case.printed is not None else 99
     tried = [(kind, guess) for kind in SLIPS if figures >= kind.figures for guess in kind.find(case)]
     again = Again(case)
@@ -48,7 +51,9 @@ def name_slips(miss: Miss, redo: Redo) -> tuple[Slip, ...]:
     for kind, guess in tried:
         by_kind[kind.key].append((guess, again.value(guess)))
     fits = [fit for kind in SLIPS if (fit := _fitting(kind, by_kind[kind.key], case)) is not None]
-    return tuple(Slip(f.kind.key, _sentence(f, case)) for f in sorted(fits, key=lambda f: -f.score))
+    fits.sort(key=lambda f: -f.score)
+    slips = tuple(Slip(f.kind.key, _sentence(f, case)) for f in fits)
+    return slips, len(slips) > UNDECIDED and not any(guess.certain for guess, _ in fits[0].guesses)
 
 
 def _fitting(kind: SlipKind, tried: Sequence[tuple[Guess, Value | None]], case: Case) -> _Fit | None:

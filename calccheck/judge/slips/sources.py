@@ -100,7 +100,7 @@ def _in_one_part(case: Case, make: Make) -> Iterator[Guess]:
 
 
 def _zeroed_wrongly(circuit: Circuit, keep: frozenset[str]) -> Iterator[Variant]:
-    others = [e for e in circuit.sources() if e.name not in keep]
+    others = [e for e in circuit.elements if e.kind in ("voltage source", "current source") and e.name not in keep]
     for e in others:
         how = "opened instead of shorted" if e.kind == "voltage source" else "shorted instead of opened"
         yield Variant(f"{e.name} {how}", put(circuit, [_wrong(e)]))
