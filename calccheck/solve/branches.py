@@ -101,7 +101,7 @@ def _plain(role: Role) -> Callable[[Element, Fraction], tuple[Role, Value]]:
 
 
 def _controlled(role: Role) -> Callable[[Element, Fraction], tuple[Role, Value]]:
-    return lambda e, frequency: (role, number(e.value, e))
+    return lambda e, frequency: (role, number(e.value if e.phasor is None else e.phasor, e))
 
 
 def _ohms(ohms: Value) -> tuple[Role, Value]:

@@ -110,8 +110,8 @@ def _at(e: Element, frequency: Fraction, others: list[Fraction]) -> list[Finding
         return _source_faults(e, frequency, others)
     if e.kind in ("capacitor", "inductor"):
         return _reactance_faults(e, frequency)
-    if e.kind == "impedance" and e.phasor is not None:
-        return _impedance_faults(e, frequency, others)
+    if e.phasor is not None:
+        return _phasor_faults(e, frequency, others)
     return []
 
 
@@ -135,13 +135,19 @@ def _reactance_faults(e: Element, frequency: Fraction) -> list[Finding]:
     return []
 
 
-def _impedance_faults(e: Element, frequency: Fraction, others: list[Fraction]) -> list[Finding]:
-    remedy = "Write it as a resistor with an inductor or a capacitor."
+def _phasor_faults(e: Element, frequency: Fraction, others: list[Fraction]) -> list[Finding]:
+    """An impedance or a complex gain is known at one frequency only."""
+    what = "is an impedance" if e.kind == "impedance" else "has a complex gain"
+    remedy = (
+        "Write it as a resistor with an inductor or a capacitor."
+        if e.kind == "impedance"
+        else "Build it of parts that are known at every frequency."
+    )
     if not frequency:
-        return [fault(f"{e.name} is an impedance, known at one AC frequency and not at DC. {remedy}", e.span)]
+        return [fault(f"{e.name} {what}, known at one AC frequency and not at DC. {remedy}", e.span)]
     if [f for f in others if f != frequency]:
         listed = " and ".join(hertz(f) for f in sorted({*others, frequency}))
-        text = f"{e.name} is an impedance, known at one frequency, but the circuit has several: {listed}. {remedy}"
+        text = f"{e.name} {what}, known at one frequency, but the circuit has several: {listed}. {remedy}"
         return [fault(text, e.span)]
     return []
 
