@@ -104,7 +104,7 @@ class Bench:
         (a, x), (b, y) = (self.pick(lambda q: q.letter == "V", due=False) for _ in range(2))
         if a is None or b is None:
             return None
-        text, unit, factor = hand.printed(x / y * 100, self.figures, "")
+        text, *_ = hand.printed(x / y * 100, self.figures, "")
         return Seed(f"{a.text()} / {b.text()}", x / y, x / y, "", self.figures, digits=text, suffix="%")
 
     # --- the digits -------------------------------------------------------------------------------------------------
