@@ -24,7 +24,7 @@ def to_json(reports: Sequence[Report], program: str) -> str:
     record = {
         "report": FORM,
         "program": program,
-        "summary": _summary(sheets, len(reports) - len(sheets)),
+        "summary": summary(sheets, len(reports) - len(sheets)),
         "sheets": [_sheet(r) for r in sheets],
     }
     return json.dumps(record, ensure_ascii=False, indent=2, allow_nan=False).translate(SURROGATES) + "\n"
@@ -35,7 +35,8 @@ def digest(text: str) -> str:
     return "sha256:" + sha256(text.encode("utf-8", "surrogatepass")).hexdigest()
 
 
-def _summary(sheets: Sequence[Report], others: int) -> Record:
+def summary(sheets: Sequence[Report], others: int) -> Record:
+    """How many calc sheets and claims there are, claims by verdict, cautions, and ``others`` that are no calc sheets."""
     counts: Record = {"sheets": len(sheets), "claims": sum(len(r.claims) for r in sheets)}
     for verdict in ("agrees", "rounded", "differs", "unchecked", "accepted", "given"):
         counts[verdict] = sum(j.verdict == verdict for r in sheets for j in r.claims)
