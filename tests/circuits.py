@@ -2,12 +2,13 @@
 
 from __future__ import annotations
 
+from dataclasses import replace
 from fractions import Fraction
 
 from hypothesis import reject
 from hypothesis import strategies as st
 
-from calccheck.model import Circuit, Control, Element
+from calccheck.model import Circuit, Control, Device, Element
 from calccheck.solve import Unsolvable, solve
 from calccheck.source import Span
 
@@ -24,12 +25,46 @@ def part(kind, name, plus, minus, value=None, by=None):
     return Element(name, KINDS[kind], plus, minus, Span(0, 0), value=number, control=control)
 
 
+def ac(kind, name, plus, minus, phasor, hertz=None):
+    """An AC source, or with kind ``Z`` an impedance."""
+    frequency = None if hertz is None else Fraction(hertz)
+    kind = "impedance" if kind == "Z" else KINDS[kind]
+    return Element(name, kind, plus, minus, Span(0, 0), phasor=complex(phasor), frequency=frequency)
+
+
+def op_amp(name, plus, minus, out, low=None, high=None):
+    """An ideal op-amp, its swing where it has one."""
+    swing = [None if x is None else Fraction(x) for x in (low, high)]
+    return _device(name, "op-amp", {"plus": plus, "minus": minus, "out": out}, swing_low=swing[0], swing_high=swing[1])
+
+
+def transformer(name, ratio, a, b, c, d):
+    """An ideal transformer, first pair a to b, second pair c to d."""
+    words = {"first+": a, "first-": b, "second+": c, "second-": d}
+    return _device(name, "transformer", words, ratio=Fraction(ratio))
+
+
+def transistor(name, base, collector, emitter, beta, v_be="0.7", v_ce=None, polarity="npn"):
+    """A transistor by the hand model; saturated where V_CE is given."""
+    words = {"base": base, "collector": collector, "emitter": emitter}
+    state = "active" if v_ce is None else "saturated"
+    return _device(name, "transistor", words, state=state, polarity=polarity, beta=Fraction(beta), v_be=Fraction(v_be),
+                   v_ce=None if v_ce is None else Fraction(v_ce))  # fmt: skip
+
+
+def diode(name, anode, cathode, drop="0.6", state="conducting"):
+    """A diode by the hand model."""
+    made = _device(name, "diode", {}, state=state, drop=Fraction(drop))
+    return replace(made, plus=anode, minus=cathode)
+
+
+def _device(name, kind, terminals, **model):
+    return Element(name, kind, "", "", Span(0, 0), terminals=tuple(terminals.items()), device=Device(**model))
+
+
 def circuit(*parts, reference="com", name=""):
     """A circuit of such parts, each on a line of its own (10 code points a line)."""
-    placed = tuple(
-        Element(e.name, e.kind, e.plus, e.minus, Span(10 * k, 10 * k + 9), value=e.value, control=e.control)
-        for k, e in enumerate(parts)
-    )
+    placed = tuple(replace(e, span=Span(10 * k, 10 * k + 9)) for k, e in enumerate(parts))
     return Circuit(name, placed, reference, Span(0, 10 * len(parts)))
 
 

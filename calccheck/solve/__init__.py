@@ -15,10 +15,11 @@ from calccheck.solve.branches import DC, network_of
 from calccheck.solve.elimination import Singular
 from calccheck.solve.part_faults import fault, part_faults
 from calccheck.solve.singular import is_singular, singular_faults, suspects
+from calccheck.solve.states import state_faults
 from calccheck.solve.structure import faults
 from calccheck.solve.superposition import is_exact, part_states
 
-__all__ = ["Unsolvable", "frequencies", "solve", "solve_batch", "state", "total"]
+__all__ = ["Unsolvable", "frequencies", "solve", "solve_batch", "state", "state_faults", "total"]
 
 
 class Unsolvable(Exception):

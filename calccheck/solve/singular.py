@@ -11,17 +11,16 @@ from collections.abc import Sequence
 from dataclasses import replace
 from fractions import Fraction
 
-from calccheck.arithmetic import size
 from calccheck.model import Finding
 from calccheck.solve.branches import Branch, Network
 from calccheck.solve.elimination import Singular
+from calccheck.solve.feedback import feedback_faults
 from calccheck.solve.part_faults import fault, hertz
 from calccheck.solve.structure import cut_sets, listed, loops, named, shown
-from calccheck.solve.superposition import EXACT_NODES, responses, stirred
+from calccheck.solve.superposition import EXACT_NODES, stirred
 from calccheck.units import NONE, OHM
 
 _STEERED = ("controlled voltage", "controlled current", "nullor")
-_STILL = 1e-9  # volts at an amplifier's inputs for a volt at an output, below which there is no feedback
 _DOUBTFUL = 1e10  # condition at AC from which a closer look is taken; a move of 1e-12 shows from about 1e12
 _MOVE = Fraction(1, 10**12)
 
@@ -77,7 +76,7 @@ def singular_faults(network: Network) -> tuple[Finding, ...]:
     other = _nudged(network, network.branches)
     if is_singular(other):
         plain = replace(network, branches=tuple(b for b in network.branches if b.part.kind != "transformer"))
-        found = _feedback_faults(other) or loops(plain, ("link", "voltage", "controlled voltage"))
+        found = feedback_faults(other) or loops(plain, ("link", "voltage", "controlled voltage"))
         found += cut_sets(plain, ("current", "controlled current"))
         return tuple(found) or (_whole_fault(network),)
     alone = [b for b in suspects(network) if not is_singular(_nudged(network, [b]))]
@@ -91,29 +90,6 @@ def _nudged(network: Network, branches: Sequence[Branch], step: Fraction = Fract
     """The network with those values moved a little, each by a factor of its own that no one would choose for a gain."""
     moved = {b.name: replace(b, value=(b.value or Fraction(1)) * (1 + (k + 1) * step)) for k, b in enumerate(branches)}
     return replace(network, branches=tuple(moved.get(b.name, b) for b in network.branches))
-
-
-def _feedback_faults(network: Network) -> list[Finding]:
-    """The amplifiers whose output something else holds, whose input voltage no output moves, or whose output moves none."""
-    amplifiers = [b for b in network.branches if b.role == "nullor"]
-    if not amplifiers:
-        return []
-    if found := loops(network, ("link", "voltage", "nullor")):
-        return found
-    try:
-        moves = [[size(x) > _STILL for x in row] for row in responses(network, amplifiers)]
-    except Singular:
-        return []
-    deaf = [b for k, b in enumerate(amplifiers) if not any(moves[k])]
-    deaf = deaf or [b for k, b in enumerate(amplifiers) if not any(row[k] for row in moves)]
-    return [
-        fault(
-            f"{b.part.name} has no feedback: its output does not act on the voltage between its inputs plus and minus, so that "
-            "an ideal op-amp there has no single output. Connect its output back to its minus input.",
-            b.part.span,
-        )
-        for b in deaf
-    ]
 
 
 def _resonance_fault(branches: Sequence[Branch], network: Network) -> Finding:

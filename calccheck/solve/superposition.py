@@ -15,14 +15,14 @@ A combination is a mapping from column to coefficient: unknowns have columns fro
 from __future__ import annotations
 
 from collections import defaultdict
-from collections.abc import Callable, Sequence
-from dataclasses import dataclass, replace
+from collections.abc import Callable
+from dataclasses import dataclass
 from fractions import Fraction
 from typing import Any
 
 from calccheck.arithmetic import Value
 from calccheck.model import Control, State
-from calccheck.solve.branches import Branch, Network, Role, with_terminals
+from calccheck.solve.branches import Branch, Network, with_terminals
 from calccheck.solve.elimination import Row, solve_exact, solve_float
 from calccheck.solve.gaussian import gaussian, solve_gaussian
 
@@ -83,25 +83,6 @@ def stirred(network: Network) -> list[Any]:
         {j: x for j, x in row.items() if j >= 0} | {-1: rebuilt.number(Fraction(k))} for k, row in enumerate(rows, 2)
     ]
     return [x[-1] for x in (solve_gaussian if network.frequency else solve_exact)(shaken)]
-
-
-def responses(network: Network, amplifiers: Sequence[Branch]) -> list[list[Value]]:
-    """How each amplifier's input voltage answers to one volt at each amplifier's output, with no source at work.
-
-    Raises ``Singular`` where the outputs cannot be set like that.
-    """
-    held = {
-        b.name: replace(b, role="voltage", value=Fraction(1), part=replace(b.part, name=b.name)) for b in amplifiers
-    }
-    zeroed: dict[str, Role] = {"voltage": "link", "current": "gap"}
-    branches = [held.get(b.name) or replace(b, role=zeroed.get(b.role, b.role)) for b in network.branches]
-    states = part_states(replace(network, branches=tuple(branches)))
-    rows = []
-    for b in amplifiers:
-        control = b.control or Control()
-        by_output = (states[out.name].potentials for out in amplifiers)
-        rows.append([volts[control.plus] - volts[control.minus] for volts in by_output])
-    return rows
 
 
 def _rebuilt(network: Network, exact: bool) -> _Rebuilt:
