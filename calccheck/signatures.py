@@ -7,6 +7,7 @@ that it has changed; it does not prove who signed (the history of the repository
 
 from __future__ import annotations
 
+import re
 from collections.abc import Mapping
 from dataclasses import MISSING, Field, dataclass, fields, is_dataclass
 from datetime import date
@@ -16,6 +17,7 @@ from fractions import Fraction
 from calccheck.formula import Group
 from calccheck.model import Claim, Element, Finding, Reading, Signature
 from calccheck.rules import RULES
+from calccheck.units import Unit
 
 FORM = 1  # of the canonical form; a signature made with another can no longer be held against the sheet
 PARTS = ("circuit", "claims", "givens", "waivers", "settings")
@@ -24,7 +26,8 @@ _SHORT = 8  # hexadecimal digits of a part's digest
 
 # Places and wording, which may change without changing what is said.
 _LAYOUT = {"span", "text", "written", "unit_words", "place", "problems"}
-_UNORDERED = {"elements", "ratings", "terminals", "symbols", "due_to"}
+_UNORDERED = {"elements", "ratings", "terminals", "symbols", "cases", "due_to"}
+_ASCII_MICRO = re.compile(r"(?<!\w)u(?=[VASWFHsCJgmΩ])")
 
 Plain = None | bool | int | str | list["Plain"]
 
@@ -100,6 +103,8 @@ def _plain(value: object) -> Plain:
             return sorted(([_plain(k), _plain(v)] for k, v in value.items()), key=_written_out)
         case Group(inner=inner, unit=unit) if not unit.text:
             return _plain(inner)  # brackets that only group: the tree says as much
+        case Unit(text=text):
+            return _ASCII_MICRO.sub("µ", text.replace("ohm", "Ω"))  # by its name: 3 VA are not 3 W
     return _record(value, set())
 
 

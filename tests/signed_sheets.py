@@ -1,6 +1,6 @@
 """A sheet with something in every part that a signature covers, and ways to sign it. Its numbers are worked by hand.
 
-10 V over 1 kΩ and 3 kΩ: 10 × 3/4 = 7.5 V at b, 2.5 mA. With k = 2, 2 × 7.5 V = 15 V. 7.9 V is measured and accepted.
+10 V over 1 kΩ and 3 kΩ: 10 × 3/4 = 7.5 V at b, 2.5 mA, 7.5 V × 2.5 mA = 18.75 mW. With k = 2, 2 × 7.5 V = 15 V. 7.9 V is measured and accepted.
 """
 
 from __future__ import annotations
@@ -42,6 +42,7 @@ The node is at `V_b = 7.5 V` and so `I_R2 = 2.50 mA`.
 given k = 2               # gain
 Vout = k × V_b = 15.0 V
 V_a due to V1 = 10.0 V
+P_R2 = 19 mW = 18750 µW
 ```
 
 |        | total  | with R2 open |
