@@ -308,7 +308,8 @@ class Judged:
 
     ``quantity``: the first member as written. ``claimed``: the printed value in SI, ``claimed_unit`` the unit it was printed
     in. ``computed``: the truth in SI. ``low``, ``high``: of a bound or range. ``deviation``: relative to the truth.
-    ``message``: one sentence. ``cautions``: said beside a verdict that stands.
+    ``message``: one sentence. ``cautions``: said beside a verdict that stands. ``parts``: of a voltage or current that several
+    independent sources bring about, what each brings, by its name in the order of the block; their sum is the truth.
     """
 
     claim: Claim
@@ -325,6 +326,7 @@ class Judged:
     steps: tuple[Step, ...] = ()
     cautions: tuple[str, ...] = ()
     slips: tuple[Slip, ...] = ()
+    parts: tuple[tuple[str, Amount], ...] = ()
 
 
 # --- findings and reports -------------------------------------------------------------------------------------------

@@ -17,6 +17,7 @@ from calccheck.judge.phasors import PrintedPhasor, parts
 from calccheck.judge.rounding import Printed, deviation, equal, fit
 from calccheck.judge.scope import QUANTITY_LETTERS, Defined, Key, Ledger, Result, quantity_key
 from calccheck.judge.steps import Ground, judge_member
+from calccheck.judge.working import by_source
 from calccheck.model import Basis, Claim, Finding, Judged, Step, Verdict
 from calccheck.rules import RULES
 
@@ -163,9 +164,16 @@ def _chain(job: Work) -> Judged:
             main = segments[k]
             key, printings = main.members[main.at].key, found
     _bounds(segments, job)
-    judged = _summed_up(main, printings, job, workings)
+    judged = replace(_summed_up(main, printings, job, workings), parts=_by_source(main, job))
     _enter(judged, main, name, key, printings, job)
     return judged
+
+
+def _by_source(main: Segment, job: Work) -> tuple[tuple[str, Amount], ...]:
+    """What each source brings to the quantity that a claim states whole."""
+    w = main.members[main.at]
+    whole = isinstance(w.node, Reference) and not w.node.prefix and not job.ledger.symbols
+    return by_source(w.key, job.ledger, w.member.span) if whole else ()
 
 
 def _parted(workings: Sequence[Worked]) -> list[list[Worked]]:

@@ -6,7 +6,7 @@ from calccheck.arithmetic import Amount, Doubt, plainest
 from calccheck.formula import Node, Reference
 from calccheck.judge import hints, quantities
 from calccheck.judge.changes import TEST
-from calccheck.judge.scope import Ledger, meaning
+from calccheck.judge.scope import Key, Ledger, meaning
 from calccheck.model import WorkedQuantity
 from calccheck.source import Span
 from calccheck.units import Dimension
@@ -35,6 +35,22 @@ def work_out(node: Node, span: Span, ledger: Ledger) -> WorkedQuantity:
     whole = q.read(solution.nodal) if len(sources) == len(solution.parts) else None
     nodal = Amount(plainest(whole), q.dimension) if whole is not None else None
     return WorkedQuantity(node.text, rows, total, nodal, solution.gap)
+
+
+def by_source(key: Key | None, ledger: Ledger, span: Span) -> tuple[tuple[str, Amount], ...]:
+    """What each independent source brings to a whole voltage or current; nothing where fewer than two bring something about."""
+    if key is None or key.letter not in ("V", "I", "Isc") or key.due_to:
+        return ()
+    try:
+        circuit = quantities.circuit_of(key, ledger, span)
+        frequency = quantities.frequency_of(key, circuit, ledger, span)
+        q = quantities.linear(key, circuit, span, frequency)
+        parts = quantities.solved(q.circuit, ledger, span, frequency).parts
+    except Doubt:
+        return ()
+    if len(parts) < 2:
+        return ()
+    return tuple((name, Amount(plainest(q.read(state)), q.dimension)) for name, state in parts.items())
 
 
 def _label(source: str) -> str:
