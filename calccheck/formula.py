@@ -24,13 +24,15 @@ class Number:
     """A number as printed, with the unit behind it (``PLAIN`` where none stands).
 
     ``digits`` keeps the printed places: ``Decimal('9.195')``, ``Decimal('1.20E+3')``. ``unit_words``: each word of the unit,
-    because a word that is also a name of the sheet makes the literal doubtful.
+    because a word that is also a name of the sheet makes the literal doubtful. ``scientific``: written with an exponent, so that
+    the zeros at its end are figures.
     """
 
     digits: Decimal
     span: Span
     unit: Unit = PLAIN
     unit_words: tuple[str, ...] = ()
+    scientific: bool = False
 
 
 @dataclass(frozen=True, slots=True)

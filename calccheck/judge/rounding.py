@@ -29,6 +29,7 @@ class Printed:
     figures: int
     digits: Decimal
     written_in: Unit = PLAIN
+    scientific: bool = False
 
     @property
     def unit_text(self) -> str:
@@ -64,7 +65,7 @@ def printed(node: Node) -> Printed | None:
     signed = node.digits if sign > 0 else node.digits.copy_negate()
     amount = literal(Number(signed, node.span, node.unit))
     place = Fraction(10) ** int(node.digits.as_tuple().exponent)
-    return Printed(amount, place * abs(node.unit.factor), figures(node.digits), signed, node.unit)
+    return Printed(amount, place * abs(node.unit.factor), figures(node.digits), signed, node.unit, node.scientific)
 
 
 def on_scale(p: Printed, truth: Real) -> tuple[Printed, Real]:
@@ -99,7 +100,7 @@ def fit(p: Printed, truth: Real, carry: Fraction, scale: Real = 0) -> Fit:
     toward_zero = x * truth > 0 and size(x) < size(truth)
     if p.figures >= 3 and toward_zero and distance < p.unit - slack:
         return "cut off"
-    zeros = _zeros_at_end(p.digits)
+    zeros = 0 if p.scientific else _zeros_at_end(p.digits)
     if zeros and distance <= carry * size(truth) and distance <= p.half * 10**zeros + slack:
         return "whole zeros"
     return "no"

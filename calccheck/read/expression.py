@@ -308,7 +308,7 @@ class Parser:
         if abs(digits.adjusted()) > 300:
             self.fail("a number out of range", t)
         unit, unit_words = self.unit()
-        return Number(digits, self.span(t.start), unit, unit_words)
+        return Number(digits, self.span(t.start), unit, unit_words, "e" in t.text.lower())
 
     def glued(self, t: Token, word: Token) -> NoReturn:
         """``2R1``, ``4k7``, ``4.7kOhm``: a number with something unknown right behind it."""
