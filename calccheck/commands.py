@@ -91,10 +91,12 @@ def run_of(options: argparse.Namespace) -> Run:
 
 def report_on(source: Source, within: Run) -> Report:
     """The report on one sheet. Raises ``Unusable`` where a sheet or its repository's settings cannot be read."""
+    from calccheck.history import earlier_versions  # late: as the next
     from calccheck.pipeline import check as checked  # late: --help and --version need no solver
 
     find = partial(find_sheets, citing=source.path, run=within)
-    return checked(sheet_of(source), replace(settings_for(source), on=within.on), find)
+    history = partial(earlier_versions, source.path) if source.text is None else tuple
+    return checked(sheet_of(source), replace(settings_for(source), on=within.on), find, history)
 
 
 def brief_report_on(source: Source, within: Run) -> Report:
