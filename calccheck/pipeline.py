@@ -2,7 +2,9 @@
 
 from __future__ import annotations
 
+import math
 from collections.abc import Callable, Iterable, Sequence
+from dataclasses import replace
 from datetime import date
 from fractions import Fraction
 from functools import cache
@@ -22,7 +24,8 @@ from calccheck.read.expression import parse
 from calccheck.read.sheet import read_sheet
 from calccheck.rules import RULES
 from calccheck.signatures import signature_findings
-from calccheck.solve import Unsolvable, solve, solve_batch
+from calccheck.solve import Unsolvable, solve, solve_batch, total
+from calccheck.solve.states import state_faults
 from calccheck.source import Sheet, whole
 
 EarlierTexts = Callable[[], Iterable[tuple[str, str]]]
@@ -38,13 +41,17 @@ def check(
     only where a claim differs.
     """
     reading = read_sheet(Sheet(sheet.name, unmark(sheet.text)), settings or Settings())
+    on = reading.settings.on or date.today()
+    reading = replace(reading, settings=replace(reading.settings, on=on))
     solve_once = solver()
     solutions, faults = _solved(reading.circuits, solve_once)
-    versions, on = _circuits_of(earlier, sheet.name), reading.settings.on or date.today()
-    judged, findings = judge_sheet(reading, solve_once, on, solve_batch, versions)
+    versions = _circuits_of(earlier, sheet.name)
+    states = _states(solve_once, math.sqrt(2) if reading.settings.phasors == "rms" else 1.0)
+    judged, findings = judge_sheet(reading, solve_once, on, solve_batch, versions, lambda c: _first(states(c)))
     elsewhere = reference_findings(reading, judged, find)
     cautions = caution_findings(reading, solutions)
-    beside = (*_stray_marks(reading), *signature_findings(reading), *elsewhere, *cautions)
+    assumed = [f for c in reading.circuits if not c.symbols for f in states(c)]
+    beside = (*assumed, *_stray_marks(reading), *signature_findings(reading), *elsewhere, *cautions)
     every = sorted((*reading.findings, *beside, *faults, *findings), key=lambda f: f.span.start)
     return Report(
         reading,
@@ -93,9 +100,29 @@ def solver() -> Solve:
     return solve_once
 
 
+def _states(solve_once: Solve, crest: float) -> Callable[[Circuit], tuple[Finding, ...]]:
+    """Tells of a circuit which parts cannot be in the states that the sheet assumes, with all its sources at work."""
+
+    @cache
+    def check(circuit: Circuit) -> tuple[Finding, ...]:
+        if not any(e.device is not None for e in circuit.elements):
+            return ()
+        try:
+            whole = {f: total(solve_once(circuit, f)) for f in circuit.frequencies}
+        except Doubt:
+            return ()  # said where it is not solved
+        return state_faults(circuit, whole.get(Fraction(0)), [s for f, s in whole.items() if f != 0], crest)
+
+    return check
+
+
+def _first(findings: Sequence[Finding]) -> str:
+    return findings[0].message if findings else ""
+
+
 def _solution(circuit: Circuit, frequency: Fraction) -> Solution | Doubt:
     try:
-        return solve(circuit, *([frequency] if frequency else []))
+        return solve(circuit, frequency)
     except Unsolvable as u:
         first = u.findings[0]
         return Doubt(f"its circuit cannot be solved: {first.message}", first.span)
@@ -121,7 +148,7 @@ def _faults(circuit: Circuit) -> tuple[Finding, ...]:
         return ()
     for frequency in frequencies(circuit):
         try:
-            solve(circuit, *([frequency] if frequency else []))
+            solve(circuit, frequency)
         except Unsolvable as u:
             return u.findings
     return ()

@@ -5,11 +5,12 @@ from __future__ import annotations
 from collections.abc import Iterable
 from dataclasses import replace
 from fractions import Fraction
+from typing import Any
 
 from calccheck.arithmetic import Amount, Doubt, real
 from calccheck.formula import Change
 from calccheck.model import Circuit, Element
-from calccheck.units import AMPERE, OHM, SIEMENS, VOLT, words
+from calccheck.units import AMPERE, FARAD, HENRY, NONE, OHM, SIEMENS, VOLT, words
 
 TEST = "test current"  # names with a blank cannot meet a part's
 LAID_SHORT = "short laid"
@@ -29,21 +30,57 @@ def changed(circuit: Circuit, change: Change, value: Amount | None) -> Circuit:
     return _put(circuit, element, _remade(element, change, value))
 
 
+_OF_DEVICE = {"beta": ("beta", NONE), "V_BE": ("v_be", VOLT), "V_CE": ("v_ce", VOLT), "drop": ("drop", VOLT)}
+_WANTED = {"voltage source": VOLT, "current source": AMPERE, "capacitor": FARAD, "inductor": HENRY}
+_BARE = {
+    "value": None,
+    "control": None,
+    "phasor": None,
+    "formula": None,
+    "stated": None,
+    "tolerance": None,
+    "device": None,
+}
+
+
 def _remade(element: Element, change: Change, value: Amount | None) -> Element:
     if change.what == "open":
-        return replace(element, kind="open", value=None, control=None)
+        return replace(element, kind="open", **_BARE)
     if change.what == "shorted":
-        return replace(element, kind="short", value=None, control=None)
+        return replace(element, kind="short", **_BARE)
     assert value is not None
-    wanted = {"voltage source": VOLT, "current source": AMPERE}.get(element.kind, OHM)
-    if element.kind in ("controlled voltage source", "controlled current source"):
-        raise Doubt(f"{element.name} is a controlled source; a value cannot take its place", change.span)
+    if change.what != "as":
+        return _with_device_value(element, change, value)
+    if element.control is not None or element.device is not None:
+        raise Doubt(f"{element.name} is {_article(element.kind)}; a value cannot take its place", change.span)
+    wanted = _WANTED.get(element.kind, OHM)
     if value.dimension == SIEMENS and wanted == OHM and value.value != 0:
         value = Amount(1 / value.value, OHM)
     if value.dimension != wanted:
         raise Doubt(f"{element.name} is {words(wanted)}, {words(value.dimension)} cannot take its place", change.span)
-    kind = element.kind if element.kind in ("voltage source", "current source") else "resistor"
-    return replace(element, kind=kind, value=Fraction(real(value.value, change.span)), stated=value, tolerance=None)
+    plain = replace(element, stated=value, tolerance=None, formula=None)
+    if isinstance(value.value, complex) or (element.is_source and element.frequency is not None):
+        kind = element.kind if element.is_source else "impedance"
+        return replace(plain, kind=kind, value=None, phasor=complex(value.value))
+    kind = element.kind if element.kind in _WANTED else "resistor"
+    return replace(plain, kind=kind, phasor=None, value=Fraction(real(value.value, change.span)))
+
+
+def _article(kind: str) -> str:
+    return f"an {kind}" if kind[0] in "aeio" else f"a {kind}"
+
+
+def _with_device_value(element: Element, change: Change, value: Amount) -> Element:
+    """``Q1 beta 80``: another value of a hand model."""
+    field, dimension = _OF_DEVICE[change.what]
+    if element.device is None or getattr(element.device, field) is None:
+        raise Doubt(f"{element.name} has no {change.what}", change.span)
+    if value.dimension != dimension:
+        raise Doubt(f"{change.what} is {words(dimension)}, not {words(value.dimension)}", change.span)
+    amount = Fraction(real(value.value, change.span))
+    kept = tuple(t for t in element.device.tolerances if t[0] != change.what)
+    put: dict[str, Any] = {field: amount, "tolerances": kept}
+    return replace(element, device=replace(element.device, **put))
 
 
 def _put(circuit: Circuit, old: Element, new: Element) -> Circuit:
@@ -58,8 +95,15 @@ def zeroed(circuit: Circuit, keep: Iterable[str] = ()) -> Circuit:
 
 def _zeroed(e: Element) -> Element:
     if e.kind == "voltage source":
-        return replace(e, kind="short", value=None)
-    return replace(e, kind="open", value=None) if e.kind == "current source" else e
+        return replace(e, kind="short", value=None, phasor=None, formula=None, frequency=None)
+    if e.kind == "current source":
+        return replace(e, kind="open", value=None, phasor=None, formula=None, frequency=None)
+    if e.is_source and e.device is not None:  # the drops of a hand model
+        none: dict[str, Any] = {
+            name: Fraction(0) for name in ("v_be", "v_ce", "drop") if getattr(e.device, name) is not None
+        }
+        return replace(e, device=replace(e.device, **none))
+    return e
 
 
 def with_test_current(circuit: Circuit, a: str, b: str, frequency: Fraction = DC) -> Circuit:
@@ -67,18 +111,18 @@ def with_test_current(circuit: Circuit, a: str, b: str, frequency: Fraction = DC
 
     What hangs together with neither ``b`` nor a controlled source is left out: zeroed current sources may have cut it off.
     """
+    test = Element(TEST, "current source", b, a, circuit.span, Fraction(1))
+    if frequency != DC:
+        test = replace(test, value=None, phasor=1 + 0j, frequency=frequency)
     if a == b:
-        return replace(
-            circuit, elements=(Element(TEST, "current source", b, a, circuit.span, Fraction(1)),), reference=b
-        )
+        return replace(circuit, elements=(test,), reference=b)
     dead = zeroed(circuit)
-    span = circuit.span
-    test = Element(TEST, "current source", b, a, span, Fraction(1))
     kept = tuple(e for e in dead.elements if e.kind != "open")
-    if not any(e.control for e in kept):
+    if not any(e.control or e.terminals for e in kept):
         near = _reached(kept, b)
         kept = tuple(e for e in kept if e.plus in near)
-    return replace(dead, elements=(*kept, test), reference=b)
+    grounded = any(e.kind == "op-amp" for e in kept)  # its output works against the reference, which stays
+    return replace(dead, elements=(*kept, test), reference=dead.reference if grounded else b)
 
 
 def _reached(elements: tuple[Element, ...], start: str) -> set[str]:

@@ -14,9 +14,9 @@ from calccheck.formula import Group, Node, Number, Range, Reference, numbers, re
 from calccheck.judge import hints, quantities
 from calccheck.judge.phasors import PrintedPhasor, printed_phasor
 from calccheck.judge.rounding import SLACK, Printed, printed
-from calccheck.judge.scope import Key, Ledger, Meaning, meaning
+from calccheck.judge.scope import Key, Ledger, Meaning, circuit_index, meaning, quantity_key
 from calccheck.loose_units import with_loose_units
-from calccheck.model import Basis, Member, Relation
+from calccheck.model import Basis, Element, Member, Relation
 from calccheck.units import PLAIN
 
 Sort = Literal["value", "formula", "substitution", "range", "new name"]
@@ -76,8 +76,6 @@ class Names:
     def _work(self, ref: Reference) -> Amount:
         if ref.prefix in ("min", "max", "worst", "rss", "sigma", "yield"):
             raise Doubt(f"{ref.prefix} before a quantity is not read in this version", ref.span)
-        if ref.qualifiers.case:
-            raise Doubt("cases are not read in this version", ref.span)
         m = self.meaning(ref)
         if m is None:
             sentence, hint = hints.unknown(ref, self.nearest, self.ledger)
@@ -97,9 +95,20 @@ class Names:
         if m.defined is not None:
             return m.defined.exact
         assert m.element is not None
+        if q.case:
+            return self._in_case(ref, m.element)
         if m.element.stated is None:
             raise Doubt(f"{ref.word} is {m.element.kind} and has no value of its own", ref.span)
         return m.element.stated
+
+    def _in_case(self, ref: Reference, element: Element) -> Amount:
+        """A part's own value in a case."""
+        circuit = self.ledger.circuits[circuit_index(ref, self.nearest, self.ledger)]
+        key = quantity_key(replace(ref, letter="I", subscripts=(element.name,)), 0, circuit, self.ledger)
+        told = next((v for part, _, v in key.changes if part == element.name and v is not None), None) if key else None
+        if told is None and element.stated is None:
+            raise Doubt(f"{ref.word} is {element.kind} and has no value of its own", ref.span)
+        return told or element.stated or Amount(0)
 
 
 def _component(ref: Reference, key: Key, ledger: Ledger) -> Amount:

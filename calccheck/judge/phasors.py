@@ -46,6 +46,9 @@ def printed_phasor(node: Node) -> PrintedPhasor | None:
     if isinstance(node, Binary) and node.operator == "∠":
         magnitude, angle = printed(node.left), printed(node.right)
         return PrintedPhasor(magnitude, angle, True) if magnitude and angle else None
+    if isinstance(node, Unary) and node.sign == "-" and isinstance(node.operand, Group):
+        inner = printed_phasor(node.operand)
+        return PrintedPhasor(_turned(inner.first), _turned(inner.second), False) if inner and not inner.polar else None
     unit = PLAIN
     while isinstance(node, Group):
         unit, node = (node.unit if node.unit.text else unit), node.inner

@@ -168,17 +168,22 @@ def linear(key: Key, circuit: Circuit, span: Span, frequency: Fraction = DC) -> 
 
 
 def circuit_of(key: Key, ledger: Ledger, span: Span) -> Circuit:
-    """The circuit that a quantity belongs to, with the changes that its qualifiers make."""
+    """The circuit that a quantity belongs to, with the changes that its qualifiers make.
+
+    Raises ``Doubt`` where it is not solved, or where a part cannot be in the state that the sheet assumes.
+    """
     circuit = ledger.circuits[key.circuit]
     if circuit.problems:
         first = circuit.problems[0]
         raise Doubt(f"its circuit is not solved: {first.message}", span)
-    if not key.changes:
-        return circuit
     known = (key.circuit, key.changes)
     if known not in ledger.variants:
-        ledger.variants[known] = with_changes(circuit, key, span)
-    return ledger.variants[known]
+        ledger.variants[known] = with_changes(circuit, key, span) if key.changes else circuit
+    found = ledger.variants[known]
+    reason = ledger.fails(found)
+    if reason:
+        raise Doubt(f"an assumed state does not hold: {reason}", span)
+    return found
 
 
 def with_changes(circuit: Circuit, key: Key, span: Span) -> Circuit:
@@ -258,14 +263,22 @@ def ends(circuit: Circuit, key: Key, span: Span) -> tuple[str, str]:
 
 
 def _carrier(circuit: Circuit, key: Key, span: Span) -> str:
-    """The name of the part whose current is meant."""
-    if len(key.subscripts) > 1:
-        raise Doubt("currents into one terminal of a part are not read in this version", span)
+    """The name under which a state holds the current that is meant: a part's, or that into one terminal of a part."""
     element = circuit.element(key.subscripts[0])
     if element is None:
         raise Doubt(f"{key.subscripts[0]} is taken out: it carries no current", span)
-    _simple(element, span)
-    return element.name
+    if len(key.subscripts) == 1:
+        _simple(element, span)
+        return element.name
+    where = key.subscripts[1]
+    at_node = [word for word, node in element.terminals if node == where]
+    by_word = [word for word, _ in element.terminals if word == where]
+    if not at_node and not by_word:
+        known = ", ".join(f"{word} ({node})" for word, node in element.terminals) or "none by name"
+        raise Doubt(f"{element.name} has no terminal {where}; its terminals: {known}", span)
+    if len({*at_node, *by_word}) > 1:
+        raise Doubt(f"{where} may be more than one terminal of {element.name}: say which by its word", span)
+    return f"{element.name},{(at_node or by_word)[0]}"
 
 
 def _simple(element: Element, span: Span) -> None:

@@ -4,7 +4,7 @@ from __future__ import annotations
 
 import math
 import re
-from collections.abc import Mapping
+from collections.abc import Callable, Mapping
 from dataclasses import dataclass, field, replace
 from fractions import Fraction
 from typing import Literal, Protocol
@@ -81,7 +81,8 @@ class Ledger:
     """The sheet's circuits, and what its claims have established up to the present one.
 
     ``amounts``, ``variants``, ``states`` and ``around`` keep what was worked out once: quantities by key, changed circuits by
-    their changes, states by the sources that act, all values of a circuit.
+    their changes, states by the sources that act, all values of a circuit. ``fails`` says why a circuit's parts cannot be in
+    the states that the sheet assumes, or nothing.
     """
 
     circuits: tuple[Circuit, ...]
@@ -94,6 +95,7 @@ class Ledger:
     variants: dict[object, Circuit] = field(default_factory=dict)
     states: dict[object, State] = field(default_factory=dict)
     around: dict[Key, list[Sized]] = field(default_factory=dict)
+    fails: Callable[[Circuit], str] = lambda _: ""
 
 
 Sort = Literal["quantity", "part", "name", "constant"]
@@ -188,11 +190,20 @@ def quantity_key(ref: Reference, index: int, circuit: Circuit, ledger: Ledger) -
         return None
     q = ref.qualifiers
     due_to = frozenset(_in_maths(s, circuit) for s in q.due_to) if ref.maths else frozenset(q.due_to)
+    told = [*_case(ref, circuit), *q.changes] if q.case else q.changes
     changes = tuple(
-        (_in_maths(c.part, circuit) if ref.maths else c.part, c.what, _replacement(c, ledger, circuit))
-        for c in q.changes
+        (_in_maths(c.part, circuit) if ref.maths else c.part, c.what, _replacement(c, ledger, circuit)) for c in told
     )
     return Key(index, ref.letter, subs, due_to, changes, q.frequency)
+
+
+def _case(ref: Reference, circuit: Circuit) -> tuple[Change, ...]:
+    """The changes of the case that a quantity is in."""
+    for case in circuit.cases:
+        if case.name == ref.qualifiers.case:
+            return case.changes
+    known = ", ".join(c.name for c in circuit.cases) or "none"
+    raise Doubt(f"there is no case {ref.qualifiers.case}; cases of this circuit: {known}", ref.span)
 
 
 def _in_maths(name: str, circuit: Circuit) -> str:
@@ -209,6 +220,8 @@ def _replacement(change: Change, ledger: Ledger, circuit: Circuit) -> Amount | N
     def lookup(ref: Reference) -> Amount:
         if ref.word in ledger.names:
             return ledger.names[ref.word].exact
+        if ref.word in ledger.symbols:
+            return ledger.symbols[ref.word]
         element = circuit.element(ref.word)
         if element is not None and element.stated is not None:
             return element.stated

@@ -13,21 +13,26 @@ from calccheck.judge.rounding import Printed, fit, printed
 from calccheck.judge.scope import Ledger, Solve
 from calccheck.judge.slips.redo import Earlier, Redo, SolveBatch
 from calccheck.judge.symbols import combined, instance, points
-from calccheck.model import Finding, Judged, Reading, Waiver
+from calccheck.model import Circuit, Finding, Judged, Reading, Waiver
 from calccheck.rules import RULES
 
 
 def judge_sheet(
-    reading: Reading, solve: Solve, on: date, solve_batch: SolveBatch, earlier: Callable[[], Sequence[Earlier]] = tuple
+    reading: Reading,
+    solve: Solve,
+    on: date,
+    solve_batch: SolveBatch,
+    earlier: Callable[[], Sequence[Earlier]] = tuple,
+    fails: Callable[[Circuit], str] = lambda _: "",
 ) -> tuple[tuple[Judged, ...], tuple[Finding, ...]]:
     """The verdicts of a sheet's claims, with the slips that explain wrong ones, and the findings made on the way.
 
     ``solve`` gives the solution of a circuit or raises ``Doubt``; ``solve_batch`` the states of many, ``None`` for one that has
     none. ``on``: the day by which waivers are judged. ``earlier``: the circuits of the sheet's earlier versions, newest first;
-    called only where a claim differs.
+    called only where a claim differs. ``fails``: says of a circuit why its parts cannot be in the states that the sheet assumes.
     """
     ledgers = [
-        Ledger(tuple(instance(c, p) for c in reading.circuits), solve, reading.settings, symbols=p)
+        Ledger(tuple(instance(c, p) for c in reading.circuits), solve, reading.settings, symbols=p, fails=fails)
         for p in points(reading.circuits)
     ]
     symbols = sorted({name for c in reading.circuits for name, _ in c.symbols})

@@ -280,8 +280,17 @@ class Parser:
             if t.text == "|":
                 inner = self.expression()
                 self.close("|", t)
-                return Call("abs", (inner,), self.span(t.start))
+                return Call("abs", (self.qualified(inner),), self.span(t.start))
         self.fail("expected a value behind this" if t.kind == "end" else f"expected a value, found {self.shown(t)}", t)
+
+    def qualified(self, inner: Node) -> Node:
+        """``|V_out| at 50 Hz``: qualifiers behind the bar belong to the quantity between the bars."""
+        found = self.qualifiers()
+        if found == NO_QUALIFIERS:
+            return inner
+        if not isinstance(inner, Reference) or inner.qualifiers != NO_QUALIFIERS:
+            self.fail("qualifiers behind a bar belong to one quantity between the bars", self.seen[self.at - 1])
+        return replace(inner, qualifiers=found)
 
     def group(self, opened: Token) -> Node:
         """A bracket and the unit that multiplies it where one stands behind."""
