@@ -5,7 +5,7 @@ from __future__ import annotations
 from collections.abc import Iterable
 from dataclasses import replace
 from fractions import Fraction
-from typing import Any
+from typing import Any, Literal
 
 from calccheck.arithmetic import Amount, Doubt, real
 from calccheck.formula import Change
@@ -32,22 +32,13 @@ def changed(circuit: Circuit, change: Change, value: Amount | None) -> Circuit:
 
 _OF_DEVICE = {"beta": ("beta", NONE), "V_BE": ("v_be", VOLT), "V_CE": ("v_ce", VOLT), "drop": ("drop", VOLT)}
 _WANTED = {"voltage source": VOLT, "current source": AMPERE, "capacitor": FARAD, "inductor": HENRY}
-_BARE = {
-    "value": None,
-    "control": None,
-    "phasor": None,
-    "formula": None,
-    "stated": None,
-    "tolerance": None,
-    "device": None,
-}
 
 
 def _remade(element: Element, change: Change, value: Amount | None) -> Element:
     if change.what == "open":
-        return replace(element, kind="open", **_BARE)
+        return _bare(element, "open")
     if change.what == "shorted":
-        return replace(element, kind="short", **_BARE)
+        return _bare(element, "short")
     assert value is not None
     if change.what != "as":
         return _with_device_value(element, change, value)
@@ -64,6 +55,11 @@ def _remade(element: Element, change: Change, value: Amount | None) -> Element:
         return replace(plain, kind=kind, value=None, phasor=complex(value.value))
     kind = element.kind if element.kind in _WANTED else "resistor"
     return replace(plain, kind=kind, phasor=None, value=Fraction(real(value.value, change.span)))
+
+
+def _bare(e: Element, kind: Literal["open", "short"]) -> Element:
+    """A gap or a link in place of a part."""
+    return Element(e.name, kind, e.plus, e.minus, e.span, written=kind)
 
 
 def _article(kind: str) -> str:

@@ -14,6 +14,7 @@ from typing import NoReturn, cast
 
 from calccheck.arithmetic import Doubt
 from calccheck.formula import (
+    NO_QUALIFIERS,
     Binary,
     Call,
     Change,
