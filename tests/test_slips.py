@@ -15,12 +15,13 @@ from pathlib import Path
 import pytest
 from test_standards import E24, by_formula
 
-from calccheck import check_text
+from calccheck import check_text, pipeline
 from calccheck.history import LOOK_BACK, earlier_versions
 from calccheck.judge.slips.table import SLIPS
 from calccheck.model import Settings
 from calccheck.pipeline import check
 from calccheck.preferred_values import SERIES, neighbours
+from calccheck.solve import solve_batch
 from calccheck.source import Sheet
 
 sys.path.insert(0, str(Path(__file__).parent / "bench"))
@@ -301,6 +302,24 @@ def test_a_hundred_wrong_claims_stay_within_their_time():
     assert standing.counts["agrees"] == 100
     assert failing.counts["differs"] >= 95  # of a current of nothing 7 % is nothing
     assert end - middle <= 3 * (middle - start) + 0.05 * failing.counts["differs"]
+
+
+def test_the_hypotheses_of_a_claim_are_one_batch_of_bounded_size(monkeypatch):
+    """A ladder of 120 nodes has thousands of variants; no more are solved than the bound on work allows."""
+    batches = []
+
+    def counting(circuits):
+        batches.append([2 * len(c.elements) for c in circuits])
+        return solve_batch(circuits)
+
+    monkeypatch.setattr(pipeline, "solve_batch", counting)
+    rungs = [hand.Part("R", f"R{k}", f"n{k}", f"n{k - 1}" if k > 1 else "com", 10.0 + k) for k in range(1, 121)]
+    posts = [hand.Part("R", f"P{k}", f"n{k}", "com", 470.0 + k) for k in range(2, 121, 2)]
+    large = [*rungs, *posts, hand.Part("I", "Ia", "com", "n120", 0.01), hand.Part("I", "Ib", "com", "n60", 0.01)]
+    report = check(Sheet("large.md", hand.circuit_block(large) + "\n\n`V_n3 = 1.234 V`"), Settings())
+    assert [j.verdict for j in report.claims] == ["differs"]
+    assert len(batches) == 1
+    assert 0 < sum(size**3 for size in batches[0]) <= 5e8
 
 
 def large_circuit(rng):

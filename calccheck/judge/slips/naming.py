@@ -8,7 +8,7 @@ is not named.
 from __future__ import annotations
 
 from collections import defaultdict
-from collections.abc import Sequence
+from collections.abc import Mapping, Sequence
 from dataclasses import dataclass
 
 from calccheck.arithmetic import Value, size
@@ -18,11 +18,12 @@ from calccheck.judge.slips.case import Case, Guess, case_of
 from calccheck.judge.slips.redo import Redo
 from calccheck.judge.slips.table import SLIPS, SlipKind
 from calccheck.judge.slips.working import right_substitution
-from calccheck.model import Slip
+from calccheck.model import Circuit, Slip
 
 UNDECIDED = 3  # kinds that may fit before the number decides nothing
 _ALIKE = 3  # fits of one kind that a sentence names
 _ODDS = 8  # how many times likelier than chance a slip must be to be named; tests/bench/slips.py shows what that costs
+_MOST_WORK = 5e8  # some 0.1 s: a circuit of 20 nodes has all its variants tried, one of 100 the kinds that have few
 _WORKING_RIGHT = 0.02  # how much rarer a slip with the circuit is, where the working before the value is right
 
 
@@ -46,7 +47,10 @@ def name_slips(miss: Miss, redo: Redo) -> tuple[tuple[Slip, ...], bool]:
     figures = case.printed.figures if case.printed is not None else 99
     tried = [(kind, guess) for kind in SLIPS if figures >= kind.figures for guess in kind.find(case)]
     again = Again(case)
-    redo.solve(circuit for _, guess in tried for circuit in again.to_solve(guess))
+    needs: dict[str, list[Circuit]] = defaultdict(list)
+    for kind, guess in tried:
+        needs[kind.key] += again.to_solve(guess)
+    redo.solve(_affordable(needs, redo))
     by_kind: dict[str, list[tuple[Guess, Value | None]]] = defaultdict(list)
     for kind, guess in tried:
         by_kind[kind.key].append((guess, again.value(guess)))
@@ -54,6 +58,15 @@ def name_slips(miss: Miss, redo: Redo) -> tuple[tuple[Slip, ...], bool]:
     fits.sort(key=lambda f: -f.score)
     slips = tuple(Slip(f.kind.key, _sentence(f, case)) for f in fits)
     return slips, len(slips) > UNDECIDED and not any(guess.certain for guess, _ in fits[0].guesses)
+
+
+def _affordable(needs: Mapping[str, Sequence[Circuit]], redo: Redo) -> list[Circuit]:
+    """The circuits of as many kinds as may be solved for one claim, kinds with few first: a large circuit has thousands."""
+    chosen: list[Circuit] = []
+    for circuits in sorted(needs.values(), key=len):
+        if redo.work([*chosen, *circuits]) <= _MOST_WORK:
+            chosen += circuits
+    return chosen
 
 
 def _fitting(kind: SlipKind, tried: Sequence[tuple[Guess, Value | None]], case: Case) -> _Fit | None:

@@ -85,6 +85,11 @@ class Redo:
             self._kept += new.values()
             self._states |= zip(new, self._solve_batch(list(new.values())), strict=True)
 
+    def work(self, circuits: Iterable[Circuit]) -> float:
+        """What solving them would take: the cubes of their numbers of equations, of those that are not solved yet."""
+        new = {id(c): c for c in circuits if id(c) not in self._states}
+        return float(sum((2 * len(c.elements)) ** 3 for c in new.values()))
+
     def state(self, circuit: Circuit) -> State:
         """The state of a circuit that ``solve`` has met. Raises ``Doubt`` where it has none."""
         state = self._states.get(id(circuit))
