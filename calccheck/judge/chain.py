@@ -8,14 +8,15 @@ from fractions import Fraction
 from itertools import pairwise
 
 from calccheck.arithmetic import Amount, DimensionFault, Doubt
-from calccheck.formula import Node, Reference
-from calccheck.judge import hints, say
+from calccheck.formula import Reference
+from calccheck.judge import say
 from calccheck.judge.bounds import BOUNDS, judge_bound
 from calccheck.judge.members import Names, Worked, work
 from calccheck.judge.miss import Miss
+from calccheck.judge.new_names import assume, new_name
 from calccheck.judge.phasors import PrintedPhasor, parts
-from calccheck.judge.rounding import Printed, deviation, equal, fit
-from calccheck.judge.scope import QUANTITY_LETTERS, Defined, Key, Ledger, Result, quantity_key
+from calccheck.judge.rounding import Printed, deviation
+from calccheck.judge.scope import Defined, Key, Ledger, Result
 from calccheck.judge.steps import Ground, judge_member
 from calccheck.judge.working import by_source
 from calccheck.model import Basis, Claim, Finding, Judged, Step, Verdict
@@ -65,80 +66,10 @@ def judge_claim(claim: Claim, ledger: Ledger) -> tuple[Judged, tuple[Finding, ..
         return Judged(claim, "unchecked", message=say.reason(claim.problem.reason, claim.problem.suggestion)), (), None
     job = Work(claim, ledger, Names(claim.circuit, ledger))
     try:
-        judged = _given(job) if claim.given else _chain(job)
+        judged = assume(claim, ledger, job.names) if claim.given else _chain(job)
     except Doubt as d:
         judged = Judged(claim, "unchecked", quantity=claim.members[0].text, message=say.reason(d.reason, d.suggestion))
     return judged, tuple(job.findings), job.miss
-
-
-# --- assumptions ----------------------------------------------------------------------------------------------------
-
-
-def _given(job: Work) -> Judged:
-    claim, name = job.claim, _bare_name(job.claim.members[0].node)
-    if name is None:
-        raise Doubt("an assumption gives a plain name a value: given NAME = VALUE UNIT", claim.members[0].span)
-    _refuse_taken(name, job)
-    members = [work(m, job.names) for m in claim.members[1:]]
-    for w in members:
-        if w.doubt is not None:
-            raise w.doubt
-        if w.fault is not None:
-            raise Doubt(w.fault.reason, w.fault.span)
-    last = members[-1]
-    amount = members[0].amount
-    assert amount is not None
-    _refuse_two_values(members, amount)
-    shown = last.printed
-    rounded = bool(claim.from_sheet) and isinstance(shown, Printed)  # a result of another sheet
-    spread = shown.half if rounded and isinstance(shown, Printed) else Fraction(0)
-    job.ledger.names[name] = Defined(name, amount, shown, "working", True, claim.span.start, spread)
-    return Judged(
-        claim, "given", quantity=name, claimed=amount, claimed_unit=shown.written_in.text if shown else "",
-        message=f"assumed, from {claim.from_sheet}" if claim.from_sheet else "assumed",
-    )  # fmt: skip
-
-
-def _refuse_two_values(members: Sequence[Worked], amount: Amount) -> None:
-    """An assumption is one value; a second one may only be its right rounding."""
-    for w in members[1:]:
-        if w.relation not in ("=", "≈"):
-            raise Doubt("a bound is a claim of its own; an assumption ends before it", w.member.span)
-        p, same = w.printed, w.amount is not None and w.amount.dimension == amount.dimension
-        near = (
-            isinstance(p, Printed) and isinstance(amount.value, Fraction | float) and fit(p, amount.value, Fraction(0))
-        )
-        if not same or w.amount is None or not (near == "exact place" or equal(w.amount.value, amount.value)):
-            raise Doubt(f"the assumption has two values: {w.member.text} is not what stands before it", w.member.span)
-
-
-def _bare_name(node: Node) -> str | None:
-    """The name that a member is, where it is nothing but a name."""
-    if not isinstance(node, Reference) or node.braced or node.prefix or node.qualifiers != type(node.qualifiers)():
-        return None
-    return node.word
-
-
-def _refuse_taken(name: str, job: Work) -> None:
-    ledger = job.ledger
-    known = ledger.names.get(name)
-    place = job.claim.members[0].span
-    if known is not None:
-        word = "assumed" if known.given else "defined"
-        raise Doubt(f"{name} is {word} above already; a name has one value in a sheet", place)
-    _refuse_of_circuit(job.claim.members[0].node, job)
-
-
-def _refuse_of_circuit(node: Node, job: Work) -> None:
-    """A new name may not be a part or a quantity of any circuit in the sheet."""
-    assert isinstance(node, Reference)
-    for k, c in enumerate(job.ledger.circuits):
-        called = f" {c.name}" if c.name else ""
-        if c.element(node.word) is not None:
-            raise Doubt(f"{node.word} is a part of the circuit{called}; choose another name", node.span)
-        if quantity_key(node, k, c, job.ledger) is not None:
-            raise Doubt(f"{node.word} is a quantity of the circuit{called}; choose another name", node.span)
-    _refuse_near_quantity(node, job)
 
 
 # --- chains ---------------------------------------------------------------------------------------------------------
@@ -146,7 +77,7 @@ def _refuse_of_circuit(node: Node, job: Work) -> None:
 
 def _chain(job: Work) -> Judged:
     workings = [work(m, job.names) for m in job.claim.members]
-    name = _new_name(workings, job)
+    name = new_name(workings, job.claim, job.ledger, job.names)
     if name is not None:
         workings[0] = replace(workings[0], sort="new name", doubt=None)
     segments = [_segment(part) for part in _parted(workings)]
@@ -164,7 +95,9 @@ def _chain(job: Work) -> Judged:
             main = segments[k]
             key, printings = main.members[main.at].key, found
     _bounds(segments, job)
-    judged = replace(_summed_up(main, printings, job, workings), parts=_by_source(main, job))
+    low, high = _limits(segments, main)
+    summed = _summed_up(main, printings, job, workings)
+    judged = replace(summed, low=low, high=high, parts=_by_source(main, job))
     _enter(judged, main, name, key, printings, job)
     return judged
 
@@ -183,58 +116,6 @@ def _parted(workings: Sequence[Worked]) -> list[list[Worked]]:
             parts.append([])
         parts[-1].append(w)
     return parts
-
-
-def _new_name(workings: Sequence[Worked], job: Work) -> str | None:
-    """The name that the chain defines, if its first member is one that nothing has and a formula follows."""
-    first = workings[0]
-    if not isinstance(first.node, Reference) or job.names.meaning(first.node) is not None:
-        return None
-    name = _bare_name(first.node)
-    if name is None:
-        return None
-    if not any(w.sort in ("formula", "substitution") for w in workings[1:]):
-        raise next((w.doubt for w in workings[1:] if w.doubt is not None), None) or _only_a_value(name, workings, job)
-    _refuse_of_circuit(first.node, job)
-    return name
-
-
-def _only_a_value(name: str, workings: Sequence[Worked], job: Work) -> Doubt:
-    """A new name with a value and nothing to work it from: a slip for a known one, or an assumption without the word."""
-    first = workings[0]
-    assert isinstance(first.node, Reference)
-    sentence, hint = hints.unknown(first.node, job.claim.circuit, job.ledger)
-    if workings[1].relation != "=":
-        return Doubt(sentence, first.member.span, hint)
-    assume = f"given {name} = {workings[1].member.text}"
-    return Doubt(
-        f"{sentence} An assumption is written {assume}" if hint else f"{sentence}; an assumption is written {assume}",
-        first.member.span,
-    )
-
-
-def _refuse_near_quantity(ref: Reference, job: Work) -> None:
-    """A defined name shaped like a quantity differs from all in the circuit in more than a letter, and more than in case."""
-    if not ref.subscripts or ref.letter.capitalize() not in QUANTITY_LETTERS:
-        return
-    sub = ref.subscripts[0]
-    for c in job.ledger.circuits:
-        for known in (*c.nodes(), *(e.name for e in c.elements)):
-            if sub.lower() == known.lower() or _one_letter_off(sub, known):
-                raise Doubt(
-                    f"{ref.word} may be a slip for {ref.letter}_{known}; to define a name, choose one less alike",
-                    ref.span,
-                )
-
-
-def _one_letter_off(a: str, b: str) -> bool:
-    """Whether two words differ in one letter put in, left out or changed (a single letter is no word)."""
-    if min(len(a), len(b)) < 2 or abs(len(a) - len(b)) > 1:
-        return len(a) == len(b) == 1 and a == b
-    if len(a) == len(b):
-        return sum(x != y for x, y in zip(a, b, strict=True)) <= 1
-    short, long = sorted((a, b), key=len)
-    return any(long[:k] + long[k + 1 :] == short for k in range(len(long)))
 
 
 def _segment(members: Sequence[Worked]) -> Segment:
@@ -309,6 +190,18 @@ def _bounds(segments: Sequence[Segment], job: Work) -> None:
             _dimension_of_bound(first, job)
 
 
+def _limits(segments: Sequence[Segment], main: Segment) -> tuple[Amount | None, Amount | None]:
+    """The lower and the upper limit that the chain sets for its quantity."""
+    low = high = None
+    for left, right in pairwise(segments):
+        below = right.members[0].relation in ("<", "≤")  # left below right
+        if left is main:
+            low, high = (low, right.truth) if below else (right.truth, high)
+        elif right is main:
+            low, high = (left.truth, high) if below else (low, left.truth)
+    return low, high
+
+
 def _dimension_of_bound(first: Worked, job: Work) -> None:
     step = job.steps[-1]
     job.findings.append(Finding("dimension", RULES["dimension"].severity, step.message, first.member.span))
@@ -326,8 +219,6 @@ def _summed_up(
     shown = next((p for p, s in printings if s.verdict == worst), printings[-1][0] if printings else None)
     truth = main.truth
     comparable = shown is not None and truth is not None and shown.amount.dimension == truth.dimension
-    bound = next((w for w in workings if w.relation in BOUNDS), None)
-    limit = bound.amount if bound is not None else None
     return Judged(
         claim=job.claim,
         verdict=worst,
@@ -336,8 +227,6 @@ def _summed_up(
         claimed=shown.amount if shown else None,
         claimed_unit=shown.written_in.text if shown else "",
         computed=truth,
-        high=limit if bound is not None and bound.relation in ("<", "≤") else None,
-        low=limit if bound is not None and bound.relation in (">", "≥") else None,
         deviation=deviation(shown.amount.value, truth.value) if comparable and shown and truth else None,
         message=first.message or next((s.message for s in steps if s.message), ""),
         steps=tuple(steps),
