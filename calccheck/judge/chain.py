@@ -11,13 +11,14 @@ from calccheck.arithmetic import Amount, DimensionFault, Doubt
 from calccheck.formula import Reference
 from calccheck.judge import say
 from calccheck.judge.bounds import BOUNDS, judge_bound
+from calccheck.judge.ground import Ground
 from calccheck.judge.members import Names, Worked, work
 from calccheck.judge.miss import Miss
 from calccheck.judge.new_names import assume, new_name
 from calccheck.judge.phasors import PrintedPhasor, parts
 from calccheck.judge.rounding import Printed, deviation
 from calccheck.judge.scope import Defined, Key, Ledger, Result
-from calccheck.judge.steps import Ground, judge_member
+from calccheck.judge.steps import judge_member
 from calccheck.judge.working import by_source
 from calccheck.model import Basis, Claim, Finding, Judged, Step, Verdict
 from calccheck.rules import RULES

@@ -5,8 +5,8 @@ from __future__ import annotations
 from dataclasses import dataclass
 
 from calccheck.arithmetic import Amount
+from calccheck.judge.ground import Ground
 from calccheck.judge.members import Worked
-from calccheck.judge.steps import Ground
 from calccheck.model import Step
 
 

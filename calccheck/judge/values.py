@@ -1,0 +1,142 @@
+"""A printed value held against the truth: by its last place, then as carried rounding, then cut off."""
+
+from __future__ import annotations
+
+from dataclasses import replace
+
+from calccheck.arithmetic import (
+    ICE,
+    Amount,
+    Real,
+    real,
+    size,
+)
+from calccheck.judge import quantities, say
+from calccheck.judge.ground import Ground, decided, subject
+from calccheck.judge.laws import followed
+from calccheck.judge.members import Worked
+from calccheck.judge.phasors import PrintedPhasor, is_angle, nearest_turn, phasor_fit
+from calccheck.judge.rounding import SLACK, Printed, coarse, deviation, equal, fit, on_scale
+from calccheck.judge.scope import Key
+from calccheck.judge.trace import worked_pieces
+from calccheck.model import Relation, Step
+from calccheck.printing import shown
+
+
+def judge_phasor(w: Worked, p: Printed | PrintedPhasor, relation: Relation, ground: Ground) -> Step:
+    """A printed phasor, each of its two figures by its own digits; a real value for a phasor is no phasor."""
+    truth, settings = ground.truth, ground.ledger.settings
+    if isinstance(p, Printed):
+        name = subject(ground)
+        return decided(
+            w, "unchecked", f"{name} is a phasor, {say.near(truth, p)}: print its angle, or claim |{name}| alone"
+        )
+    how = phasor_fit(
+        p, truth.value, settings.carry, quantities.scale(ground.source.key, ground.ledger, truth.dimension)
+    )
+    if how == "exact place":
+        return decided(w, "agrees")
+    off, near = deviation(p.amount.value, truth.value) or 0.0, say.near(truth, p)
+    carried = ground.carried
+    if (
+        abs(off) <= settings.carry
+        and carried is not None
+        and phasor_fit(p, carried.value, settings.carry, 0) == "exact place"
+    ):
+        return decided(w, "rounded", f"carried rounding: follows from the working before it; exact {near}")
+    if how == "cut off":
+        return decided(w, "rounded", f"cut off, not rounded: {near}")
+    if how == "whole zeros":
+        return decided(w, "rounded", f"rounded to its figures before the zeros: {near}")
+    if relation == "≈" and p.figures <= 2 and abs(off) <= settings.approx:
+        return decided(w, "rounded", f"near {near}")
+    message = (
+        f"{subject(ground)} comes to {near}, printed {w.member.text} (off by {say.percent(abs(off))} of its magnitude)"
+    )
+    return decided(w, "differs", message)
+
+
+def judge_value(w: Worked, p: Printed, relation: Relation, ground: Ground) -> Step:
+    """A printed value: by its last place, then cut off, then carried rounding."""
+    truth, settings = ground.truth, ground.ledger.settings
+    t = real(truth.value)
+    if is_angle(p) and truth.dimension == p.amount.dimension:
+        t = nearest_turn(t, p.value)
+        truth = replace(truth, value=t)
+    if ground.source.restates and relation != "≈":
+        return _restated(w, p, ground)
+    zero = ICE if p.amount.point else 0
+    p, t = on_scale(p, t)
+    how = fit(p, t, settings.carry, _largest(ground) if p.digits == 0 else 0)
+    if how == "exact place":
+        if coarse(p, t) and not equal(p.value, t):
+            ground.cautions.append(
+                f"coarse: {w.member.text} says no more than ±{shown(Amount(p.half, truth.dimension), p.written_in, 3)}"
+            )
+        return decided(w, "agrees")
+    off = deviation(p.value, t)
+    near = say.near(truth, p)
+    law = _carried(p, t, ground, zero)
+    if law:
+        return decided(
+            w,
+            "rounded",
+            f"carried rounding: follows from {law}; exact {near}" + (f" ({say.percent(off)})" if off else ""),
+        )
+    if how == "cut off":
+        return decided(w, "rounded", f"cut off, not rounded: {near}")
+    if how == "whole zeros":
+        return decided(w, "rounded", f"rounded to its figures before the zeros: {near}")
+    if relation == "≈" and p.figures <= 2 and off is not None and abs(off) <= settings.approx:
+        return decided(w, "rounded", f"near {near} ({say.percent(off)})")
+    shift = f" ({say.percent(off)})" if off is not None else ""
+    return decided(w, "differs", f"{subject(ground)} comes to {near}, printed {w.member.text}{shift}")
+
+
+def _largest(ground: Ground) -> Real:
+    """What a bare zero is held to: the largest like value of the circuit, or of the formula where things cancel."""
+    dimension = ground.truth.dimension
+    pieces = worked_pieces(ground.source.node, ground.names.amount)
+    largest: Real = max((x for d, x in pieces if d == dimension), default=0)
+    if ground.basis == "circuit" and ground.source.key is not None and ground.source.key.circuit >= 0:
+        return max(largest, quantities.scale(ground.source.key, ground.ledger, dimension))
+    return largest
+
+
+def _restated(w: Worked, p: Printed, ground: Ground) -> Step:
+    """A part's own value, repeated: it is the very value or it is wrong."""
+    if equal(p.value, ground.truth.value):
+        return decided(w, "agrees")
+    return decided(
+        w,
+        "differs",
+        f"the circuit block has {subject(ground)} = {shown(ground.truth, p.written_in)}, printed {w.member.text}",
+    )
+
+
+def _carried(p: Printed, truth: Real, ground: Ground, zero: Real) -> str:
+    """What printed values the value follows from, within the carry that the sheet allows; nothing where it does not.
+
+    ``zero``: where the degrees of a temperature count from.
+    """
+    if size(p.value - truth) > ground.ledger.settings.carry * size(truth):
+        return ""
+    if any(m.sort == "substitution" for m in ground.members):
+        carried = ground.carried
+        return "the working before it" if carried is not None and _follows(p, real(carried.value) - zero) else ""
+    key: Key | None = ground.source.key
+    if key is None or key.circuit < 0:
+        return ""
+    if any(
+        r.key == key and r.stands and r.printed.value == p.value and r.printed.unit <= p.unit
+        for r in ground.ledger.results
+    ):
+        return "the same value printed above"
+    circuit = quantities.circuit_of(key, ground.ledger, ground.source.member.span)
+    return next(
+        (f"{law} with values printed above" for v, law in followed(key, ground.ledger, circuit) if _follows(p, v)), ""
+    )
+
+
+def _follows(p: Printed, v: Real) -> bool:
+    return size(p.value - v) <= p.half + SLACK * size(v)
