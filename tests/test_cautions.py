@@ -120,7 +120,7 @@ def test_energy_at_the_crest_of_an_alternating_voltage():
 
 def test_a_circuit_without_a_solution_or_with_free_symbols_says_nothing_of_volts():
     assert told(report("V1: 100 V, a to g", "V2: 90 V, a to g")) == {}
-    assert told(report("V1: Vin V, a to g", "R1: R Ω, a to g")) == {}
+    assert told(report("V1: 100 V, a to g", "R1: R Ω, a to g")) == {}
 
 
 def test_every_caution_reminds_who_decides():
