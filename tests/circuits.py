@@ -127,3 +127,70 @@ def _drawn(draw, kind, label, a, b, names, labels):
     by = draw(st.one_of(st.sampled_from(labels), st.tuples(st.sampled_from(names), st.sampled_from(names))))
     exponents = {("E", True): (1, 3), ("E", False): (-1, 1), ("F", True): (-1, 1), ("F", False): (-4, -2)}
     return part(kind, label, a, b, draw(signed(decimals(*exponents[kind, isinstance(by, str)]))), by)
+
+
+REACTIVE = {"L": decimals(-5, -1), "C": decimals(-10, -4)}
+
+
+@st.composite
+def ac_circuits(draw, kinds="RVIEFSOLC", most_nodes=6, most_extra=7, mixed=False):
+    """A random circuit with an AC source that has a single solution at its highest frequency.
+
+    ``kinds``: as in ``circuits``, with ``Z`` for an impedance. ``mixed``: sources of several frequencies, DC among them.
+    """
+    names = ["com", *"abcdefgh"][: draw(st.integers(2, most_nodes))]
+    on_tree = ["R", "R", *(k for k in kinds if k in "LCZVSE")]
+    off_tree = ["R", *(k for k in kinds if k in "LCZIOF")]
+    ends = [(draw(st.sampled_from(["V"] if k == 1 else on_tree)), n, draw(st.sampled_from(names[:k])))
+            for k, n in enumerate(names) if k]  # fmt: skip
+    ends += [(draw(st.sampled_from(off_tree)), draw(st.sampled_from(names)), draw(st.sampled_from(names)))
+             for _ in range(draw(st.integers(0, most_extra)))]  # fmt: skip
+    labels = [f"{kind}{k}" for k, (kind, *_) in enumerate(ends)]
+    hertz = draw(st.sampled_from([Fraction(50), Fraction(400), Fraction(10**5, 3)]))
+    present = [hertz, hertz / 2, None] if mixed else [hertz]
+    made = circuit(*(_drawn_at(draw, kind, label, a, b, names, labels, present if k else [hertz])
+                     for k, (label, (kind, a, b)) in enumerate(zip(labels, ends, strict=True))))  # fmt: skip
+    try:
+        solve(made, hertz)
+    except Unsolvable:
+        if not any(e.control for e in made.elements):
+            raise
+        reject()
+    return made
+
+
+def _drawn_at(draw, kind, label, a, b, names, labels, frequencies):
+    if kind in "VI":
+        hertz = draw(st.sampled_from(frequencies))
+        phasor = complex(draw(VALUES[kind]), draw(VALUES[kind]))
+        return part(kind, label, a, b, draw(VALUES[kind])) if hertz is None else ac(kind, label, a, b, phasor, hertz)
+    if kind == "Z":
+        return ac("Z", label, a, b, complex(draw(decimals(0, 3)), draw(signed(decimals(0, 3)))))
+    if kind in "LC":
+        return part(kind, label, a, b, draw(REACTIVE[kind]))
+    return _drawn(draw, kind, label, a, b, names, labels)
+
+
+@st.composite
+def stages(draw, made):
+    """The circuit with one to three stages around op-amps, transformers, diodes and transistors, each with resistors about it."""
+    added = []
+    for k in range(draw(st.integers(1, 3))):
+        near, far = draw(st.sampled_from(made.nodes())), draw(st.sampled_from(made.nodes()))
+        device, ends = _stage(draw, draw(st.sampled_from("UTDQ")), k, near, far)
+        added += [device, *(part("R", f"r{j}_{k}", *pair, draw(decimals(1, 4))) for j, pair in enumerate(ends))]
+    return circuit(*made.elements, *added, reference=made.reference)
+
+
+def _stage(draw, kind, k, near, far):
+    """A part and the pairs of nodes between which its resistors lie."""
+    p, q, r = f"p{k}", f"q{k}", f"r{k}"
+    if kind == "U":
+        return op_amp(f"U{k}", near, p, q), [(q, p), (p, far), (q, near)]
+    if kind == "T":
+        return transformer(f"T{k}", draw(signed(decimals(-1, 1))), p, far, q, "com"), [(near, p), (q, "com")]
+    if kind == "D":
+        state = draw(st.sampled_from(["conducting", "blocking"]))
+        return diode(f"D{k}", p, q, state=state), [(near, p), (q, far), (p, far)]
+    model = {"v_ce": draw(st.sampled_from([None, "0.2"])), "polarity": draw(st.sampled_from(["npn", "pnp"]))}
+    return transistor(f"Q{k}", p, q, r, draw(decimals(1, 2)), **model), [(near, p), (q, far), (r, "com")]

@@ -164,6 +164,10 @@ def _control_faults(e: Element, circuit: Circuit) -> list[Finding]:
     else:
         names, wanted = {*circuit.nodes(), circuit.reference}, [control.plus, control.minus]
     what = "the current of part" if control.part else "the voltage at node"
+    several = circuit.element(control.part) if control.part else None
+    if several is not None and several.terminals and control.part not in names:
+        text = f"{e.name} is controlled by the current of {control.part}, which has several terminals"
+        return [fault(f"{text}. Name the terminal: {' or '.join(names_of(several))}.", e.span)]
     return [
         fault(f"{e.name} is controlled by {what} {n or '(no name)'}, which this circuit does not have.{_near(n, names)}", e.span)
         for n in dict.fromkeys(wanted) if n not in names or not n

@@ -82,7 +82,8 @@ def singular_faults(network: Network) -> tuple[Finding, ...]:
     alone = [b for b in suspects(network) if not is_singular(_nudged(network, [b]))]
     reactive = [b for b in alone if _is_reactive(b)]
     found = [_resonance_fault(reactive, network)] if reactive else []
-    found += [_gain_fault(b, network) for b in alone if not _is_reactive(b)]
+    at_fault = alone or [b for b in suspects(network) if b.role == "nullor"]
+    found += [_gain_fault(b, network) for b in at_fault if not _is_reactive(b)]
     return tuple(found) or (_whole_fault(network),)
 
 

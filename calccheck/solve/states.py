@@ -69,7 +69,7 @@ def _failure(c: _Condition, bias: State | None, ripples: Sequence[State], crest:
     place = "at most" if c.sign < 0 else "above" if c.strict else "no less than"
     told = f"{c.quantity} is {shown(value, c.dimension)}" + (f" ± {shown(swing, c.dimension)}" if ripples else "")
     limit = c.bound or shown(bound, c.dimension)
-    if c.bound and bound:
+    if c.bound not in ("", "zero"):
         limit += f", {shown(bound, c.dimension)}"
     return f"{told}; it must be {place} {limit}" + (
         f", and misses that by {shown(-margin, c.dimension)}" if margin else ""
