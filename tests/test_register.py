@@ -209,6 +209,20 @@ def test_as_json():
     assert [m["kind"] for m in b["to_mend"]] == ["signature"] * 3 and c["signatures"] == []
 
 
+def test_the_json_form_is_the_one_that_the_docs_describe():
+    page = (Path(__file__).parents[1] / "docs" / "reviewing.md").read_text()
+    described = json.loads(page.partition("```json\n")[2].partition("```")[0])
+    found = json.loads(register_json(register_rows(MIXED[1:2], DAY), DAY, __version__))
+
+    def form(value: object) -> object:
+        """The members, their order and the kinds of their values; of a list its first."""
+        if isinstance(value, dict):
+            return [(key, form(v)) for key, v in value.items()]
+        return [form(value[0])] if isinstance(value, list) else type(value).__name__
+
+    assert form(found) == form(described)
+
+
 # --- the command ----------------------------------------------------------------------------------------------------
 
 

@@ -259,6 +259,18 @@ def test_the_order_of_parts_and_the_line_ends_do_not_matter(order, end):
     assert signature_findings(read(text)) == [] and len(read(text).signatures) == 2
 
 
+def test_signatures_of_earlier_versions_hold():
+    """The digest of form 1 as first made, kept because signed sheets carry it. A change that breaks this raises ``FORM``."""
+    kept = {
+        "circuit": "8826597a",
+        "claims": "3ede7514",
+        "givens": "7b9c42b3",
+        "waivers": "28769888",
+        "settings": "a96c77e6",
+    }
+    assert (FORM, digest_of(read(SHEET)).parts) == (1, kept)
+
+
 def test_the_digest_is_the_same_in_every_process():
     program = (
         "import sys; sys.path.insert(0, 'tests'); from signed_sheets import SHEET, read;"
