@@ -84,6 +84,8 @@ def _command(options: argparse.Namespace) -> int:
                 from calccheck.blanking import blank
 
                 return blank(options)
+            case "editor":
+                return _serve_editor()
             case _:
                 return working(options)
     except (KeyboardInterrupt, BrokenPipeError):
@@ -93,6 +95,16 @@ def _command(options: argparse.Namespace) -> int:
     except Exception as fault:  # nothing below may show a traceback
         complain([internal_fault(options.command, fault)])
     return FAILED
+
+
+def _serve_editor() -> int:
+    try:
+        from calccheck.editor import serve
+    except ModuleNotFoundError as missing:  # optional: the extra `editor`
+        if (missing.name or "").partition(".")[0] not in ("pygls", "lsprotocol"):
+            raise
+        raise Unusable("editor", "needs the package pygls; install calccheck[editor]") from None
+    return serve()
 
 
 def _complete(parser: argparse.ArgumentParser) -> None:
@@ -117,8 +129,9 @@ def arguments() -> argparse.ArgumentParser:
     )  # fmt: skip
     _paths(one, "sheets, or folders to search for *.md (default: this folder); - is standard input")
     one.add_argument(
-        "--format", choices=("text", "json"), default="text", help="text to read (default) or the JSON report"
-    )
+        "--format", choices=("text", "json", "sarif", "junit"), default="text",
+        help="text to read (default), the JSON report, or for build services a SARIF log or test results",
+    )  # fmt: skip
     one.add_argument(
         "-v", "--verbose", action="store_true", help="also what stands, and which files are no calc sheets"
     )
@@ -152,6 +165,11 @@ def arguments() -> argparse.ArgumentParser:
         "with empty cells to fill in by hand. It never fills in a value. Writes no file.",
     )  # fmt: skip
     six.add_argument("sheet", metavar="SHEET", help="the sheet; - is standard input")
+    commands.add_parser(
+        "editor", help="serve an editor: findings while writing, working under the pointer",
+        description="Serve an editor by the Language Server Protocol over standard input and output. Started by the editor, not "
+        "by hand. Writes no file.",
+    )  # fmt: skip
     return parser
 
 

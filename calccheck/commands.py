@@ -30,17 +30,31 @@ def check(options: argparse.Namespace) -> int:
             reports.append(outcome.value)
         else:
             problems.append(outcome.problem)
-    if options.format == "json":
-        from calccheck.annotate.to_json import to_json  # late: each output loads only itself
+    _write(options, reports, list(dict.fromkeys(problems)))
+    complain(problems)
+    return status(reports, problems)
 
-        speak_utf8()
-        sys.stdout.write(to_json(reports, __version__))
-    else:
+
+def _write(options: argparse.Namespace, reports: Sequence[Report], problems: Sequence[str]) -> None:
+    """The reports on standard output; each form loads only itself."""
+    if options.format == "text":
         from calccheck.annotate.to_terminal import to_terminal
 
         sys.stdout.write(to_terminal(reports, options.verbose, in_colour(sys.stdout)))
-    complain(problems)
-    return status(reports, problems)
+        return
+    speak_utf8()
+    if options.format == "json":
+        from calccheck.annotate.to_json import to_json
+
+        sys.stdout.write(to_json(reports, __version__))
+    elif options.format == "sarif":
+        from calccheck.annotate.to_sarif import to_sarif
+
+        sys.stdout.write(to_sarif(reports, __version__, problems))
+    else:
+        from calccheck.annotate.to_junit import to_junit
+
+        sys.stdout.write(to_junit(reports, __version__, problems))
 
 
 def working(options: argparse.Namespace) -> int:

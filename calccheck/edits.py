@@ -132,9 +132,23 @@ def _digest(words: str, length: int) -> str:
 def unmark(text: str) -> str:
     """The text without the program's marks; any text that bears none comes back as it is."""
     while cuts := _cuts(text):
-        starts, ends = [0, *(c.end for c in cuts)], [*(c.start for c in cuts), len(text)]
-        text = "".join(text[a:b] for a, b in zip(starts, ends, strict=True))
+        text = "".join(text[a:b] for a, b in _between(cuts, len(text)))
     return text
+
+
+def kept(text: str) -> Sequence[int]:
+    """For each character of ``unmark(text)`` its offset in the text; the last entry is the text's length."""
+    at: Sequence[int] = range(len(text) + 1)
+    while cuts := _cuts(text):
+        pieces = _between(cuts, len(text))
+        at = [*(k for a, b in pieces for k in at[a:b]), at[-1]]
+        text = "".join(text[a:b] for a, b in pieces)
+    return at
+
+
+def _between(cuts: Sequence[Span], length: int) -> list[tuple[int, int]]:
+    """What is left of a text of some length between its cuts."""
+    return list(zip([0, *(c.end for c in cuts)], [*(c.start for c in cuts), length], strict=True))
 
 
 @dataclass(frozen=True, slots=True)
