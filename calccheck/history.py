@@ -3,7 +3,6 @@
 from __future__ import annotations
 
 import os
-import subprocess
 import time
 from collections.abc import Iterable, Sequence
 from pathlib import Path
@@ -35,6 +34,8 @@ def earlier_versions(path: Path) -> list[tuple[str, str]]:
 
 def _git(folder: Path, arguments: Sequence[str], asked: bytes, until: float) -> bytes:
     """What git prints, or nothing where it fails."""
+    import subprocess  # late: only where a claim differs
+
     environment = {name: x for name, x in os.environ.items() if name not in _HOOK}
     environment |= {"GIT_TERMINAL_PROMPT": "0", "GIT_OPTIONAL_LOCKS": "0", "GIT_NO_LAZY_FETCH": "1", "LC_ALL": "C"}
     command = ["git", "-c", "core.quotePath=false", "-c", "protocol.allow=never", *arguments]
