@@ -6,6 +6,7 @@ number in its front matter is read.
 
 from __future__ import annotations
 
+import re
 import time
 from dataclasses import dataclass, field, replace
 from datetime import date
@@ -39,7 +40,8 @@ def _home(folder: Path) -> Path:
 
 
 def _numbered(number: str, places: tuple[str, ...], run: Run) -> list[Report]:
-    named = [source for source, front in _fronts(places, run) if number in front]
+    whole = re.compile(rf"(?<![\w-]){re.escape(number)}(?![\w-])")  # TS-10 is not looked for in TS-101
+    named = [source for source, front in _fronts(places, run) if number in front and whole.search(front)]
     found = [_alone(source, run) for source in named]
     return [r for r in found if r.reading.is_calc and r.reading.title.get("sheet") == number]
 

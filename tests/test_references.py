@@ -234,7 +234,7 @@ def test_nothing_is_looked_into_unless_a_sheet_names_another(folder, capsys, mon
     monkeypatch.setattr(calccheck.citing, "_front", lambda path: looked.append(path.name) or front(path))
     monkeypatch.setattr(calccheck.citing, "_alone", lambda s, r: looked.append(f"read {s.path.name}") or alone(s, r))
     write("a.md", GOOD)
-    write("plain.md", GOOD.replace("EX-1", "EX-5"))
+    write("plain.md", GOOD.replace("EX-1", "EX-10"))
     assert run(capsys, "check", "a.md", "plain.md")[0] == 0 and looked == []
     write("b.md", TAKES)
     write("c.md", TAKES.replace("EX-2", "EX-3"))

@@ -135,6 +135,15 @@ def test_a_link_and_the_files_mode_are_kept(folder, capsys):
     assert sorted(p.name for p in folder.iterdir()) == ["a.md", "real.md"]
 
 
+def test_marks_in_the_sheet_void_nothing(folder, capsys):
+    Path("a.md").write_text(SHEET)
+    sign(capsys, "originator", "QD")
+    assert run(capsys, "mark", "a.md", "--to", "md", "--in-place")[0] == 0
+    assert "calccheck" in Path("a.md").read_text().replace(SHEET, "")
+    assert run(capsys, "check", "a.md")[0] == 0
+    assert "VOID" not in run(capsys, "register", "a.md")[1]
+
+
 # --- what is refused ------------------------------------------------------------------------------------------------
 
 
