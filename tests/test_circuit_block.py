@@ -532,7 +532,8 @@ def test_no_codes(text: str) -> None:
 WORDS = st.sampled_from(
     ["R1", "Vb", "a", "b", "gnd", "to", ":", ",", " ", " ", "\n", "4.7", "kΩ", "V", "mA", "±5 %", "4k7", "0,5", "max", "W", "#",
      "(", ")", "{", "}", "V_{a,b}", "I_R1", "*", "/", "∠", "30°", "j40", "short", "op-amp", "npn", "diode", "plus", "case",
-     "reference", "given", "=", ";", "−", "K", "Ohm", "\t", "²", "e", "1e300", "^", "√", "50 Hz", "drop", "-", "→", "\u00a0"],
+     "reference", "given", "=", ";", "−", "K", "Ohm", "\t", "²", "e", "1e300", "^", "√", "50 Hz", "drop", "-", "→", "\u00a0",
+     "Vin", "R", "x", "case hot:", "Q1", "beta", "open", "V_BE", "∥", "π", "swing", "transformer 2:1", "saturated", "base"],
 )  # fmt: skip
 TEXTS = st.one_of(st.text(max_size=80), st.lists(WORDS, max_size=25).map("".join))
 

@@ -14,6 +14,7 @@ from circuit_lines import kinds, placed, reading
 from hypothesis import given
 from hypothesis import strategies as st
 
+from calccheck import check_text
 from calccheck.arithmetic import Amount, evaluate
 from calccheck.formula import Reference, references
 from calccheck.model import UNSTATED, Control, Element
@@ -307,3 +308,8 @@ def test_tolerances_of_symbols() -> None:
     assert part("R1: R Ω ±5 %, a to b").tolerance is not None
     assert [k for k, _, _ in told("R1: R Ω ±0.1 V, a to b")] == ["dimension"]
     assert "the tolerance of a gain" in told("E1: A * V_a ±1 V, b to gnd")[0][2]
+
+
+def test_a_symbol_without_a_value_everywhere_leaves_claims_unchecked() -> None:
+    report = check_text("x.md", "```circuit\nV1: 10 V, a to gnd\nR1: √(2 − y) * 5 Ω, a to gnd\n```\n\n`V_a = 10 V`\n")
+    assert [j.verdict for j in report.claims] == ["unchecked"]

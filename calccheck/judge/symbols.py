@@ -11,7 +11,7 @@ from dataclasses import replace
 from fractions import Fraction
 from hashlib import sha256
 
-from calccheck.arithmetic import Amount, evaluate, real
+from calccheck.arithmetic import Amount, Doubt, evaluate, real
 from calccheck.formula import Reference
 from calccheck.judge.rounding import equal
 from calccheck.model import Circuit, Element, Judged, Step
@@ -50,7 +50,10 @@ def _valued(e: Element, point: Point) -> Element:
     def lookup(ref: Reference) -> Amount:
         return point[ref.word]
 
-    stated = evaluate(e.formula, lookup)
+    try:
+        stated = evaluate(e.formula, lookup)
+    except Doubt:  # a root or a logarithm of what is negative at this point: left without a value, which its solution says
+        return e
     if isinstance(stated.value, complex):
         return replace(e, phasor=stated.value, stated=stated)
     if e.phasor is not None or e.frequency is not None:
