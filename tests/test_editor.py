@@ -314,6 +314,22 @@ def test_the_exit_status_is_the_protocol_s():
     assert talk(INITIALIZE).returncode == 1 and talk().returncode == 1
 
 
+def test_at_a_terminal_it_says_who_is_to_start_it():
+    leader, follower = os.openpty()
+    try:
+        done = subprocess.run(
+            [sys.executable, "-m", "calccheck", "editor"],
+            stdin=follower,
+            capture_output=True,
+            timeout=SECONDS,
+            check=False,
+        )
+    finally:
+        os.close(leader)
+        os.close(follower)
+    assert done.returncode == 2 and b"by an editor" in done.stderr and done.stdout == b""
+
+
 def test_without_the_library_it_says_what_to_install(monkeypatch, capsys):
     monkeypatch.setitem(sys.modules, "pygls", None)
     monkeypatch.setitem(sys.modules, "pygls.lsp.server", None)

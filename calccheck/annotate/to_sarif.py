@@ -150,16 +150,17 @@ def _location(sheet: Sheet, index: int, span: Span) -> Record:
 
 
 def _fingerprints(listed: Sequence[tuple[Report, Remark]]) -> list[str]:
-    """For each remark the digest of its rule, its words in the sheet and its turn among its like there (3.27.17).
+    """For each remark the digest of its rule, quantity, words in the sheet and turn among its like there (3.27.17).
 
     So a result is known again after its lines have moved, in the sheet or with it.
     """
     found: dict[int, str] = {}
-    turns: Counter[tuple[int, str, str]] = Counter()
+    turns: Counter[tuple[int, str]] = Counter()
     for k in sorted(range(len(listed)), key=lambda k: listed[k][1].span.start):
         report, remark = listed[k]
-        words = " ".join(report.reading.sheet.text[remark.entry.span.start : remark.entry.span.end].split())
-        turns[id(report), remark.rule, words] += 1
-        whole = f"{remark.rule}\n{words}\n{turns[id(report), remark.rule, words]}"
+        words = report.reading.sheet.text[remark.entry.span.start : remark.entry.span.end]
+        like = f"{remark.rule}\n{remark.title}\n{' '.join(words.split())}"
+        turns[id(report), like] += 1
+        whole = f"{like}\n{turns[id(report), like]}"
         found[k] = sha256(whole.encode("utf-8", "surrogatepass")).hexdigest()[:32]
     return [found[k] for k in range(len(listed))]
