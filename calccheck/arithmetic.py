@@ -67,8 +67,10 @@ def real(value: Value, span: Span | None = None) -> Real:
 
 
 def plainest(value: Value) -> Value:
-    """A complex value whose imaginary part is zero, as the real one that it is."""
-    return value.real if isinstance(value, complex) and value.imag == 0 else value
+    """A complex value whose imaginary part is zero to the error of floating-point numbers, as the real one that it is."""
+    if isinstance(value, complex) and abs(value.imag) <= 1e-13 * abs(value):
+        return value.real
+    return value
 
 
 Lookup = Callable[[Reference], Amount]
