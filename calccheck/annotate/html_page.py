@@ -2,13 +2,14 @@
 
 from __future__ import annotations
 
-from collections.abc import Callable, Iterator, Sequence
-from dataclasses import dataclass
+from collections.abc import Callable, Iterator, Mapping, Sequence
+from dataclasses import dataclass, field
 from html import escape
 from itertools import groupby
 
 from calccheck.annotate.characters import code_point, unseen
 from calccheck.annotate.marks import MARKS
+from calccheck.annotate.pictures import BY_SOURCE, Shown
 from calccheck.annotate.places import Places, marks_in, runs
 from calccheck.annotate.record import Entry, note_lines
 from calccheck.document import Block, Inline, inlines
@@ -23,12 +24,14 @@ class Setting:
     """What the walk needs at every step.
 
     ``levels``: of each heading by its offset. ``following``: of each listed entry, the one after it in the sheet.
+    ``pictures``: behind blocks, by their offset.
     """
 
     sheet: Sheet
     where: Places
     levels: dict[int, int]
     following: dict[str, str]
+    pictures: Mapping[int, Sequence[Shown]] = field(default_factory=dict)
 
 
 def said(text: str) -> str:
@@ -44,7 +47,8 @@ def said(text: str) -> str:
 
 def blocks_html(s: Setting, children: Sequence[Block]) -> str:
     """Blocks one behind the other."""
-    return "".join(_BLOCKS[b.kind](s, b) for b in children if b.kind in _BLOCKS)
+    found = (b for b in children if b.kind in _BLOCKS)
+    return "".join(_BLOCKS[b.kind](s, b) + _figure(s.pictures.get(b.span.start, ())) for b in found)
 
 
 def word_html(entry: Entry, key: str, target: str) -> str:
@@ -53,6 +57,16 @@ def word_html(entry: Entry, key: str, target: str) -> str:
     label = f"{MARKS[entry.kind].label}<sup>{escape(entry.number)}</sup>"
     more = f' <span class="ink-caution">{MARKS["caution"].label}</span>' if entry.cautions else ""
     return f'<a class="word ink-{entry.kind}"{anchor} href="#{target}">{label}{more}</a>'
+
+
+def _figure(shown: Sequence[Shown]) -> str:
+    """A drawing, or bars side by side, with a caption."""
+    if not shown:
+        return ""
+    caption = next((p.caption for p in shown if p.caption), BY_SOURCE)
+    images = "".join(p.picture.svg for p in shown if p.picture is not None)
+    scroll = f'<div class="scroll" tabindex="0" role="group" aria-label="picture">\n{images}</div>\n' if images else ""
+    return f"<figure>\n{scroll}<figcaption>{said(caption)}</figcaption>\n</figure>\n"
 
 
 # --- blocks ---------------------------------------------------------------------------------------------------------

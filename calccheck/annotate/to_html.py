@@ -17,6 +17,7 @@ from calccheck.annotate.characters import told
 from calccheck.annotate.headings import heading_levels
 from calccheck.annotate.html_page import Setting, blocks_html, said, word_html
 from calccheck.annotate.marks import MARKS
+from calccheck.annotate.pictures import BY_SOURCE, behind, totals
 from calccheck.annotate.places import Places, places
 from calccheck.annotate.record import LIMITS, Entry, entries, headline, worst_first
 from calccheck.annotate.record_parts import (
@@ -41,7 +42,7 @@ def to_html(report: Report) -> str:
     listed = worst_first(rows)
     order = sorted(listed, key=lambda e: e.span.start)
     following = {a.key: b.key for a, b in pairwise(order)}
-    setting = Setting(reading.sheet, where, heading_levels(reading.page), following)
+    setting = Setting(reading.sheet, where, heading_levels(reading.page), following, behind(report))
     title = reading.title.get("subject") or reading.title.get("sheet") or reading.sheet.name
     style = _style()
     lock = b64encode(sha256(style.encode("utf-8")).digest()).decode("ascii")
@@ -144,6 +145,7 @@ def _record(report: Report, rows: Sequence[Entry], where: Places) -> str:
         f"Judged with {said(settings_line(report.reading.settings))}.</p>\n"
         + _part("Claims", ("Mark", "Line", "As written", "Printed", "Recomputed", "Deviation", "Basis"), claims)
         + _part("Findings", ("Mark", "Line", "Finding"), findings)
+        + _glance(report, rows)
         + _part(
             "Circuits solved by two routes",
             ("Circuit", "Line", "Nodes", "Parts", "Gap between routes", "Current residual", "Power balance"),
@@ -155,6 +157,24 @@ def _record(report: Report, rows: Sequence[Entry], where: Places) -> str:
         + f"<h3>What this check cannot show</h3>\n<p>{opening}</p>\n<ul>\n"
         + "".join(f"<li>{p}</li>\n" for p in points)
         + f'</ul>\n<p>{closing}</p>\n<p class="soft">Checked by calccheck {__version__}.</p>\n</section>\n'
+    )
+
+
+def _glance(report: Report, rows: Sequence[Entry]) -> str:
+    """Bars for every claimed total, each with links to its claims."""
+    number = {e.key: e.number for e in rows}
+    charts = "".join(
+        f"<figure>\n{p.picture.svg}<figcaption>"
+        + ("Claim " if len(p.claims) == 1 else "Claims ")
+        + ", ".join(f'<a href="#r-{key}">{number[key]}</a>' for key in p.claims)
+        + "</figcaption>\n</figure>\n"
+        for p in totals(report)
+        if p.picture is not None
+    )
+    if not charts:
+        return ""
+    return (
+        f'<h3>Superposition at a glance</h3>\n<p class="soft">{BY_SOURCE}</p>\n<div class="charts">\n{charts}</div>\n'
     )
 
 

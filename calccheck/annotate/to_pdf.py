@@ -17,6 +17,7 @@ from calccheck import __version__
 from calccheck.annotate.characters import told
 from calccheck.annotate.headings import heading_levels
 from calccheck.annotate.marks import MARKS
+from calccheck.annotate.pictures import behind
 from calccheck.annotate.places import places
 from calccheck.annotate.record import Entry, comment_text, entries
 from calccheck.annotate.record_parts import TITLE_FIELDS, digest
@@ -98,8 +99,9 @@ def typst_source(report: Report, rows: tuple[Entry, ...], place_in_set: str, mis
     reading = report.reading
     where = places(reading.page, reading.sheet, rows)
     judged = dict(zip((e.key for e in rows), report.claims, strict=False))
-    setting = Setting(reading.sheet, where, judged, heading_levels(reading.page), missing)
-    words = Words(report, rows, where.placed(), missing)
+    pictures = behind(report, missing)
+    setting = Setting(reading.sheet, where, judged, heading_levels(reading.page), missing, pictures)
+    words = Words(report, rows, where.placed(), missing, pictures)
     head = "\n".join((_marks(), *(Path(__file__).with_name(name).read_text("utf-8") for name in _LOOK)))
     return (
         f"{head}\n{_paper(words, place_in_set)}\n{_attachment(report)}\n"

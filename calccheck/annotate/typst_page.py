@@ -2,11 +2,13 @@
 
 from __future__ import annotations
 
-from collections.abc import Callable, Iterator, Sequence
-from dataclasses import dataclass, replace
+from collections.abc import Callable, Iterator, Mapping, Sequence
+from dataclasses import dataclass, field, replace
 
+from calccheck.annotate.pictures import Shown
 from calccheck.annotate.places import Places, marks_in, runs
 from calccheck.annotate.typst_marks import commented, line_number, mark_source, run_source
+from calccheck.annotate.typst_pictures import figure
 from calccheck.annotate.typst_text import literal, shown
 from calccheck.annotate.typst_working import math_row
 from calccheck.document import Block, Inline
@@ -25,7 +27,7 @@ class Setting:
     """What the walk over the page needs at every step.
 
     ``judged``: the judged claims by entry key. ``levels``: of each heading by its offset, such that none is skipped.
-    ``missing``: characters that no font has. ``below``: marks go under the text (in cells). ``deep``: containers around.
+    ``missing``: characters that no font has. ``pictures``: behind blocks, by their offset. ``below``: marks go under the text (in cells). ``deep``: containers around.
     """
 
     sheet: Sheet
@@ -33,6 +35,7 @@ class Setting:
     judged: dict[str, Judged]
     levels: dict[int, int]
     missing: frozenset[str]
+    pictures: Mapping[int, Sequence[Shown]] = field(default_factory=dict)
     below: bool = False
     deep: int = 0
 
@@ -43,7 +46,12 @@ class Setting:
 
 def typeset(s: Setting, children: Sequence[Block]) -> str:
     """Blocks one behind the other."""
-    return "".join(_BLOCKS[b.kind](s, b) for b in children if b.kind in _BLOCKS)
+    return "".join(_BLOCKS[b.kind](s, b) + _pictures(s, b) for b in children if b.kind in _BLOCKS)
+
+
+def _pictures(s: Setting, b: Block) -> str:
+    found = s.pictures.get(b.span.start)
+    return figure(b.span.start, found, s.missing, s.deep) if found else ""
 
 
 # --- blocks ---------------------------------------------------------------------------------------------------------

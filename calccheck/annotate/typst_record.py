@@ -2,10 +2,11 @@
 
 from __future__ import annotations
 
-from collections.abc import Sequence
-from dataclasses import dataclass
+from collections.abc import Mapping, Sequence
+from dataclasses import dataclass, field
 
 from calccheck.annotate.marks import MARKS
+from calccheck.annotate.pictures import Shown, totals
 from calccheck.annotate.record import BESIDE, LIMITS, Entry, headline, note_lines, worst_first
 from calccheck.annotate.record_parts import (
     BASES,
@@ -20,6 +21,7 @@ from calccheck.annotate.record_parts import (
     signature_rows,
     waiver_line,
 )
+from calccheck.annotate.typst_pictures import glance, large_drawings
 from calccheck.annotate.typst_text import literal, shown
 from calccheck.model import Report
 
@@ -34,6 +36,7 @@ class Words:
     rows: tuple[Entry, ...]
     placed: set[str]
     missing: frozenset[str]
+    pictures: Mapping[int, Sequence[Shown]] = field(default_factory=dict)
 
     def say(self, text: str) -> str:
         """Text as typst markup."""
@@ -91,8 +94,10 @@ def record(w: Words) -> str:
     return (
         f"#record-head({literal(digest(w.report))}, [{w.say(settings_line(w.report.reading.settings))}])\n"
         f"#record-claims(({claims}))\n#record-findings(({findings}))\n"
+        f"{glance(totals(w.report, w.missing), {e.key: e.number for e in w.rows}, w.missing)}"
         f"#record-circuits(({_circuits(w)}))\n#record-givens(({_givens(w)}))\n#record-waivers(({_waivers(w)}))\n"
         f"#record-limits([{w.say(opening)}], ({listed}), [{w.say(closing)}])\n#signatures(({_signed(w)}), ({signatories}))\n"
+        + large_drawings(w.pictures, w.missing)
     )
 
 
