@@ -136,6 +136,30 @@ def test_free_symbols_get_no_invented_numbers():
     assert not any(re.search(r": [\d.]+ V$", s.text) for s in found)
 
 
+def test_parts_with_several_terminals_and_alternating_sources_do_not_stop_it():
+    """Without RE no emitter current flows and so none into the base: V_b = 12 V × 10 / 57 = 2.105 V."""
+    transistor = """```circuit
+reference com
+Vcc: 12 V, s to com
+R1: 47 kΩ, s to b
+R2: 10 kΩ, b to com
+RC: 2.2 kΩ, s to c
+RE: 1 kΩ, e to com
+Q1: npn, base b, collector c, emitter e, V_BE 0.65 V, beta 150
+```
+
+`V_b = 2.105 V`
+"""
+    assert [s.key for s in slips_of(transistor)] == ["element-absent"]
+    alternating = (
+        DIVIDER.replace("V1: 10 V, a to com", "V1: 10 V ∠ 0°, a to com, 400 Hz")
+        + "`|V_b| = 6.857 V` `V_b = 6.9 V ∠ 3°`"
+    )
+    report = check_text("sheet.md", alternating)
+    assert [j.verdict for j in report.claims] == ["differs", "differs"]
+    assert [s.key for s in report.claims[0].slips] == ["digits-swapped"]
+
+
 # --- preferred values -----------------------------------------------------------------------------------------------
 
 

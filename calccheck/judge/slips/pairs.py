@@ -57,8 +57,9 @@ def _groups(circuit: Circuit, joining: tuple[str, ...]) -> dict[str, str]:
 
 def _branches(circuit: Circuit, group: dict[str, str]) -> Counter[str]:
     """How many branches meet at each group of nodes."""
-    live = [e for e in circuit.elements if e.kind not in ("open", "short") and group[e.plus] != group[e.minus]]
-    return Counter(group[n] for e in live for n in (e.plus, e.minus))
+    live = [e for e in circuit.elements if e.kind not in ("open", "short")]
+    meeting = [{group[n] for n in ([n for _, n in e.terminals] or [e.plus, e.minus])} for e in live]
+    return Counter(g for groups in meeting if len(groups) > 1 for g in groups)
 
 
 def _retaken(circuit: Circuit, _: frozenset[str]) -> Iterator[Variant]:
