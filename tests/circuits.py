@@ -9,7 +9,7 @@ from hypothesis import reject
 from hypothesis import strategies as st
 
 from calccheck.model import Circuit, Control, Device, Element
-from calccheck.solve import Unsolvable, solve
+from calccheck.solve import Unsolvable, frequencies, solve
 from calccheck.source import Span
 
 KINDS = {
@@ -173,13 +173,23 @@ def _drawn_at(draw, kind, label, a, b, names, labels, frequencies):
 
 @st.composite
 def stages(draw, made):
-    """The circuit with one to three stages around op-amps, transformers, diodes and transistors, each with resistors about it."""
+    """The circuit with one to three stages around op-amps, transformers, diodes and transistors, each with resistors about it.
+
+    Only what steers or is fed back can spoil the solution; such draws are dropped.
+    """
     added = []
     for k in range(draw(st.integers(1, 3))):
         near, far = draw(st.sampled_from(made.nodes())), draw(st.sampled_from(made.nodes()))
         device, ends = _stage(draw, draw(st.sampled_from("UTDQ")), k, near, far)
         added += [device, *(part("R", f"r{j}_{k}", *pair, draw(decimals(1, 4))) for j, pair in enumerate(ends))]
-    return circuit(*made.elements, *added, reference=made.reference)
+    whole = circuit(*made.elements, *added, reference=made.reference)
+    try:
+        solve(whole, max(frequencies(whole)))
+    except Unsolvable:
+        if not any(e.control or e.kind in ("op-amp", "transistor") for e in whole.elements):
+            raise
+        reject()
+    return whole
 
 
 def _stage(draw, kind, k, near, far):

@@ -21,6 +21,7 @@ from scipy.sparse.linalg import spsolve
 from calccheck.model import UNSTATED
 from calccheck.solve import Unsolvable, frequencies, solve, solve_batch, state, total
 from calccheck.solve.branches import network_of
+from calccheck.solve.nodal import condition
 
 HZ60 = Fraction(60)
 
@@ -394,6 +395,18 @@ def test_beside_its_resonance_a_circuit_without_loss_is_solved(factor):
     x = math.sqrt(1e3) * 2 * (factor - 1)
     assert total(solution).currents["L1"] == pytest.approx(1 / (1j * x), rel=1e-5)
     assert abs(total(solution).currents["L1"] - solution.nodal.currents["L1"]) < 1e-4 * solution.amperes
+
+
+def test_a_large_condition_number_beside_a_resonance_is_looked_at_closer():
+    """Coils of 1 pH and more hung on 10¹² Ω make equations that look singular; one part in 10⁵ beside it a resonance is none."""
+    f = Fraction(RESONANT * (1 + 1e-5))
+    hung = [part("L", f"L{k}", f"n{k % 4}", f"n{(k + 1) % 4}", Fraction(k, 10**12)) for k in range(2, 6)]
+    made = circuit(ac("V", "V1", "a", "com", 1, f), COIL, CAPACITOR, ac("I", "I1", "com", "n0", 1e-9, f), *hung,
+                   part("R", "R1", "n2", "com", "1e12"))  # fmt: skip
+    assert condition(network_of(made, f)) > 1e13
+    at = total(solve(made, f))
+    assert at.potentials["n3"] == pytest.approx(1000, rel=1e-9)
+    assert at.currents["L1"] == pytest.approx(1 / (1j * math.sqrt(1e3) * 2e-5), rel=1e-4)
 
 
 def test_with_loss_the_resonance_is_plain():

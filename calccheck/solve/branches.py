@@ -179,7 +179,7 @@ def _transistor(e: Element, reference: str, frequency: Fraction) -> tuple[Branch
     at, device = dict(e.terminals), e.device or Device()
     base, collector = names_of(e)
     drop: Role = "link" if frequency else "voltage"
-    sign = 0 if frequency else -1 if device.polarity == "pnp" else 1
+    sign = -1 if device.polarity == "pnp" else 1
     input_side = Branch(e, base, drop, at["base"], at["emitter"], sign * number(device.v_be, e))
     ends = at["collector"], at["emitter"]
     if device.state == "saturated":
