@@ -167,7 +167,10 @@ def test_two_terminal_equivalents():
 
     The Norton current is printed 3.535 A for 5/√2 = 3.53553: a unit of the last digit is granted.
     """
-    solve_one = lambda *parts: total(solve(circuit(*YOUSAFZAI_TWO_PORT, *parts, reference="g"), UNSTATED))  # noqa: E731
+
+    def solve_one(*parts):
+        return total(solve(circuit(*YOUSAFZAI_TWO_PORT, *parts, reference="g"), UNSTATED))
+
     v = solve_one().potentials["c"]
     assert abs(v) == pytest.approx(8.745, abs=0.00051) and math.degrees(cmath.phase(v)) == pytest.approx(
         -47.73, abs=0.0051
@@ -329,6 +332,12 @@ def test_only_the_sources_of_the_frequency_act():
     assert solve(MIXED, Fraction(0)) == direct
     with pytest.raises(KeyError):
         state(fifty, ["V0"])
+
+
+def test_an_alternating_source_may_have_a_plain_value():
+    plain = replace(part("V", "V1", "a", "com", 10), frequency=Fraction(50))
+    solutions = [solve(circuit(*PLAIN, v), Fraction(50)) for v in (plain, ac("V", "V1", "a", "com", 10, 50))]
+    assert solutions[0].parts == solutions[1].parts and solutions[0].nodal == solutions[1].nodal
 
 
 def test_values_are_real_at_dc_and_complex_elsewhere():
