@@ -1,4 +1,4 @@
-"""Circuits at AC against published examples, other formulations by general-purpose libraries, and what cannot be solved there."""
+"""Circuits at AC against published examples, and what acts at which frequency."""
 
 from __future__ import annotations
 
@@ -7,21 +7,11 @@ import math
 from dataclasses import replace
 from fractions import Fraction
 
-import mpmath
-import numpy as np
 import pytest
-from circuits import ac, ac_circuits, circuit, part
-from hypothesis import given, settings
-from hypothesis import strategies as st
-from scipy.integrate import solve_ivp
-from scipy.linalg import solve as scipy_solve
-from scipy.sparse import coo_matrix
-from scipy.sparse.linalg import spsolve
+from circuits import ac, circuit, part
 
 from calccheck.model import UNSTATED
 from calccheck.solve import Unsolvable, frequencies, solve, solve_batch, state, total
-from calccheck.solve.branches import network_of
-from calccheck.solve.nodal import condition
 
 HZ60 = Fraction(60)
 
@@ -69,7 +59,6 @@ OPENSTAX_RLC = circuit(
     ac("V", "VS", "a", "g", "0.1", 200), part("R", "R", "a", "b", 4), part("L", "L", "b", "c", "0.003"),
     part("C", "C", "c", "g", "0.0008"), reference="g",
 )  # fmt: skip
-VOLTS, AMPERES = "potentials", "currents"
 
 # circuit, frequency, sources, what, (plus, minus) or part, printed magnitude and weight of its last digit, degrees and theirs
 PRINTED = [
@@ -198,115 +187,9 @@ def test_a_controlled_source_among_phasors():
         assert at.potentials["v4"] == pytest.approx(2j)
 
 
-# --- witnesses ------------------------------------------------------------------------------------------------------
-
-
-def tableau(made, hertz, number):
-    """All node potentials and all currents as unknowns, by an arrangement of the test's own; ``number`` carries the values."""
-    w = 2 * mpmath.pi * mpmath.mpf(hertz.numerator) / hertz.denominator
-    nodes, names = list(made.nodes()), [e.name for e in made.elements]
-    count = len(nodes)
-    rows, right = [{} for _ in range(count + len(names))], [number(0)] * (count + len(names))
-    for k, e in enumerate(made.elements):
-        own, plus, minus = count + k, nodes.index(e.plus), nodes.index(e.minus)
-        for at, sign in ((plus, 1), (minus, -1)):
-            rows[at][own] = rows[at].get(own, 0) + sign
-        acting = (e.frequency or 0) == hertz
-        value = None if e.value is None else mpmath.mpf(e.value.numerator) / e.value.denominator
-        voltage, current = {
-            "resistor": lambda v=value: (1, -v), "inductor": lambda v=value: (1, -1j * w * v),
-            "capacitor": lambda v=value: (1j * w * v, -1), "short": lambda: (1, 0), "open": lambda: (0, 1),
-            "voltage source": lambda: (1, 0), "controlled voltage source": lambda: (1, 0),
-            "current source": lambda: (0, 1), "controlled current source": lambda: (0, 1),
-            "impedance": lambda e=e: (1, -mpmath.mpc(e.phasor)),
-        }[e.kind]()  # fmt: skip
-        terms = [(plus, voltage), (minus, -voltage), (own, current)]
-        if e.control is not None:
-            c = e.control
-            terms += (
-                [(count + names.index(c.part), -value)]
-                if c.part
-                else [(nodes.index(c.plus), -value), (nodes.index(c.minus), value)]
-            )
-        elif e.kind.endswith("source") and acting:
-            right[own] = number(value if e.phasor is None else mpmath.mpc(e.phasor))
-        for at, x in terms:
-            rows[own][at] = rows[own].get(at, 0) + number(x)
-    rows[nodes.index(made.reference)] = {nodes.index(made.reference): number(1)}
-    return nodes, rows, right
-
-
-@settings(max_examples=40, deadline=None)
-@given(ac_circuits())
-def test_potentials_are_those_of_a_sparse_complex_solver(made):
-    hertz = frequencies(made)[-1]
-    nodes, rows, right = tableau(made, hertz, complex)
-    i, j, x = zip(*[(i, j, x) for i, row in enumerate(rows) for j, x in row.items()], strict=True)
-    matrix = coo_matrix((x, (i, j)), dtype=complex).tocsc()
-    slack = 1e-15 * np.linalg.cond(matrix.toarray())
-    solution = solve(made, hertz)
-    for node, v in zip(nodes, spsolve(matrix, np.array(right)), strict=False):
-        assert abs(total(solution).potentials[node] - v) <= max(1e-9, slack) * (solution.volts or abs(v) or 1)
-
-
-@settings(max_examples=10, deadline=None)
-@given(ac_circuits("RVILCZ", most_nodes=5, most_extra=4))
-def test_phasors_against_fifty_digits(made):
-    """Both routes, against Gaussian elimination in mpmath where 2πf is worked to fifty digits as well."""
-    hertz = frequencies(made)[-1]
-    solution = solve(made, hertz)
-    with mpmath.workdps(50):
-        nodes, rows, right = tableau(made, hertz, mpmath.mpc)
-        matrix = mpmath.matrix(len(rows))
-        for i, row in enumerate(rows):
-            for j, x in row.items():
-                matrix[i, j] = x
-        solved = mpmath.lu_solve(matrix, mpmath.matrix(right))
-        for k, node in enumerate(nodes):
-            for at in (solution.nodal, total(solution)):
-                assert abs(mpmath.mpc(at.potentials[node]) - solved[k]) <= 1e-9 * solution.volts
-
-
-@settings(max_examples=15, deadline=None)
-@given(st.lists(st.tuples(st.integers(1, 99), st.integers(1, 99)), min_size=1, max_size=5), st.integers(1, 5000))
-def test_ladders_of_rc_against_the_state_equations(rungs, hertz):
-    """Resistors in line and capacitors across: C·dv/dt = G·v + g·u, whose phasors are (jωC − G)⁻¹·g, worked by scipy."""
-    ohms, farads = [100.0 * r for r, _ in rungs], [1e-8 * c for _, c in rungs]
-    n = len(rungs)
-    g = np.zeros((n, n))
-    for k, r in enumerate(ohms):
-        g[k, k] -= 1 / r
-        if k:
-            g[k - 1, k - 1] -= 1 / r
-            g[k - 1, k] = g[k, k - 1] = 1 / r
-    fed = np.array([1 / ohms[0]] + [0.0] * (n - 1))
-    expected = scipy_solve(2j * math.pi * hertz * np.diag(farads) - g, fed)
-    parts = [part("R", f"R{k}", f"n{k}", f"n{k + 1}", 100 * r) for k, (r, _) in enumerate(rungs)]
-    parts += [part("C", f"C{k}", f"n{k + 1}", "com", Fraction(c, 10**8)) for k, (_, c) in enumerate(rungs)]
-    at = total(solve(circuit(ac("V", "V1", "n0", "com", 1, hertz), *parts), Fraction(hertz)))
-    assert [at.potentials[f"n{k + 1}"] for k in range(n)] == pytest.approx(list(expected), rel=1e-9)
-
-
-def test_phasors_are_what_is_left_of_the_differential_equations():
-    """Amplitude 10 V at 30° on 5 Ω, 2 mH and 40 µF, 1 kHz: L·di/dt = u − R·i − v, C·dv/dt = i run to their steady state by scipy."""
-    ohms, henries, farads, w, drive = 5.0, 2e-3, 40e-6, 2000 * math.pi, polar(10, 30)
-
-    def slopes(t, x):
-        u = (drive * cmath.exp(1j * w * t)).real
-        return [(u - ohms * x[0] - x[1]) / henries, x[0] / farads]
-
-    seen = np.linspace(0.02, 0.021, 200)
-    run = solve_ivp(slopes, (0, 0.021), [0, 0], t_eval=seen, rtol=1e-9, atol=1e-12)
-    made = circuit(ac("V", "V1", "a", "com", drive, 1000), part("R", "R1", "a", "b", 5), part("L", "L1", "b", "c", "2e-3"),
-                   part("C", "C1", "c", "com", "40e-6"))  # fmt: skip
-    at = total(solve(made, Fraction(1000)))
-    turning = np.exp(1j * w * seen)
-    assert run.y[0] == pytest.approx((at.currents["L1"] * turning).real, abs=1e-6)
-    assert run.y[1] == pytest.approx((at.potentials["c"] * turning).real, abs=1e-5)
-
-
 # --- frequencies ----------------------------------------------------------------------------------------------------
 
+PLAIN = (part("R", "R1", "a", "b", 10), part("R", "R2", "b", "com", 10))
 MIXED = circuit(
     part("V", "V0", "a", "com", 6), ac("V", "V50", "b", "a", 3, 50), ac("I", "I1k", "com", "c", 2j, 1000),
     part("R", "R1", "b", "c", 100), part("L", "L1", "c", "com", "0.1"), part("R", "R2", "a", "com", 30),
@@ -366,142 +249,3 @@ def test_a_batch_at_a_frequency():
         exact = total(solve(one, HZ60))
         assert at.potentials == pytest.approx(exact.potentials) and at.currents == pytest.approx(exact.currents)
     assert refused is None
-
-
-# --- what cannot be solved ------------------------------------------------------------------------------------------
-
-RESONANT = 1 / (2 * math.pi * math.sqrt(1e-3 * 1e-6))  # of 1 mH and 1 µF: ω²LC = 1 (Thomson's formula)
-COIL, CAPACITOR = part("L", "L1", "a", "x", "1e-3"), part("C", "C1", "x", "com", "1e-6")
-
-
-def refused(made, hertz):
-    with pytest.raises(Unsolvable) as caught:
-        solve(made, Fraction(hertz))
-    return str(caught.value)
-
-
-@pytest.mark.parametrize("hertz", [RESONANT, RESONANT * (1 + 1e-15)])
-@pytest.mark.parametrize(
-    "parts",
-    [
-        [ac("V", "V1", "a", "com", 1, RESONANT), COIL, CAPACITOR],  # a series circuit across a source
-        [ac("I", "I1", "com", "a", 1, RESONANT), COIL, replace(CAPACITOR, plus="a", minus="x"), part("R", "R1", "x", "com", 5)],
-        [ac("V", "V1", "v", "com", 1, RESONANT), part("R", "R1", "v", "a", 5), COIL, replace(CAPACITOR, plus="a", minus="x")],
-    ],
-)  # fmt: skip
-def test_resonance_without_loss_is_refused_and_its_parts_named(parts, hertz):
-    """Also where nothing stirs it: in the last circuit the loop hangs on a node without carrying current from the source."""
-    made = circuit(*(replace(e, frequency=Fraction(hertz)) if e.frequency else e for e in parts))
-    message = refused(made, hertz)
-    assert f"At {hertz:.10g} Hz the reactances of L1 and C1 cancel" in message
-
-
-@pytest.mark.parametrize("factor", [1 + 1e-6, 1 - 1e-9])
-def test_beside_its_resonance_a_circuit_without_loss_is_solved(factor):
-    """By hand: the reactances leave √(L/C)·(x − 1/x) with x = f/f₀."""
-    f = Fraction(RESONANT * factor)
-    solution = solve(circuit(ac("V", "V1", "a", "com", 1, f), COIL, CAPACITOR), f)
-    x = math.sqrt(1e3) * 2 * (factor - 1)
-    assert total(solution).currents["L1"] == pytest.approx(1 / (1j * x), rel=1e-5)
-    assert abs(total(solution).currents["L1"] - solution.nodal.currents["L1"]) < 1e-4 * solution.amperes
-
-
-def test_a_large_condition_number_beside_a_resonance_is_looked_at_closer():
-    """Coils of 1 pH and more hung on 10¹² Ω make equations that look singular; one part in 10⁵ beside it a resonance is none."""
-    f = Fraction(RESONANT * (1 + 1e-5))
-    hung = [part("L", f"L{k}", f"n{k % 4}", f"n{(k + 1) % 4}", Fraction(k, 10**12)) for k in range(2, 6)]
-    made = circuit(ac("V", "V1", "a", "com", 1, f), COIL, CAPACITOR, ac("I", "I1", "com", "n0", 1e-9, f), *hung,
-                   part("R", "R1", "n2", "com", "1e12"))  # fmt: skip
-    assert condition(network_of(made, f)) > 1e13
-    at = total(solve(made, f))
-    assert at.potentials["n3"] == pytest.approx(1000, rel=1e-9)
-    assert at.currents["L1"] == pytest.approx(1 / (1j * math.sqrt(1e3) * 2e-5), rel=1e-4)
-
-
-def test_with_loss_the_resonance_is_plain():
-    """At resonance the reactances cancel and R alone is left, the voltage across each reactance being √(L/C)/R times it."""
-    f = Fraction(RESONANT)
-    solution = solve(circuit(ac("V", "V1", "v", "com", 1, f), part("R", "R1", "v", "a", 5), COIL, CAPACITOR), f)
-    assert total(solution).currents["R1"] == pytest.approx(0.2, rel=1e-9)
-    assert total(solution).potentials["x"] == pytest.approx(-1j * math.sqrt(1e3) / 5, rel=1e-9)
-
-
-def test_impedances_that_cancel_are_refused():
-    made = circuit(
-        ac("V", "V1", "a", "com", 1, UNSTATED), ac("Z", "Z1", "a", "x", polar(10, 90)), ac("Z", "Z2", "x", "com", -10j)
-    )
-    assert "At AC the reactances of Z1 and Z2 cancel" in refused(made, UNSTATED)
-
-
-def test_twelve_decades_of_impedance_are_no_resonance():
-    """By hand: 1 nH (0.3 µΩ), 1 GΩ and 1 pF beside coils of µH; what a condition number takes for singular is solved."""
-    parts = [part("L", f"L{k}", "b", "c", Fraction(k, 10**9)) for k in range(1, 4)]
-    parts += [
-        part("R", "R1", "c", "com", "1e9"),
-        part("C", "C1", "b", "com", "1e-12"),
-        part("R", "R2", "a", "b", "1e-3"),
-    ]
-    solution = solve(circuit(ac("V", "V1", "a", "com", 1, 50), *parts), Fraction(50))
-    assert total(solution).currents["R1"] == pytest.approx(1e-9, rel=1e-9)
-    assert total(solution).currents["C1"] == pytest.approx(2j * math.pi * 50e-12, rel=1e-9)
-
-
-PLAIN = (part("R", "R1", "a", "b", 10), part("R", "R2", "b", "com", 10))
-WANTING = {
-    "an impedance at DC": (
-        [part("V", "V1", "a", "com", 1), ac("Z", "Z1", "b", "com", 3j)], 0, "Z1 is an impedance, known at one AC frequency and not at DC",
-    ),
-    "an impedance in a circuit of several frequencies": (
-        [ac("V", "V1", "a", "c", 1, 50), ac("V", "V2", "c", "com", 1, 60), ac("Z", "Z1", "b", "com", 3j)], 50,
-        "Z1 is an impedance, known at one frequency, but the circuit has several: 50 Hz and 60 Hz",
-    ),
-    "an impedance at another frequency than the sources": (
-        [ac("V", "V1", "a", "com", 1, 50), ac("Z", "Z1", "b", "com", 3j)], 1000, "several: 50 Hz and 1000 Hz",
-    ),
-    "a capacitor and no frequency": (
-        [ac("V", "V1", "a", "com", 1, UNSTATED), part("C", "C1", "b", "com", 1)], UNSTATED, "C1 (capacitor) depends on the frequency",
-    ),
-    "an inductor without a value": (
-        [ac("V", "V1", "a", "com", 1, 50), part("L", "L1", "b", "com")], 50, "L1 has no number for a value, which a solution at 50 Hz needs",
-    ),
-    "a phasor without a frequency beside one with": (
-        [ac("V", "V1", "a", "c", 1, 50), ac("V", "V2", "c", "com", 1, UNSTATED)], 50, "V2 has no frequency, but others are named here",
-    ),
-    "a phasor at DC": ([ac("V", "V1", "a", "com", 1j)], 0, "V1 has a phasor for a value but no frequency"),
-    "a frequency out of all bounds": ([ac("V", "V1", "a", "com", 1, Fraction(10) ** 40)], Fraction(10) ** 40, "1e30 Hz"),
-    "sources of two frequencies side by side": (
-        [ac("V", "V1", "a", "com", 1, 50), ac("V", "V2", "a", "com", 1, 60)], 50,
-        "V1 and V2 (zeroed at 50 Hz) make a loop without resistance: the voltages around it add up to 1 V instead of zero.",
-    ),
-    "a node between current sources": (
-        [ac("V", "V1", "a", "com", 1, 50), ac("I", "I1", "com", "x", 3, 50), ac("I", "I2", "com", "x", 4j, 50)], 50,
-        "fed only by current sources (I1 and I2), and the currents into it add up to 5 A ∠ 53.13",
-    ),
-    "a capacitance of zero": (
-        [ac("V", "V1", "a", "com", 1, 50), part("C", "C0", "b", "x", 0)], 50, "only gaps lead on: C0 (a capacitance of zero)",
-    ),
-}  # fmt: skip
-
-
-@pytest.mark.parametrize("name", WANTING)
-def test_what_is_wanting_is_said(name):
-    parts, hertz, words = WANTING[name]
-    made = circuit(*PLAIN, *parts)
-    assert words in refused(made, hertz)
-    assert solve_batch([made], Fraction(hertz)) == [None]
-
-
-def test_an_impedance_beside_a_source_of_direct_voltage_is_solved_at_its_frequency():
-    """By hand: 10 V over 10 + 10 + (10 ∥ j10) − 0 Ω; the battery is a short."""
-    made = circuit(
-        *PLAIN, ac("V", "V1", "a", "c", 10, 50), part("V", "V0", "c", "com", 5), ac("Z", "Z1", "b", "com", 10j)
-    )
-    assert total(solve(made, Fraction(50))).currents["V1"] == pytest.approx(-10 / (10 + 100j / (10 + 10j)))
-
-
-def test_branches_of_a_capacitor_and_an_inductor():
-    """Reactances from memory of every handbook: X_L = 2πfL, X_C = 1/(2πfC); at 50 Hz 1 H is 314.16 Ω, 1 µF 3183.1 Ω."""
-    made = circuit(part("L", "L1", "a", "com", 1), part("C", "C1", "a", "com", "1e-6"))
-    coil, capacitor = network_of(made, Fraction(50)).branches
-    assert coil.value == pytest.approx(314.159265j) and capacitor.value == pytest.approx(-3183.09886j)
-    assert [b.role for b in network_of(made).branches] == ["link", "gap"]
