@@ -129,14 +129,9 @@ def frequency_of(key: Key, circuit: Circuit, ledger: Ledger, span: Span) -> Frac
     """The one frequency of a voltage, current or impedance. Raises ``Doubt`` where several act."""
     if key.letter == "R" and key.frequency is None:
         return Fraction(0)
-    present = frequencies(circuit)
     if key.letter == "Z":
-        alternating = [f for f in present if f != 0] or (
-            [ledger.settings.hertz] if ledger.settings.hertz else [Fraction(0)]
-        )
-        if key.frequency is None and len(alternating) > 1:
-            raise Doubt("an impedance belongs to one frequency: say at which", span)
-        return alternating[0] if key.frequency is None else key.frequency
+        return _of_impedance(key, circuit, ledger, span)
+    present = frequencies(circuit)
     acting = _acting(key, circuit, span)
     if len(acting) > 1:
         shown = ", ".join("dc" if f == 0 else f"{float(f):g} Hz" for f in acting)
@@ -145,6 +140,17 @@ def frequency_of(key: Key, circuit: Circuit, ledger: Ledger, span: Span) -> Frac
         shown = ", ".join("dc" if f == 0 else f"{float(f):g} Hz" for f in present)
         raise Doubt(f"no source of this circuit has {float(key.frequency):g} Hz; its sources have: {shown}", span)
     return acting[0]
+
+
+def _of_impedance(key: Key, circuit: Circuit, ledger: Ledger, span: Span) -> Fraction:
+    """The frequency of an impedance: as said, else the one of the block's sources, taken out or not, else the sheet's."""
+    if key.frequency is not None:
+        return key.frequency
+    alternating = [f for f in frequencies(ledger.circuits[key.circuit]) if f != 0] or [ledger.settings.hertz]
+    reactive = any(e.kind in ("capacitor", "inductor") for e in circuit.elements)
+    if len(alternating) > 1 or (alternating == [0] and reactive):
+        raise Doubt("an impedance belongs to one frequency: say at which, as in at 50 Hz", span)
+    return alternating[0]
 
 
 def linear(key: Key, circuit: Circuit, span: Span, frequency: Fraction = DC) -> Linear:
