@@ -287,6 +287,8 @@ def worth(tree) -> Fraction:
                 return x * y
             if sign in "+-":
                 return x + y if sign == "+" else x - y
+            if sign == "∥" and x == y == 0:
+                return x  # two shorts side by side
             if (sign == "÷" and y == 0) or (sign == "∥" and x + y == 0):
                 raise Undefined
             return x / y if sign == "÷" else x * y / (x + y)

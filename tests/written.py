@@ -54,7 +54,8 @@ def working(*statements: str) -> str:
 def to_figures(value: Fraction, figures: int, half_up: bool = True) -> Decimal:
     """A value rounded to significant figures by decimal arithmetic, a tie away from zero or to the even digit."""
     exact = Context(prec=120).divide(Decimal(value.numerator), Decimal(value.denominator))
-    return Context(prec=figures, rounding=ROUND_HALF_UP if half_up else ROUND_HALF_EVEN).plus(exact)
+    short = Context(prec=figures, rounding=ROUND_HALF_UP if half_up else ROUND_HALF_EVEN).plus(exact)
+    return short.quantize(Decimal(1).scaleb(short.adjusted() - figures + 1))  # zeros at its end are figures too
 
 
 def step(digits: Decimal) -> Decimal:
