@@ -8,6 +8,7 @@ from __future__ import annotations
 
 from collections.abc import Mapping
 from os import PathLike
+from pathlib import Path
 
 from calccheck.model import Report, Settings
 from calccheck.source import Sheet
@@ -34,5 +35,5 @@ def check_file(
     path: str | PathLike[str], settings: Settings | None = None, others: Mapping[str, Report] | None = None
 ) -> Report:
     """The report on a sheet's file, UTF-8. Raises ``OSError`` or ``UnicodeDecodeError`` where it cannot be read."""
-    with open(path, encoding="utf-8", newline="") as file:
+    with Path(path).open(encoding="utf-8", newline="") as file:
         return check_text(str(path), file.read(), settings, others)

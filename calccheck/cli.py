@@ -1,4 +1,4 @@
-"""The command line: arguments, files in and out, exit status. PYTHON_ARGCOMPLETE_OK"""
+"""The command line: arguments and exit status. PYTHON_ARGCOMPLETE_OK"""
 
 from __future__ import annotations
 
@@ -10,9 +10,10 @@ from collections.abc import Sequence
 from datetime import date
 
 from calccheck import __version__
-from calccheck.batch import internal_fault
-from calccheck.commands import FAILED, check, complain, working
-from calccheck.files import Unusable
+from calccheck.command.batch import internal_fault
+from calccheck.command.checking import check
+from calccheck.command.files import Unusable
+from calccheck.command.terminal import FAILED, complain
 from calccheck.model import ROLES
 
 _ABOUT = """\
@@ -69,24 +70,26 @@ def _command(options: argparse.Namespace) -> int:
             case "check":
                 return check(options)
             case "mark":
-                from calccheck.marking import mark  # late: writing is not needed to check
+                from calccheck.command.marking import mark  # late: writing is not needed to check
 
                 return mark(options)
             case "sign":
-                from calccheck.signing import sign
+                from calccheck.command.signing import sign
 
                 return sign(options)
             case "register":
-                from calccheck.registering import register
+                from calccheck.command.registering import register
 
                 return register(options)
             case "blank":
-                from calccheck.blanking import blank
+                from calccheck.command.blanking import blank
 
                 return blank(options)
             case "editor":
                 return _serve_editor()
             case _:
+                from calccheck.command.working import working
+
                 return working(options)
     except (KeyboardInterrupt, BrokenPipeError):
         raise
@@ -99,7 +102,7 @@ def _command(options: argparse.Namespace) -> int:
 
 def _serve_editor() -> int:
     try:
-        from calccheck.editor import serve
+        from calccheck.command.editor import serve
     except ModuleNotFoundError as missing:  # optional: the extra `editor`
         if (missing.name or "").partition(".")[0] not in ("pygls", "lsprotocol"):
             raise

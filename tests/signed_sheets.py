@@ -7,10 +7,10 @@ from __future__ import annotations
 
 from datetime import date
 
+from calccheck.command.signing import put_signature
 from calccheck.model import ROLES, Reading, Settings
 from calccheck.read.sheet import read_sheet
 from calccheck.signatures import digest_of, signature_line
-from calccheck.signing import put_signature
 from calccheck.source import Sheet
 
 SIGNED_ON = date(2026, 11, 20)

@@ -16,9 +16,10 @@ from pathlib import Path
 import pytest
 
 import calccheck.pipeline
-from calccheck import __version__, batch
+from calccheck import __version__
 from calccheck.cli import main
-from calccheck.files import Unusable, sources, write_whole
+from calccheck.command import batch
+from calccheck.command.files import Unusable, sources, write_whole
 
 CIRCUIT = "```circuit\nreference g\nV1: 10 V, a to g\nR1: 1 kΩ, a to b\nR2: 3 kΩ, b to g\n```\n"
 RIGHT = CIRCUIT + "\nThe bus is at `V_b = 7.5 V`.\n"

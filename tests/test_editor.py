@@ -333,6 +333,6 @@ def test_at_a_terminal_it_says_who_is_to_start_it():
 def test_without_the_library_it_says_what_to_install(monkeypatch, capsys):
     monkeypatch.setitem(sys.modules, "pygls", None)
     monkeypatch.setitem(sys.modules, "pygls.lsp.server", None)
-    monkeypatch.delitem(sys.modules, "calccheck.editor", raising=False)
+    monkeypatch.delitem(sys.modules, "calccheck.command.editor", raising=False)
     assert main(["editor"]) == 2
     assert "calccheck[editor]" in capsys.readouterr().err

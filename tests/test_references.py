@@ -10,7 +10,7 @@ import pytest
 from hypothesis import given, settings
 from hypothesis import strategies as st
 
-import calccheck.citing
+import calccheck.command.citing
 from calccheck import check_text
 from calccheck.cli import main
 from calccheck.model import Finding, Report
@@ -230,9 +230,11 @@ def test_marking_looks_them_up_too(folder, capsys):
 
 def test_nothing_is_looked_into_unless_a_sheet_names_another(folder, capsys, monkeypatch):
     looked: list[str] = []
-    front, alone = calccheck.citing._front, calccheck.citing._alone
-    monkeypatch.setattr(calccheck.citing, "_front", lambda path: looked.append(path.name) or front(path))
-    monkeypatch.setattr(calccheck.citing, "_alone", lambda s, r: looked.append(f"read {s.path.name}") or alone(s, r))
+    front, alone = calccheck.command.citing._front, calccheck.command.citing._alone
+    monkeypatch.setattr(calccheck.command.citing, "_front", lambda path: looked.append(path.name) or front(path))
+    monkeypatch.setattr(
+        calccheck.command.citing, "_alone", lambda s, r: looked.append(f"read {s.path.name}") or alone(s, r)
+    )
     write("a.md", GOOD)
     write("plain.md", GOOD.replace("EX-1", "EX-10"))
     assert run(capsys, "check", "a.md", "plain.md")[0] == 0 and looked == []

@@ -16,7 +16,7 @@ import pytest
 from test_standards import E24, by_formula
 
 from calccheck import check_text, pipeline
-from calccheck.history import LOOK_BACK, earlier_versions
+from calccheck.command.history import LOOK_BACK, earlier_versions
 from calccheck.judge.slips.table import SLIPS
 from calccheck.model import Settings
 from calccheck.pipeline import check

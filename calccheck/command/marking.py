@@ -11,11 +11,13 @@ from pathlib import Path
 
 from calccheck.annotate.to_terminal import totals
 from calccheck.annotate.visible import visible
-from calccheck.batch import run
-from calccheck.citing import Run
-from calccheck.commands import brief, complain, gathered, in_colour, report_on, run_of, sheet_of, status
+from calccheck.command.batch import run
+from calccheck.command.citing import Run
+from calccheck.command.files import MARKED, Source, Unusable, write_whole
+from calccheck.command.reports import gathered, report_on, run_of
+from calccheck.command.sheets import brief, sheet_of
+from calccheck.command.terminal import complain, in_colour, status
 from calccheck.edits import stray, unmark
-from calccheck.files import MARKED, Source, Unusable, write_whole
 from calccheck.model import Report
 
 UNMARKED = ".unmarked"  # before the suffix of a copy from which the marks were taken out

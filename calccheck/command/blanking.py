@@ -8,9 +8,10 @@ from pathlib import Path
 
 from calccheck.annotate.to_blank import blank_page
 from calccheck.annotate.visible import one_line, visible
-from calccheck.commands import MEND, STANDS, settings_for, sheet_of, speak_utf8, standard_input
+from calccheck.command.files import Source, Unusable
+from calccheck.command.sheets import settings_for, sheet_of, standard_input
+from calccheck.command.terminal import MEND, STANDS, speak_utf8
 from calccheck.edits import unmark
-from calccheck.files import Source, Unusable
 from calccheck.model import Reading
 from calccheck.read.sheet import read_sheet
 from calccheck.source import Sheet

@@ -10,9 +10,10 @@ from functools import partial
 from calccheck import __version__
 from calccheck.annotate import to_register
 from calccheck.annotate.register import register_rows
-from calccheck.batch import run
-from calccheck.commands import FAILED, MEND, STANDS, brief_report_on, complain, gathered, run_of, speak_utf8
-from calccheck.files import Source
+from calccheck.command.batch import run
+from calccheck.command.files import Source
+from calccheck.command.reports import brief_report_on, gathered, run_of
+from calccheck.command.terminal import FAILED, MEND, STANDS, complain, speak_utf8
 
 
 def register(options: argparse.Namespace) -> int:

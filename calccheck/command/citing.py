@@ -13,7 +13,8 @@ from datetime import date
 from functools import lru_cache
 from pathlib import Path
 
-from calccheck.files import Source, sources
+from calccheck.command.files import Source, sources
+from calccheck.command.sheets import brief, settings_for, sheet_of
 from calccheck.model import Report
 
 _HEAD = 64 * 1024  # bytes in which front matter ends
@@ -66,8 +67,7 @@ def _front(path: Path) -> str:
 @lru_cache(maxsize=1024)
 def _alone(source: Source, run: Run) -> Report:
     """The report on a sheet that another one names, without what that one takes from elsewhere."""
-    from calccheck.commands import brief, settings_for, sheet_of  # late: they look here themselves
-    from calccheck.pipeline import check
+    from calccheck.pipeline import check  # late: most sheets name no other
 
     sheet = sheet_of(source)
     return brief(check(replace(sheet, name=source.within.as_posix()), replace(settings_for(source), on=run.on)))

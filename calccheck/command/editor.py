@@ -25,11 +25,12 @@ from calccheck import __version__
 from calccheck.annotate.positions import offset_of, position_of
 from calccheck.annotate.remarks import Remark, remarks
 from calccheck.annotate.to_hover import claim_at, to_hover
-from calccheck.batch import internal_fault
-from calccheck.citing import Run
-from calccheck.commands import MEND, STANDS, report_on
+from calccheck.command.batch import internal_fault
+from calccheck.command.citing import Run
+from calccheck.command.files import Source, Unusable, settings_table
+from calccheck.command.reports import report_on
+from calccheck.command.terminal import MEND, STANDS
 from calccheck.edits import kept
-from calccheck.files import Source, Unusable, settings_table
 from calccheck.model import Report
 from calccheck.source import Sheet, Span
 

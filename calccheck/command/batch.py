@@ -9,7 +9,7 @@ from collections.abc import Callable, Iterable, Iterator, Sequence
 from dataclasses import dataclass
 from typing import Generic, TypeVar
 
-from calccheck.files import Unusable
+from calccheck.command.files import Unusable
 
 TRACEBACK = "CALCCHECK_TRACEBACK"  # environment variable: show where an internal fault arose
 

@@ -11,11 +11,13 @@ from pathlib import Path
 
 from calccheck.annotate.to_terminal import sheet_lines
 from calccheck.annotate.visible import visible
-from calccheck.citing import Run
-from calccheck.commands import MEND, STANDS, in_colour, report_on, settings_for
+from calccheck.command.citing import Run
+from calccheck.command.files import MARKED, Source, Unusable, read_text, write_whole
+from calccheck.command.reports import report_on
+from calccheck.command.sheets import settings_for
+from calccheck.command.terminal import MEND, STANDS, in_colour
 from calccheck.document import Block
 from calccheck.edits import newline, stray, unmark
-from calccheck.files import MARKED, Source, Unusable, read_text, write_whole
 from calccheck.model import ROLES, Reading, Report, Role
 from calccheck.read.sheet import read_sheet
 from calccheck.read.signatures import NAME, ROLE, signature_lines

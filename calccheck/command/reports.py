@@ -1,0 +1,45 @@
+"""The sheets that a command means, and the report on each within its run."""
+
+from __future__ import annotations
+
+import argparse
+from collections.abc import Sequence
+from dataclasses import replace
+from functools import partial
+
+from calccheck.command.citing import Run, find_sheets
+from calccheck.command.files import Source, Unusable, sources
+from calccheck.command.sheets import brief, settings_for, sheet_of, standard_input
+from calccheck.model import Report
+
+
+def gathered(paths: Sequence[str]) -> tuple[list[Source], list[str]]:
+    """The sheets meant by the arguments, standard input among them, and the problems met."""
+    found, problems = sources([p for p in paths if p != "-"])
+    said = [str(p) for p in problems]
+    if "-" in paths:
+        try:
+            found.insert(0, standard_input())
+        except Unusable as problem:
+            said.append(str(problem))
+    return found, said
+
+
+def run_of(options: argparse.Namespace) -> Run:
+    """The run of a command over several sheets."""
+    return Run(tuple(options.paths), options.on)
+
+
+def report_on(source: Source, within: Run) -> Report:
+    """The report on one sheet. Raises ``Unusable`` where a sheet or its repository's settings cannot be read."""
+    from calccheck.command.history import earlier_versions  # late: as the next
+    from calccheck.pipeline import check as checked  # late: --help and --version need no solver
+
+    find = partial(find_sheets, citing=source.path, run=within)
+    history = partial(earlier_versions, source.path) if source.text is None else tuple
+    return checked(sheet_of(source), replace(settings_for(source), on=within.on), find, history)
+
+
+def brief_report_on(source: Source, within: Run) -> Report:
+    """The report without its page and solutions, for outputs that walk neither: so it travels light between processes."""
+    return brief(report_on(source, within))
