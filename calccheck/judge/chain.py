@@ -17,7 +17,7 @@ from calccheck.judge.miss import Miss
 from calccheck.judge.new_names import assume, new_name
 from calccheck.judge.phasors import PrintedPhasor, parts
 from calccheck.judge.rounding import Printed, deviation
-from calccheck.judge.scope import Defined, Key, Ledger, Result
+from calccheck.judge.scope import Defined, Key, Ledger, Result, define, enter
 from calccheck.judge.steps import judge_member
 from calccheck.judge.working import by_source
 from calccheck.model import Basis, Claim, Finding, Judged, Step, Verdict
@@ -250,13 +250,13 @@ def _enter(
     if name is not None:
         shown = printings[-1][0] if printings else None
         spread = Fraction(0)
-        job.ledger.names[name] = Defined(
-            name, main.truth, shown, main.basis, False, start, spread, main.members[main.at].node
-        )
+        node = main.members[main.at].node
+        define(Defined(name, main.truth, shown, main.basis, False, start, spread, node), job.ledger)
         key = Key(-1, "name", (name,))
     for p, step in printings:
         if p.amount.dimension == main.truth.dimension:
-            job.ledger.results += _results(p, main.truth, step, start, key)
+            for result in _results(p, main.truth, step, start, key):
+                enter(result, job.ledger)
 
 
 def _results(p: Printed | PrintedPhasor, truth: Amount, step: Step, start: int, key: Key | None) -> list[Result]:

@@ -54,17 +54,8 @@ class Ground:
         constants = [literal(n) for found in fixed for n in found]
         pieces = [a for m in before for a in worked_pieces(m.node, self.names.amount)]
         repeated = [literal(n) for m in before for n in numbers(m.node)]
-        return Meanings([*self.exact_values(), *constants], pieces, self.circuit_values(), repeated)
-
-    def exact_values(self) -> list[Amount]:
-        """Values of parts and givens, and of what ``with … as`` puts in their place."""
-        found = [d.exact for d in self.ledger.names.values() if d.given]
-        for c in self.ledger.circuits:
-            for e in c.elements:
-                if e.stated is not None:
-                    found.append(e.stated)
-        key = self.source.key
-        return [*found, *(v for _, _, v in key.changes if v is not None)] if key else found
+        changed = [v for _, _, v in self.source.key.changes if v is not None] if self.source.key else []
+        return Meanings([*constants, *changed], pieces, self.circuit_values(), repeated)
 
     def circuit_values(self) -> list[Sized]:
         """Voltages, currents and powers of the truth's circuit under its own qualifiers, printed or not."""

@@ -8,7 +8,7 @@ from __future__ import annotations
 
 from collections.abc import Iterator
 from dataclasses import replace
-from itertools import product
+from itertools import islice, product
 
 from calccheck.arithmetic import Real
 from calccheck.judge.scope import Key, Ledger
@@ -30,11 +30,7 @@ def followed(key: Key, ledger: Ledger, circuit: Circuit) -> Iterator[tuple[Real,
 
 
 def _printed(key: Key, ledger: Ledger) -> list[Real]:
-    values: list[Real] = []
-    for r in reversed(ledger.results):
-        if r.key == key and r.stands and r.printed.value not in values:
-            values.append(r.printed.value)
-    return values[:_MOST]
+    return [*islice(reversed(ledger.of_quantity.get(key, {})), _MOST)]
 
 
 def _own_law(key: Key, element: Element, ledger: Ledger, circuit: Circuit) -> Iterator[tuple[Real, str]]:

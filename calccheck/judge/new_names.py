@@ -10,7 +10,7 @@ from calccheck.formula import Node, Reference
 from calccheck.judge import hints
 from calccheck.judge.members import Names, Worked, work
 from calccheck.judge.rounding import Printed, equal, fit
-from calccheck.judge.scope import QUANTITY_LETTERS, Defined, Ledger, quantity_key
+from calccheck.judge.scope import QUANTITY_LETTERS, Defined, Ledger, define, quantity_key
 from calccheck.model import Claim, Judged
 
 
@@ -33,7 +33,7 @@ def assume(claim: Claim, ledger: Ledger, names: Names) -> Judged:
     shown = last.printed
     rounded = bool(claim.from_sheet) and isinstance(shown, Printed)  # a result of another sheet
     spread = shown.half if rounded and isinstance(shown, Printed) else Fraction(0)
-    ledger.names[name] = Defined(name, amount, shown, "working", True, claim.span.start, spread)
+    define(Defined(name, amount, shown, "working", True, claim.span.start, spread), ledger)
     return Judged(
         claim, "given", quantity=name, claimed=amount, claimed_unit=shown.written_in.text if shown else "",
         message=f"assumed, from {claim.from_sheet}" if claim.from_sheet else "assumed",

@@ -9,12 +9,13 @@ from dataclasses import dataclass, field, replace
 from fractions import Fraction
 from typing import Literal, Protocol
 
-from calccheck.arithmetic import Amount, Doubt, Real, evaluate
+from calccheck.arithmetic import Amount, Doubt, Real, evaluate, size
 from calccheck.component_code import component_code
 from calccheck.formula import Change, ChangeKind, Node, Reference
 from calccheck.judge.phasors import PrintedPhasor, Sized
 from calccheck.judge.rounding import Printed
 from calccheck.model import Basis, Circuit, Element, Settings, Solution, State, Verdict
+from calccheck.units import Dimension
 
 QUANTITY_LETTERS = {"V", "I", "P", "R", "Z", "Isc", "S", "Q"}
 _TWO_NODES = {"R", "Z", "Isc"}
@@ -81,7 +82,9 @@ class Ledger:
     """The sheet's circuits, and what its claims have established up to the present one.
 
     ``amounts``, ``variants``, ``states`` and ``around`` keep what was worked out once: quantities by key, changed circuits by
-    their changes, states by the sources that act, all values of a circuit. ``fails`` says why a circuit's parts cannot be in
+    their changes, states by the sources that act, all values of a circuit. ``exact``: the values of parts and givens by dimension
+    and magnitude; ``standing`` and ``failing``: of those results that may be carried on and of those that may not, the last by
+    dimension and magnitude; ``of_quantity``: the former by their quantity and value, the last at the end. ``fails`` says why a circuit's parts cannot be in
     the states that the sheet assumes, or nothing.
     """
 
@@ -89,13 +92,42 @@ class Ledger:
     solve: Solve
     settings: Settings
     names: dict[str, Defined] = field(default_factory=dict)
-    results: list[Result] = field(default_factory=list)
+    exact: set[tuple[Dimension, Real]] = field(default_factory=set)
+    standing: dict[tuple[Dimension, Real], Result] = field(default_factory=dict)
+    failing: dict[tuple[Dimension, Real], Result] = field(default_factory=dict)
+    of_quantity: dict[Key, dict[Real, Result]] = field(default_factory=dict)
     symbols: Mapping[str, Amount] = field(default_factory=dict)
     amounts: dict[Key, Amount] = field(default_factory=dict)
     variants: dict[object, Circuit] = field(default_factory=dict)
     states: dict[object, State] = field(default_factory=dict)
     around: dict[Key, list[Sized]] = field(default_factory=dict)
     fails: Callable[[Circuit], str] = lambda _: ""
+
+    def __post_init__(self) -> None:
+        """The values of the parts are known from the beginning."""
+        self.exact |= {magnitude(e.stated) for c in self.circuits for e in c.elements if e.stated is not None}
+
+
+def magnitude(a: Amount) -> tuple[Dimension, Real]:
+    """Dimension and magnitude, by which printed values are found again."""
+    return a.dimension, size(a.value)
+
+
+def define(d: Defined, ledger: Ledger) -> None:
+    """A name entered."""
+    ledger.names[d.name] = d
+    if d.given:
+        ledger.exact.add(magnitude(d.exact))
+
+
+def enter(result: Result, ledger: Ledger) -> None:
+    """A printed value entered, for what stands further down."""
+    where = ledger.standing if result.stands else ledger.failing
+    where[magnitude(result.printed.amount)] = result
+    if result.stands and result.key is not None:
+        same = ledger.of_quantity.setdefault(result.key, {})
+        finest = min(same.pop(result.printed.value, result), result, key=lambda r: r.printed.unit)
+        same[result.printed.value] = finest
 
 
 Sort = Literal["quantity", "part", "name", "constant"]

@@ -9,7 +9,7 @@ from calccheck.arithmetic import Amount, DimensionFault, Doubt, Lookup, Real, Va
 from calccheck.formula import Binary, Node, Number, Reference, Unary, numbers, references, walk
 from calccheck.judge.phasors import Sized, sized
 from calccheck.judge.rounding import SLACK, Printed, printed
-from calccheck.judge.scope import Ledger, Result
+from calccheck.judge.scope import Ledger, Result, magnitude
 from calccheck.units import NONE, Dimension
 
 
@@ -38,7 +38,7 @@ class Traced:
 class Meanings:
     """What the numbers of a member may stand for.
 
-    ``exact``: values of parts and givens, and constants of the formula, of which a number must be the very value.
+    ``exact``: values beside those of parts and givens of which a number must be the very value, as constants of the formula.
     ``pieces``: worked pieces of the members before it, of which it may be a right rounding, as of ``around``, the circuit's
     own values. ``repeated``: the printed numbers of the members before it.
     """
@@ -64,7 +64,7 @@ def _exponents(node: Node) -> list[Node]:
 def _one(n: Number, meanings: Meanings, ledger: Ledger) -> Traced:
     p = printed(n)
     assert p is not None
-    exactly = any(_same(p, a) for a in meanings.exact)
+    exactly = magnitude(p.amount) in ledger.exact or any(_same(p, a) for a in meanings.exact)
     if not exactly and _counts(n):
         return Traced(n, 0, True)
     x, room = float(size(p.value)), float(p.half)
@@ -111,12 +111,8 @@ def _same(p: Printed, a: Amount) -> bool:
 
 def _earlier(p: Printed, ledger: Ledger) -> Result | None:
     """The last earlier result printed with this value, one that stands before one that does not."""
-    same = [
-        r
-        for r in ledger.results
-        if r.printed.amount.dimension == p.amount.dimension and size(r.printed.value) == size(p.value)
-    ]
-    return next((r for r in reversed(same) if r.stands), same[-1] if same else None)
+    value = magnitude(p.amount)
+    return ledger.standing.get(value) or ledger.failing.get(value)
 
 
 def worked_pieces(node: Node, lookup: Lookup) -> list[Sized]:

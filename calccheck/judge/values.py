@@ -127,10 +127,8 @@ def _carried(p: Printed, truth: Real, ground: Ground, zero: Real) -> str:
     key: Key | None = ground.source.key
     if key is None or key.circuit < 0:
         return ""
-    if any(
-        r.key == key and r.stands and r.printed.value == p.value and r.printed.unit <= p.unit
-        for r in ground.ledger.results
-    ):
+    same = ground.ledger.of_quantity.get(key, {}).get(p.value)
+    if same is not None and same.printed.unit <= p.unit:
         return "the same value printed above"
     circuit = quantities.circuit_of(key, ground.ledger, ground.source.member.span)
     return next(

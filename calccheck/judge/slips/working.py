@@ -11,6 +11,7 @@ from calccheck.formula import Binary, Call, Group, Node, Number, Reference, Unar
 from calccheck.judge.laws import followed
 from calccheck.judge.members import Worked
 from calccheck.judge.rounding import Printed, equal, fit, printed
+from calccheck.judge.scope import magnitude
 from calccheck.judge.slips.case import Case, Guess
 from calccheck.judge.trace import reach
 from calccheck.printing import shown
@@ -122,8 +123,9 @@ def _stands_for(n: Node, piece: Node, case: Case) -> bool:
         return True
     if amount.dimension != p.amount.dimension:
         return False
-    same = [r for r in case.ledger.results if r.stands and equal(r.truth.value, amount.value)]
-    return fit(p, amount.value, Fraction(0)) != "no" or any(size(r.printed.value) == size(p.value) for r in same)
+    above = case.ledger.standing.get(magnitude(p.amount))
+    carried = above is not None and equal(above.truth.value, amount.value)
+    return carried or fit(p, amount.value, Fraction(0)) != "no"
 
 
 def _amount(piece: Node, case: Case) -> Amount | None:
