@@ -9,7 +9,7 @@ from __future__ import annotations
 
 from collections.abc import Sequence
 
-from calccheck.annotate.drawing.figures import Figures, Pin
+from calccheck.annotate.drawing.figures import Figures
 from calccheck.annotate.drawing.placed import Arrow, Box, Dot, Label, Layout, Lead, Line, Symbol
 from calccheck.annotate.drawing.posts import (
     APART,
@@ -152,15 +152,16 @@ def _upright(post: Post, x: float, ys: Sequence[float], made: Layout) -> None:
     y = start + (inner - words) / 2 + ascent()
     for k, line in enumerate((part.name, *part.lines)):
         made.labels.append(Label(x + post.behind, y + k * ROW, line, bold=k == 0))
-    _flow(post.pin, x, x + post.behind, start + inner + APART, post.down, made)
+    _flow(post, x, start + inner + APART, post.down, made)
 
 
-def _flow(pin: Pin, x: float, beside: float, y: float, inward_down: bool, made: Layout) -> None:
+def _flow(post: Post, x: float, y: float, inward_down: bool, made: Layout) -> None:
     """A current's arrow on its conductor and its words beside it, ``y`` being the top of its rows."""
+    pin = post.pin
     for k, line in enumerate(flow_lines(pin)):
-        made.labels.append(Label(beside, y + k * ROW + ascent(), line))
+        made.labels.append(Label(x + post.behind, y + k * ROW + ascent(), line))
     if pin.flow and pin.flow.sign:
-        made.arrows.append(Arrow(x, y + ROW / 2, inward_down == (pin.flow.sign > 0)))
+        made.arrows.append(Arrow(post.part.element.name, x, y + ROW / 2, inward_down == (pin.flow.sign > 0)))
 
 
 def _box_sides(post: Post, ys: Sequence[float]) -> tuple[float, float]:
@@ -189,4 +190,4 @@ def _lead(post: Post, x: float, ys: Sequence[float], made: Layout) -> None:
     else:
         _stretch(post, x, y2, ys[n], ys, made)
     made.labels.append(Label(x, (y1 + 2.0 if rises else y2 - ROW) + ascent(), post.pin.word, False, "middle"))
-    _flow(post.pin, x, x + post.behind, y1 - leads_height(post.part) if rises else y2 + 3.0, rises, made)
+    _flow(post, x, y1 - leads_height(post.part) if rises else y2 + 3.0, rises, made)

@@ -80,8 +80,9 @@ class Box:
 
 @dataclass(frozen=True, slots=True)
 class Arrow:
-    """A current's direction, on a conductor."""
+    """A current's direction, on a part's conductor."""
 
+    part: str
     x: float
     y: float
     down: bool
