@@ -87,9 +87,13 @@ def test_a_changed_figure_is_found(path: Path) -> None:
 
 
 def with_other_figure(claim: str) -> str:
-    """The leading digit of the last number made one larger, or 8 where it is 9."""
+    """The leading digit of the last number made one larger, or 8 where it is 9; a formula without one is doubled."""
     code = claim.split("#")[0].rstrip()
-    number = list(re.finditer(r"(?<![\w.{′])\d[\d.]*", code))[-1]
+    number = list(re.finditer(r"(?<![\w.′^])(?<!_\{)\d[\d.]*", code))[-1:]
+    if not number:
+        start, end = code.rindex("=") + 1, len(code.rstrip("$\n"))
+        return f"{code[:start]} 2 ({code[start:end]}){code[end:]}"
+    number = number[0]
     at = number.start() + re.search("[1-9]", number[0]).start()
     return claim[:at] + ("8" if claim[at] == "9" else str(int(claim[at]) + 1)) + claim[at + 1 :]
 

@@ -245,6 +245,8 @@ class Reader:
             raw = self.raw[self.at][1]
             if raw.startswith("\\") or raw == "{":
                 found += self.spelt()
+                if raw[1:].isalpha() and raw[1:] not in _UPRIGHT:
+                    self.skip_space()  # LaTeX takes a blank behind a command as its end
             else:
                 found += raw
                 self.at += 1
