@@ -12,7 +12,7 @@ import subprocess
 import sys
 import time
 from fractions import Fraction
-from itertools import combinations
+from itertools import combinations, pairwise
 from pathlib import Path
 from xml.etree import ElementTree
 
@@ -219,7 +219,7 @@ def test_levels_fall_with_the_potential_and_current_through_resistors_with_them(
     placed = layout(figures(made, solution))
     fine = 2e-9 * float(solution.volts)
     lines = sorted(placed.lines, key=lambda line: line.y)
-    for upper, lower in zip(lines, lines[1:], strict=False):
+    for upper, lower in pairwise(lines):
         assert float(potentials[upper.node]) >= float(potentials[lower.node]) - fine
     resistors = {e.name for e in made.elements if e.kind == "resistor" and e.value and e.plus != e.minus}
     assert all(a.down for a in placed.arrows if a.part in resistors)
@@ -280,19 +280,17 @@ def kinds_of_every_sort():
 
 
 def test_every_part_and_node_is_named_in_the_drawing_and_in_its_text_alternative():
-    made = kinds_of_every_sort()
+    many = kinds_of_every_sort()
     alternating = circuit(ac("V", "Vs", "in", "com", 10, 50), ac("Z", "Zl", "in", "com", 100j))
-    for made, solution in ((made, solve(made)), (made, None), (alternating, solve(alternating, Fraction(50)))):
+    for made, solution in ((many, solve(many)), (many, None), (alternating, solve(alternating, Fraction(50)))):
         root = ElementTree.fromstring(drawing(made, solution))
         lettered = {t.text for t in root.iter(f"{SVG}text")}
         words = root.find(f"{SVG}desc").text
-        names = [e.name for e in made.elements]
-        assert set(names) <= lettered
+        names = {e.name for e in made.elements}
+        assert names <= lettered
         assert set(made.nodes()) - {"com"} <= lettered and "com (reference)" in lettered
-        for name in names:
-            assert re.search(rf"\b{name}: ", words)
-    made = kinds_of_every_sort()
-    words = picture(made, solve(made)).words
+        assert all(re.search(rf"\b{name}: ", words) for name in names)
+    words = picture(many, solve(many)).words
     assert "V1: voltage source, from a (+) to com (−)" in words
     assert "Q1: transistor, base at m, collector at n, emitter at o" in words
 
@@ -440,7 +438,7 @@ def test_each_bar_begins_where_the_one_before_ends_and_the_total_at_zero(parts):
     found = bars.rows([(f"S{k}", Amount(v, VOLT)) for k, v in enumerate(parts)])
     *each, whole = found
     assert each[0].start == whole.start
-    assert all(a.end == b.start for a, b in zip(each, each[1:], strict=False))
+    assert all(a.end == b.start for a, b in pairwise(each))
     assert each[-1].end == whole.end
     assert all(0 <= x <= 1 for bar in found for x in (bar.start, bar.end))
     scale = max(0, *partial(parts)) - min(0, *partial(parts)) or 1
