@@ -6,13 +6,13 @@ from the first node through the part, its power is what it takes.
 
 from __future__ import annotations
 
-import math
 from collections.abc import Callable, Iterable
 from dataclasses import dataclass, replace
 from fractions import Fraction
 
-from calccheck.arithmetic import Amount, Doubt, Real, Value, plainest, size, trimmed
+from calccheck.arithmetic import Amount, Doubt, Real, Value, plainest
 from calccheck.formula import Change
+from calccheck.judge import powers
 from calccheck.judge.changes import DC, LAID_SHORT, changed, with_short, with_test_current
 from calccheck.judge.phasors import Sized, sized
 from calccheck.judge.scope import Key, Ledger
@@ -49,36 +49,27 @@ def rms(key: Key, ledger: Ledger, span: Span) -> Amount:
     if key.letter not in ("V", "I", "Isc"):
         raise Doubt("rms stands before a voltage or a current", span)
     circuit = circuit_of(key, ledger, span)
-    total, dimension = 0.0, VOLT
-    for f in _acting(key, circuit, span):
+    each: dict[Fraction, Value] = {}
+    dimension = VOLT
+    for f in acting(key, circuit, span):
         quantity = linear(key, circuit, span, f)
-        total += _half(f, ledger) * float(size(_summed(quantity, key, f, ledger, span))) ** 2
-        dimension = quantity.dimension
-    return Amount(math.sqrt(total), dimension)
-
-
-def _half(frequency: Fraction, ledger: Ledger) -> float:
-    """What makes a mean square of a phasor's square: one for rms phasors and for DC, a half for peak ones."""
-    return 0.5 if ledger.settings.phasors == "peak" and frequency != 0 else 1.0
+        each[f], dimension = _summed(quantity, key, f, ledger, span), quantity.dimension
+    return Amount(powers.rms(each, ledger.settings), dimension)
 
 
 def _power(key: Key, circuit: Circuit, ledger: Ledger, span: Span) -> Amount:
     """Average power P over all frequencies that act; complex power S and reactive power Q at one frequency (IEC 60375)."""
-    acting = _acting(key, circuit, span)
-    if key.letter != "P" and len(acting) > 1:
+    found = acting(key, circuit, span)
+    if key.letter != "P" and len(found) > 1:
         raise Doubt(f"{key.letter} belongs to one frequency: say at which", span)
     if len(key.subscripts) != 1:
         raise Doubt("a power is a part's", span)
-    total: Value = Fraction(0)
-    for f in acting:
+    each: dict[Fraction, tuple[Value, Value]] = {}
+    for f in found:
         voltage, current = (linear(replace(key, letter=x), circuit, span, f) for x in ("V", "I"))
         v, i = (_summed(q, key, f, ledger, span) for q in (voltage, current))
-        total += v * i if f == 0 else _half(f, ledger) * complex(v) * complex(i).conjugate()
-    if key.letter == "S":
-        return Amount(trimmed(total), WATT)
-    if key.letter == "Q":
-        return Amount(total.imag, WATT)
-    return Amount(trimmed(total.real), WATT)
+        each[f] = (v, i)
+    return Amount(powers.power(key.letter, each, ledger.settings), WATT)
 
 
 def frequencies(circuit: Circuit) -> tuple[Fraction, ...]:
@@ -99,24 +90,22 @@ def values_around(key: Key, ledger: Ledger, span: Span) -> list[Sized]:
 
 def _all_values(key: Key, ledger: Ledger, span: Span) -> list[Amount]:
     circuit = circuit_of(key, ledger, span)
-    acting = _acting(key, circuit, span)
-    if len(acting) > 1:
+    several = acting(key, circuit, span)
+    if len(several) > 1:
         return []
-    state = _state(circuit, key, acting[0], ledger, span)
+    state = _state(circuit, key, several[0], ledger, span)
     found = [Amount(plainest(v), VOLT) for v in state.potentials.values()]
     for e in circuit.elements:
         current = state.currents.get(e.name)
         if current is None or not e.plus:
             continue
         voltage = state.potentials[e.plus] - state.potentials[e.minus]
-        power = (
-            voltage * current if acting[0] == 0 else _half(acting[0], ledger) * voltage * complex(current).conjugate()
-        )
-        found += [Amount(plainest(voltage), VOLT), Amount(plainest(current), AMPERE), Amount(trimmed(power), WATT)]
+        power = powers.power("S", {several[0]: (voltage, current)}, ledger.settings)
+        found += [Amount(plainest(voltage), VOLT), Amount(plainest(current), AMPERE), Amount(power, WATT)]
     return found
 
 
-def _acting(key: Key, circuit: Circuit, span: Span) -> tuple[Fraction, ...]:
+def acting(key: Key, circuit: Circuit, span: Span) -> tuple[Fraction, ...]:
     """The frequencies of the sources that act on a quantity: all of them, or as its qualifiers say."""
     check_sources(key.due_to, circuit, span)
     if key.frequency is not None:
@@ -132,14 +121,14 @@ def frequency_of(key: Key, circuit: Circuit, ledger: Ledger, span: Span) -> Frac
     if key.letter == "Z":
         return _of_impedance(key, circuit, ledger, span)
     present = frequencies(circuit)
-    acting = _acting(key, circuit, span)
-    if len(acting) > 1:
-        shown = ", ".join("dc" if f == 0 else f"{float(f):g} Hz" for f in acting)
+    found = acting(key, circuit, span)
+    if len(found) > 1:
+        shown = ", ".join("dc" if f == 0 else f"{float(f):g} Hz" for f in found)
         raise Doubt(f"sources of several frequencies act here ({shown}): say at which, or rms", span)
     if key.frequency is not None and key.frequency not in present:
         shown = ", ".join("dc" if f == 0 else f"{float(f):g} Hz" for f in present)
         raise Doubt(f"no source of this circuit has {float(key.frequency):g} Hz; its sources have: {shown}", span)
-    return acting[0]
+    return found[0]
 
 
 def _of_impedance(key: Key, circuit: Circuit, ledger: Ledger, span: Span) -> Fraction:
@@ -231,8 +220,8 @@ def _state(circuit: Circuit, key: Key, frequency: Fraction, ledger: Ledger, span
     known = (circuit, key.due_to, frequency)
     if known not in ledger.states:
         check_sources(key.due_to, circuit, span)
-        acting = [s for name, s in solution.parts.items() if not key.due_to or name in key.due_to]
-        ledger.states[known] = _added(acting, solution.nodal)
+        parts = [s for name, s in solution.parts.items() if not key.due_to or name in key.due_to]
+        ledger.states[known] = _added(parts, solution.nodal)
     return ledger.states[known]
 
 
@@ -298,7 +287,7 @@ def scale(key: Key | None, ledger: Ledger, dimension: Dimension) -> Real:
         return 0
     try:
         circuit = circuit_of(key, ledger, Span(0, 0))
-        found = [ledger.solve(circuit, f) for f in _acting(key, circuit, Span(0, 0))]
+        found = [ledger.solve(circuit, f) for f in acting(key, circuit, Span(0, 0))]
     except Doubt:
         return 0
     largest = {VOLT: "volts", AMPERE: "amperes", WATT: "watts"}.get(dimension)
