@@ -207,6 +207,6 @@ def with_terminals(circuit: Circuit, currents: dict[str, Value]) -> dict[str, Va
         elif e.kind == "transformer":
             currents[keys[1]], currents[keys[3]] = -currents[keys[0]], -currents[keys[2]]
         else:
-            zero = type(currents[names_of(e)[0]])(0)
+            zero = 0 * currents[names_of(e)[0]]
             currents |= {key: zero for key in keys if key not in currents}
     return currents

@@ -22,8 +22,8 @@ SINGULAR = 1e13  # condition of the levelled equations beyond which their soluti
 def nodal_state(network: Network) -> State:
     """The state of a network whose structure is sound; not finite where the equations are singular after all."""
     at = layout_of(network)
-    matrix, right = _equations(network, at)
-    unit = _unit_current(network)
+    matrix, right = equations(network, at)
+    unit = unit_current(network)
     matrix, right = _levelled(matrix[None], right[None], len(at.nodes) - 1, unit)
     with np.errstate(all="ignore"):
         try:
@@ -36,8 +36,8 @@ def nodal_state(network: Network) -> State:
 def condition(network: Network) -> float:
     """Condition number (1-norm) of the levelled equations; infinite where they are singular."""
     at = layout_of(network)
-    matrix, right = _equations(network, at)
-    matrix, _ = _levelled(matrix[None], right[None], len(at.nodes) - 1, _unit_current(network))
+    matrix, right = equations(network, at)
+    matrix, _ = _levelled(matrix[None], right[None], len(at.nodes) - 1, unit_current(network))
     return float(_conditions(matrix)[0])
 
 
@@ -80,13 +80,13 @@ def _by_size(circuits: Sequence[Circuit], frequency: Fraction) -> dict[int, list
     sizes: dict[int, list[_Stack]] = defaultdict(list)
     for members in alike.values():
         first = network_of(circuits[members[0]], frequency)
-        at, unit = layout_of(first), _unit_current(first)
-        equations = _variants(first, [circuits[k] for k in members], at)
-        sizes[at.size].append(_Stack(at, unit, members, *_levelled(*equations, len(at.nodes) - 1, unit)))
+        at, unit = layout_of(first), unit_current(first)
+        variants = _variants(first, [circuits[k] for k in members], at)
+        sizes[at.size].append(_Stack(at, unit, members, *_levelled(*variants, len(at.nodes) - 1, unit)))
     return sizes
 
 
-def _equations(network: Network, at: Layout) -> tuple[Array, Array]:
+def equations(network: Network, at: Layout) -> tuple[Array, Array]:
     """Matrix and right side, the reference's row and column included."""
     kind = complex if network.frequency else float
     matrix, right = np.zeros((at.size, at.size), kind), np.zeros(at.size, kind)
@@ -97,7 +97,7 @@ def _equations(network: Network, at: Layout) -> tuple[Array, Array]:
 
 def _variants(first: Network, circuits: Sequence[Circuit], at: Layout) -> tuple[Array, Array]:
     """The equations of all circuits of one layout: those of the first, and over them what differs."""
-    matrix, right = _equations(first, at)
+    matrix, right = equations(first, at)
     matrices, rights = np.repeat(matrix[None], len(circuits), axis=0), np.repeat(right[None], len(circuits), axis=0)
     for k, c in enumerate(circuits):
         for e, e0 in zip(c.elements, first.circuit.elements, strict=True):
@@ -107,7 +107,7 @@ def _variants(first: Network, circuits: Sequence[Circuit], at: Layout) -> tuple[
     return matrices, rights
 
 
-def _unit_current(network: Network) -> float:
+def unit_current(network: Network) -> float:
     """One volt over the geometric mean of the impedances: currents counted in it are of the order of the voltages."""
     sizes = [math.log(size(b.value)) for b in network.branches if b.role == "impedance"]
     return math.exp(-sum(sizes) / len(sizes)) if sizes else 1.0
