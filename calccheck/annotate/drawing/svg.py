@@ -17,7 +17,7 @@ SIZE = 10.0
 """Of all lettering, in user units."""
 _ADVANCE = 0.602  # of a glyph, over the size: DejaVu Sans Mono; Menlo and Courier have the same, Consolas less
 _ASCENT, _DESCENT = 0.78, 0.24
-_ON_SCREEN = 1.3
+_SMALLEST, _LARGEST, _PAGE = 1.0, 1.3, 830.0  # pixels for a unit; the width of the page's text in pixels
 INK = 'stroke="currentColor" fill="none"'
 
 
@@ -93,11 +93,12 @@ class Picture:
 
 
 def picture(w: float, h: float, title: str, words: str, body: Iterable[str]) -> Picture:
-    """The whole image with its text alternative. On a screen lettering is ``SIZE`` times ``_ON_SCREEN`` pixels high."""
+    """The whole image with its text alternative, on a screen as large as a page is wide, within bounds of legibility."""
     title, words = told(title), told(words)
+    scale = min(_LARGEST, max(_SMALLEST, _PAGE / w))
     head = (
-        f'<svg xmlns="http://www.w3.org/2000/svg" role="img" width="{number(w * _ON_SCREEN)}" '
-        f'height="{number(h * _ON_SCREEN)}" viewBox="0 0 {number(w)} {number(h)}" font-family="{FAMILY}" '
+        f'<svg xmlns="http://www.w3.org/2000/svg" role="img" width="{number(w * scale)}" '
+        f'height="{number(h * scale)}" viewBox="0 0 {number(w)} {number(h)}" font-family="{FAMILY}" '
         f'font-size="{number(SIZE)}" fill="currentColor">'
     )
     lettered = f"<title>{escape(title, quote=False)}</title>", f"<desc>{escape(words, quote=False)}</desc>"
