@@ -12,7 +12,7 @@ from calccheck.formula import Reference
 from calccheck.judge import say
 from calccheck.judge.bounds import BOUNDS, judge_bound
 from calccheck.judge.ground import Ground
-from calccheck.judge.members import Names, Worked, work
+from calccheck.judge.members import Names, Worked, work_all
 from calccheck.judge.miss import Miss
 from calccheck.judge.new_names import assume, new_name
 from calccheck.judge.phasors import PrintedPhasor, parts
@@ -77,10 +77,8 @@ def judge_claim(claim: Claim, ledger: Ledger) -> tuple[Judged, tuple[Finding, ..
 
 
 def _chain(job: Work) -> Judged:
-    workings = [work(m, job.names) for m in job.claim.members]
-    name = new_name(workings, job.claim, job.ledger, job.names)
-    if name is not None:
-        workings[0] = replace(workings[0], sort="new name", doubt=None)
+    workings = work_all(job.claim.members, job.names)
+    name = new_name(workings, job.claim, job.ledger)
     segments = [_segment(part) for part in _parted(workings)]
     main = next((s for s in segments if s.basis == "circuit" and not s.only_a_value), None) or next(
         (s for s in segments if not s.only_a_value), segments[0]

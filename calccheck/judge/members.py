@@ -10,7 +10,7 @@ from fractions import Fraction
 from typing import Literal
 
 from calccheck.arithmetic import Amount, DimensionFault, Doubt, evaluate, size
-from calccheck.formula import Group, Node, Number, Range, Reference, numbers, references, walk
+from calccheck.formula import NO_QUALIFIERS, Group, Node, Number, Range, Reference, numbers, references, walk
 from calccheck.judge import hints, quantities
 from calccheck.judge.phasors import PrintedPhasor, printed_phasor
 from calccheck.judge.rounding import SLACK, Printed, printed
@@ -128,6 +128,22 @@ def _component(ref: Reference, key: Key, ledger: Ledger) -> Amount:
                 raise Doubt(f"{ref.text}: its magnitude is zero, which has no angle", ref.span)
             return Amount(cmath.phase(complex(a.value)))
     return a
+
+
+def work_all(members: Sequence[Member], names: Names) -> list[Worked]:
+    """The members of a chain worked out; a first one that is a name which nothing has is left for the chain to define."""
+    first, rest = members[0], [work(m, names) for m in members[1:]]
+    word = bare_name(first.node)
+    if word is not None and isinstance(first.node, Reference) and not names.known(first.node):
+        return [Worked(first, first.node, "new name"), *rest]
+    return [work(first, names), *rest]
+
+
+def bare_name(node: Node) -> str | None:
+    """The name that a member is, where it is nothing but a name."""
+    if not isinstance(node, Reference) or node.braced or node.prefix or node.qualifiers != NO_QUALIFIERS:
+        return None
+    return node.word
 
 
 def work(member: Member, names: Names) -> Worked:

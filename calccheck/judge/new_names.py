@@ -8,7 +8,7 @@ from fractions import Fraction
 from calccheck.arithmetic import Amount, Doubt
 from calccheck.formula import Node, Reference
 from calccheck.judge import hints
-from calccheck.judge.members import Names, Worked, work
+from calccheck.judge.members import Names, Worked, bare_name, work
 from calccheck.judge.rounding import Printed, equal, fit
 from calccheck.judge.scope import QUANTITY_LETTERS, Defined, Ledger, define, quantity_key
 from calccheck.model import Claim, Judged
@@ -16,7 +16,7 @@ from calccheck.model import Claim, Judged
 
 def assume(claim: Claim, ledger: Ledger, names: Names) -> Judged:
     """An assumption entered under its name. Raises ``Doubt`` where it gives no name a value, or a name that is taken."""
-    name = _bare_name(claim.members[0].node)
+    name = bare_name(claim.members[0].node)
     if name is None:
         raise Doubt("an assumption gives a plain name a value: given NAME = VALUE UNIT", claim.members[0].span)
     _refuse_taken(name, claim, ledger)
@@ -53,13 +53,6 @@ def _refuse_two_values(members: Sequence[Worked], amount: Amount) -> None:
             raise Doubt(f"the assumption has two values: {w.member.text} is not what stands before it", w.member.span)
 
 
-def _bare_name(node: Node) -> str | None:
-    """The name that a member is, where it is nothing but a name."""
-    if not isinstance(node, Reference) or node.braced or node.prefix or node.qualifiers != type(node.qualifiers)():
-        return None
-    return node.word
-
-
 def _refuse_taken(name: str, claim: Claim, ledger: Ledger) -> None:
     known = ledger.names.get(name)
     place = claim.members[0].span
@@ -81,13 +74,11 @@ def _refuse_of_circuit(node: Node, ledger: Ledger) -> None:
     _refuse_near_quantity(node, ledger)
 
 
-def new_name(workings: Sequence[Worked], claim: Claim, ledger: Ledger, names: Names) -> str | None:
+def new_name(workings: Sequence[Worked], claim: Claim, ledger: Ledger) -> str | None:
     """The name that the chain defines, if its first member is one that nothing has and a formula follows."""
     first = workings[0]
-    if not isinstance(first.node, Reference) or names.meaning(first.node) is not None:
-        return None
-    name = _bare_name(first.node)
-    if name is None:
+    name = bare_name(first.node)
+    if name is None or first.sort != "new name":
         return None
     if not any(w.sort in ("formula", "substitution") for w in workings[1:]):
         raise next((w.doubt for w in workings[1:] if w.doubt is not None), None) or _only_a_value(

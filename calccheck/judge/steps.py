@@ -24,15 +24,33 @@ from calccheck.judge.members import Worked, without_unit
 from calccheck.judge.phasors import PrintedPhasor
 from calccheck.judge.rounding import Printed, deviation, equal
 from calccheck.judge.trace import Reach, reach
-from calccheck.judge.values import judge_phasor, judge_value
+from calccheck.judge.values import judge_phasor, judge_value, largest
 from calccheck.model import Finding, Relation, Step
 from calccheck.printing import shown
 from calccheck.rules import RULES
 from calccheck.units import NONE, WATT, words
 
 
+NOISE = 1e-12  # of the largest like value of a circuit: what its solution in floating point leaves uncertain
+
+
 def judge_member(w: Worked, relation: Relation, ground: Ground) -> Step:
     """One ``=`` or ``≈``."""
+    step = _judged(w, relation, ground)
+    if step.verdict != "differs" or ground.basis != "circuit" or isinstance(ground.truth.value, Fraction):
+        return step
+    a = step.amount
+    if a is None or a.dimension != ground.truth.dimension or a.level or a.point:
+        return step
+    if size(a.value - ground.truth.value) > NOISE * largest(ground):
+        return step
+    message = (
+        f"{subject(ground)} is too near to zero beside the other values of its circuit to be certain in its digits"
+    )
+    return replace(step, verdict="unchecked", message=message)
+
+
+def _judged(w: Worked, relation: Relation, ground: Ground) -> Step:
     if w.doubt is not None:
         return decided(w, "unchecked", say.reason(w.doubt.reason, w.doubt.suggestion))
     assert w.amount is not None

@@ -67,7 +67,7 @@ def judge_value(w: Worked, p: Printed, relation: Relation, ground: Ground) -> St
         return _restated(w, p, ground)
     zero = ICE if p.amount.point else 0
     p, t = on_scale(p, t)
-    how = fit(p, t, settings.carry, _largest(ground) if p.digits == 0 else 0)
+    how = fit(p, t, settings.carry, largest(ground) if p.digits == 0 else 0)
     if how == "exact place":
         if coarse(p, t) and not equal(p.value, t):
             ground.cautions.append(
@@ -93,14 +93,14 @@ def judge_value(w: Worked, p: Printed, relation: Relation, ground: Ground) -> St
     return decided(w, "differs", f"{subject(ground)} comes to {near}, printed {w.member.text}{shift}")
 
 
-def _largest(ground: Ground) -> Real:
+def largest(ground: Ground) -> Real:
     """What a bare zero is held to: the largest like value of the circuit, or of the formula where things cancel."""
     dimension = ground.truth.dimension
     pieces = worked_pieces(ground.source.node, ground.names.amount)
-    largest: Real = max((x for d, x in pieces if d == dimension), default=0)
+    found: Real = max((x for d, x in pieces if d == dimension), default=0)
     if ground.basis == "circuit" and ground.source.key is not None and ground.source.key.circuit >= 0:
-        return max(largest, quantities.scale(ground.source.key, ground.ledger, dimension))
-    return largest
+        return max(found, quantities.scale(ground.source.key, ground.ledger, dimension))
+    return found
 
 
 def _restated(w: Worked, p: Printed, ground: Ground) -> Step:
