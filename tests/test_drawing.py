@@ -538,6 +538,9 @@ def test_nothing_is_drawn_that_is_not_known():
     assert "no solution" in shown.caption and "Vb" in shown.picture.svg
     with pytest.raises(Unsolvable):
         solve(check_text("l.md", loop).reading.circuits[0])
+    faulty = "# F\n\n```circuit\nreference com\nVa: 5 V, in to com\nR: 1 kΩ, in to com\nR2: many ohms, in to com\n```\n"
+    (shown,) = next(iter(pictures.behind(check_text("f.md", faulty)).values()))
+    assert "could not be read" in shown.caption and "5 mA" not in shown.picture.svg
 
 
 def test_more_parts_than_can_be_read_are_not_drawn_and_that_is_said():

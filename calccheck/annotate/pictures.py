@@ -63,7 +63,11 @@ def _drawing(circuit: Circuit, solution: Solution | None, missing: Collection[st
 
 def _caption(circuit: Circuit, solution: Solution | None) -> str:
     if solution is None:
-        why = "its values are free symbols" if circuit.symbols else "it has no solution to show"
+        why = "it has no solution to show"
+        if circuit.problems:
+            why = "the block has errors, and what could not be read of it is missing here"
+        elif circuit.symbols:
+            why = "its values are free symbols"
         return f"The circuit as read, nodes far from the reference on top; without potentials and currents: {why}."
     if solution.frequency:
         return (
