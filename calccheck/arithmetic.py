@@ -80,10 +80,9 @@ Note = Callable[[Node, Amount], None]
 
 def literal(number: Number) -> Amount:
     """A printed number in SI."""
-    value = Fraction(number.digits) * number.unit.factor
     if number.unit.celsius:
-        return Amount(value + ICE, number.unit.dimension, point=True)
-    return Amount(value, number.unit.dimension, level=number.unit.text == "dB")
+        return Amount(number.exact + ICE, number.unit.dimension, point=True)
+    return Amount(number.exact, number.unit.dimension, level=number.unit.text == "dB")
 
 
 def evaluate(node: Node, lookup: Lookup, number: Literal = literal, note: Note | None = None) -> Amount:

@@ -9,6 +9,7 @@ from collections.abc import Iterator
 from dataclasses import dataclass, field
 from decimal import Decimal
 from fractions import Fraction
+from functools import cached_property
 from typing import Literal
 
 from calccheck.source import Span
@@ -19,7 +20,7 @@ Operator = Literal["+", "-", "×", "÷", "^", "∥", "·", "∠"]
 Prefix = Literal["", "min", "max", "worst", "rss", "mag", "arg", "re", "im", "rms", "sigma", "yield"]
 
 
-@dataclass(frozen=True, slots=True)
+@dataclass(frozen=True)
 class Number:
     """A number as printed, with the unit behind it (``PLAIN`` where none stands).
 
@@ -33,6 +34,16 @@ class Number:
     unit: Unit = PLAIN
     unit_words: tuple[str, ...] = ()
     scientific: bool = False
+
+    @cached_property
+    def exact(self) -> Fraction:
+        """The digits times the unit's factor, in SI; asked for many times while a claim is judged."""
+        return Fraction(self.digits) * self.unit.factor
+
+    @cached_property
+    def place(self) -> Fraction:
+        """The unit of the last printed place, in SI."""
+        return Fraction(10) ** int(self.digits.as_tuple().exponent) * abs(self.unit.factor)
 
 
 @dataclass(frozen=True, slots=True)
@@ -149,9 +160,11 @@ def children(node: Node) -> tuple[Node, ...]:
 
 def walk(node: Node) -> Iterator[Node]:
     """The node and all below it, outer first, in reading order."""
-    yield node
-    for child in children(node):
-        yield from walk(child)
+    left = [node]
+    while left:
+        node = left.pop()
+        yield node
+        left += reversed(children(node))
 
 
 def numbers(node: Node) -> list[Number]:

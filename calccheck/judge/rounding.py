@@ -62,10 +62,8 @@ def printed(node: Node) -> Printed | None:
             node = node.inner
     if not isinstance(node, Number):
         return None
-    signed = node.digits if sign > 0 else node.digits.copy_negate()
-    amount = literal(Number(signed, node.span, node.unit))
-    place = Fraction(10) ** int(node.digits.as_tuple().exponent)
-    return Printed(amount, place * abs(node.unit.factor), figures(node.digits), signed, node.unit, node.scientific)
+    signed = node if sign > 0 else Number(node.digits.copy_negate(), node.span, node.unit)
+    return Printed(literal(signed), node.place, figures(node.digits), signed.digits, node.unit, node.scientific)
 
 
 def on_scale(p: Printed, truth: Real) -> tuple[Printed, Real]:
