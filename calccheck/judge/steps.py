@@ -30,7 +30,6 @@ from calccheck.printing import shown
 from calccheck.rules import RULES
 from calccheck.units import NONE, WATT, words
 
-
 NOISE = 1e-12  # of the largest like value of a circuit: what its solution in floating point leaves uncertain
 
 
