@@ -28,6 +28,11 @@ def with_loose_units(node: Node, is_name: Callable[[Reference], bool]) -> Node:
                 unit = _unit(node.operator, right, is_name)
                 if unit is not None:
                     return Number(left.digits, Span(left.span.start, right.span.end), unit, (right.word,))
+            if node.operator == "÷" and isinstance(right, Reference) and not right.subscripts:
+                unit = _unit("÷", right, is_name)
+                taken = _onto_last(left, unit, right) if unit is not None else None
+                if taken is not None:
+                    return taken
             same = left is node.left and right is node.right
             return node if same else replace(node, left=left, right=right)
         case Unary():
@@ -37,6 +42,16 @@ def with_loose_units(node: Node, is_name: Callable[[Reference], bool]) -> Node:
             inner = with_loose_units(node.inner, is_name)
             return node if inner is node.inner else replace(node, inner=inner)
     return node
+
+
+def _onto_last(node: Node, unit: Unit, word: Reference) -> Node | None:
+    """``E × 0.31 /kWh``: the unit taken into the last factor of a product, where that is a number without one."""
+    if isinstance(node, Number) and not node.unit.text:
+        return Number(node.digits, Span(node.span.start, word.span.end), unit, (word.word,))
+    if isinstance(node, Binary) and node.operator in ("×", "·"):
+        right = _onto_last(node.right, unit, word)
+        return None if right is None else replace(node, right=right, span=Span(node.span.start, word.span.end))
+    return None
 
 
 def _unit(operator: str, ref: Reference, is_name: Callable[[Reference], bool]) -> Unit | None:

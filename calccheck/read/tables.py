@@ -32,6 +32,7 @@ _SHAPE = re.compile(r"(?:Isc|[VIPRZ])_(?:\{[^{}]*\}|\w+)")
 _READS_AS_VALUE = re.compile(r"(?:[=≈<≤>≥~±]\s*)?[-−+]?\s?\.?\d[\d.,\s]*(?:[eE][-+]?\d+)?\s?([^\W\d]\w*|Ω|%|°C?)")
 _RELATION = re.compile(r"(~=|<=|>=|[=≈<≤>≥])\s*")
 _SIGN: dict[str, Relation] = {"~=": "≈", "<=": "≤", ">=": "≥"}
+_NUMBER = re.compile(r"[-−+]?\s?\.?\d[\d.,\s]*(?:[eE][-+]?\d+)?")
 _NOTHING = {"", "-", "–", "—", "−"}
 _PLAIN_HEADERS = {"", "total", "value", "nominal", "calculated"}
 HEADERS = "a qualifier (due to …, without …, with …), total, value, nominal, calculated, min, max, limit, unit"
@@ -109,7 +110,8 @@ def _claim(cell: Block, subject: Subject, edge: Edge, unit: str, circuit: int) -
         return None
     value_like = _READS_AS_VALUE.match(piece.text)
     if edge.role == "prose" or subject is _UNNAMED:
-        if not value_like or value_like[1] not in UNITS:
+        bare_number = edge.unit and _NUMBER.fullmatch(piece.text)
+        if not bare_number and (not value_like or value_like[1] not in UNITS):
             return None
         header = f"the header {edge.text!r} says nothing of this value; a header is {HEADERS}"
         reason = header if edge.role == "prose" else _UNNAMED.reason
@@ -244,7 +246,7 @@ def _edge(cell: Block) -> Edge:
             return Edge("claim", parse_qualifiers(body), unit=unit, text=body.text)
         except Doubt as d:
             return Edge("doubt", text=body.text, reason=f"the header cannot be read: {d.reason}")
-    return Edge("prose", text=body.text)
+    return Edge("prose", unit=unit, text=piece.text)
 
 
 def _compound(text: str) -> bool:
