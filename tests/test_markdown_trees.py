@@ -157,9 +157,9 @@ DEEP = {
 
 @pytest.mark.parametrize("page", DEEP.values(), ids=DEEP)
 def test_deep_and_long_pages_are_read_in_seconds_and_nothing_is_lost(page):
-    begin = time.perf_counter()
+    begin = time.process_time()  # other work on the machine is not counted
     tree = read_page(page)
-    assert time.perf_counter() - begin < 10
+    assert time.process_time() - begin < 10
     found = [inline for block in blocks(tree) for inline in inlines(block.inlines) if inline.kind == "code"]
     assert [inline.text.text for inline in found] == ["a"]
     assert page[found[0].span.start : found[0].span.end] == "`a`"
