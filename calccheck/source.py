@@ -51,6 +51,8 @@ class Piece:
     def span(self, start: int = 0, end: int | None = None) -> Span:
         """The span in the sheet of ``text[start:end]``, skipping characters that stand nowhere."""
         stop = len(self.text) if end is None else end
+        if start < stop and NOWHERE not in (first := self.at[start], last := self.at[stop - 1]):
+            return Span(first, last + 1)
         placed = [p for p in self.at[start:stop] if p != NOWHERE]
         if not placed:
             here = next((p for p in self.at[stop:] if p != NOWHERE), 0)
@@ -67,6 +69,8 @@ class Piece:
 
     def strip(self) -> Piece:
         """The piece without white space at its ends."""
+        if self.text == self.text.strip():
+            return self
         lead = len(self.text) - len(self.text.lstrip())
         return self.part(lead, max(lead, len(self.text.rstrip())))
 
