@@ -9,7 +9,8 @@ from fractions import Fraction
 from calccheck.arithmetic import DimensionFault, Doubt
 from calccheck.formula import Number
 from calccheck.model import Rating, Tolerance
-from calccheck.read.expression import hertz, parse
+from calccheck.read.expression import parse
+from calccheck.read.numbers_with_units import hertz
 from calccheck.source import Piece, Span
 from calccheck.units import AMPERE, LOOKALIKES, NONE, VOLT, WATT, Dimension, words
 

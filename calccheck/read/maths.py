@@ -13,8 +13,9 @@ from dataclasses import replace
 
 from calccheck.arithmetic import Doubt
 from calccheck.model import Member
-from calccheck.read.expression import FUNCTIONS, parse_chain
+from calccheck.read.expression import parse_chain
 from calccheck.read.tokens import LONGEST, RELATIONS, Token, tokens
+from calccheck.read.words import FUNCTIONS
 from calccheck.source import Piece
 from calccheck.units import LOOKALIKES
 

@@ -8,8 +8,8 @@ from dataclasses import dataclass
 from difflib import get_close_matches
 
 from calccheck.model import Finding
-from calccheck.read.expression import RESERVED
 from calccheck.read.tokens import SUPERSCRIPTS
+from calccheck.read.words import RESERVED
 from calccheck.rules import RULES
 from calccheck.source import Piece, Sheet, Span
 from calccheck.units import AMPERE, FARAD, HENRY, LOOKALIKES, OHM, SIEMENS, VOLT, Dimension

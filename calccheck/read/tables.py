@@ -23,7 +23,8 @@ from calccheck.formula import (
     references,
 )
 from calccheck.model import Claim, Member, Problem, Relation
-from calccheck.read.expression import QUALIFIER_WORDS, parse, parse_qualifiers, parse_value
+from calccheck.read.expression import parse, parse_qualifiers, parse_value
+from calccheck.read.words import QUALIFIER_WORDS
 from calccheck.source import NOWHERE, Piece, joined
 from calccheck.units import UNITS
 
