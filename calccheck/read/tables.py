@@ -214,7 +214,7 @@ def _subject(cell: Block) -> Subject | None:
     try:
         node = parse(codes[0])
     except Doubt as d:
-        shaped = _SHAPE.match(codes[0].text)
+        shaped = _SHAPE.match(codes[0].text) and not _RELATION.search(codes[0].text)
         return Subject(None, whole.text, reason=d.reason, suggestion=d.suggestion) if shaped else None
     if not references(node):
         return None
