@@ -152,19 +152,20 @@ def work(member: Member, names: Names) -> Worked:
     if isinstance(node, Range):
         return Worked(member, node, "range", doubt=_range_doubt(node))
     value = printed(node) or printed_phasor(node)
-    found = references(node)
     sort: Sort = "value" if value is not None else "substitution" if _has_printed(node) else "formula"
-    w = Worked(member, node, sort, printed=value)
+    basis: Basis = ""
+    key = amount = doubt = fault = None
+    restates = False
     try:
         _refuse_units_that_are_names(node, names)
-        meanings = [names.meaning(r) for r in found]
-        w = replace(w, basis=_basis(meanings, node), key=_key(node, meanings), restates=_restates(node, meanings))
+        meanings = [names.meaning(r) for r in references(node)]
+        basis, key, restates = _basis(meanings, node), _key(node, meanings), _restates(node, meanings)
         amount = value.amount if value is not None else evaluate(node, names.amount)
-        return replace(w, amount=amount)
     except Doubt as d:
-        return replace(w, doubt=d)
+        doubt = d
     except DimensionFault as f:
-        return replace(w, fault=f)
+        fault = f
+    return Worked(member, node, sort, basis, amount, value, key, restates, doubt, fault)
 
 
 def _range_doubt(node: Range) -> Doubt:
