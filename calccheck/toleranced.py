@@ -109,7 +109,7 @@ PLAIN: Functions = {
     "abs": size, "sqrt": _root, "exp": math.exp, "ln": math.log, "log10": math.log10, "sin": math.sin, "cos": math.cos,
     "tan": math.tan, "asin": math.asin, "acos": math.acos, "atan": math.atan, "min": min, "max": max, "parallel": _parallel,
     "re": lambda x: x.real, "im": lambda x: x.imag, "conj": lambda x: x.conjugate(), "arg": lambda x: cmath.phase(complex(x)),
-    "power": lambda x, i: x * i * i,
+    "power": lambda x, i: x * i * i, "over": lambda a, b: a / b,
 }  # fmt: skip
 """The functions of single numbers; ``power`` is what a resistance takes of the current behind it."""
 
@@ -138,6 +138,8 @@ def worked(node: Node, leaf: Callable[[str], Any], number: Callable[[Fraction], 
                 return inner * number(n.unit.factor) if n.unit.text else inner
             case Binary(operator="∥"):
                 return functions["parallel"](work(n.left), work(n.right))
+            case Binary(operator="÷"):
+                return functions["over"](work(n.left), work(n.right))
             case Binary():
                 return _binary(n, work)
             case Call():
@@ -160,8 +162,6 @@ def _binary(n: Binary, work: Callable[[Node], Any]) -> Any:
             return a + b
         case "-":
             return a - b
-        case "÷":
-            return a / b
         case "∠":
             return a * cmath.rect(1.0, float(b))
     return a * b

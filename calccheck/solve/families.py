@@ -7,6 +7,7 @@ equations of nodal analysis.
 
 from __future__ import annotations
 
+import math
 from collections.abc import Callable, Iterator, Mapping, Sequence
 from dataclasses import dataclass, replace
 from fractions import Fraction
@@ -21,6 +22,7 @@ from calccheck.solve.nodal import equations, unit_current
 from calccheck.solve.stamps import LAWS, Array, Layout, layout_of
 from calccheck.toleranced import PLAIN, Effect, Functions, Reading, worked
 
+_NOTHING = 1e-11  # a determinant beside the largest of its family that may as well be zero
 CHUNK = 2000  # points solved at once: these fit into the processor's cache
 
 
@@ -131,9 +133,22 @@ class Family:
         solution = np.concatenate([np.linalg.solve(a, b[..., None])[..., 0] for a, b in reduced.chunks()])
         return [reduced.read(solution, f) for f in functionals]
 
+    def at_values(self, values: Sequence[float]) -> tuple[Array, Array]:
+        """The inverse of all equations at one value of every open branch, and the solution there."""
+        matrix, right = self.matrix.copy(), self.right.copy()
+        for o, v in zip(self.opened, values, strict=True):
+            matrix[o.row] += v * o.across
+            right[o.row] += v * o.source
+        columns = np.where(np.arange(self.size) < len(self.at.nodes) - 1, 1.0, self._unit)
+        rows = 1 / np.abs(matrix * columns).max(axis=1, initial=1e-300)
+        inverse = columns[:, None] * np.linalg.inv(matrix * columns * rows[:, None]) * rows
+        return inverse, inverse @ right
+
     def signs(self, values: Sequence[Array]) -> Array:
-        """The sign of the determinant at many points, but for a factor that is the same at all of them."""
-        return np.concatenate([np.linalg.slogdet(a)[0] for a, _ in self._reduced(values).chunks()])
+        """The sign of the determinant at many points, but for a factor that is the same at all of them; 0 where rounding hides it."""
+        found = [np.linalg.slogdet(a) for a, _ in self._reduced(values).chunks()]
+        signs, sizes = (np.concatenate([f[k] for f in found]) for k in (0, 1))
+        return np.where(sizes < sizes.max() + math.log(_NOTHING), 0.0, signs)
 
     def _reduced(self, values: Sequence[Array]) -> Reduced:
         stacked = np.broadcast_arrays(*(np.atleast_1d(np.asarray(v)) for v in values))
