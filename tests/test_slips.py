@@ -332,9 +332,9 @@ def test_the_hypotheses_of_a_claim_are_one_batch_of_bounded_size(monkeypatch):
     """A ladder of 120 nodes has thousands of variants; no more are solved than the bound on work allows."""
     batches = []
 
-    def counting(circuits):
+    def counting(circuits, frequency):
         batches.append([2 * len(c.elements) for c in circuits])
-        return solve_batch(circuits)
+        return solve_batch(circuits, frequency)
 
     monkeypatch.setattr(pipeline, "solve_batch", counting)
     rungs = [hand.Part("R", f"R{k}", f"n{k}", f"n{k - 1}" if k > 1 else "com", 10.0 + k) for k in range(1, 121)]

@@ -8,17 +8,13 @@ from calccheck.arithmetic import Amount, Real, real, size
 from calccheck.judge.phasors import PrintedPhasor, is_angle, nearest_turn
 from calccheck.judge.rounding import Printed
 from calccheck.printing import shown
-from calccheck.units import PLAIN, printed, words
+from calccheck.units import PLAIN, Unit, digits, printed, words
 
 
 def near(a: Amount, p: Printed | PrintedPhasor) -> str:
     """The truth to two places more than the printed value shows, in its unit and its form."""
     if isinstance(p, PrintedPhasor) and not p.polar and isinstance(a.value, complex):
-        figures = max(4, p.figures + 2)
-        re, im = (printed(abs(x), a.dimension, figures, p.written_in) for x in (a.value.real, a.value.imag))
-        number, _, unit = re.partition(" ")
-        sign, lead = "−" if a.value.imag < 0 else "+", "−" if a.value.real < 0 else ""
-        return f"({lead}{number} {sign} j{im.partition(' ')[0]}) {unit}".strip()
+        return rectangular(a, p.written_in, max(4, p.figures + 2))
     if (
         isinstance(p, Printed)
         and is_angle(p)
@@ -29,6 +25,15 @@ def near(a: Amount, p: Printed | PrintedPhasor) -> str:
     return shown(a, p.written_in if _readable(a, p) else PLAIN, max(4, p.figures + 2))
 
 
+def rectangular(a: Amount, like: Unit, figures: int) -> str:
+    """A phasor by its real and imaginary part: ``(2.4 − j2.1) V``."""
+    value = complex(a.value)
+    re, im = (printed(abs(x), a.dimension, figures, like) for x in (value.real, value.imag))
+    number, _, unit = re.partition(" ")
+    sign, lead = "−" if value.imag < 0 else "+", "−" if value.real < 0 else ""
+    return f"({lead}{number} {sign} j{im.partition(' ')[0]}) {unit}".strip()
+
+
 def _readable(a: Amount, p: Printed | PrintedPhasor) -> bool:
     """Whether the printed unit suits the truth; a miss of a thousand reads better in the truth's own handy unit."""
     return a.value == 0 or Fraction(1, 1000) < size(a.value) / abs(p.written_in.factor) < 100_000
@@ -37,7 +42,7 @@ def _readable(a: Amount, p: Printed | PrintedPhasor) -> bool:
 def percent(x: float) -> str:
     """A deviation: ``+11.1 %``, ``−0.17 %``, or a factor where it is large."""
     if abs(x) >= 10:
-        return f"a factor of {abs(x + 1):.3g}"
+        return f"a factor of {digits(abs(x + 1), 3)}"
     return f"{x * 100:+.3g} %".replace("-", "−")
 
 

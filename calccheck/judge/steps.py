@@ -92,7 +92,7 @@ def _decibels(w: Worked, relation: Relation, ground: Ground) -> Step:
     assert w.amount is not None
     if not w.amount.level:
         return decided(w, "unchecked", f"{subject(ground)} is in dB, {w.member.text} is a plain number")
-    node = next((m.node for m in ground.members if _is_ratio(m.node)), ground.source.node)
+    node = next((m.node for m in ground.members if is_ratio(m.node)), ground.source.node)
     try:
         level = decibels(node, lambda n: evaluate(n, ground.names.amount))
     except Doubt as d:
@@ -103,7 +103,8 @@ def _decibels(w: Worked, relation: Relation, ground: Ground) -> Step:
     return step
 
 
-def _is_ratio(node: Node) -> bool:
+def is_ratio(node: Node) -> bool:
+    """Whether an expression is a ratio in which a name stands."""
     return isinstance(node, Binary) and node.operator == "÷" and bool(references(node))
 
 

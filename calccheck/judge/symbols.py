@@ -52,7 +52,7 @@ def _valued(e: Element, point: Point) -> Element:
 
     try:
         stated = evaluate(e.formula, lookup)
-    except Doubt:  # a root or a logarithm of what is negative at this point: left without a value, which its solution says
+    except Doubt:  # a root or a logarithm of what is negative here: left without a value, which its solution says
         return e
     if isinstance(stated.value, complex):
         return replace(e, phasor=stated.value, stated=stated)

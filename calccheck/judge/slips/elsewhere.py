@@ -5,15 +5,18 @@ from __future__ import annotations
 import re
 from collections.abc import Iterator
 from dataclasses import replace
+from fractions import Fraction
 
 from calccheck.arithmetic import Doubt, Value
-from calccheck.judge import quantities
+from calccheck.judge import powers, quantities
 from calccheck.judge.scope import Key
+from calccheck.judge.slips.again import POWERS
 from calccheck.judge.slips.case import Case, Guess
+from calccheck.judge.slips.figures import taken
 from calccheck.judge.slips.redo import NOWHERE
-from calccheck.judge.slips.sources import acting
-from calccheck.model import Circuit, Element, State
-from calccheck.units import AMPERE, VOLT, WATT, Dimension
+from calccheck.judge.slips.sources import together
+from calccheck.model import Circuit, Element, Settings, State
+from calccheck.units import AMPERE, NONE, VOLT, WATT, Dimension
 
 
 def other_quantity(case: Case) -> Iterator[Guess]:
@@ -31,39 +34,41 @@ def other_quantity(case: Case) -> Iterator[Guess]:
 
 
 def _same_place(key: Key, circuit: Circuit, case: Case) -> Iterator[Guess]:
-    """Voltages, currents and powers under the same qualifiers."""
-    states = tuple(acting(case).values())
-    if not states:
+    """Voltages, currents and powers under the same qualifiers, each as the claim takes its own: by its magnitude, say."""
+    state = together(case)
+    if state is None or case.which == "rms":
         return
-    base = case.redo.prepared(circuit, key)
-    for letter, name, value, dimension in _readings(base, _added(states)):
+    (frequency,) = case.frequencies
+    base = case.redo.prepared(circuit, key, frequency)
+    for letter, name, value, dimension in _readings(base, state, frequency, case.ledger.settings):
         if (letter, (name,)) == (key.letter, key.subscripts):
             continue
         label = f"{letter}_{name}" if re.fullmatch(r"\w+", name) else f"{letter}_{{{name}}}"
-        yield Guess(f"{label} in its place", value, dimension)
+        shown = taken(case.which, value)
+        yield Guess(f"{label} in its place", shown, NONE if case.which == "arg" else dimension)
         if (name,) == key.subscripts and dimension != case.dimension:
-            yield Guess(f"the number of {label} in its place", value, case.dimension)
+            yield Guess(f"the number of {label} in its place", shown, case.dimension)
 
 
-def _added(states: tuple[State, ...]) -> State:
-    potentials = {n: sum(s.potentials[n] for s in states) for n in states[0].potentials}
-    return State(potentials, {n: sum(s.currents[n] for s in states) for n in states[0].currents})
-
-
-def _readings(circuit: Circuit, state: State) -> Iterator[tuple[str, str, Value, Dimension]]:
+def _readings(
+    circuit: Circuit, state: State, frequency: Fraction, settings: Settings
+) -> Iterator[tuple[str, str, Value, Dimension]]:
     for node in circuit.nodes():
         if node != circuit.reference and circuit.element(node) is None:
             yield "V", node, state.potentials[node], VOLT
     for e in circuit.elements:
         if not e.terminals:
-            yield from _of_part(e, state)
+            yield from _of_part(e, state, frequency, settings)
 
 
-def _of_part(e: Element, state: State) -> Iterator[tuple[str, str, Value, Dimension]]:
+def _of_part(
+    e: Element, state: State, frequency: Fraction, settings: Settings
+) -> Iterator[tuple[str, str, Value, Dimension]]:
     volts, amperes = state.potentials[e.plus] - state.potentials[e.minus], state.currents[e.name]
     yield "V", e.name, volts, VOLT
     yield "I", e.name, amperes, AMPERE
-    yield "P", e.name, volts * amperes, WATT
+    for letter in POWERS if frequency else POWERS[:1]:
+        yield letter, e.name, powers.power(letter, {frequency: (volts, amperes)}, settings), WATT
 
 
 def _other_share(key: Key, circuit: Circuit, case: Case) -> Iterator[Guess]:
@@ -73,13 +78,18 @@ def _other_share(key: Key, circuit: Circuit, case: Case) -> Iterator[Guess]:
     others: list[tuple[str, Key]] = [(f"the part due to {min(s)}", replace(key, due_to=s)) for s in shares]
     if key.due_to:
         others.append(("the total of all sources", replace(key, due_to=frozenset())))
+    if key.frequency is not None:
+        rest = [f for f in circuit.frequencies if f != key.frequency]
+        others += [(f"the part at {float(f):g} Hz" if f else "the part at dc", replace(key, frequency=f)) for f in rest]
     if key.changes:
         others.append(("the value in the unchanged circuit", replace(key, changes=())))
     for what, other in others:
         if other == key:
             continue
         try:
-            amount = quantities.amount(other, case.ledger, NOWHERE)
+            work = quantities.rms if case.which == "rms" else quantities.amount
+            amount = work(other, case.ledger, NOWHERE)
         except Doubt:
             continue
-        yield Guess(f"{what} in its place", amount.value, amount.dimension)
+        dimension = NONE if case.which == "arg" else amount.dimension
+        yield Guess(f"{what} in its place", taken(case.which, amount.value), dimension)

@@ -11,14 +11,15 @@ from collections import defaultdict
 from collections.abc import Mapping, Sequence
 from dataclasses import dataclass
 
-from calccheck.arithmetic import Value, size
+from calccheck.arithmetic import Value
 from calccheck.judge.miss import Miss
 from calccheck.judge.slips.again import Again
-from calccheck.judge.slips.case import Case, Guess, case_of
-from calccheck.judge.slips.redo import Redo
+from calccheck.judge.slips.case import Case, Guess
+from calccheck.judge.slips.case_of import case_of
+from calccheck.judge.slips.redo import Needed, Redo
 from calccheck.judge.slips.table import SLIPS, SlipKind
 from calccheck.judge.slips.working import right_substitution
-from calccheck.model import Circuit, Slip
+from calccheck.model import Slip
 
 UNDECIDED = 3  # kinds that may fit before the number decides nothing
 _ALIKE = 3  # fits of one kind that a sentence names
@@ -44,10 +45,10 @@ def name_slips(miss: Miss, redo: Redo) -> tuple[tuple[Slip, ...], bool]:
     case = case_of(miss, redo)
     if case is None:
         return (), False
-    figures = case.printed.figures if case.printed is not None else 99
+    figures = sum(f.count for f in case.wrong) if case.figures else 99
     tried = [(kind, guess) for kind in SLIPS if figures >= kind.figures for guess in kind.find(case)]
     again = Again(case)
-    needs: dict[str, list[Circuit]] = defaultdict(list)
+    needs: dict[str, list[Needed]] = defaultdict(list)
     for kind, guess in tried:
         needs[kind.key] += again.to_solve(guess)
     redo.solve(_affordable(needs, redo))
@@ -60,9 +61,9 @@ def name_slips(miss: Miss, redo: Redo) -> tuple[tuple[Slip, ...], bool]:
     return slips, len(slips) > UNDECIDED and not any(guess.certain for guess, _ in fits[0].guesses)
 
 
-def _affordable(needs: Mapping[str, Sequence[Circuit]], redo: Redo) -> list[Circuit]:
+def _affordable(needs: Mapping[str, Sequence[Needed]], redo: Redo) -> list[Needed]:
     """The circuits of as many kinds as may be solved for one claim, kinds with few first: a large circuit has thousands."""
-    chosen: list[Circuit] = []
+    chosen: list[Needed] = []
     for circuits in sorted(needs.values(), key=len):
         if redo.work([*chosen, *circuits]) <= _MOST_WORK:
             chosen += circuits
@@ -83,32 +84,22 @@ def _fitting(kind: SlipKind, tried: Sequence[tuple[Guess, Value | None]], case: 
     score = kind.common * best / others
     if kind.of in ("sources", "circuit") and right_substitution(case) is not None:
         score *= _WORKING_RIGHT
-    if score < _ODDS * _chance(case) and not any(guess.certain for guess, *_ in met.values()):
+    if score < _ODDS * case.chance and not any(guess.certain for guess, *_ in met.values()):
         return None
     return _Fit(kind, tuple((g, v) for g, v, how in met.values() if how == best), score)
 
 
-def _chance(case: Case) -> float:
-    """How likely a wrong number without a slip is to be this one: one of all that lie as near the truth, or within 20 %."""
-    if case.printed is None or case.value is None:
-        return 0.0
-    off = max(float(size(case.value - case.truth)), 0.2 * float(size(case.truth)))
-    return float(case.printed.unit) / (2 * off) if off else 0.0
-
-
 def _how(guess: Guess, value: Value | None, case: Case) -> float:
     dimension = guess.dimension if guess.dimension is not None else case.miss.truth.dimension
-    if value is None or isinstance(value, complex) or dimension != case.dimension:
+    if value is None or dimension != case.dimension:
         return 0.0
     return case.fits(value)
 
 
 def _distinct(tried: Sequence[tuple[Guess, Value | None]], case: Case) -> int:
     """How many numbers of as many digits, other than the right one, the kind could have given."""
-    grain = float(case.printed.unit) if case.printed is not None else 1e-9 * (abs(float(case.truth)) or 1.0)
-    values = [float(v) for _, v in tried if v is not None and not isinstance(v, complex) and size(v) < 1e300 * grain]
-    numbers = {round(v / grain) for v in values}
-    return max(1, len(numbers - {round(float(case.truth) / grain)}))
+    cells = {case.cell(v) for _, v in tried if v is not None}
+    return max(1, len(cells - {case.cell(case.truth)}))
 
 
 def _sentence(fit: _Fit, case: Case) -> str:

@@ -10,11 +10,13 @@ from itertools import combinations
 from calccheck.arithmetic import Amount
 from calccheck.judge.slips.case import Case, Guess
 from calccheck.judge.slips.redo import Make, Variant, put
-from calccheck.model import Circuit, Element
+from calccheck.model import Circuit, Element, Kind
 from calccheck.preferred_values import neighbours
 from calccheck.printing import shown
-from calccheck.units import OHM, SIEMENS
+from calccheck.units import FARAD, HENRY, OHM, SIEMENS
 
+PASSIVE: tuple[Kind, ...] = ("resistor", "capacitor", "inductor", "impedance")
+_DIMENSIONS = {"resistor": OHM, "capacitor": FARAD, "inductor": HENRY}
 ALL_PAIRS = 12  # parts of a kind up to which every two may have been exchanged; beyond, those with a node in common
 
 
@@ -24,17 +26,17 @@ def swapped_values(case: Case) -> Iterator[Guess]:
 
 
 def element_absent(case: Case) -> Iterator[Guess]:
-    """One resistor, the load or a source's resistance, forgotten: a gap."""
+    """One part, the load or a source's resistance, forgotten: a gap."""
     return _variants(case, _absent)
 
 
 def element_shorted(case: Case) -> Iterator[Guess]:
-    """One resistor taken as no resistance: a short."""
+    """One part taken as no resistance: a short."""
     return _variants(case, _shorted)
 
 
 def neighbour_value(case: Case) -> Iterator[Guess]:
-    """One resistor at the preferred value next to its own (IEC 60063)."""
+    """One part at the preferred value next to its own (IEC 60063)."""
     return _variants(case, _neighbouring)
 
 
@@ -44,43 +46,55 @@ def _variants(case: Case, make: Make) -> Iterator[Guess]:
             yield Guess(v.what, circuit=v.circuit)
 
 
-def _resistors(circuit: Circuit) -> list[Element]:
-    return [e for e in circuit.elements if e.kind == "resistor" and e.value]
+def of_kind(circuit: Circuit, kind: Kind) -> list[Element]:
+    """The parts of a kind that have a value."""
+    return [e for e in circuit.elements if e.kind == kind and (e.value or e.phasor)]
+
+
+def passive(circuit: Circuit) -> list[Element]:
+    """The resistors, and in a circuit with alternating sources the capacitors, inductors and impedances."""
+    kinds = PASSIVE if any(circuit.frequencies) else PASSIVE[:1]
+    return [e for e in circuit.elements if e.kind in kinds and (e.value or e.phasor)]
 
 
 def _swapped(circuit: Circuit, _: frozenset[str]) -> Iterator[Variant]:
-    sources = [[e for e in circuit.elements if e.kind == kind] for kind in ("voltage source", "current source")]
-    for alike in (_resistors(circuit), *sources):
+    kinds = {*(e.kind for e in passive(circuit)), "voltage source", "current source"}
+    for kind in sorted(kinds, key=(*PASSIVE, "voltage source", "current source").index):
+        alike = of_kind(circuit, kind)
         for a, b in combinations(alike, 2):
             near = len(alike) <= ALL_PAIRS or {a.plus, a.minus} & {b.plus, b.minus}
-            if a.value != b.value and near:
+            if near and (a.value, a.phasor) != (b.value, b.phasor):
                 yield Variant(f"the values of {a.name} and {b.name} exchanged", put(circuit, [_as(a, b), _as(b, a)]))
 
 
 def _as(a: Element, b: Element) -> Element:
-    return replace(a, value=b.value, stated=b.stated, written=b.written)
+    return replace(a, value=b.value, phasor=b.phasor, stated=b.stated, written=b.written)
 
 
 def _absent(circuit: Circuit, _: frozenset[str]) -> Iterator[Variant]:
-    for e in _resistors(circuit):
-        yield Variant(f"{e.name} left out, a gap in its place", put(circuit, [replace(e, kind="open", value=None)]))
+    for e in passive(circuit):
+        yield Variant(f"{e.name} left out, a gap in its place", put(circuit, [bare(e, "open")]))
 
 
 def _shorted(circuit: Circuit, _: frozenset[str]) -> Iterator[Variant]:
-    for e in _resistors(circuit):
-        yield Variant(f"{e.name} left out, a short in its place", put(circuit, [replace(e, kind="short", value=None)]))
+    for e in passive(circuit):
+        yield Variant(f"{e.name} left out, a short in its place", put(circuit, [bare(e, "short")]))
+
+
+def bare(e: Element, kind: Kind) -> Element:
+    """A gap or a short in place of a part."""
+    return replace(e, kind=kind, value=None, phasor=None)
 
 
 def _neighbouring(circuit: Circuit, _: frozenset[str]) -> Iterator[Variant]:
-    for e in _resistors(circuit):
+    for e in passive(circuit):
         for value in neighbours(e.value) if e.value and e.value > 0 else ():
-            yield Variant(
-                f"{e.name} taken as {shown(Amount(value, OHM))}, the next preferred value",
-                put(circuit, [with_ohms(e, value)]),
-            )
+            what = f"{e.name} taken as {shown(Amount(value, _DIMENSIONS[e.kind]))}, the next preferred value"
+            yield Variant(what, put(circuit, [with_value(e, value)]))
 
 
-def with_ohms(e: Element, ohms: Fraction) -> Element:
-    """A resistor with another value; one stated as a conductance stays one."""
-    conductance = e.stated is not None and e.stated.dimension == SIEMENS
-    return replace(e, value=ohms, stated=Amount(1 / ohms, SIEMENS) if conductance else Amount(ohms, OHM))
+def with_value(e: Element, value: Fraction) -> Element:
+    """A resistor, capacitor or inductor with another value; a resistor stated as a conductance stays one."""
+    if e.stated is not None and e.stated.dimension == SIEMENS:
+        return replace(e, value=value, stated=Amount(1 / value, SIEMENS))
+    return replace(e, value=value, stated=Amount(value, _DIMENSIONS[e.kind]))

@@ -14,7 +14,8 @@ from calccheck.model import Circuit, Element, Solution, State
 from calccheck.source import Span
 
 NOWHERE = Span(0, 0)
-SolveBatch = Callable[[Sequence[Circuit]], Sequence[State | None]]
+SolveBatch = Callable[[Sequence[Circuit], Fraction], Sequence[State | None]]
+Needed = tuple[Circuit, Fraction]  # a circuit to solve, and the frequency at which
 
 
 @dataclass(frozen=True, slots=True)
@@ -47,7 +48,7 @@ class Redo:
 
     def __init__(
         self,
-        solve_one: Callable[[Circuit], Solution],
+        solve_one: Callable[[Circuit, Fraction], Solution],
         solve_batch: SolveBatch,
         earlier: Callable[[], Sequence[Earlier]],
     ) -> None:
@@ -55,8 +56,8 @@ class Redo:
         self._kept: list[Circuit] = []  # so that no identity is used twice
         self._variants: dict[tuple[object, ...], tuple[Variant, ...]] = {}
         self._prepared: dict[tuple[object, ...], Circuit] = {}
-        self._states: dict[int, State | None] = {}
-        self._parts: dict[int, Mapping[str, State]] = {}
+        self._states: dict[tuple[int, Fraction], State | None] = {}
+        self._parts: dict[tuple[int, Fraction], Mapping[str, State]] = {}
 
     def variants(self, make: Make, circuit: Circuit, keep: frozenset[str] = frozenset()) -> tuple[Variant, ...]:
         """The variants of a circuit that ``make`` yields, made once; the parts of ``keep`` stay as they are."""
@@ -66,43 +67,46 @@ class Redo:
             self._variants[known] = tuple(make(circuit, keep))
         return self._variants[known]
 
-    def prepared(self, circuit: Circuit, key: Key) -> Circuit:
+    def prepared(self, circuit: Circuit, key: Key, frequency: Fraction) -> Circuit:
         """A circuit or a variant of it as a quantity's qualifiers and kind ask for it to be solved. Raises ``Doubt``."""
-        special = (key.letter, key.subscripts) if key.letter in ("R", "Z", "Isc") else ()
+        special = (key.letter, key.subscripts, frequency) if key.letter in ("R", "Z", "Isc") else ()
         known = (id(circuit), key.changes, key.due_to, special)
         if known not in self._prepared:
             self._kept.append(circuit)
             made = with_changes(circuit, key, NOWHERE)
             if special:
-                made = linear(key, made, NOWHERE).circuit
+                made = linear(key, made, NOWHERE, frequency).circuit
             self._prepared[known] = zeroed(made, key.due_to) if key.due_to else made
         return self._prepared[known]
 
-    def solve(self, circuits: Iterable[Circuit]) -> None:
-        """Solves what is not solved yet, in one batch."""
-        new = {id(c): c for c in circuits if id(c) not in self._states}
-        if new:
-            self._kept += new.values()
-            self._states |= zip(new, self._solve_batch(list(new.values())), strict=True)
+    def solve(self, needed: Iterable[Needed]) -> None:
+        """Solves what is not solved yet, in one batch for each frequency."""
+        new = {(id(c), f): c for c, f in needed if (id(c), f) not in self._states}
+        self._kept += new.values()
+        for frequency in {f for _, f in new}:
+            some = {known: c for known, c in new.items() if known[1] == frequency}
+            self._states |= zip(some, self._solve_batch(list(some.values()), frequency), strict=True)
 
-    def work(self, circuits: Iterable[Circuit]) -> float:
-        """What solving them would take: the cubes of their numbers of equations, of those that are not solved yet."""
-        new = {id(c): c for c in circuits if id(c) not in self._states}
-        return float(sum((2 * len(c.elements)) ** 3 for c in new.values()))
+    def work(self, needed: Iterable[Needed]) -> float:
+        """What solving them would take: the cubes of their numbers of equations, fourfold for complex ones, solved ones free."""
+        new = {(id(c), f): c for c, f in needed if (id(c), f) not in self._states}
+        return float(sum((4 if f else 1) * (2 * len(c.elements)) ** 3 for (_, f), c in new.items()))
 
-    def state(self, circuit: Circuit) -> State:
+    def state(self, circuit: Circuit, frequency: Fraction) -> State:
         """The state of a circuit that ``solve`` has met. Raises ``Doubt`` where it has none."""
-        state = self._states.get(id(circuit))
+        state = self._states.get((id(circuit), frequency))
         if state is None:
             raise Doubt("the circuit with this slip in it has no solution")
         return state
 
-    def parts(self, circuit: Circuit) -> Mapping[str, State]:
-        """The states due to each source alone, in floating point. Raises ``Doubt``."""
-        if id(circuit) not in self._parts:
+    def parts(self, circuit: Circuit, frequency: Fraction) -> Mapping[str, State]:
+        """The states due to each source of a frequency alone, in floating point. Raises ``Doubt``."""
+        known = (id(circuit), frequency)
+        if known not in self._parts:
             self._kept.append(circuit)
-            self._parts[id(circuit)] = {name: _floats(s) for name, s in self._solve_one(circuit).parts.items()}
-        return self._parts[id(circuit)]
+            parts = self._solve_one(circuit, frequency).parts
+            self._parts[known] = {name: _floats(s) for name, s in parts.items()}
+        return self._parts[known]
 
 
 def put(circuit: Circuit, changed: Sequence[Element]) -> Circuit:

@@ -5,12 +5,13 @@ from __future__ import annotations
 import contextlib
 from collections.abc import Iterator, Mapping
 from dataclasses import replace
+from fractions import Fraction
 
 from calccheck.arithmetic import Doubt
-from calccheck.judge.slips.again import Again
-from calccheck.judge.slips.case import Case, Guess
+from calccheck.judge.slips.again import POWERS, Again
+from calccheck.judge.slips.case import Case, Guess, Terms
 from calccheck.judge.slips.redo import Make, Variant, put
-from calccheck.model import Circuit, Element, State
+from calccheck.model import Circuit, Element, Kind, State
 
 
 def source_missing(case: Case) -> Iterator[Guess]:
@@ -22,46 +23,58 @@ def source_missing(case: Case) -> Iterator[Guess]:
 def source_reversed(case: Case) -> Iterator[Guess]:
     """The sum with one part's sign turned."""
     for name, rest, part in _parted(case):
-        yield Guess(f"{name}'s contribution taken with the opposite sign", terms=(*rest, (-1, part)))
+        yield Guess(f"{name}'s contribution taken with the opposite sign", terms=(*rest, (-1, *part)))
 
 
 def source_twice(case: Case) -> Iterator[Guess]:
     """The sum with one part counted twice."""
     for name, rest, part in _parted(case):
-        yield Guess(f"{name}'s contribution counted twice", terms=(*rest, (2, part)))
+        yield Guess(f"{name}'s contribution counted twice", terms=(*rest, (2, *part)))
 
 
 def power_superposed(case: Case) -> Iterator[Guess]:
     """The sum of each source's own power, which does not superpose."""
     key, parts = case.key, acting(case)
-    if key is not None and key.letter == "P" and len(parts) > 1:
+    if key is not None and key.letter in POWERS and len(parts) > 1:
         again = Again(case)
-        powers = [again.value(Guess("", terms=((1, part),))) for part in parts.values()]
+        powers = [again.value(Guess("", terms=((1, *part),))) for part in parts.values()]
         if None not in powers:
             yield Guess("the powers of each source alone added up", sum(p for p in powers if p is not None))
 
 
-Terms = tuple[tuple[int, State | Circuit], ...]
+Part = tuple[State, Fraction]  # what one source brings about, and its frequency
 
 
-def _parted(case: Case) -> Iterator[tuple[str, Terms, State]]:
+def _parted(case: Case) -> Iterator[tuple[str, Terms, Part]]:
     """Each source of a sum of several, with the parts of the others and its own."""
     parts = acting(case)
     if len(parts) > 1:
         for name, part in parts.items():
-            yield name, tuple((1, s) for other, s in parts.items() if other != name), part
+            yield name, tuple((1, *p) for other, p in parts.items() if other != name), part
 
 
-def acting(case: Case) -> Mapping[str, State]:
+def acting(case: Case) -> Mapping[str, Part]:
     """The parts that add up to the quantity, by source; none for what is no sum of parts."""
     key, circuit = case.key, case.circuit
-    if key is None or circuit is None or key.letter not in ("V", "I", "P", "Isc"):
+    if key is None or circuit is None or key.letter not in ("V", "I", "Isc", *POWERS):
         return {}
+    found: dict[str, Part] = {}
     try:
-        parts = case.redo.parts(case.redo.prepared(circuit, replace(key, due_to=frozenset())))
+        for f in case.frequencies:
+            parts = case.redo.parts(case.redo.prepared(circuit, replace(key, due_to=frozenset()), f), f)
+            found |= {name: (s, f) for name, s in parts.items() if not key.due_to or name in key.due_to}
     except Doubt:
         return {}
-    return {name: s for name, s in parts.items() if not key.due_to or name in key.due_to}
+    return found
+
+
+def together(case: Case) -> State | None:
+    """The state of all sources that act, where they are of one frequency."""
+    states = [s for s, _ in acting(case).values()]
+    if not states or len(case.frequencies) != 1:
+        return None
+    potentials = {n: sum(s.potentials[n] for s in states) for n in states[0].potentials}
+    return State(potentials, {n: sum(s.currents[n] for s in states) for n in states[0].currents})
 
 
 # --- zeroed wrongly -------------------------------------------------------------------------------------------------
@@ -92,11 +105,11 @@ def _in_one_part(case: Case, make: Make) -> Iterator[Guess]:
     key, circuit = case.key, case.circuit
     if key is None or circuit is None or key.due_to:
         return
-    for name, rest, _ in _parted(case):
+    for name, rest, (_, f) in _parted(case):
         for v in case.redo.variants(make, circuit, frozenset({name})):
             with contextlib.suppress(Doubt):  # the quantity is not in this variant
-                part = case.redo.prepared(v.circuit, replace(key, due_to=frozenset({name})))
-                yield Guess(f"{v.what} in the part due to {name}", terms=(*rest, (1, part)))
+                part = case.redo.prepared(v.circuit, replace(key, due_to=frozenset({name})), f)
+                yield Guess(f"{v.what} in the part due to {name}", terms=(*rest, (1, part, f)))
 
 
 def _zeroed_wrongly(circuit: Circuit, keep: frozenset[str]) -> Iterator[Variant]:
@@ -110,14 +123,19 @@ def _zeroed_wrongly(circuit: Circuit, keep: frozenset[str]) -> Iterator[Variant]
 
 
 def _wrong(e: Element) -> Element:
-    return replace(e, kind="open" if e.kind == "voltage source" else "short", value=None)
+    kind: Kind = "open" if e.kind == "voltage source" else "short"
+    return replace(e, kind=kind, value=None, phasor=None, frequency=None)
 
 
 def _switched_off(circuit: Circuit, keep: frozenset[str]) -> Iterator[Variant]:
     controlled = [e for e in circuit.elements if e.control is not None and e.name not in keep]
-    off = [replace(e, kind="short" if "voltage" in e.kind else "open", value=None, control=None) for e in controlled]
+    off = [_off(e, "short" if "voltage" in e.kind else "open") for e in controlled]
     for e in off:
         yield Variant(f"{e.name} switched off like an independent source", put(circuit, [e]))
     if len(off) > 1:
         names = " and ".join(e.name for e in off)
         yield Variant(f"{names} switched off like independent sources", put(circuit, off))
+
+
+def _off(e: Element, kind: Kind) -> Element:
+    return replace(e, kind=kind, value=None, phasor=None, control=None)

@@ -5,10 +5,13 @@ from __future__ import annotations
 from collections.abc import Iterator, Sequence
 from dataclasses import replace
 
+from calccheck.arithmetic import Amount
 from calccheck.judge.slips.case import Case, Guess
 from calccheck.judge.slips.redo import NOWHERE
+from calccheck.judge.symbols import instance
 from calccheck.model import Circuit, Element
 from calccheck.printing import shown
+from calccheck.units import HERTZ
 
 _MOST = 3  # changes that a sentence names
 
@@ -20,8 +23,9 @@ def stale(case: Case) -> Iterator[Guess]:
         return
     for version in case.redo.earlier():
         before = _counterpart(later, case.index, version.circuits)
-        if before is None or before.problems:
+        if before is None or before.problems or any(name not in case.ledger.symbols for name, _ in before.symbols):
             continue
+        before = instance(before, case.ledger.symbols)
         changes = _changes(before, later)
         if changes:
             when = label or f"since {version.label}"
@@ -54,13 +58,21 @@ def _change(old: Element, new: Element) -> str:
         return ""
     if (old.plus, old.minus) != (new.plus, new.minus):
         return f"{old.name} went from {old.plus} to {old.minus} to stand from {new.plus} to {new.minus}"
+    if old.formula is not None or new.formula is not None:
+        return f"{old.name} went from {old.written} to {new.written}"
+    if old.frequency != new.frequency and old.stated == new.stated:
+        return f"{old.name} went from {_hertz(old)} to {_hertz(new)}"
     if old.stated is not None and new.stated is not None and old.stated != new.stated:
         return f"{old.name} went from {shown(old.stated)} to {shown(new.stated)}"
     return f"{old.name} was changed"
 
 
+def _hertz(e: Element) -> str:
+    return shown(Amount(e.frequency, HERTZ)) if e.frequency else "dc"
+
+
 def _bare(e: Element) -> Element:
-    return replace(e, span=NOWHERE, written="", stated=None, tolerance=None, ratings=())
+    return replace(e, span=NOWHERE, written="", stated=None, tolerance=None, ratings=(), formula=None)
 
 
 def _listed(changes: Sequence[str]) -> str:

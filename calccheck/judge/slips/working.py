@@ -6,11 +6,11 @@ from collections.abc import Iterator
 from dataclasses import replace
 from fractions import Fraction
 
-from calccheck.arithmetic import Amount, DimensionFault, Doubt, evaluate, size
+from calccheck.arithmetic import Amount, DimensionFault, Doubt, evaluate
 from calccheck.formula import Binary, Call, Group, Node, Number, Reference, Unary, numbers
 from calccheck.judge.laws import followed
 from calccheck.judge.members import Worked
-from calccheck.judge.rounding import Printed, equal, fit, printed
+from calccheck.judge.rounding import equal, fit, printed
 from calccheck.judge.scope import magnitude
 from calccheck.judge.slips.case import Case, Guess
 from calccheck.judge.trace import reach
@@ -23,14 +23,10 @@ def working_slip(case: Case) -> Iterator[Guess]:
     if first is not None and first.sort == "substitution":
         yield from _number_put_in(first, case)
     last = right_substitution(case)
-    if (
-        last is not None
-        and last.amount is not None
-        and case.printed is not None
-        and not _follows(case.printed, last.amount)
-    ):
-        room = max(1, int(size(case.truth) * 2 / 5 / case.printed.unit))  # numbers within 20 % that it might as well be
-        told = f"an arithmetic slip: {last.member.text} comes to {shown(last.amount, figures=max(4, case.printed.figures))}"
+    if last is not None and last.amount is not None and not _follows(case, last.amount):
+        room = max(1, round(1 / case.chance)) if case.chance else 1  # numbers as near that it might as well be
+        figures = max(4, *(f.printed.figures for f in case.figures))
+        told = f"an arithmetic slip: {last.member.text} comes to {shown(last.amount, figures=figures)}"
         yield Guess(told, certain=True, tried=room)
 
 
@@ -38,7 +34,7 @@ def early_rounding(case: Case) -> Iterator[Guess]:
     """The rounded numbers of the working, or values printed above, carried on."""
     last = right_substitution(case)
     if last is not None:
-        if last.amount is not None and not isinstance(last.amount.value, complex):
+        if last.amount is not None:
             yield Guess(f"rounding too early: {last.member.text} worked with its rounded numbers", last.amount.value)
         return
     key, circuit = case.key, case.circuit
@@ -50,14 +46,12 @@ def early_rounding(case: Case) -> Iterator[Guess]:
 def right_substitution(case: Case) -> Worked | None:
     """The last substitution that stands, before the value that does not."""
     stand = [w for w in case.members("agrees", "rounded") if w.sort == "substitution"]
-    return stand[-1] if stand and case.printed is not None else None
+    return stand[-1] if stand and case.figures else None
 
 
-def _follows(p: Printed, amount: Amount) -> bool:
-    """Whether a printed value is a working's result, rounded or cut off."""
-    if amount.dimension != p.amount.dimension or isinstance(amount.value, complex):
-        return False
-    return fit(p, amount.value, Fraction(0)) != "no"
+def _follows(case: Case, amount: Amount) -> bool:
+    """Whether the printed value is a working's result, rounded or cut off."""
+    return amount.dimension == case.dimension and case.fits(amount.value) > 0
 
 
 # --- the number that does not belong --------------------------------------------------------------------------------
