@@ -18,6 +18,7 @@ from calccheck.units import PLAIN, Unit
 ChangeKind = Literal["without", "open", "shorted", "as", "beta", "V_BE", "V_CE", "drop"]
 Operator = Literal["+", "-", "×", "÷", "^", "∥", "·", "∠"]
 Prefix = Literal["", "min", "max", "worst", "rss", "mag", "arg", "re", "im", "rms", "sigma", "yield"]
+OVER_TOLERANCES: tuple[Prefix, ...] = ("min", "max", "worst", "rss", "sigma", "yield")
 
 
 @dataclass(frozen=True)
@@ -79,6 +80,8 @@ class Reference:
 
     ``letter`` and ``subscripts`` are the parts of a name with a subscript (``V`` and ``('bus',)``), else ``word`` and ``()``.
     ``braced``: the subscript stood in braces. ``maths``: it stands in dollar maths, where ``R_1`` may mean the part R1. What the name means is decided where circuits and definitions are known.
+    ``bracket``: of a prefix with a bracket behind it, such as ``max (V_adc / Vref)`` or ``yield (V_out ≤ 3.4 V)``, its members
+    with the relation before each; ``word`` is then the whole as written.
     """
 
     word: str
@@ -90,6 +93,7 @@ class Reference:
     prefix: Prefix = ""
     text: str = ""
     maths: bool = False
+    bracket: tuple[tuple[str, Node], ...] = ()
 
 
 @dataclass(frozen=True, slots=True)
@@ -146,6 +150,8 @@ Node = Number | Reference | Unary | Binary | Group | Call | Range
 
 def children(node: Node) -> tuple[Node, ...]:
     """The nodes directly under one."""
+    if isinstance(node, (Number, Reference)):  # most nodes
+        return ()
     match node:
         case Unary(operand=inner) | Group(inner=inner):
             return (inner,)

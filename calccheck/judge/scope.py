@@ -53,6 +53,10 @@ class Key:
     changes: tuple[tuple[str, ChangeKind, Amount | None], ...] = ()
     frequency: Fraction | None = None
 
+    def __hash__(self) -> int:
+        """Without changes and frequency, whose rationals cost more to hash than a key to look up."""
+        return hash((self.circuit, self.letter, self.subscripts, self.due_to))
+
 
 @dataclass(frozen=True, slots=True)
 class Result:
