@@ -92,7 +92,9 @@ class Element:
     second+, second-. ``phasor``: of an AC source in volts or amperes, of an impedance in ohms, a complex gain; ``value`` is then
     ``None``. ``frequency``: of an AC source in hertz, ``UNSTATED`` where the sheet needs and names none, ``None`` for DC.
     ``formula``: of a value with free symbols, the only names in it; with an amount for each it comes to what ``stated`` would
-    be, or, of a controlled source, to its volts or amperes by 1 V or 1 A of what steers it.
+    be, or, of a controlled source, to its volts or amperes by 1 V or 1 A of what steers it. ``worked``: of a value worked from
+    assumptions, the formula with their names in it, which comes to the same. ``drift``: a second tolerance, where one of the
+    two is by the kelvin.
     """
 
     name: str
@@ -111,6 +113,8 @@ class Element:
     formula: Node | None = None
     frequency: Fraction | None = None
     device: Device | None = None
+    worked: Node | None = None
+    drift: Tolerance | None = None
 
     @property
     def is_source(self) -> bool:
@@ -361,7 +365,8 @@ class Settings:
     """The sheet's and repository's settings, section 7 of the language.
 
     ``phasors``: ``rms`` or ``peak``; ``derate``: fraction of every rating; ``preferred``: an IEC 60063 series or nothing;
-    ``frequency``: of unmarked AC parts, as written.
+    ``frequency``: of unmarked AC parts, as written. ``temperature``: lowest and highest in °C, for tolerances by the kelvin.
+    ``spread``: of random values within tolerances; ``samples`` of them are drawn from ``seed``.
     """
 
     carry: Fraction = Fraction(5, 1000)
@@ -371,6 +376,10 @@ class Settings:
     preferred: str = ""
     frequency: str = ""
     on: date | None = None
+    temperature: tuple[Fraction, Fraction] | None = None
+    spread: Literal["uniform", "normal"] = "uniform"
+    samples: int = 100_000
+    seed: int = 1
 
     @property
     def hertz(self) -> Fraction:
@@ -438,14 +447,34 @@ class WorkedQuantity:
 
 
 @dataclass(frozen=True, slots=True)
+class RatingHeld:
+    """A part held against one of its ratings, at the worst within tolerances.
+
+    ``limit``: the derated rating; ``share``: of it that the worst takes; ``where``: the values that make it the worst;
+    ``proved``: whether none is worse, or only none was found. ``case``: the named case, empty for the circuit as drawn.
+    """
+
+    part: str
+    circuit: str
+    case: str
+    rating: Rating
+    limit: Amount
+    worst: Amount
+    share: float
+    where: str
+    proved: bool
+
+
+@dataclass(frozen=True, slots=True)
 class Report:
-    """Everything the program has to say about one sheet."""
+    """Everything the program has to say about one sheet. ``ratings``: every rating, the nearest to its limit first."""
 
     reading: Reading
     claims: tuple[Judged, ...] = ()
     findings: tuple[Finding, ...] = ()
     figures: tuple[CircuitFigures, ...] = ()
     solutions: tuple[Solution | None, ...] = field(default=(), repr=False)
+    ratings: tuple[RatingHeld, ...] = ()
 
     @property
     def counts(self) -> dict[Verdict, int]:

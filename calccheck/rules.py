@@ -32,6 +32,8 @@ RULES: dict[str, Rule] = {
     "letter": Rule("caution", "A part's first letter contradicts its unit", "sheet-language.md#the-circuit-block"),
     "letter-case": Rule("caution", "Two names differ only in upper and lower case", "sheet-language.md#names"),
     "negative-resistance": Rule("caution", "A resistance below zero", "how-it-checks.md#structure"),
+    "rating": Rule("error", "A part beyond its rating, or a rating not checked", "tolerances.md#ratings"),
+    "preferred": Rule("caution", "A resistance that is no preferred value", "tolerances.md#preferred-values"),
     "dimension": Rule("error", "The dimensions do not fit", "sheet-language.md#expressions-and-units"),
     "untraced": Rule("caution", "A printed number stands for nothing in the sheet", "sheet-language.md#chains"),
     "waiver": Rule("error", "A waiver that cannot be read, has lapsed, or waives nothing", "sheet-language.md#waivers"),

@@ -25,7 +25,7 @@ _FIGURES = 12
 _SHORT = 8  # hexadecimal digits of a part's digest
 
 # Places and wording, which may change without changing what is said.
-_LAYOUT = {"span", "text", "written", "unit_words", "place", "problems"}
+_LAYOUT = {"span", "text", "written", "worked", "unit_words", "place", "problems"}
 _UNORDERED = {"elements", "ratings", "terminals", "symbols", "cases", "due_to"}
 _ASCII_MICRO = re.compile(r"(?<!\w)u(?=[VASWFHsCJgmΩ])")
 

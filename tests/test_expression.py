@@ -125,7 +125,7 @@ DOUBTS = [
     ("V_a ~ 8", 5, "write ≈", ""), ("5 § 2", 3, "§ means nothing", ""), ("5 \x07 2", 3, "U+0007", ""),
     ("(a + b", 1, "expected ) to close", ""), ("a + b)", 6, "expected an operator", ""), ("|a + b", 1, "expected | to close", ""),
     ("a +", 3, "expected a value", ""), ("", 1, "expected a value", ""), ("a + × b", 5, "expected a value, found ×", ""), ("5 V 3", 5, "follows without", ""),
-    ("sin", 1, "word of the language", ""), ("to", 1, "word of the language", ""), ("max(V_a)", 1, "not read in this version", ""),
+    ("sin", 1, "word of the language", ""), ("to", 1, "word of the language", ""), ("yield (V_a)", 1, "yield needs a relation", ""),
     ("V_a due Vb", 9, "expected to behind due", ""), ("V_a due to", 10, "source's name", ""), ("V_a with RL", 11, "open, shorted or as", ""),
     ("V_a due to Va due to Vb", 15, "stands twice", ""), ("V_a at R1", 8, "expected a frequency", ""),
     ("1e400 V", 1, "out of range", ""), ("1e99999999999999999999 V", 1, "out of range", ""), ("3 m⁹⁹", 3, "small whole number", ""),

@@ -49,7 +49,7 @@ def _remade(element: Element, change: Change, value: Amount | None) -> Element:
         value = Amount(1 / value.value, OHM)
     if value.dimension != wanted:
         raise Doubt(f"{element.name} is {words(wanted)}, {words(value.dimension)} cannot take its place", change.span)
-    plain = replace(element, stated=value, tolerance=None, formula=None)
+    plain = replace(element, stated=value, tolerance=None, drift=None, worked=None, formula=None)
     if isinstance(value.value, complex) or (element.is_source and element.frequency is not None):
         kind = element.kind if element.is_source else "impedance"
         return replace(plain, kind=kind, value=None, phasor=complex(value.value))

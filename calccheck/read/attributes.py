@@ -36,6 +36,11 @@ def is_tolerance(piece: Piece) -> bool:
     return _TOLERANCE.match(piece.text.translate(LOOKALIKES)) is not None
 
 
+def is_drift(piece: Piece) -> bool:
+    """Whether a tolerance is one by the kelvin."""
+    return re.search(r"/\s*(?:K|°C)\b", piece.text) is not None
+
+
 def read_tolerance(piece: Piece, of: Dimension | None = None) -> Tolerance:
     """A tolerance with its sign: ``±5 %``, ``±0.1 V``, ``+10/−5 %``, ``±50 ppm/K``.
 

@@ -12,6 +12,7 @@ from typing import cast
 from calccheck.arithmetic import Doubt
 from calccheck.formula import (
     NO_QUALIFIERS,
+    OVER_TOLERANCES,
     Binary,
     Call,
     Group,
@@ -28,7 +29,9 @@ from calccheck.formula import (
 from calccheck.model import Member, Relation
 from calccheck.read.cursor import Cursor
 from calccheck.read.numbers_with_units import number_at, unit_behind
+from calccheck.read.over_tolerances import bracket, bracketed_in, over
 from calccheck.read.qualifiers import qualifiers
+from calccheck.read.ranges import bracketed, with_unit_of
 from calccheck.read.tokens import RELATIONS, Token, superscript
 from calccheck.read.words import FUNCTIONS, PREFIXES, RESERVED
 from calccheck.source import Piece
@@ -97,7 +100,7 @@ def refuse_tall(c: Cursor, node: Node) -> None:
         return
     level, height = [node], 0
     while level:
-        level, height = [inner for n in level for inner in children(n)], height + 1
+        level, height = [inner for n in level for inner in (*children(n), *bracketed_in(n))], height + 1
         if height > TALLEST:
             raise Doubt(f"more than {TALLEST} operations within one another; part the formula", node.span)
 
@@ -108,11 +111,12 @@ def member(c: Cursor) -> Node:
     node = expression(c)
     if c.is_operator("±"):
         c.take()
-        return Range(node, expression(c), c.span(start), centred=True)
+        half = expression(c)
+        return Range(with_unit_of(node, half), half, c.span(start), centred=True)
     if c.is_operator("…") or (c.now.kind == "word" and c.now.text == "to"):
         c.take()
         high = expression(c)
-        return Range(_with_unit_of(node, high), high, c.span(start))
+        return Range(with_unit_of(node, high), high, c.span(start))
     return node
 
 
@@ -236,10 +240,13 @@ def qualified(c: Cursor, inner: Node) -> Node:
 
 
 def group(c: Cursor, opened: Token) -> Node:
-    """A bracket and the unit that multiplies it where one stands behind."""
+    """A bracket, or a range in one, and the unit that multiplies it where one stands behind."""
     inner = expression(c)
+    half = expression(c) if c.is_operator("±") and c.take() else None
     c.close(")", opened)
     unit, unit_words = unit_behind(c)
+    if half is not None:
+        return bracketed(inner, half, c.span(opened.start), unit, unit_words)
     return Group(inner, c.span(opened.start), unit, unit_words)
 
 
@@ -266,12 +273,19 @@ def call(c: Cursor, t: Token) -> Node:
         arguments.append(expression(c))
     c.close(")", opened)
     if t.text in ("min", "max") and len(arguments) == 1:
-        raise Doubt(f"{t.text} over the tolerances is not read in this version", c.span(t.start))
+        return over(c, t, (("", arguments[0]),))
     return Call(t.text, tuple(arguments), c.span(t.start))
 
 
 def prefixed(c: Cursor, t: Token) -> Node:
-    """``max V_out``: read, and left for the evaluation to say what it can do with it."""
+    """``max V_out``, ``max |V_out|``, ``max mag V_out``, ``worst (V_adc / Vref)``, ``yield (V_out ≤ 3.4 V)``."""
+    if t.text in OVER_TOLERANCES:
+        if c.is_operator("("):
+            return over(c, t, bracket(c, expression))
+        if c.is_operator("|"):
+            return over(c, t, (("", operand(c)),))
+        if c.now.kind == "word" and c.now.text in PREFIXES and c.now.text not in OVER_TOLERANCES:
+            return over(c, t, (("", prefixed(c, c.take())),))
     if c.now.kind not in ("word", "braced") or c.now.text in RESERVED:
         c.fail(f"expected a quantity behind {t.text}, found {c.shown(c.now)}")
     node = reference(c, c.take())
@@ -298,13 +312,3 @@ def _is_power_of_numbers(node: Node) -> bool:
     exponent = node.right.inner if isinstance(node.right, Group) else node.right
     exponent = exponent.operand if isinstance(exponent, Unary) else exponent
     return isinstance(exponent, Number) and not node.left.unit.text
-
-
-def _with_unit_of(low: Node, high: Node) -> Node:
-    """In ``3.21 … 3.45 V`` one unit at the end serves both."""
-    inner = low.operand if isinstance(low, Unary) else low
-    last = high.operand if isinstance(high, Unary) else high
-    if isinstance(inner, Number) and isinstance(last, Number) and not inner.unit.text:
-        inner = replace(inner, unit=last.unit, unit_words=last.unit_words)
-        return replace(low, operand=inner) if isinstance(low, Unary) else inner
-    return low

@@ -33,7 +33,10 @@ def read_model_value(word: str, piece: Piece, dimension: Dimension, span: Span) 
         hint = ", for a pnp too: from emitter to " if word in ("V_BE", "V_CE") else ""
         hint += {"V_BE": "base", "V_CE": "collector"}.get(word, "")
         raise Doubt(f"{word} is stated as a positive value{hint}", span)
-    return ModelValue(value, tolerance=read_tolerance(tolerance, dimension) if tolerance else None)
+    within = read_tolerance(tolerance, dimension) if tolerance else None
+    if within and within.relative and value == 0:
+        raise Doubt(f"{within.text} of zero is nothing; write it in the unit of the value", within.span)
+    return ModelValue(value, tolerance=within)
 
 
 def _swing(piece: Piece, dimension: Dimension, span: Span) -> ModelValue:

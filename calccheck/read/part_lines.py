@@ -9,7 +9,7 @@ from fractions import Fraction
 
 from calccheck.arithmetic import Doubt
 from calccheck.model import Kind, Rating
-from calccheck.read.attributes import is_rating, is_tolerance, read_frequency, read_rating, split_tolerance
+from calccheck.read.attributes import is_drift, is_rating, is_tolerance, read_frequency, read_rating, split_tolerance
 from calccheck.read.model_values import ModelValue, read_model_value
 from calccheck.read.names import NODE, WORD, plain_name
 from calccheck.source import Piece, Span
@@ -68,7 +68,8 @@ class PartLine:
     """A part's line as split.
 
     ``line``: all of it; ``body``: what of it stands before a comment; ``what``: the part's value or kind as written, without
-    the tolerance; ``nodes``: in the order in which they stand; ``values``, ``flags``: of a part that is told by a word.
+    the tolerance; ``nodes``: in the order in which they stand; ``drift``: a second tolerance, where one of the two is by the
+    kelvin; ``values``, ``flags``: of a part that is told by a word.
     """
 
     name: str
@@ -80,6 +81,7 @@ class PartLine:
     nodes: list[tuple[str, Span]] = field(default_factory=list)
     terminals: list[tuple[str, str]] = field(default_factory=list)
     tolerance: Piece | None = None
+    drift: Piece | None = None
     ratings: list[Rating] = field(default_factory=list)
     values: dict[str, ModelValue] = field(default_factory=dict)
     flags: set[str] = field(default_factory=set)
@@ -209,9 +211,14 @@ def _add_rating(part: PartLine, segment: Piece) -> None:
 
 
 def _add_tolerance(part: PartLine, segment: Piece) -> None:
-    if part.tolerance is not None:
-        raise Doubt(f"{part.name} has two tolerances; one is read", segment.span())
-    part.tolerance = segment
+    if part.tolerance is None:
+        part.tolerance = segment
+    elif part.drift is None and is_drift(segment) != is_drift(part.tolerance):
+        part.drift = segment
+    else:
+        raise Doubt(
+            f"{part.name} has two tolerances of a kind; one is read, and one by the kelvin beside it", segment.span()
+        )
 
 
 def _by_word(part: PartLine, segment: Piece, seen: set[str]) -> bool:

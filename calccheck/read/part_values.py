@@ -35,7 +35,8 @@ class Value:
     """A part's kind and value, as ``model.Element`` keeps them.
 
     ``dimension``: of the value as written. ``node``: the value with no names left but free symbols. ``symbolic``: whether it has
-    such. ``alternating``: whether it is written as a phasor, by an angle or j.
+    such. ``alternating``: whether it is written as a phasor, by an angle or j. ``worked``: the value with the names of givens
+    left in it, where there are such.
     """
 
     kind: Kind
@@ -47,6 +48,7 @@ class Value:
     phasor: complex | None = None
     symbolic: bool = False
     alternating: bool = False
+    worked: Node | None = None
 
 
 # --- reading ---------------------------------------------------------------------------------------------------------
@@ -124,16 +126,25 @@ def read_value(written: Written, scope: Scope) -> Value:
     _refuse_units_that_are_names(written.node, scope)
     amount = amount_of(written, scope.symbols)
     _refuse_unknown(written, amount, scope)
+    worked = _with_givens(amount, written, scope)
     node = closed(written.node, written.symbols, written.at)
     amount, node = _in_unit(amount, node, written)
     if written.control is None:
-        return _sorted(amount, node, written)
+        return replace(_sorted(amount, node, written), worked=worked)
     check_proportional(written, scope.symbols)
     kind = _CONTROLLED.get(amount.dimension)
     if kind is None:
         reason = f"{written.what.text} comes out as {words(amount.dimension)}; a controlled source comes out in volts or amperes"
         raise Doubt(reason, written.what.span())
-    return _valued(kind, amount, node, written)
+    return replace(_valued(kind, amount, node, written), worked=worked)
+
+
+def _with_givens(amount: Amount, w: Written, scope: Scope) -> Node | None:
+    """The value as a formula of the givens in it."""
+    names = [r.word for r in references(w.node) if r.word in scope.givens]
+    if not names or w.symbols:
+        return None
+    return _in_unit(amount, closed(w.node, names, w.at), w)[1]
 
 
 def _refuse_units_that_are_names(node: Node, scope: Scope) -> None:

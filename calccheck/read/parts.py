@@ -38,13 +38,17 @@ def read_part(part: PartLine, written: Written | None, scope: Scope) -> tuple[El
         doubt.span = doubt.span or part.what.span()
         raise
     plus, minus = part.ends
-    tolerance = read_tolerance(part.tolerance, value.dimension) if part.tolerance else None
+    found = [read_tolerance(p, value.dimension) for p in (part.tolerance, part.drift) if p]
+    tolerance, drift = [*found, None, None][:2]
     if tolerance and not tolerance.relative and (value.control or value.kind == "impedance"):
         what = "a gain" if value.control else "an impedance"
         raise Doubt(f"the tolerance of {what} is written ±5 %", tolerance.span)
+    if tolerance and tolerance.relative and value.stated is not None and value.stated.value == 0:
+        raise Doubt(f"{tolerance.text} of zero is nothing; write it in the unit of the value", tolerance.span)
     element = Element(
         part.name, value.kind, plus, minus, part.body.span(), value.value, value.stated, part.what.text, value.control,
         tolerance, tuple(part.ratings), phasor=value.phasor, formula=value.node if value.symbolic else None,
+        worked=value.worked, drift=drift,
     )  # fmt: skip
     return _alternating(element, part, value), _cautions(part, element, value)
 

@@ -14,6 +14,9 @@ from calccheck.units import LOOKALIKES
 
 _FRACTION = re.compile(r"(\d{1,9}(?:\.\d{1,12})?|\.\d{1,12})\s*(%?)")
 _FREQUENCY = re.compile(r"(\d+(?:\.\d+)?)\s*([mkMG]?Hz)")
+_CELSIUS = r"([-+]?\d{1,4}(?:\.\d{1,3})?)"
+_TEMPERATURES = re.compile(rf"{_CELSIUS}\s*(?:°C)?\s*(?:to|…|\.\.\.)\s*{_CELSIUS}\s*°C")
+FEWEST, MOST = 1000, 1_000_000  # random samples
 SERIES = ("E3", "E6", "E12", "E24", "E48", "E96", "E192")  # IEC 60063
 
 
@@ -78,11 +81,41 @@ def _frequency(key: str, text: str) -> str:
     return f"{m[1]} {m[2]}"
 
 
-_READERS: dict[str, Callable[[str, str], Fraction | str]] = {
+def _temperature(key: str, text: str) -> tuple[Fraction, Fraction]:
+    m = _TEMPERATURES.fullmatch(text.translate(LOOKALIKES))
+    if m is None or Fraction(m[1]) >= Fraction(m[2]):
+        raise SettingFault(f"{key} is a range such as −20 °C to 60 °C, the lower first, not {text}")
+    return Fraction(m[1]), Fraction(m[2])
+
+
+def _spread(key: str, text: str) -> str:
+    if text not in ("uniform", "normal"):
+        raise SettingFault(f"{key} is uniform or normal, not {text}")
+    return text
+
+
+def _samples(key: str, text: str) -> int:
+    digits = re.sub(r"[ \u00a0\u2009\u202f]", "", text)
+    if not digits.isascii() or not digits.isdigit() or not FEWEST <= int(digits[:12]) <= MOST:
+        raise SettingFault(f"{key} is a whole number from {FEWEST} to {MOST}, not {text}")
+    return int(digits)
+
+
+def _seed(key: str, text: str) -> int:
+    if not re.fullmatch(r"[0-9]{1,9}", text):
+        raise SettingFault(f"{key} is a whole number of up to nine digits, not {text}")
+    return int(text)
+
+
+_READERS: dict[str, Callable[[str, str], object]] = {
     "carry": _share,
     "approx": _share,
     "phasors": _phasors,
     "derate": _derating,
     "preferred": _series,
     "frequency": _frequency,
+    "temperature": _temperature,
+    "spread": _spread,
+    "samples": _samples,
+    "seed": _seed,
 }

@@ -46,8 +46,8 @@ def _form(node: Node, formula: Formula) -> Form | None:
             inner = _form(node.operand, formula)
             return inner and _turned(inner)
         case Call(function="abs"):
-            (inner,) = node.arguments
-            return Form("valley", inner=inner) if _is_quotient(inner, formula) else None
+            signed = node.arguments[0]
+            return Form("valley", inner=signed) if _is_quotient(signed, formula) else None
         case Call(function="power"):
             return _power(node, formula)
         case Binary(operator="+" | "-"):
