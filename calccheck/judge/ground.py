@@ -15,7 +15,7 @@ from calccheck.judge import quantities
 from calccheck.judge.members import Names, Worked
 from calccheck.judge.phasors import Sized
 from calccheck.judge.scope import Ledger
-from calccheck.judge.trace import Meanings, Traced, trace, worked_pieces
+from calccheck.judge.trace import Meanings, Traced, sizes, trace
 from calccheck.model import Basis, Finding, Step, Verdict
 
 
@@ -52,7 +52,7 @@ class Ground:
         before = [*takewhile(lambda m: m is not w, self.members)]
         fixed = [numbers(m.node) for m in before if m is self.source or m.sort == "formula"]
         constants = [literal(n) for found in fixed for n in found]
-        pieces = [a for m in before for a in worked_pieces(m.node, self.names.amount)]
+        pieces = [s for m in before for s in sizes(m.pieces)]
         repeated = [literal(n) for m in before for n in numbers(m.node)]
         changed = [v for _, _, v in self.source.key.changes if v is not None] if self.source.key else []
         return Meanings([*constants, *changed], pieces, self.circuit_values(), repeated)

@@ -10,7 +10,7 @@ from fractions import Fraction
 from typing import Literal
 
 from calccheck.arithmetic import Amount, DimensionFault, Doubt, evaluate, size
-from calccheck.formula import NO_QUALIFIERS, Group, Node, Number, Range, Reference, numbers, references, walk
+from calccheck.formula import NO_QUALIFIERS, Group, Node, Number, Range, Reference, numbers, walk
 from calccheck.judge import hints, quantities
 from calccheck.judge.phasors import PrintedPhasor, printed_phasor
 from calccheck.judge.rounding import SLACK, Printed, printed
@@ -28,6 +28,7 @@ class Worked:
 
     ``basis``: ``circuit`` where a quantity of a circuit or a name resting on one is in it, ``working`` where only names are.
     ``key``: of a member that is one bare quantity or name. ``restates``: it is a part's own value and nothing else.
+    ``pieces``: what each piece of a formula comes to, as far as it could be worked out.
     """
 
     member: Member
@@ -40,6 +41,7 @@ class Worked:
     restates: bool = False
     doubt: Doubt | None = None
     fault: DimensionFault | None = None
+    pieces: Sequence[tuple[Node, Amount]] = ()
 
     @property
     def relation(self) -> Relation:
@@ -50,15 +52,19 @@ class Worked:
 class Names:
     """The meanings of the references in one claim, each worked out once."""
 
-    __slots__ = ("_amounts", "ledger", "nearest")
+    __slots__ = ("_amounts", "_meanings", "ledger", "nearest")
 
     def __init__(self, nearest: int, ledger: Ledger) -> None:
         self.nearest, self.ledger = nearest, ledger
         self._amounts: dict[Reference, Amount] = {}
+        self._meanings: dict[Reference, Meaning] = {}
 
     def meaning(self, ref: Reference) -> Meaning | None:
         """What a reference means, or nothing."""
-        return meaning(ref, self.nearest, self.ledger)
+        found = self._meanings.get(ref) or meaning(ref, self.nearest, self.ledger)
+        if found is not None:
+            self._meanings[ref] = found
+        return found
 
     def known(self, ref: Reference) -> bool:
         """Whether a reference means anything, or would if its circuit were told."""
@@ -69,9 +75,10 @@ class Names:
 
     def amount(self, ref: Reference) -> Amount:
         """The exact amount of a reference. Raises ``Doubt`` where it has none."""
-        if ref not in self._amounts:
-            self._amounts[ref] = self._work(ref)
-        return self._amounts[ref]
+        found = self._amounts.get(ref)
+        if found is None:
+            found = self._amounts[ref] = self._work(ref)
+        return found
 
     def _work(self, ref: Reference) -> Amount:
         if ref.prefix in ("min", "max", "worst", "rss", "sigma", "yield"):
@@ -152,20 +159,26 @@ def work(member: Member, names: Names) -> Worked:
     if isinstance(node, Range):
         return Worked(member, node, "range", doubt=_range_doubt(node))
     value = printed(node) or printed_phasor(node)
-    sort: Sort = "value" if value is not None else "substitution" if _has_printed(node) else "formula"
+    nodes = [*walk(node)]
+    found = [n for n in nodes if isinstance(n, Reference)]
+    sort: Sort = "value" if value is not None else "substitution" if _has_printed(nodes, found) else "formula"
     basis: Basis = ""
     key = amount = doubt = fault = None
     restates = False
+    pieces: list[tuple[Node, Amount]] = []
     try:
-        _refuse_units_that_are_names(node, names)
-        meanings = [names.meaning(r) for r in references(node)]
+        _refuse_units_that_are_names(nodes, names)
+        meanings = [names.meaning(r) for r in found]
         basis, key, restates = _basis(meanings, node), _key(node, meanings), _restates(node, meanings)
-        amount = value.amount if value is not None else evaluate(node, names.amount)
+        if value is None:
+            amount = evaluate(node, names.amount, note=lambda n, a: pieces.append((n, a)))
+        else:
+            amount, pieces = value.amount, [(node, value.amount)]
     except Doubt as d:
         doubt = d
     except DimensionFault as f:
         fault = f
-    return Worked(member, node, sort, basis, amount, value, key, restates, doubt, fault)
+    return Worked(member, node, sort, basis, amount, value, key, restates, doubt, fault, pieces)
 
 
 def _range_doubt(node: Range) -> Doubt:
@@ -177,10 +190,10 @@ def _range_doubt(node: Range) -> Doubt:
     return Doubt("a range belongs behind worst, which this version does not read", node.span)
 
 
-def _has_printed(node: Node) -> bool:
+def _has_printed(nodes: Sequence[Node], found: Sequence[Reference]) -> bool:
     """Whether a printed value stands in the member: a number with a unit, or any number where no name stands."""
-    found = numbers(node)
-    return any(n.unit.text for n in found) or (bool(found) and not references(node))
+    printings = [n for n in nodes if isinstance(n, Number)]
+    return any(n.unit.text for n in printings) or (bool(printings) and not found)
 
 
 def _basis(meanings: Sequence[Meaning | None], node: Node) -> Basis:
@@ -215,8 +228,8 @@ def _restates(node: Node, meanings: Sequence[Meaning | None]) -> bool:
     return not _WORKED.search(first.element.written)
 
 
-def _refuse_units_that_are_names(node: Node, names: Names) -> None:
-    for n in walk(node):
+def _refuse_units_that_are_names(nodes: Sequence[Node], names: Names) -> None:
+    for n in nodes:
         for word in n.unit_words if isinstance(n, Number | Group) else ():
             if names.meaning(Reference(word, n.span)) is not None:
                 before = n.digits if isinstance(n, Number) else "(…)"

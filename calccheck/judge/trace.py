@@ -5,7 +5,7 @@ from __future__ import annotations
 from collections.abc import Sequence
 from dataclasses import dataclass
 
-from calccheck.arithmetic import Amount, DimensionFault, Doubt, Lookup, Real, Value, evaluate, literal, real, size
+from calccheck.arithmetic import Amount, Doubt, Lookup, Real, Value, evaluate, literal, real, size
 from calccheck.formula import Binary, Node, Number, Reference, Unary, numbers, references, walk
 from calccheck.judge.phasors import Sized, sized
 from calccheck.judge.rounding import SLACK, Printed, printed
@@ -115,19 +115,9 @@ def _earlier(p: Printed, ledger: Ledger) -> Result | None:
     return ledger.standing.get(value) or ledger.failing.get(value)
 
 
-def worked_pieces(node: Node, lookup: Lookup) -> list[Sized]:
-    """The amounts of all pieces of an expression that can be worked out; a printed number is none."""
-    found: list[Sized] = []
-
-    def note(piece: Node, a: Amount) -> None:
-        if not isinstance(piece, Number) and printed(piece) is None:
-            found.extend(sized(a))
-
-    try:
-        evaluate(node, lookup, note=note)
-    except (Doubt, DimensionFault):
-        return found  # what was worked out before the trouble
-    return found
+def sizes(pieces: Sequence[tuple[Node, Amount]]) -> list[Sized]:
+    """The magnitudes of the worked pieces of an expression; a printed real number is none."""
+    return [s for piece, a in pieces if not isinstance(piece, Number) and printed(piece) is None for s in sized(a)]
 
 
 @dataclass(frozen=True, slots=True)

@@ -18,7 +18,7 @@ from calccheck.judge.members import Worked
 from calccheck.judge.phasors import PrintedPhasor, is_angle, nearest_turn, phasor_fit
 from calccheck.judge.rounding import SLACK, Printed, coarse, deviation, equal, fit, on_scale
 from calccheck.judge.scope import Key
-from calccheck.judge.trace import worked_pieces
+from calccheck.judge.trace import sizes
 from calccheck.model import Relation, Step
 from calccheck.printing import shown
 
@@ -96,8 +96,7 @@ def judge_value(w: Worked, p: Printed, relation: Relation, ground: Ground) -> St
 def largest(ground: Ground) -> Real:
     """What a bare zero is held to: the largest like value of the circuit, or of the formula where things cancel."""
     dimension = ground.truth.dimension
-    pieces = worked_pieces(ground.source.node, ground.names.amount)
-    found: Real = max((x for d, x in pieces if d == dimension), default=0)
+    found: Real = max((x for d, x in sizes(ground.source.pieces) if d == dimension), default=0)
     if ground.basis == "circuit" and ground.source.key is not None and ground.source.key.circuit >= 0:
         return max(found, quantities.scale(ground.source.key, ground.ledger, dimension))
     return found
