@@ -111,7 +111,7 @@ def _refuse_near_quantity(ref: Reference, ledger: Ledger) -> None:
         for known in (*c.nodes(), *(e.name for e in c.elements)):
             if sub.lower() == known.lower() or _one_letter_off(sub, known):
                 raise Doubt(
-                    f"{ref.word} may be a slip for {ref.letter}_{known}; to define a name, choose one less alike",
+                    f"{ref.word} may be a slip for {ref.letter.capitalize()}_{known}; to define a name, choose one less alike",
                     ref.span,
                 )
 

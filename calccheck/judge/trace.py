@@ -8,6 +8,7 @@ from dataclasses import dataclass
 from calccheck.arithmetic import Amount, Doubt, Lookup, Real, Value, evaluate, literal, real, size
 from calccheck.formula import Binary, Node, Number, Reference, Unary, numbers, references, walk
 from calccheck.judge.phasors import Sized, sized
+from calccheck.judge.regrouped import regrouped
 from calccheck.judge.rounding import SLACK, Printed, printed
 from calccheck.judge.scope import Ledger, Result, magnitude
 from calccheck.units import NONE, Dimension
@@ -117,7 +118,8 @@ def _earlier(p: Printed, ledger: Ledger) -> Result | None:
 
 def sizes(pieces: Sequence[tuple[Node, Amount]]) -> list[Sized]:
     """The magnitudes of the worked pieces of an expression; a printed real number is none."""
-    return [s for piece, a in pieces if not isinstance(piece, Number) and printed(piece) is None for s in sized(a)]
+    own = [s for piece, a in pieces if not isinstance(piece, Number) and printed(piece) is None for s in sized(a)]
+    return own + regrouped(pieces)
 
 
 @dataclass(frozen=True, slots=True)
