@@ -48,10 +48,12 @@ def _parts(node: Node, signs: str, sign: int) -> Iterator[tuple[Node, int]]:
 def _products(parts: Sequence[tuple[Amount, int]]) -> Iterator[Sized]:
     for count in range(1, len(parts)):
         for some in combinations(parts, count):
-            value = math.prod(float(size(a.value)) ** sign for a, sign in some if a.value)
+            over = math.prod(float(size(a.value)) for a, sign in some if sign > 0)
+            under = math.prod(float(size(a.value)) for a, sign in some if sign < 0)
             dimension: Dimension = tuple(sum(sign * a.dimension[k] for a, sign in some) for k in range(5))
-            yield dimension, value
-            yield tuple(-x for x in dimension), 1 / value
+            if 0 < over < math.inf and 0 < under < math.inf:
+                yield dimension, over / under
+                yield tuple(-x for x in dimension), under / over
 
 
 def _sums(parts: Sequence[tuple[Amount, int]]) -> Iterator[Sized]:

@@ -214,8 +214,9 @@ def _subject(cell: Block) -> Subject | None:
     try:
         node = parse(codes[0])
     except Doubt as d:
-        shaped = _SHAPE.match(codes[0].text) and not _RELATION.search(codes[0].text)
-        return Subject(None, whole.text, reason=d.reason, suggestion=d.suggestion) if shaped else None
+        if _RELATION.search(codes[0].text) or not _SHAPE.match(codes[0].text):
+            return None
+        return Subject(None, whole.text, reason=d.reason, suggestion=d.suggestion)
     if not references(node):
         return None
     rest = whole.text.replace(codes[0].text, "", 1).strip()
