@@ -16,6 +16,7 @@ from typing import Any, Literal
 from calccheck.arithmetic import Doubt, Value, literal, real, size
 from calccheck.formula import Binary, Call, Group, Node, Number, Range, Reference, Unary
 from calccheck.model import Circuit, State
+from calccheck.units import NONE, Dimension
 
 
 @dataclass(frozen=True, slots=True)
@@ -30,6 +31,7 @@ class Varied:
     nominal: Fraction
     low: Fraction
     high: Fraction
+    dimension: Dimension = NONE
 
 
 @dataclass(frozen=True, slots=True)

@@ -14,7 +14,8 @@ from calccheck.component_code import component_code
 from calccheck.formula import Change, ChangeKind, Node, Reference
 from calccheck.judge.phasors import PrintedPhasor, Sized
 from calccheck.judge.rounding import Printed
-from calccheck.model import Basis, Circuit, Element, Settings, Solution, State, Verdict
+from calccheck.model import Basis, Circuit, Element, Settings, Solution, State, Tolerance, Verdict
+from calccheck.toleranced import Extreme, Formula, Sample, Spread
 from calccheck.units import Dimension
 
 QUANTITY_LETTERS = {"V", "I", "P", "R", "Z", "Isc", "S", "Q"}
@@ -26,7 +27,7 @@ class Defined:
     """A name of the sheet: the exact value for formulas, the printed one, and where it comes from.
 
     ``spread``: how far the exact value may be off because it was worked from rounded numbers (SI, either way). ``node``: the
-    formula that defines it.
+    formula that defines it, ``nearest`` the circuit above it. ``tolerance``: of an assumption.
     """
 
     name: str
@@ -37,6 +38,8 @@ class Defined:
     offset: int
     spread: Real = 0
     node: Node | None = None
+    nearest: int = -1
+    tolerance: Tolerance | None = None
 
 
 @dataclass(frozen=True, slots=True)
@@ -81,15 +84,32 @@ class Solve(Protocol):
         """The solution."""
 
 
+class Tolerancing(Protocol):
+    """Works formulas over their tolerances. Raises ``Doubt`` where they have no value there."""
+
+    def extreme(self, formula: Formula, largest: bool) -> Extreme:
+        """The largest or the least value."""
+
+    def slopes(self, formula: Formula) -> Mapping[str, float]:
+        """The slope at the nominal values along every varied value, by key."""
+
+    def at_ends(self, formula: Formula) -> Mapping[str, tuple[float, float]]:
+        """The formula with one varied value at its ends, low and high, all others nominal, by key."""
+
+    def sampled(self, formula: Formula, size: int, seed: int, spread: Spread) -> Sample:
+        """Moments over random values."""
+
+
 @dataclass(slots=True)
 class Ledger:
     """The sheet's circuits, and what its claims have established up to the present one.
 
-    ``amounts``, ``variants``, ``states`` and ``around`` keep what was worked out once: quantities by key, changed circuits by
-    their changes, states by the sources that act, all values of a circuit. ``exact``: the values of parts and givens by dimension
+    ``amounts``, ``variants``, ``states``, ``around`` and ``prepared`` keep what was worked out once: quantities by key, changed
+    circuits by their changes, states by the sources that act, all values of a circuit, circuits to read from. ``exact``: the values of parts and givens by dimension
     and magnitude; ``standing`` and ``failing``: of those results that may be carried on and of those that may not, the last by
     dimension and magnitude; ``of_quantity``: the former by their quantity and value, the last at the end. ``fails`` says why a circuit's parts cannot be in
-    the states that the sheet assumes, or nothing.
+    the states that the sheet assumes, or nothing. ``tolerances`` works formulas over them. ``assumptions``: of the whole sheet,
+    for the values of parts that are worked from them.
     """
 
     circuits: tuple[Circuit, ...]
@@ -106,6 +126,9 @@ class Ledger:
     states: dict[object, State] = field(default_factory=dict)
     around: dict[Key, list[Sized]] = field(default_factory=dict)
     fails: Callable[[Circuit], str] = lambda _: ""
+    tolerances: Tolerancing | None = None
+    assumptions: Mapping[str, Defined] = field(default_factory=dict)
+    prepared: dict[object, Circuit] = field(default_factory=dict)
 
     def __post_init__(self) -> None:
         """The values of the parts are known from the beginning."""
@@ -115,6 +138,12 @@ class Ledger:
 def magnitude(a: Amount) -> tuple[Dimension, Real]:
     """Dimension and magnitude, by which printed values are found again."""
     return a.dimension, size(a.value)
+
+
+def given(name: str, ledger: Ledger) -> Defined | None:
+    """An assumption of the sheet, above or below."""
+    d = ledger.names.get(name)
+    return d if d is not None and d.given else ledger.assumptions.get(name)
 
 
 def define(d: Defined, ledger: Ledger) -> None:

@@ -2,7 +2,6 @@
 
 from __future__ import annotations
 
-from collections.abc import Mapping
 from dataclasses import replace
 from typing import Any
 
@@ -66,11 +65,15 @@ class Worker:
         """Whether phasors are read."""
         return any(family.frequency for family, _ in self.read)
 
+    def _leaves(self, points: Floats) -> dict[str, Any]:
+        leaves: dict[str, Any] = {
+            k: v if isinstance(v, complex) else float(v) for k, v in self.formula.constants.items()
+        }
+        return leaves | dict(zip(self._keys, np.ascontiguousarray(points.T), strict=True))
+
     def values(self, points: Floats) -> Floats:
         """The formula at many points, a row each. Raises ``Pole`` where it has no value at one of them."""
-        leaves: dict[str, Any] = dict(self.formula.constants)
-        leaves = {k: v if isinstance(v, complex) else float(v) for k, v in leaves.items()}
-        leaves |= zip(self._keys, np.ascontiguousarray(points.T), strict=True)
+        leaves = self._leaves(points)
         try:
             for family, names in self.read:
                 functionals = [self._families.functional(self.formula.readings[name]) for name in names]
@@ -88,7 +91,7 @@ class Worker:
 
     def one_signed(self, points: Floats) -> bool:
         """Whether the determinants of all circuits keep their signs over these points."""
-        leaves: Mapping[str, Any] = dict(zip(self._keys, points.T, strict=True))
+        leaves = self._leaves(points)
         for family, _ in self.read:
             if family.opened and not family.frequency:
                 signs = family.signs(family.values(leaves.__getitem__, ARRAYS))
