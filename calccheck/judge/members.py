@@ -10,11 +10,23 @@ from fractions import Fraction
 from typing import Literal
 
 from calccheck.arithmetic import Amount, DimensionFault, Doubt, evaluate, size
-from calccheck.formula import NO_QUALIFIERS, Group, Node, Number, Range, Reference, numbers, walk
+from calccheck.formula import (
+    NO_QUALIFIERS,
+    OVER_TOLERANCES,
+    Group,
+    Node,
+    Number,
+    Range,
+    Reference,
+    numbers,
+    references,
+    walk,
+)
 from calccheck.judge import hints, quantities
 from calccheck.judge.phasors import PrintedPhasor, printed_phasor
 from calccheck.judge.rounding import SLACK, Printed, printed
 from calccheck.judge.scope import Key, Ledger, Meaning, circuit_index, meaning, quantity_key
+from calccheck.judge.spreads import Found, Spreading, over
 from calccheck.loose_units import with_loose_units
 from calccheck.model import Basis, Element, Member, Relation
 from calccheck.units import PLAIN
@@ -52,19 +64,33 @@ class Worked:
 class Names:
     """The meanings of the references in one claim, each worked out once."""
 
-    __slots__ = ("_amounts", "_meanings", "ledger", "nearest")
+    __slots__ = ("_amounts", "_meanings", "founds", "ledger", "nearest")
 
     def __init__(self, nearest: int, ledger: Ledger) -> None:
         self.nearest, self.ledger = nearest, ledger
+        self.founds: dict[Reference, Found] = {}  # values over tolerances, with what is to be said of them
         self._amounts: dict[Reference, Amount] = {}
         self._meanings: dict[Reference, Meaning] = {}
 
     def meaning(self, ref: Reference) -> Meaning | None:
         """What a reference means, or nothing."""
-        found = self._meanings.get(ref) or meaning(ref, self.nearest, self.ledger)
+        found = self._meanings.get(ref) or self._meaning(ref)
         if found is not None:
             self._meanings[ref] = found
         return found
+
+    def _meaning(self, ref: Reference) -> Meaning | None:
+        if not ref.bracket:
+            return meaning(ref, self.nearest, self.ledger)
+        inner = [r for _, n in ref.bracket for r in references(n)]
+        return Meaning("bracket", basis=_basis([self.meaning(r) for r in inner], ref))
+
+    @property
+    def spreading(self) -> Spreading:
+        """For expressions of this claim over their tolerances."""
+        return Spreading(
+            self.nearest, self.ledger, lambda r, n: (self if n == self.nearest else Names(n, self.ledger)).amount(r)
+        )
 
     def known(self, ref: Reference) -> bool:
         """Whether a reference means anything, or would if its circuit were told."""
@@ -81,8 +107,9 @@ class Names:
         return found
 
     def _work(self, ref: Reference) -> Amount:
-        if ref.prefix in ("min", "max", "worst", "rss", "sigma", "yield"):
-            raise Doubt(f"{ref.prefix} before a quantity is not read in this version", ref.span)
+        if ref.prefix in OVER_TOLERANCES:
+            self.founds[ref] = over(ref, lambda n: evaluate(n, self.amount), self.spreading)
+            return self.founds[ref].amount
         m = self.meaning(ref)
         if m is None:
             sentence, hint = hints.unknown(ref, self.nearest, self.ledger)
@@ -168,6 +195,7 @@ def work(member: Member, names: Names) -> Worked:
     pieces: list[tuple[Node, Amount]] = []
     try:
         _refuse_units_that_are_names(nodes, names)
+        _refuse_half_prefixed(member, found, names)
         meanings = [names.meaning(r) for r in found]
         basis, key, restates = _basis(meanings, node), _key(node, meanings), _restates(node, meanings)
         if value is None:
@@ -184,10 +212,9 @@ def work(member: Member, names: Names) -> Worked:
 def _range_doubt(node: Range) -> Doubt:
     if node.centred:
         return Doubt(
-            "a tolerance on a computed value: it belongs behind worst or rss, which this version does not read",
-            node.span,
+            "a deviation of a computed value: say of which kind by worst or rss before the quantity", node.span
         )
-    return Doubt("a range belongs behind worst, which this version does not read", node.span)
+    return Doubt("a range belongs behind worst or rss", node.span)
 
 
 def _has_printed(nodes: Sequence[Node], found: Sequence[Reference]) -> bool:
@@ -203,15 +230,17 @@ def _basis(meanings: Sequence[Meaning | None], node: Node) -> Basis:
             continue
         if m.sort == "quantity":
             bases.add("circuit")
+        elif m.sort == "bracket":
+            bases.add(m.basis)
         elif m.defined is not None:
             bases.add(m.defined.basis or "working")
         else:
             bases.add("circuit" if isinstance(node, Reference) else "working")
-    return "circuit" if "circuit" in bases else "working" if bases else ""
+    return "circuit" if "circuit" in bases else "working" if bases - {""} else ""
 
 
 def _key(node: Node, meanings: Sequence[Meaning | None]) -> Key | None:
-    if not isinstance(node, Reference) or not meanings or meanings[0] is None:
+    if not isinstance(node, Reference) or not meanings or meanings[0] is None or node.prefix in OVER_TOLERANCES:
         return None
     m = meanings[0]
     return Key(-1, "name", (node.word,)) if m.sort == "name" else m.key
@@ -222,7 +251,7 @@ _WORKED = re.compile(r"[*×·/÷∥()^√]|^(?!.*\d)")
 
 def _restates(node: Node, meanings: Sequence[Meaning | None]) -> bool:
     """Whether the member is a part's own value as written; one that the block works from others is rounded like any."""
-    first = meanings[0] if meanings and isinstance(node, Reference) else None
+    first = meanings[0] if meanings and isinstance(node, Reference) and not node.prefix else None
     if first is None or first.element is None or first.sort != "part":
         return False
     return not _WORKED.search(first.element.written)
@@ -238,6 +267,22 @@ def _refuse_units_that_are_names(nodes: Sequence[Node], names: Names) -> None:
                     f"for the unit give the name another spelling",
                     n.span,
                 )
+
+
+def _refuse_half_prefixed(member: Member, found: Sequence[Reference], names: Names) -> None:
+    """``max V_out / Vref``: the largest V_out over Vref, or the largest of the ratio?"""
+    over_them = [r for r in found if r.prefix in OVER_TOLERANCES]
+    if not over_them or len(over_them) == len(found):
+        return
+    others = [r for r in found if r not in over_them]
+    beside = next((r for r in others if (m := names.meaning(r)) is not None and m.sort != "constant"), None)
+    if beside is not None:
+        first = over_them[0]
+        rest = member.text.replace(first.text, first.text.removeprefix(first.prefix).strip(), 1)
+        reason = (
+            f"{first.text} beside {beside.text} can be read two ways: {first.prefix} takes one quantity or one bracket"
+        )
+        raise Doubt(reason, first.span, f"{first.prefix} ({rest})")
 
 
 def without_unit(w: Worked) -> bool:

@@ -225,6 +225,12 @@ def _state(circuit: Circuit, key: Key, frequency: Fraction, ledger: Ledger, span
     return ledger.states[known]
 
 
+def whole(circuit: Circuit, ledger: Ledger, span: Span, frequency: Fraction = DC) -> State:
+    """The state of a circuit with all its sources at work. Raises ``Doubt`` where it has none."""
+    solution = solved(circuit, ledger, span, frequency)
+    return _added([*solution.parts.values()], solution.nodal) if solution.exact else solution.nodal
+
+
 def _added(states: list[State], like: State) -> State:
     if len(states) == 1:
         return states[0]

@@ -163,18 +163,22 @@ def enter(result: Result, ledger: Ledger) -> None:
         same[result.printed.value] = finest
 
 
-Sort = Literal["quantity", "part", "name", "constant"]
+Sort = Literal["quantity", "part", "name", "constant", "bracket"]
 
 
 @dataclass(frozen=True, slots=True)
 class Meaning:
-    """What a reference is: a quantity of a circuit, a part's own value, a name of the sheet, or a constant."""
+    """What a reference is: a quantity of a circuit, a part's own value, a name of the sheet, a constant, or a bracket.
+
+    ``basis``: of a bracket behind a prefix, what it rests on.
+    """
 
     sort: Sort
     key: Key | None = None
     element: Element | None = None
     defined: Defined | None = None
     constant: Amount | None = None
+    basis: Basis = ""
 
 
 _CONSTANTS = {"j": Amount(1j), "π": Amount(Fraction(math.pi)), "e": Amount(Fraction(math.e))}
