@@ -198,9 +198,14 @@ def circuit_index(ref: Reference, nearest: int, ledger: Ledger) -> int:
         return 0
     if not ledger.circuits:
         return -1
-    if nearest < 0:
+    if nearest < 0 and any(_has(c, k, ref, ledger) for k, c in enumerate(ledger.circuits)):
         raise Doubt("several circuits stand below and none above: say which by of NAME", ref.span)
     return nearest
+
+
+def _has(circuit: Circuit, index: int, ref: Reference, ledger: Ledger) -> bool:
+    """Whether a name is a part or a quantity of a circuit."""
+    return circuit.element(ref.word) is not None or quantity_key(ref, index, circuit, ledger) is not None
 
 
 def meaning(ref: Reference, nearest: int, ledger: Ledger) -> Meaning | None:
