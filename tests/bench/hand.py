@@ -15,13 +15,16 @@ E24 = (10, 11, 12, 13, 15, 16, 18, 20, 22, 24, 27, 30, 33, 36, 39, 43, 47, 51, 5
 
 @dataclass(frozen=True)
 class Part:
-    """R, V, I; G: current steered by a voltage, E: voltage steered by a voltage; - a gap, = a link. ``by``: two nodes."""
+    """R, L, C, V, I; G: current steered by a voltage, E: voltage steered by a voltage; - a gap, = a link. ``by``: two nodes.
+
+    U: an ideal op-amp, ``by`` its inputs + and −, ``plus`` its output, ``minus`` the reference.
+    """
 
     kind: str
     name: str
     plus: str
     minus: str
-    value: float = 0.0
+    value: complex = 0.0
     by: tuple[str, str] = ("", "")
 
 
@@ -41,12 +44,12 @@ class Quantity:
 UNITS = {"V": "V", "I": "A", "P": "W", "R": "Ω"}
 
 
-def solved(parts):
-    """Potentials by node and currents by part; nothing where the circuit has no single solution."""
+def solved(parts, omega=0.0):
+    """Potentials by node and currents by part, phasors at an angular frequency; nothing without a single solution."""
     nodes = sorted({n for p in parts for n in (p.plus, p.minus)} - {"com"})
     at = {n: k for k, n in enumerate(nodes)}
-    size = len(nodes) + len(parts)
-    a, b = np.zeros((size, size)), np.zeros(size)
+    size, kind = len(nodes) + len(parts), complex if omega else float
+    a, b = np.zeros((size, size), kind), np.zeros(size, kind)
 
     def volt(row, node, factor):
         if node in at:
@@ -57,13 +60,19 @@ def solved(parts):
         for node, sign in ((p.plus, 1), (p.minus, -1)):
             if node in at:
                 a[at[node], own] += sign
-        if p.kind in "VE=R":
+        if p.kind in "VE=RL":
             volt(own, p.plus, 1)
             volt(own, p.minus, -1)
-        if p.kind in "IG-":
+        if p.kind in "IG-C":
             a[own, own] = 1
-        if p.kind == "R":
-            a[own, own] = -p.value
+        if p.kind in "RL":
+            a[own, own] = -p.value * (1 if p.kind == "R" else 1j * omega)
+        if p.kind == "C":
+            volt(own, p.plus, -1j * omega * p.value)
+            volt(own, p.minus, 1j * omega * p.value)
+        if p.kind == "U":
+            volt(own, p.by[0], 1)
+            volt(own, p.by[1], -1)
         if p.kind in "VI":
             b[own] = p.value
         if p.kind in "GE":

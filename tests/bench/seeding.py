@@ -46,7 +46,7 @@ class Seed:
 def quantities(parts, due=True):
     """All voltages, currents and powers of a circuit; with ``due`` also the parts of them due to one source."""
     nodes = sorted({n for p in parts for n in (p.plus, p.minus)} - {"com"})
-    plain = [("V", n) for n in nodes] + [(x, p.name) for p in parts for x in "VIP"]
+    plain = [("V", n) for n in nodes] + [(x, p.name) for p in parts if p.kind != "U" for x in "VIP"]
     found = [Quantity(x, (s,)) for x, s in plain]
     if due:
         found += [Quantity(x, (s,), (k,)) for x, s in plain if x != "P" for k in hand.sources(parts)]

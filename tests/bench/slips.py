@@ -10,6 +10,7 @@ from __future__ import annotations
 
 import argparse
 import random
+import re
 import sys
 import time
 from collections import Counter, defaultdict
@@ -19,7 +20,10 @@ from pathlib import Path
 sys.path.insert(0, str(Path(__file__).parent))
 
 import hand
+import hand_ac
+import hand_models
 import seeds
+import seeds_ac
 import seeds_working
 from seeding import Bench
 
@@ -27,12 +31,20 @@ from calccheck.model import Settings
 from calccheck.pipeline import check
 from calccheck.source import Sheet
 
-KINDS = (
+DC = (
     "sign", "prefix", "decimal-point", "digits-swapped", "digit-slip", "reciprocal", "factor-two", "percent",
     "source-missing", "source-reversed", "source-twice", "source-zeroed-wrongly", "controlled-source-zeroed",
     "power-superposed", "swapped-values", "element-absent", "element-shorted", "divider-complement", "series-parallel",
     "other-quantity", "stale", "neighbour-value", "working-slip", "early-rounding",
 )  # fmt: skip
+AC = (
+    "sign", "prefix", "decimal-point", "digits-swapped", "digit-slip", "reciprocal", "factor-two", "peak-rms",
+    "degrees-radians", "omega-frequency", "magnitudes-added", "conjugate", "log-ten-twenty", "line-phase", "source-missing",
+    "source-reversed", "source-twice", "source-zeroed-wrongly", "controlled-source-zeroed", "power-superposed",
+    "swapped-values", "element-absent", "element-shorted", "divider-complement", "series-parallel", "other-quantity",
+    "stale", "neighbour-value", "stage-kind", "working-slip", "early-rounding",
+)  # fmt: skip
+MODELS = ("drop-forgotten", "stage-kind")
 
 
 @dataclass
@@ -44,6 +56,80 @@ class Score:
     first: int = 0
     two: int = 0
     taken_for: Counter = field(default_factory=Counter)
+
+
+class DirectCurrent:
+    """Random circuits and those of the sheets, at direct current."""
+
+    title, kinds, figures = "Direct current", DC, (3, 4, 5)
+    modules = (seeds, seeds_working)
+
+    def __init__(self, rng):
+        self.rng, self.real = rng, list(real_circuits(Path(__file__).parents[2] / "sheets"))
+
+    def draw(self, turn, figures):
+        rng, real = self.rng, self.real
+        parts = real[turn // 4 % len(real)] if turn % 4 == 0 else hand.random_circuit(rng, turn % 4 == 1)
+        return Bench(parts, rng, figures), hand.circuit_block(parts)
+
+    def seed(self, kind, bench):
+        name = kind.replace("-", "_")
+        seed = next(getattr(m, name) for m in self.modules if hasattr(m, name))(bench)
+        return None if seed is None or min(abs(seed.truth), abs(seed.value)) < 1e-11 else seed
+
+    def wrong(self, seed):
+        """Whether a number is wrong by the language's rules: beyond its last place, and beyond the carry of a working."""
+        text, shown, unit = seed.claim()
+        off = abs(shown - seed.truth)
+        may_be_rounded = text.count(" = ") > 1 or text.split()[-2].endswith("0")
+        return off > 1.001 * unit and not (may_be_rounded and off <= 0.005001 * abs(seed.truth))
+
+    def claim(self, seed):
+        return seed.claim()[0]
+
+    def block(self, circuit):
+        return hand.circuit_block(circuit)
+
+
+class HandModels(DirectCurrent):
+    """Diodes, transistors and op-amp stages at direct current."""
+
+    title, kinds = "Op-amps and hand models at direct current", MODELS
+    modules = (hand_models, seeds, seeds_working)
+
+    def draw(self, turn, figures):
+        parts = hand_models.stage(self.rng) if turn % 2 else hand_models.with_drops(self.rng)
+        return Bench(parts, self.rng, figures), hand_models.circuit_block(parts)
+
+
+class AlternatingCurrent:
+    """Random circuits of one frequency, op-amp stages and three-phase loads."""
+
+    title, kinds, figures = "Alternating current", AC, (3, 4, 5)
+
+    def __init__(self, rng):
+        self.rng = rng
+
+    def draw(self, turn, figures):
+        rng = self.rng
+        special = {3: hand_ac.stage, 7: hand_ac.three_phases}.get(turn % 8)
+        net = special(rng) if special else hand_ac.random_net(rng, turn % 4 == 1)
+        return seeds_ac.AcBench(net, rng, figures), hand_ac.circuit_block(net)
+
+    def seed(self, kind, bench):
+        return getattr(seeds_ac, kind.replace("-", "_"))(bench)
+
+    def wrong(self, seed):
+        """Whether a figure is off by more than its last place, and no rounding of a whole number with zeros at its end."""
+        may_be_rounded = re.search(r"= [−-]?\d+0 ", seed.claim()) and seed.form in ("mag", "real")
+        carry = max(seed.carry, 0.005 if may_be_rounded else 0.0) * 1.0002
+        return seed.off() > 1.001 and not abs(seed.value - seed.truth) <= carry * abs(seed.truth)
+
+    def claim(self, seed):
+        return seed.claim()
+
+    def block(self, circuit):
+        return hand_ac.circuit_block(circuit)
 
 
 def real_circuits(folder):
@@ -60,57 +146,52 @@ def real_circuits(folder):
                 yield parts
 
 
-def wrong(seed):
-    """Whether a seed's number is wrong by the language's rules: beyond its last place, and beyond the carry of a working."""
-    text, shown, unit = seed.claim()
-    off = abs(shown - seed.truth)
-    may_be_rounded = text.count(" = ") > 1 or text.split()[-2].endswith("0")
-    return off > 1.001 * unit and not (may_be_rounded and off <= 0.005001 * abs(seed.truth))
-
-
-def seeds_of(kind, bench, wanted):
+def seeds_of(kind, domain, bench, wanted):
     """Up to so many seeds of a kind that this circuit has a place for."""
-    name = kind.replace("-", "_")
-    make = getattr(seeds, name, None) or getattr(seeds_working, name)
     found = []
     for _ in range(4 * wanted):
-        seed = make(bench)
-        if seed is None or len(found) == wanted or min(abs(seed.truth), abs(seed.value)) < 1e-11:
-            continue
-        if (kind == "right") != wrong(seed):
+        seed = domain.seed(kind, bench) if len(found) < wanted else None
+        if seed is not None and (kind == "right") != domain.wrong(seed):
             found.append(seed)
     return found
 
 
-def judged(parts, claims):
+def judged(domain, block, claims):
     """The judgement of each seed's claim, all on one sheet."""
-    text = "\n\n".join([hand.circuit_block(parts), *(f"`{s.claim()[0]}`" for s in claims)])
-    versions = [(f"version {k}", hand.circuit_block(s.earlier)) for k, s in enumerate(claims) if s.earlier]
+    text = "\n\n".join([block, *(f"`{domain.claim(s)}`" for s in claims)])
+    versions = [(f"version {k}", domain.block(s.earlier)) for k, s in enumerate(claims) if s.earlier]
     report = check(Sheet("bench.md", text), Settings(), earlier=lambda: versions)
     assert len(report.claims) == len(claims), text
     return report.claims
 
 
-def measured(seed, figures, each, unexplained, right):
+def measured(make, seed, figures, each, unexplained, right):
     """Scores by kind, and the right claims judged and said to differ, over circuits until every kind has its number."""
     rng = random.Random(f"{seed} {figures}")
-    real = list(real_circuits(Path(__file__).parents[2] / "sheets"))
+    domain = make(rng)
     scores = defaultdict(Score)
     alarms = [0, 0]
-    wanted = dict.fromkeys(KINDS, each) | {"unexplained": unexplained}
+    wanted = dict.fromkeys(domain.kinds, each) | {"unexplained": unexplained}
     for turn in range(100 * each):
         short = [kind for kind, number in wanted.items() if scores[kind].claims < number]
         if not short and alarms[0] >= right:
             break
-        parts = real[turn // 4 % len(real)] if turn % 4 == 0 else hand.random_circuit(rng, turn % 4 == 1)
-        bench = Bench(parts, rng, figures)
-        pairs = [(kind, s) for kind in short for s in seeds_of(kind, bench, 8 if kind == "unexplained" else 2)]
+        bench, block = domain.draw(turn, figures)
+        pairs = [
+            (kind, s) for kind in short for s in seeds_of(kind, domain, bench, 8 if kind == "unexplained" else 2)
+        ]
         rng.shuffle(pairs)
-        for (kind, _), j in zip(pairs, judged(parts, [s for _, s in pairs]), strict=True):
+        for (kind, s), j in zip(pairs, judged(domain, block, [s for _, s in pairs]), strict=True):
             _score(scores[kind], kind, j)
+            if (kind in LOUD and [x.key for x in j.slips][:1] != [kind]) or ("missed" in LOUD and j.verdict != "differs"):
+                print(block, domain.claim(s), j.verdict, j.message, *(f"  {x.key}: {x.text}" for x in j.slips), sep="\n")
         if alarms[0] < right:
-            claims = judged(parts, seeds_of("right", bench, 30))
-            alarms = [alarms[0] + len(claims), alarms[1] + sum(j.verdict not in ("agrees", "rounded") for j in claims)]
+            claims = seeds_of("right", domain, bench, 30)
+            found = judged(domain, block, claims)
+            wrong = [(s, j) for s, j in zip(claims, found, strict=True) if j.verdict not in ("agrees", "rounded")]
+            alarms = [alarms[0] + len(claims), alarms[1] + len(wrong)]
+            for s, j in wrong if LOUD else ():
+                print(block, domain.claim(s), j.verdict, j.message, sep="\n")
     return scores, alarms
 
 
@@ -128,12 +209,12 @@ def _score(score, kind, j):
         score.taken_for[keys[0] if keys else "nothing"] += 1
 
 
-def table(scores, figures):
+def table(domain, scores, figures):
     """One table in Markdown."""
-    lines = [f"### {figures} printed figures", "", "| slip | claims | detected | named first | among first two | most often taken for |",
+    lines = [f"#### {domain.title}, {figures} printed figures", "", "| slip | claims | detected | named first | among first two | most often taken for |",
              "|---|---|---|---|---|---|"]  # fmt: skip
     total = Score()
-    for kind in KINDS:
+    for kind in domain.kinds:
         s = scores[kind]
         for name in ("claims", "detected", "first", "two"):
             setattr(total, name, getattr(total, name) + getattr(s, name))
@@ -160,15 +241,24 @@ def main():
     options.add_argument("--each", type=int, default=150, help="claims of each kind at four figures (default 150)")
     options.add_argument("--unexplained", type=int, default=1200, help="wrong numbers without a slip (default 1200)")
     options.add_argument("--right", type=int, default=3000, help="right claims at four figures (default 3000)")
+    options.add_argument("--of", choices=[*DOMAINS], action="append", help="which circuits (default: all)")
+    options.add_argument("--show", nargs="*", default=[], help="print the claims of these kinds that are not named first")
     chosen = options.parse_args()
+    LOUD.update(chosen.show)
     start = time.perf_counter()
-    for figures in (3, 4, 5):
-        share = 1 if figures == 4 else 3
-        numbers = (n // share for n in (chosen.each, chosen.unexplained, chosen.right))
-        scores, (claims, alarms) = measured(chosen.seed, figures, *numbers)
-        print("\n".join(table(scores, figures)))
-        print(f"\nRight claims: {claims}, false alarms: {alarms}.\n")
+    for name in chosen.of or DOMAINS:
+        domain = DOMAINS[name]
+        for figures in domain.figures:
+            share = 1 if figures == 4 else 3
+            numbers = (n // share for n in (chosen.each, chosen.unexplained, chosen.right))
+            scores, (claims, alarms) = measured(domain, chosen.seed, figures, *numbers)
+            print("\n".join(table(domain, scores, figures)))
+            print(f"\nRight claims: {claims}, false alarms: {alarms}.\n")
     print(f"Seed {chosen.seed}, {time.perf_counter() - start:.0f} s.")
+
+
+LOUD = set()
+DOMAINS = {"dc": DirectCurrent, "ac": AlternatingCurrent, "models": HandModels}
 
 
 if __name__ == "__main__":

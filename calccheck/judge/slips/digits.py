@@ -112,8 +112,8 @@ class _Right:
 
 
 def _right(case: Case, shift: int = 0) -> Iterator[_Right]:
-    """The figures of the truth rounded to as many places as were printed, and ``shift`` more; none where no digits are left."""
-    for f in case.figures:
+    """The wrong figures as they should be, to as many places as were printed and ``shift`` more; none without digits left."""
+    for f in case.wrong:
         p = f.printed
         if p.amount.point or case.dimension != case.miss.truth.dimension or f.right == 0:
             continue

@@ -65,6 +65,23 @@ def rewritten(node: Node, rule: Rule, names: Names) -> Iterator[Rewriting]:
                     yield replace(node, arguments=(*node.arguments[:k], n, *node.arguments[k + 1 :])), made, mended
 
 
+def everywhere(node: Node, change: Callable[[Node], Node | None]) -> Node:
+    """The expression with every piece changed for which ``change`` gives another."""
+    changed = change(node)
+    if changed is not None:
+        return changed
+    match node:
+        case Unary():
+            return replace(node, operand=everywhere(node.operand, change))
+        case Group():
+            return replace(node, inner=everywhere(node.inner, change))
+        case Binary():
+            return replace(node, left=everywhere(node.left, change), right=everywhere(node.right, change))
+        case Call():
+            return replace(node, arguments=tuple(everywhere(x, change) for x in node.arguments))
+    return node
+
+
 def dimension_of(node: Node, names: Names) -> Dimension | None:
     """The dimension of a piece of a formula, ``None`` where it has no value."""
     try:

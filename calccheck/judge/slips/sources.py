@@ -15,9 +15,11 @@ from calccheck.model import Circuit, Element, Kind, State
 
 
 def source_missing(case: Case) -> Iterator[Guess]:
-    """The sum without one source's part."""
+    """The sum without one source's part; a drop of a hand model left out is another slip."""
+    drops = {e.name for e in case.circuit.elements if e.device is not None} if case.circuit is not None else set()
     for name, rest, _ in _parted(case):
-        yield Guess(f"{name}'s contribution left out", terms=rest)
+        if name not in drops:
+            yield Guess(f"{name}'s contribution left out", terms=rest)
 
 
 def source_reversed(case: Case) -> Iterator[Guess]:

@@ -6,7 +6,19 @@ from collections.abc import Callable, Iterator
 from dataclasses import dataclass
 from typing import Literal
 
-from calccheck.judge.slips import digits, elsewhere, pairs, parts, sources, versions, working
+from calccheck.judge.slips import (
+    alternating,
+    angles,
+    devices,
+    digits,
+    elsewhere,
+    magnitudes,
+    pairs,
+    parts,
+    sources,
+    versions,
+    working,
+)  # fmt: skip
 from calccheck.judge.slips.case import Case, Guess
 
 Of = Literal["digits", "sources", "circuit", "working"]
@@ -50,6 +62,15 @@ SLIPS: tuple[SlipKind, ...] = (
     SlipKind("other-quantity", 0.6, "circuit", elsewhere.other_quantity),
     SlipKind("stale", 1.0, "circuit", versions.stale),
     SlipKind("neighbour-value", 0.2, "circuit", parts.neighbour_value),
+    SlipKind("peak-rms", 0.8, "digits", alternating.peak_rms),
+    SlipKind("degrees-radians", 0.6, "digits", angles.degrees_radians),
+    SlipKind("omega-frequency", 0.8, "circuit", alternating.omega_frequency),
+    SlipKind("magnitudes-added", 0.8, "circuit", magnitudes.magnitudes_added),
+    SlipKind("conjugate", 1.0, "digits", alternating.conjugate),
+    SlipKind("log-ten-twenty", 1.0, "digits", digits.log_ten_twenty),
+    SlipKind("line-phase", 0.8, "digits", alternating.line_phase),
+    SlipKind("drop-forgotten", 1.0, "circuit", devices.drop_forgotten),
+    SlipKind("stage-kind", 0.8, "circuit", devices.stage_kind),
     SlipKind("working-slip", 0.8, "working", working.working_slip, 1),
     SlipKind("early-rounding", 0.6, "working", working.early_rounding),
 )

@@ -3,7 +3,6 @@
 from __future__ import annotations
 
 from collections.abc import Iterator
-from dataclasses import replace
 from fractions import Fraction
 
 from calccheck.arithmetic import Amount, DimensionFault, Doubt, evaluate
@@ -13,6 +12,7 @@ from calccheck.judge.members import Worked
 from calccheck.judge.rounding import equal, fit, printed
 from calccheck.judge.scope import magnitude
 from calccheck.judge.slips.case import Case, Guess
+from calccheck.judge.slips.rewriting import everywhere, opened
 from calccheck.judge.trace import reach
 from calccheck.printing import shown
 
@@ -82,7 +82,7 @@ def aligned(formula: Node, put_in: Node) -> list[tuple[Node, Node]] | None:
 
     ``None`` for a substitution of another shape than the formula's.
     """
-    formula, put_in = _open(formula), _open(put_in)
+    formula, put_in = opened(formula), opened(put_in)
     same = isinstance(put_in, Number) and isinstance(formula, Number) and formula.digits == put_in.digits
     if printed(put_in) is not None and not same and type(formula) is not type(put_in):
         return [(put_in, formula)]
@@ -102,12 +102,6 @@ def aligned(formula: Node, put_in: Node) -> list[tuple[Node, Node]] | None:
 
 def _same_operator(a: Binary, b: Binary) -> bool:
     return a.operator == b.operator or {a.operator, b.operator} == {"×", "·"}
-
-
-def _open(node: Node) -> Node:
-    while isinstance(node, Group) and not node.unit.text:
-        node = node.inner
-    return node
 
 
 def _stands_for(n: Node, piece: Node, case: Case) -> bool:
@@ -144,19 +138,12 @@ def _any_part(w: Worked, case: Case) -> Iterator[tuple[Node, Node]]:
 
 def _with_piece(node: Node, number: Node, piece: Node) -> Node:
     """The expression with a piece in the place of a number, wherever the number is printed alike."""
-    if printed(node) is not None and printed(node) == printed(number):
-        return Group(piece, node.span)
-    match node:
-        case Unary():
-            return replace(node, operand=_with_piece(node.operand, number, piece))
-        case Group():
-            return replace(node, inner=_with_piece(node.inner, number, piece))
-        case Binary():
-            left, right = (_with_piece(x, number, piece) for x in (node.left, node.right))
-            return replace(node, left=left, right=right)
-        case Call():
-            return replace(node, arguments=tuple(_with_piece(x, number, piece) for x in node.arguments))
-    return node
+    digits = printed(number)
+
+    def change(n: Node) -> Node | None:
+        return Group(piece, n.span) if digits is not None and printed(n) == digits else None
+
+    return everywhere(node, change)
 
 
 def _reaches(w: Worked, mended: Node, case: Case) -> bool:
