@@ -10,6 +10,7 @@ import math
 from collections.abc import Callable
 from dataclasses import dataclass, replace
 from fractions import Fraction
+from operator import add, sub
 
 from calccheck.formula import Binary, Call, Group, Node, Number, Range, Reference, Unary
 from calccheck.source import Span
@@ -54,9 +55,7 @@ class Amount:
 
 def size(value: Value) -> Real:
     """The magnitude of a value."""
-    if isinstance(value, complex):
-        return abs(value)
-    return -value if value < 0 else value
+    return value.__abs__()  # as abs(), but the kind of number is kept in the type
 
 
 def real(value: Value, span: Span | None = None) -> Real:
@@ -128,7 +127,6 @@ def evaluate(node: Node, lookup: Lookup, number: Literal = literal, note: Note |
 
 def trimmed(value: Value) -> Value:
     """A rational grown out of bounds carried on as a float; anything not finite is a doubt."""
-    value = plainest(value)
     if isinstance(value, Fraction):
         over, under = value.numerator.bit_length(), value.denominator.bit_length()
         if over - under > 1000:
@@ -136,6 +134,7 @@ def trimmed(value: Value) -> Value:
         if over + under < _ROOM:
             return value
         value = value.numerator / value.denominator
+    value = plainest(value)
     if not cmath.isfinite(value):
         raise Doubt("the value does not fit a floating-point number")
     return value
@@ -150,7 +149,7 @@ def _binary(n: Binary, a: Amount, b: Amount) -> Amount:
             return _product(a, b, n.span)
         case "÷":
             _refuse_two_readings(n, a, b)
-            return _product(a, reciprocal(b, n.right.span), n.span)
+            return _quotient(a, b, n)
         case "∥":
             return parallel(a, b, n.span)
         case "^":
@@ -208,18 +207,21 @@ def _product(a: Amount, b: Amount, span: Span) -> Amount:
         raise Doubt("a temperature in °C is multiplied; write a difference in K", span)
     if a.level and b.level:
         raise Doubt("decibels are multiplied by decibels; gains in series add their decibels", span)
-    dimension = tuple(x + y for x, y in zip(a.dimension, b.dimension, strict=True))
+    dimension = tuple(map(add, a.dimension, b.dimension))
     level = (a.level or b.level) and dimension == NONE
-    return Amount(trimmed(a.value * b.value), dimension, frequency=_one_frequency(a, b, span), level=level)
+    return Amount(trimmed(a.value * b.value), dimension, False, _one_frequency(a, b, span), level)
 
 
-def reciprocal(a: Amount, span: Span) -> Amount:
-    """1/a."""
+def _quotient(a: Amount, b: Amount, n: Binary) -> Amount:
+    if b.point:
+        raise Doubt("something is divided by a temperature in °C; write K", n.right.span)
+    if b.value == 0:
+        raise Doubt("division by zero", n.right.span)
     if a.point:
-        raise Doubt("something is divided by a temperature in °C; write K", span)
-    if a.value == 0:
-        raise Doubt("division by zero", span)
-    return Amount(1 / a.value, tuple(-x for x in a.dimension), frequency=a.frequency)
+        raise Doubt("a temperature in °C is divided; write a difference in K", n.span)
+    dimension = tuple(map(sub, a.dimension, b.dimension))
+    level = a.level and dimension == NONE
+    return Amount(trimmed(a.value / b.value), dimension, False, _one_frequency(a, b, n.span), level)
 
 
 def parallel(a: Amount, b: Amount, span: Span) -> Amount:
@@ -244,7 +246,7 @@ def power(a: Amount, b: Amount, span: Span) -> Amount:
     exponent = Fraction(raised).limit_denominator(1000)
     if a.dimension != NONE and abs(float(exponent) - float(raised)) > 1e-12:
         raise Doubt("a quantity with a unit is raised to a power that is no simple fraction", span)
-    dimension = tuple(_half(x * exponent) for x in a.dimension)
+    dimension = tuple(_half(x * exponent) if x else 0 for x in a.dimension)
     return Amount(_raised(a.value, raised, span), dimension, frequency=a.frequency)
 
 
@@ -310,7 +312,7 @@ def _refuse_two_readings(n: Binary, a: Amount, b: Amount) -> None:
     left, right = _bare(n.left, "∥"), _bare(n.right, "∥")
     twofold = False
     if right is not None:
-        shifted = tuple(x - y if n.operator == "÷" else x + y for x, y in zip(a.dimension, b.dimension, strict=True))
+        shifted = tuple(map(sub if n.operator == "÷" else add, a.dimension, b.dimension))
         twofold = shifted == b.dimension
     if left is not None:
         twofold = twofold or b.dimension == NONE

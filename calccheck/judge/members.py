@@ -25,7 +25,7 @@ from calccheck.formula import (
 from calccheck.judge import hints, quantities
 from calccheck.judge.phasors import PrintedPhasor, printed_phasor
 from calccheck.judge.rounding import SLACK, Printed, printed
-from calccheck.judge.scope import Key, Ledger, Meaning, circuit_index, meaning, quantity_key
+from calccheck.judge.scope import Key, Ledger, Meaning, circuit_index, is_taken, meaning, quantity_key
 from calccheck.judge.spreads import Found, Spreading, over
 from calccheck.loose_units import with_loose_units
 from calccheck.model import Basis, Element, Member, Relation
@@ -260,7 +260,7 @@ def _restates(node: Node, meanings: Sequence[Meaning | None]) -> bool:
 def _refuse_units_that_are_names(nodes: Sequence[Node], names: Names) -> None:
     for n in nodes:
         for word in n.unit_words if isinstance(n, Number | Group) else ():
-            if names.meaning(Reference(word, n.span)) is not None:
+            if is_taken(word, names.nearest, names.ledger):
                 before = n.digits if isinstance(n, Number) else "(…)"
                 raise Doubt(
                     f"{word} is a unit and a name here: for the product write {before} × {word}, "

@@ -155,6 +155,9 @@ def parts(a: Amount) -> list[Amount]:
 Sized = tuple[Dimension, float]  # dimension and magnitude: enough to tell what a printed number may round
 
 
-def sized(a: Amount) -> list[Sized]:
-    """The magnitudes under which an amount may stand printed: of a phasor its parts too."""
-    return [(p.dimension, float(size(p.value))) for p in parts(a)]
+def sized(value: Value, dimension: Dimension) -> list[Sized]:
+    """The magnitudes under which a value may stand printed: of a phasor its parts too."""
+    value = plainest(value)
+    if not isinstance(value, complex):
+        return [(dimension, abs(float(value)))]
+    return [(p.dimension, float(size(p.value))) for p in parts(Amount(value, dimension))]

@@ -17,7 +17,7 @@ def share(frequency: Fraction, settings: Settings) -> float:
 
 def power(letter: str, each: Mapping[Fraction, tuple[Value, Value]], settings: Settings) -> Value:
     """Average power P, complex power S or reactive power Q from voltage and current at each frequency (IEC 60375)."""
-    total: Value = Fraction(0)
+    total: Value = 0
     for f, (v, i) in each.items():
         total += v * i if f == 0 else share(f, settings) * complex(v) * complex(i).conjugate()
     if letter == "S":

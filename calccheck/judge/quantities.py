@@ -82,27 +82,32 @@ def values_around(key: Key, ledger: Ledger, span: Span) -> list[Sized]:
     known = Key(key.circuit, "", (), key.due_to, key.changes, key.frequency)
     if known not in ledger.around:
         try:
-            ledger.around[known] = [s for a in _all_values(key, ledger, span) for s in sized(a)]
+            ledger.around[known] = _all_sizes(key, ledger, span)
         except Doubt:
             ledger.around[known] = []
     return ledger.around[known]
 
 
-def _all_values(key: Key, ledger: Ledger, span: Span) -> list[Amount]:
+def _all_sizes(key: Key, ledger: Ledger, span: Span) -> list[Sized]:
+    """In floating point: printed numbers are told apart by far more than its error."""
     circuit = circuit_of(key, ledger, span)
     several = acting(key, circuit, span)
     if len(several) > 1:
         return []
     state = _state(circuit, key, several[0], ledger, span)
-    found = [Amount(plainest(v), VOLT) for v in state.potentials.values()]
+    potentials = {n: _floating(v) for n, v in state.potentials.items()}
+    found = [s for v in potentials.values() for s in sized(v, VOLT)]
     for e in circuit.elements:
-        current = state.currents.get(e.name)
-        if current is None or not e.plus:
+        if e.name not in state.currents or not e.plus:
             continue
-        voltage = state.potentials[e.plus] - state.potentials[e.minus]
+        voltage, current = potentials[e.plus] - potentials[e.minus], _floating(state.currents[e.name])
         power = powers.power("S", {several[0]: (voltage, current)}, ledger.settings)
-        found += [Amount(plainest(voltage), VOLT), Amount(plainest(current), AMPERE), Amount(power, WATT)]
+        found += [*sized(voltage, VOLT), *sized(current, AMPERE), *sized(power, WATT)]
     return found
+
+
+def _floating(value: Value) -> float | complex:
+    return value if isinstance(value, complex) else float(value)
 
 
 def acting(key: Key, circuit: Circuit, span: Span) -> tuple[Fraction, ...]:
@@ -110,8 +115,9 @@ def acting(key: Key, circuit: Circuit, span: Span) -> tuple[Fraction, ...]:
     check_sources(key.due_to, circuit, span)
     if key.frequency is not None:
         return (key.frequency,)
-    named = [s for s in circuit.sources() if not key.due_to or s.name in key.due_to]
-    return tuple(sorted({s.frequency or Fraction(0) for s in named})) or (Fraction(0),)
+    if not key.due_to:
+        return circuit.frequencies
+    return tuple(sorted({s.frequency or DC for s in circuit.sources() if s.name in key.due_to})) or (DC,)
 
 
 def frequency_of(key: Key, circuit: Circuit, ledger: Ledger, span: Span) -> Fraction:

@@ -245,6 +245,14 @@ def _as_spelt(ref: Reference, nearest: int, ledger: Ledger) -> Meaning | None:
     return None
 
 
+def is_taken(word: str, nearest: int, ledger: Ledger) -> bool:
+    """Whether a plain word is a name where it stands: of the sheet, a constant, or a part."""
+    if word in ledger.names or word in ledger.symbols or word in _CONSTANTS:
+        return True
+    near = ledger.circuits if nearest < 0 or len(ledger.circuits) == 1 else (ledger.circuits[nearest],)
+    return any(c.element(word) is not None for c in near)
+
+
 def quantity_key(ref: Reference, index: int, circuit: Circuit, ledger: Ledger) -> Key | None:
     """The quantity that a reference names in this circuit, or ``None`` where it names none."""
     if ref.letter not in QUANTITY_LETTERS:

@@ -118,8 +118,8 @@ def _earlier(p: Printed, ledger: Ledger) -> Result | None:
 
 def sizes(pieces: Sequence[tuple[Node, Amount]]) -> list[Sized]:
     """The magnitudes of the worked pieces of an expression; a printed real number is none."""
-    own = [s for piece, a in pieces if not isinstance(piece, Number) and printed(piece) is None for s in sized(a)]
-    return own + regrouped(pieces)
+    own = [(n, a) for n, a in pieces if not isinstance(n, Number) and printed(n) is None]
+    return [s for _, a in own for s in sized(a.value, a.dimension)] + regrouped(pieces)
 
 
 @dataclass(frozen=True, slots=True)
@@ -155,8 +155,9 @@ def reach(node: Node, lookup: Lookup, traced: Sequence[Traced], spreads: dict[st
     if not rooms:
         return Reach(middle, middle, middle)
     up: dict[object, Real] = {}
+    still = float(middle)
     for key, room in rooms.items():
-        up[key] = room if real(_moved(node, lookup, {key: room})) >= middle else -room
+        up[key] = room if real(_moved(node, lookup, {key: room})) >= still else -room
     down = {key: -shift for key, shift in up.items()}
     low, high = real(_moved(node, lookup, down)), real(_moved(node, lookup, up))
     return Reach(middle, min(low, middle), max(high, middle))
