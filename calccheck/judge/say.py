@@ -66,7 +66,7 @@ def says_nothing(label: str, q: Amount, side: str) -> str:
 
 def margin(label: str, q: Amount, limit: Amount, room: Real, holds: bool) -> str:
     """A bound with its margin."""
-    share = f" ({float(size(room / real(limit.value))) * 100:.3g} % of the limit)" if limit.value else ""
+    share = f" ({float(size(room / real(limit.value))) * 100:.3g} % of the limit)" if limit.value and not limit.point else ""
     apart = shown(Amount(size(room), q.dimension), figures=4)
     if holds:
         return f"{label} is {shown(q)}, {apart}{share} inside its limit"
