@@ -20,7 +20,7 @@ def test_every_file_beside_the_modules_is_shipped() -> None:
 
 
 def test_every_folder_of_modules_is_a_package() -> None:
-    modules = [p for p in (PROJECT / "calccheck").rglob("*.py")]
+    modules = sorted((PROJECT / "calccheck").rglob("*.py"))
     assert modules and all((p.parent / "__init__.py").is_file() for p in modules)
 
 
