@@ -1,4 +1,4 @@
-"""Calc sheets made up for the benchmarks: the same number gives the same sheet. Every claim in them is right.
+"""Calc sheets made up for the benchmarks: the same number gives the same sheet. Every claim in them stands.
 
 About 100 lines and 15 claims: front matter, prose with inline claims, a circuit, formulas with numbers put in, a table of the
 sources' parts. Values come from ``hand``, which shares nothing with the program.
@@ -51,7 +51,8 @@ ITEMS = (
 def sheet(number):
     """The text of one sheet."""
     rng = random.Random(number)
-    work = replace(FAMILIES[number % len(FAMILIES)](rng), figures=rng.choice((4, 4, 5)))
+    work = renamed(FAMILIES[number % len(FAMILIES)](rng), number // len(FAMILIES) % 100)
+    work = replace(work, figures=rng.choice((4, 4, 5)))
     sections = [
         f"---\nproject: Invented station {number // 40}\nsubject: {work.subject}\nsheet: B-{number:04}\nrevision: "
         f"{rng.choice('ABC')}\nby: QD\ndate: 2026-11-{1 + number % 28:02}\n---",
@@ -64,6 +65,25 @@ def sheet(number):
         "## Conclusion", _conclusion(work), prose(rng, 4),
     ]  # fmt: skip
     return "\n\n".join(sections) + "\n"
+
+
+def renamed(work, tag):
+    """The same work with names that no sheet near it has: R1 becomes R371, RL becomes RL37."""
+
+    def new(name):
+        digits = name[-1].isdigit()
+        return f"{name[:-1]}{tag}{name[-1]}" if digits else f"{name}{tag}"
+
+    def formula(text):
+        return _NAME.sub(lambda m: new(m[0]), text)
+
+    return replace(
+        work,
+        parts=[replace(p, name=new(p.name)) for p in work.parts],
+        load=new(work.load),
+        named=[(new(name), formula(text), value) for name, text, value in work.named],
+        formulas=[(replace(q, due_to=tuple(map(new, q.due_to))), formula(text)) for q, text in work.formulas],
+    )
 
 
 def prose(rng, sentences):
@@ -131,14 +151,17 @@ def _total(work):
 
 
 def _load(work):
+    """The load's current and power, the power worked from the current as printed: some last places carry its rounding."""
     load = next(p for p in work.parts if p.name == work.load)
     i, p, v = (Quantity(letter, (work.load,)) for letter in "IPV")
     volts, amperes = (shown(worth(q, work.parts), hand.UNITS[q.letter], work) for q in (v, i))
+    text, _, factor = hand.printed(worth(i, work.parts), work.figures, "A")
+    carried = float(text.replace("−", "-")) * factor
     lines = [
         f"{i.text()} = {v.text()} / {load.name} = {_bracketed(volts)} / {element(load)} = {amperes}",
         f"{p.text()} = {i.text()}² × {load.name}",
         f"{' ' * len(p.text())} = ({amperes})² × {element(load)}",
-        f"{' ' * len(p.text())} = {shown(worth(p, work.parts), 'W', work)}",
+        f"{' ' * len(p.text())} = {shown(carried**2 * load.value, 'W', work)}",
     ]
     return "\n".join(["```working", *lines, "```"])
 
