@@ -35,7 +35,8 @@ KEYS = {
     "sign", "prefix", "decimal-point", "digits-swapped", "digit-slip", "source-missing", "source-reversed", "source-twice",
     "source-zeroed-wrongly", "controlled-source-zeroed", "power-superposed", "swapped-values", "element-absent",
     "element-shorted", "divider-complement", "series-parallel", "other-quantity", "stale", "neighbour-value", "reciprocal",
-    "factor-two", "percent", "working-slip", "early-rounding",
+    "factor-two", "percent", "working-slip", "early-rounding", "peak-rms", "degrees-radians", "omega-frequency",
+    "magnitudes-added", "conjugate", "log-ten-twenty", "line-phase", "drop-forgotten", "stage-kind",
 }  # fmt: skip
 
 
