@@ -28,7 +28,7 @@ def read_waiver(piece: Piece, span: Span) -> Waiver:
     """The waiver in a comment. Raises ``Doubt`` with the form where it cannot be read."""
     lead = _LEAD.match(piece.text)
     start = lead.end() if lead else 0
-    m = _WAIVER.match(piece.text, re.compile(r"\s*").match(piece.text, start).end())  # type: ignore[union-attr]
+    m = _WAIVER.match(piece.text, len(piece.text) - len(piece.text[start:].lstrip()))
     if m is None:
         raise Doubt("a waiver is written: " + FORM, span, FORM)
     if not m["reason"].strip():

@@ -106,10 +106,18 @@ def random_net(rng, controlled=False):
         else:
             parts.append(Part("I", f"I{k}", "com", feed, phasor / decade / 30))
     if controlled:
-        parts.append(Part("G", "Gx", *rng.sample(nodes, 2), round(rng.choice(E24) / decade / 200, 9), tuple(rng.sample(nodes, 2))))
+        parts.append(
+            Part(
+                "G", "Gx", *rng.sample(nodes, 2), round(rng.choice(E24) / decade / 200, 9), tuple(rng.sample(nodes, 2))
+            )
+        )
     net = Net(named(parts), hertz)
     found = hand.solved(net.parts, net.omega)
-    return net if found is not None and "com" in {n for p in parts for n in (p.plus, p.minus)} else random_net(rng, controlled)
+    return (
+        net
+        if found is not None and "com" in {n for p in parts for n in (p.plus, p.minus)}
+        else random_net(rng, controlled)
+    )
 
 
 def preferred(value):

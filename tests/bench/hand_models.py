@@ -21,7 +21,10 @@ def stage(rng):
 def with_drops(rng):
     """A feed through diodes onto a loaded divider; all of them conduct by its making."""
     count = rng.choice((1, 1, 2))
-    parts = [Part("V", "V1", "a", "com", float(rng.choice(E24)) + 2.0), Part("R", "R1", "a", "k0", rng.choice(E24) * 10.0)]
+    parts = [
+        Part("V", "V1", "a", "com", float(rng.choice(E24)) + 2.0),
+        Part("R", "R1", "a", "k0", rng.choice(E24) * 10.0),
+    ]
     for k in range(count):
         parts.append(Part("V", f"D{k + 1}", f"k{k}", f"k{k + 1}", rng.choice((0.35, 0.6, 0.65, 0.7, 1.8))))
     last = f"k{count}"

@@ -36,7 +36,9 @@ class AcSeed:
 
     def off(self):
         """By how many units of its last place the worst figure is off."""
-        texts, _, places = hand_ac.texts_of(self.truth if self.texts else self.value, self.form, self.figures, self.unit)
+        texts, _, places = hand_ac.texts_of(
+            self.truth if self.texts else self.value, self.form, self.figures, self.unit
+        )
         right = hand_ac.figures_of(self.truth, self.form)
         worst = 0.0
         for k, (text, r, place) in enumerate(zip(self.texts or texts, right, places, strict=True)):
@@ -59,7 +61,9 @@ class AcBench:
         self.scales = {"V": max(map(abs, volts.values())), "I": max(map(abs, amperes.values()))}
         self.scales |= dict.fromkeys("PQS", self.scales["V"] * self.scales["I"]) | {"Z": 0.0}
 
-    def pick(self, letters="VVVIIIPQ", forms=("polar", "polar", "rect", "mag", "mag", "arg"), due=True, fits=lambda q: True):
+    def pick(
+        self, letters="VVVIIIPQ", forms=("polar", "polar", "rect", "mag", "mag", "arg"), due=True, fits=lambda q: True
+    ):
         """A quantity that is no rounding error, with what it should show."""
         nodes = sorted({n for p in self.net.parts for n in (p.plus, p.minus)} - {"com"})
         names = [p.name for p in self.net.parts if p.kind not in "U"]
@@ -349,7 +353,9 @@ def stale(b):
 
 
 def divider_complement(b):
-    fed = [(v, z) for v in b.net.kind("V") if v.minus == "com" for z in b.net.kind("RLC") if v.plus in (z.plus, z.minus)]
+    fed = [
+        (v, z) for v in b.net.kind("V") if v.minus == "com" for z in b.net.kind("RLC") if v.plus in (z.plus, z.minus)
+    ]
     if not fed:
         return None
     source, upper = b.rng.choice(fed)
@@ -409,7 +415,11 @@ def with_working(b, figures, ohms=None, factor=1.0):
     x, put_in = float(text) * scale, ohms or r.value
     squared = b.rng.random() < 0.5
     q = Phasor("P", (r.name,), "real") if squared else Phasor("V", (r.name,), "mag")
-    law, by = (f"|I_{r.name}|² × {r.name}", f"({text} {unit})²") if squared else (f"|I_{r.name}| × {r.name}", f"{text} {unit}")
+    law, by = (
+        (f"|I_{r.name}|² × {r.name}", f"({text} {unit})²")
+        if squared
+        else (f"|I_{r.name}| × {r.name}", f"{text} {unit}")
+    )
     result = (x * x if squared else x) * put_in * factor
     before = f"{q.text()} = {law} = {by} × {put_in:.12g} Ω"
     return AcSeed(before, q.form, result, worth(q, b.net), UNITS[q.letter], b.figures, carry=0.005)

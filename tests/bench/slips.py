@@ -177,14 +177,16 @@ def measured(make, seed, figures, each, unexplained, right):
         if not short and alarms[0] >= right:
             break
         bench, block = domain.draw(turn, figures)
-        pairs = [
-            (kind, s) for kind in short for s in seeds_of(kind, domain, bench, 8 if kind == "unexplained" else 2)
-        ]
+        pairs = [(kind, s) for kind in short for s in seeds_of(kind, domain, bench, 8 if kind == "unexplained" else 2)]
         rng.shuffle(pairs)
         for (kind, s), j in zip(pairs, judged(domain, block, [s for _, s in pairs]), strict=True):
             _score(scores[kind], kind, j)
-            if (kind in LOUD and [x.key for x in j.slips][:1] != [kind]) or ("missed" in LOUD and j.verdict != "differs"):
-                print(block, domain.claim(s), j.verdict, j.message, *(f"  {x.key}: {x.text}" for x in j.slips), sep="\n")
+            if (kind in LOUD and [x.key for x in j.slips][:1] != [kind]) or (
+                "missed" in LOUD and j.verdict != "differs"
+            ):
+                print(
+                    block, domain.claim(s), j.verdict, j.message, *(f"  {x.key}: {x.text}" for x in j.slips), sep="\n"
+                )
         if alarms[0] < right:
             claims = seeds_of("right", domain, bench, 30)
             found = judged(domain, block, claims)
@@ -242,7 +244,9 @@ def main():
     options.add_argument("--unexplained", type=int, default=1200, help="wrong numbers without a slip (default 1200)")
     options.add_argument("--right", type=int, default=3000, help="right claims at four figures (default 3000)")
     options.add_argument("--of", choices=[*DOMAINS], action="append", help="which circuits (default: all)")
-    options.add_argument("--show", nargs="*", default=[], help="print the claims of these kinds that are not named first")
+    options.add_argument(
+        "--show", nargs="*", default=[], help="print the claims of these kinds that are not named first"
+    )
     chosen = options.parse_args()
     LOUD.update(chosen.show)
     start = time.perf_counter()
