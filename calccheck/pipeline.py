@@ -24,7 +24,7 @@ from calccheck.read.expression import parse
 from calccheck.read.sheet import read_sheet
 from calccheck.rules import RULES
 from calccheck.signatures import signature_findings
-from calccheck.solve import Unsolvable, solve, solve_batch, total
+from calccheck.solve import Unsolvable, solve, solve_batch, tolerances, total
 from calccheck.solve.states import state_faults
 from calccheck.source import Sheet, whole
 
@@ -46,8 +46,11 @@ def check(
     solve_once = solver()
     solutions, faults = _solved(reading.circuits, solve_once)
     versions = _circuits_of(earlier, sheet.name)
+    over_tolerances = cache(tolerances)
     states = _states(solve_once, math.sqrt(2) if reading.settings.phasors == "rms" else 1.0)
-    judged, findings = judge_sheet(reading, solve_once, on, solve_batch, versions, lambda c: _first(states(c)))
+    judged, findings = judge_sheet(
+        reading, solve_once, on, solve_batch, versions, lambda c: _first(states(c)), over_tolerances
+    )
     elsewhere = reference_findings(reading, judged, find)
     cautions = caution_findings(reading, solutions)
     assumed = [f for c in reading.circuits if not c.symbols for f in states(c)]

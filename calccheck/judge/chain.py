@@ -10,7 +10,7 @@ from itertools import pairwise
 from calccheck.arithmetic import Amount, DimensionFault, Doubt
 from calccheck.formula import Reference
 from calccheck.judge import say
-from calccheck.judge.bounds import BOUNDS, judge_bound
+from calccheck.judge.bounds import BOUNDS, at_worst, judge_bound
 from calccheck.judge.ground import Ground
 from calccheck.judge.members import Names, Worked, work_all
 from calccheck.judge.miss import Miss
@@ -19,6 +19,7 @@ from calccheck.judge.phasors import PrintedPhasor, parts
 from calccheck.judge.rounding import Printed, deviation
 from calccheck.judge.scope import Defined, Key, Ledger, Result, define, enter
 from calccheck.judge.steps import judge_member
+from calccheck.judge.two_sided import is_two_sided, judge_range, truth_of
 from calccheck.judge.working import by_source
 from calccheck.model import Basis, Claim, Finding, Judged, Step, Verdict
 from calccheck.rules import RULES
@@ -76,7 +77,36 @@ def judge_claim(claim: Claim, ledger: Ledger) -> tuple[Judged, tuple[Finding, ..
 # --- chains ---------------------------------------------------------------------------------------------------------
 
 
+def _range_claim(job: Work) -> Judged:
+    """A claim about both extremes, or about a middle and a deviation."""
+    members = job.claim.members
+    first = next(m for m in members if isinstance(m.node, Reference) and m.node.prefix in ("worst", "rss"))
+    ref = first.node
+    assert isinstance(ref, Reference)
+    truth = truth_of(ref, job.names)
+    source = Worked(first, ref, "formula", "circuit", truth.nominal)
+    for m in members:
+        if m is first:
+            continue
+        if (m.relation or members[1].relation) not in ("=", "≈"):
+            raise Doubt(f"a bound stands behind {ref.text.removeprefix(ref.prefix).strip()} itself", m.span)
+        found = judge_range(m, ref, source, truth, job.names)
+        job.steps.append(found.step)
+        job.cautions += found.cautions
+        job.findings += found.findings
+        job.miss = job.miss or found.miss
+    worst = max(job.steps, key=lambda s: _ORDER[s.verdict])
+    told = "; ".join(t for t in (worst.message, truth.told) if t)
+    cautions = tuple(dict.fromkeys(job.cautions))
+    return Judged(
+        job.claim, worst.verdict, "circuit", ref.text, computed=truth.nominal, low=truth.low, high=truth.high,
+        message=told, steps=tuple(job.steps), cautions=cautions,
+    )  # fmt: skip
+
+
 def _chain(job: Work) -> Judged:
+    if is_two_sided(job.claim.members):
+        return _range_claim(job)
     workings = work_all(job.claim.members, job.names)
     name = new_name(workings, job.claim, job.ledger)
     segments = [_segment(part) for part in _parted(workings)]
@@ -96,7 +126,8 @@ def _chain(job: Work) -> Judged:
     _bounds(segments, job)
     low, high = _limits(segments, main)
     summed = _summed_up(main, printings, job, workings)
-    judged = replace(summed, low=low, high=high, parts=_by_source(main, job))
+    message = "; ".join(dict.fromkeys(t for t in (summed.message, *(f.told for f in job.names.founds.values())) if t))
+    judged = replace(summed, low=low, high=high, parts=_by_source(main, job), message=message)
     _enter(judged, main, name, key, printings, job)
     return judged
 
@@ -183,8 +214,10 @@ def _bounds(segments: Sequence[Segment], job: Work) -> None:
         if left.truth is None or right.truth is None or first.relation not in BOUNDS:
             continue
         limit_right = right.only_a_value or (right.basis != "circuit" and not left.only_a_value)
-        subject = left.members[left.at]
-        job.steps.append(judge_bound(left.truth, right.truth, first, subject, limit_right, len(segments) == 3))
+        subject, behind = left.members[left.at], right.members[right.at]
+        allowance = job.names.allowance(subject) + job.names.allowance(behind)
+        step = judge_bound(left.truth, right.truth, first, subject, limit_right, len(segments) == 3, allowance)
+        job.steps.append(at_worst(step, subject, behind, limit_right, job.names))
         if left.truth.dimension != right.truth.dimension:
             _dimension_of_bound(first, job)
 
@@ -249,7 +282,8 @@ def _enter(
         shown = printings[-1][0] if printings else None
         spread = Fraction(0)
         node = main.members[main.at].node
-        define(Defined(name, main.truth, shown, main.basis, False, start, spread, node), job.ledger)
+        nearest = job.claim.circuit
+        define(Defined(name, main.truth, shown, main.basis, False, start, spread, node, nearest), job.ledger)
         key = Key(-1, "name", (name,))
     for p, step in printings:
         if p.amount.dimension == main.truth.dimension:

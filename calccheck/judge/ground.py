@@ -10,11 +10,12 @@ from calccheck.arithmetic import (
     Amount,
     literal,
 )
-from calccheck.formula import Number, numbers
+from calccheck.formula import OVER_TOLERANCES, Number, Reference, numbers
 from calccheck.judge import quantities
 from calccheck.judge.members import Names, Worked
 from calccheck.judge.phasors import Sized
 from calccheck.judge.scope import Ledger
+from calccheck.judge.spreads import ends
 from calccheck.judge.trace import Meanings, Traced, sizes, trace
 from calccheck.model import Basis, Finding, Step, Verdict
 
@@ -38,6 +39,12 @@ class Ground:
     cautions: list[str] = field(default_factory=list)
     findings: list[Finding] = field(default_factory=list)
 
+    @property
+    def outwards(self) -> int:
+        """The sign of what lies beyond an extreme: 1 above a largest value, −1 below a least one, 0 for any other truth."""
+        node = self.source.node
+        return {"max": 1, "min": -1}.get(node.prefix, 0) if isinstance(node, Reference) else 0
+
     def trace_truth(self) -> None:
         """A truth worked from printed numbers alone: say which of them stand for nothing."""
         if self.source.sort == "substitution":
@@ -55,7 +62,14 @@ class Ground:
         pieces = [s for m in before for s in sizes(m.pieces)]
         repeated = [literal(n) for m in before for n in numbers(m.node)]
         changed = [v for _, _, v in self.source.key.changes if v is not None] if self.source.key else []
-        return Meanings([*constants, *changed], pieces, self.circuit_values(), repeated)
+        return Meanings([*constants, *changed, *self._ends()], pieces, self.circuit_values(), repeated)
+
+    def _ends(self) -> list[Amount]:
+        """The ends of what varies, where the truth is one over tolerances."""
+        node = self.source.node
+        if not isinstance(node, Reference) or node.prefix not in OVER_TOLERANCES:
+            return []
+        return ends(self.ledger)
 
     def circuit_values(self) -> list[Sized]:
         """Voltages, currents and powers of the truth's circuit under its own qualifiers, printed or not."""

@@ -9,10 +9,11 @@ from dataclasses import dataclass, replace
 from fractions import Fraction
 from typing import Literal
 
-from calccheck.arithmetic import Amount, DimensionFault, Doubt, evaluate, size
+from calccheck.arithmetic import Amount, DimensionFault, Doubt, Real, evaluate, size
 from calccheck.formula import (
     NO_QUALIFIERS,
     OVER_TOLERANCES,
+    Binary,
     Group,
     Node,
     Number,
@@ -91,6 +92,13 @@ class Names:
         return Spreading(
             self.nearest, self.ledger, lambda r, n: (self if n == self.nearest else Names(n, self.ledger)).amount(r)
         )
+
+    def allowance(self, w: Worked) -> Real:
+        """How far a value at random that a member is, or is worked from, may be off."""
+        found = [f for r in references(w.node) if (f := self.founds.get(r)) is not None and f.allowance]
+        if not found or w.amount is None:
+            return 0
+        return size(w.amount.value) * max(f.allowance / size(f.amount.value) if f.amount.value else 1 for f in found)
 
     def known(self, ref: Reference) -> bool:
         """Whether a reference means anything, or would if its circuit were told."""
@@ -286,6 +294,11 @@ def _refuse_half_prefixed(member: Member, found: Sequence[Reference], names: Nam
 
 
 def without_unit(w: Worked) -> bool:
-    """Whether the member has numbers and none of them has a unit."""
-    found = numbers(w.node)
+    """Whether the member has numbers and none of them has a unit; exponents have none and say nothing."""
+    nodes = list(walk(w.node))
+    if any(isinstance(n, Group) and n.unit.text for n in nodes):
+        return False
+    powers = [n.right for n in nodes if isinstance(n, Binary) and n.operator == "^"]
+    exponents = {id(n) for power in powers for n in numbers(power)}
+    found = [n for n in nodes if isinstance(n, Number) and id(n) not in exponents]
     return bool(found) and all(n.unit == PLAIN for n in found)

@@ -3,6 +3,8 @@
 from __future__ import annotations
 
 from collections.abc import Sequence
+from contextlib import suppress
+from dataclasses import replace
 from fractions import Fraction
 
 from calccheck.arithmetic import Amount, Doubt
@@ -33,11 +35,37 @@ def assume(claim: Claim, ledger: Ledger, names: Names) -> Judged:
     shown = last.printed
     rounded = bool(claim.from_sheet) and isinstance(shown, Printed)  # a result of another sheet
     spread = shown.half if rounded and isinstance(shown, Printed) else Fraction(0)
-    define(Defined(name, amount, shown, "working", True, claim.span.start, spread), ledger)
+    _refuse_tolerance(claim, amount)
+    start, nearest = claim.span.start, claim.circuit
+    define(Defined(name, amount, shown, "working", True, start, spread, None, nearest, claim.tolerance), ledger)
     return Judged(
         claim, "given", quantity=name, claimed=amount, claimed_unit=shown.written_in.text if shown else "",
         message=f"assumed, from {claim.from_sheet}" if claim.from_sheet else "assumed",
     )  # fmt: skip
+
+
+def assumptions(claims: Sequence[Claim], ledger: Ledger) -> dict[str, Defined]:
+    """All assumptions of a sheet, where one of them has a tolerance: for parts that are worked from them, wherever they stand."""
+    givens = [c for c in claims if c.given and c.problem is None]
+    if not any(c.tolerance for c in givens):
+        return {}
+    scratch = replace(ledger, names={}, exact=set())
+    for claim in givens:
+        with suppress(Doubt):  # said where the assumption is judged
+            assume(claim, scratch, Names(claim.circuit, scratch))
+    return scratch.names
+
+
+def _refuse_tolerance(claim: Claim, amount: Amount) -> None:
+    t = claim.tolerance
+    if t is None:
+        return
+    if isinstance(amount.value, complex):
+        raise Doubt("a phasor has no tolerance here; give its magnitude one", t.span)
+    if t.relative and amount.value == 0:
+        raise Doubt(f"{t.text} of zero is nothing; write it in the unit of the value", t.span)
+    if t.relative and amount.point:
+        raise Doubt(f"{t.text} of a temperature depends on where degrees count from; write it in K", t.span)
 
 
 def _refuse_two_values(members: Sequence[Worked], amount: Amount) -> None:

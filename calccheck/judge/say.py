@@ -7,6 +7,7 @@ from fractions import Fraction
 from calccheck.arithmetic import Amount, Real, real, size
 from calccheck.judge.phasors import PrintedPhasor, is_angle, nearest_turn
 from calccheck.judge.rounding import Printed
+from calccheck.judge.spreads import Found
 from calccheck.printing import shown
 from calccheck.units import PLAIN, Unit, digits, printed, words
 
@@ -64,12 +65,34 @@ def says_nothing(label: str, q: Amount, side: str) -> str:
     return f"{label} is {shown(q)}: a limit on the other side of zero says nothing of it; bound {better} instead"
 
 
-def margin(label: str, q: Amount, limit: Amount, room: Real, holds: bool) -> str:
-    """A bound with its margin."""
-    share = f" ({float(size(room / real(limit.value))) * 100:.3g} % of the limit)" if limit.value and not limit.point else ""
-    apart = shown(Amount(size(room), q.dimension), figures=4)
+def worst_margin(
+    label: str, nominal: Amount, worst: Amount, limit: Amount, room: Real, holds: bool, found: Found
+) -> str:
+    """A bound with its margin at the worst within tolerances. ``limit``: at nominal values."""
+    share = (
+        f" ({float(size(room / real(limit.value))) * 100:.3g} % of the limit)"
+        if limit.value and not limit.point
+        else ""
+    )
+    apart = shown(Amount(size(room), limit.dimension), figures=4)
     if holds:
-        return f"{label} is {shown(q)}, {apart}{share} inside its limit"
+        return f"{label} is {shown(nominal)}, at worst {shown(worst)} ({found.where}), {apart}{share} inside its limit; {found.how}"
+    return (
+        f"{label} is {shown(nominal)} and holds at nominal values only: {found.where} it is {shown(worst)} and passes the limit "
+        f"of {shown(limit)} by {apart}{share}"
+    )
+
+
+def margin(label: str, q: Amount, limit: Amount, room: Real, holds: bool, unit: Unit = PLAIN) -> str:
+    """A bound with its margin, in a handy unit or in this one."""
+    share = (
+        f" ({float(size(room / real(limit.value))) * 100:.3g} % of the limit)"
+        if limit.value and not limit.point
+        else ""
+    )
+    apart = shown(Amount(size(room), q.dimension), unit, 4)
+    if holds:
+        return f"{label} is {shown(q, unit)}, {apart}{share} inside its limit"
     if room == 0:
-        return f"{label} is {shown(q)}, which is the limit itself: not below or above it"
-    return f"{label} is {shown(q)} and passes the limit of {shown(limit)} by {apart}{share}"
+        return f"{label} is {shown(q, unit)}, which is the limit itself: not below or above it"
+    return f"{label} is {shown(q, unit)} and passes the limit of {shown(limit, unit)} by {apart}{share}"

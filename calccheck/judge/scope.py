@@ -126,7 +126,7 @@ class Ledger:
     states: dict[object, State] = field(default_factory=dict)
     around: dict[Key, list[Sized]] = field(default_factory=dict)
     fails: Callable[[Circuit], str] = lambda _: ""
-    tolerances: Tolerancing | None = None
+    tolerances: Callable[[], Tolerancing] | None = None
     assumptions: Mapping[str, Defined] = field(default_factory=dict)
     prepared: dict[object, Circuit] = field(default_factory=dict)
 

@@ -9,10 +9,11 @@ from fractions import Fraction
 
 from calccheck.judge.chain import judge_claim
 from calccheck.judge.miss import Miss
+from calccheck.judge.new_names import assumptions
 from calccheck.judge.rounding import Printed, fit, printed
-from calccheck.judge.scope import Ledger, Solve
+from calccheck.judge.scope import Ledger, Solve, Tolerancing
 from calccheck.judge.slips.redo import Earlier, Redo, SolveBatch
-from calccheck.judge.symbols import combined, instance, points
+from calccheck.judge.symbols import Point, combined, instance, points
 from calccheck.model import Circuit, Finding, Judged, Reading, Waiver
 from calccheck.rules import RULES
 
@@ -24,17 +25,16 @@ def judge_sheet(
     solve_batch: SolveBatch,
     earlier: Callable[[], Sequence[Earlier]] = tuple,
     fails: Callable[[Circuit], str] = lambda _: "",
+    tolerances: Callable[[], Tolerancing] | None = None,
 ) -> tuple[tuple[Judged, ...], tuple[Finding, ...]]:
     """The verdicts of a sheet's claims, with the slips that explain wrong ones, and the findings made on the way.
 
     ``solve`` gives the solution of a circuit or raises ``Doubt``; ``solve_batch`` the states of many, ``None`` for one that has
     none. ``on``: the day by which waivers are judged. ``earlier``: the circuits of the sheet's earlier versions, newest first;
     called only where a claim differs. ``fails``: says of a circuit why its parts cannot be in the states that the sheet assumes.
+    ``tolerances``: works formulas over them.
     """
-    ledgers = [
-        Ledger(tuple(instance(c, p) for c in reading.circuits), solve, reading.settings, symbols=p, fails=fails)
-        for p in points(reading.circuits)
-    ]
+    ledgers = [ledger_of(reading, solve, p, fails, tolerances) for p in points(reading.circuits)]
     symbols = sorted({name for c in reading.circuits for name, _ in c.symbols})
     redo = Redo(solve, solve_batch, earlier)
     judged: list[Judged] = []
@@ -46,6 +46,20 @@ def judge_sheet(
         judged.append(j)
         findings += [*found[0][1], *waived]
     return tuple(judged), tuple(findings)
+
+
+def ledger_of(
+    reading: Reading,
+    solve: Solve,
+    point: Point,
+    fails: Callable[[Circuit], str],
+    tolerances: Callable[[], Tolerancing] | None,
+) -> Ledger:
+    """The ledger of a sheet before its first claim, its symbols having the values of a point."""
+    circuits = tuple(instance(c, point) for c in reading.circuits)
+    ledger = Ledger(circuits, solve, reading.settings, symbols=point, fails=fails, tolerances=tolerances)
+    ledger.assumptions = assumptions(reading.claims, ledger)
+    return ledger
 
 
 def _explained(j: Judged, misses: Sequence[Miss | None], redo: Redo) -> Judged:

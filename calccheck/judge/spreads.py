@@ -33,7 +33,7 @@ class Found:
     told: str
     allowance: Real = 0
     where: str = ""
-    proved: bool = True
+    how: str = ""
     point: Point | None = None
 
 
@@ -54,7 +54,7 @@ class Spreading:
         """What works formulas over tolerances."""
         if self.ledger.tolerances is None:
             raise Doubt("tolerances are not worked here")
-        return self.ledger.tolerances
+        return self.ledger.tolerances()
 
 
 class NothingVaries(Doubt):
@@ -80,22 +80,22 @@ def inner(ref: Reference) -> Node:
     return replace(ref, prefix="", text=ref.text.removeprefix(ref.prefix).strip())
 
 
-def extreme(node: Node, nominal: Amount, largest: bool, s: Spreading) -> Found:
-    """The least or the largest value of an expression within tolerances, solved again where it lies."""
+def extreme(node: Node, nominal: Amount, largest: bool, s: Spreading, scale: Real = 0) -> Found:
+    """The least or the largest value of an expression within tolerances, solved again where it lies.
+
+    ``scale``: of what it is worked from, where that may cancel.
+    """
     closing = s.closing()
     formula = closing.formula(closing.closed(node, s.nearest))
     _refuse_steady(formula, node.span)
     found = s.tolerances.extreme(formula, largest)
     value = value_at(formula, closing, found.point, s.ledger, node.span)
-    if isinstance(value, complex) or size(value - found.value) > _SAME * max(
-        size(value), size(found.value), size(nominal.value)
-    ):
+    like = max(size(value), size(found.value), size(nominal.value), scale)
+    if isinstance(value, complex) or size(value - found.value) > _SAME * like:
         raise Doubt("the extreme found and its solution by two routes do not agree", node.span)
     where = place(found, formula)
-    kind = "largest" if largest else "least"
-    return Found(
-        replace(nominal, value=value), f"the {kind} within tolerances, {where}; {found.how}", 0, where, found.proved, found.point
-    )  # fmt: skip
+    told = f"the {'largest' if largest else 'least'} within tolerances, {where}; {found.how}"
+    return Found(replace(nominal, value=value), told, 0, where, found.how, found.point)
 
 
 def _refuse_steady(formula: Formula, span: Span) -> None:
@@ -216,6 +216,14 @@ def value_at(formula: Formula, closing: Closing, point: Point, ledger: Ledger, s
     return found
 
 
+def at(node: Node, found: Found, s: Spreading) -> Value:
+    """Another expression at the point of an extreme."""
+    assert found.point is not None
+    closing = s.closing()
+    formula = closing.formula(closing.closed(node, s.nearest))
+    return value_at(formula, closing, found.point, s.ledger, node.span)
+
+
 def put(circuit: Circuit, effects: Sequence[Effect], leaves: dict[str, Any]) -> Circuit:
     """The circuit with its varied values as ``leaves`` has them."""
     if not effects:
@@ -235,3 +243,16 @@ def _with_value(e: Element, effect: Effect, value: Any) -> Element:
     assert e.device is not None
     changes: dict[str, Any] = {effect.field: Fraction(value)}
     return replace(e, device=replace(e.device, **changes))
+
+
+def ends(ledger: Ledger) -> list[Amount]:
+    """The least and the largest values of all parts and assumptions with a tolerance."""
+    values = Values(ledger)
+    try:
+        for k, c in enumerate(ledger.circuits):
+            values.effects(c, k)
+        for d in ledger.names.values():
+            values.given(d, Span(0, 0))
+    except Doubt:
+        return []
+    return [Amount(x, v.dimension) for v in values.varied.values() for x in (v.low, v.high)]

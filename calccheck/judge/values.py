@@ -76,6 +76,10 @@ def judge_value(w: Worked, p: Printed, relation: Relation, ground: Ground) -> St
         return decided(w, "agrees")
     off = deviation(p.value, t)
     near = say.near(truth, p)
+    if size(p.value - t) <= p.half + ground.names.allowance(ground.source):
+        return decided(w, "agrees")
+    if 0 < ground.outwards * (p.value - t) < p.unit:
+        return decided(w, "rounded", f"rounded outwards (as JCGM 100, 7.2.6, allows): {near}")
     law = _carried(p, t, ground, zero)
     if law:
         return decided(

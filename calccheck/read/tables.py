@@ -122,13 +122,14 @@ def _claim(cell: Block, subject: Subject, edge: Edge, unit: str, circuit: int) -
         relation = _SIGN.get(own[1]) or cast(Relation, own[1])
         piece = piece.part(own.end(), len(piece.text))
     shown = f"{piece.text} {unit}" if unit and not re.search(r"[^\W\d]|[%°]", piece.text) else piece.text
-    text = " ".join(f"{edge.prefix} {subject.text} {edge.text} {relation} {shown}".split())
+    about = f"({subject.text})" if edge.prefix and isinstance(subject.node, Binary) else subject.text
+    text = " ".join(f"{edge.prefix} {about} {edge.text} {relation} {shown}".split())
     claim = Claim(text, cell.span, "table", circuit)
     if subject.node is None or edge.role == "doubt":
         reason = subject.reason or edge.reason
         return replace(claim, problem=Problem(reason, cell.span, subject.suggestion))
     try:
-        first = _qualified(subject.node, edge)
+        first = _prefixed(_qualified(subject.node, edge), edge, text.partition(f" {relation} ")[0])
         value = _with_unit(parse_value(piece), unit)
     except Doubt as d:
         return replace(claim, problem=Problem(d.reason, d.span or cell.span, d.suggestion))
@@ -154,6 +155,15 @@ def _with_unit(node: Node, text: str) -> Node:
         case Unary():
             return replace(node, operand=_with_unit(node.operand, text))
     return node
+
+
+def _prefixed(node: Node, edge: Edge, text: str) -> Node:
+    """The quantity, or the whole formula in a bracket, behind the prefix that its row or column gives it."""
+    if not edge.prefix:
+        return node
+    if isinstance(node, Reference) and not node.prefix:
+        return replace(node, prefix=edge.prefix, text=f"{edge.prefix} {node.text}")
+    return Reference(text, node.span, prefix=edge.prefix, text=text, bracket=(("", node),))
 
 
 def _qualified(node: Node, edge: Edge) -> Node:
@@ -184,7 +194,7 @@ def _reference(node: Reference, edge: Edge) -> Reference:
         more.frequency if mine.frequency is None else mine.frequency,
         mine.circuit or more.circuit,
     )
-    return replace(node, qualifiers=merged, prefix=edge.prefix or node.prefix, text=f"{node.text} {edge.text}".strip())
+    return replace(node, qualifiers=merged, text=f"{node.text} {edge.text}".strip())
 
 
 def plain(cell: Block) -> Piece:

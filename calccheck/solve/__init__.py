@@ -8,6 +8,7 @@ from __future__ import annotations
 import math
 from collections.abc import Sequence
 from fractions import Fraction
+from typing import TYPE_CHECKING
 
 from calccheck.model import Circuit, Finding, Solution, State
 from calccheck.solve.agreement import compared, state, total
@@ -19,7 +20,10 @@ from calccheck.solve.states import state_faults
 from calccheck.solve.structure import faults
 from calccheck.solve.superposition import is_exact, part_states
 
-__all__ = ["Unsolvable", "frequencies", "solve", "solve_batch", "state", "state_faults", "total"]
+if TYPE_CHECKING:
+    from calccheck.solve.tolerance import Tolerances
+
+__all__ = ["Unsolvable", "frequencies", "solve", "solve_batch", "state", "state_faults", "tolerances", "total"]
 
 
 class Unsolvable(Exception):
@@ -69,6 +73,13 @@ def _empty(circuit: Circuit) -> tuple[Finding, ...]:
     if circuit.elements:
         return ()
     return (fault("The circuit block has no parts. Write each on a line, as in: R1: 4.7 kΩ, a to b", circuit.span),)
+
+
+def tolerances() -> Tolerances:
+    """What works formulas over tolerances; it keeps what it learns of the circuits of one sheet."""
+    from calccheck.solve.tolerance import Tolerances  # late: numpy
+
+    return Tolerances()
 
 
 def solve_batch(circuits: Sequence[Circuit], frequency: Fraction | None = None) -> list[State | None]:

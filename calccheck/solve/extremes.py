@@ -201,9 +201,17 @@ def _lines(hunt: _Hunt, point: Floats, left: Sequence[int], at_corners: bool, re
 
 def _found(hunt: _Hunt, at: Floats, proved: bool, how: str) -> Extreme:
     """The extreme, its point in rationals: the very ends where it lies at ends."""
-    value = float(hunt.worker.values(at[None])[0])
+    worker = hunt.worker
+    varied = worker.formula.varied
+    others = np.repeat(at[None], 2 * len(at), axis=0)  # each value at its other end, then in the middle
+    for k in range(len(at)):
+        others[2 * k, k] = worker.high[k] if at[k] == worker.low[k] else worker.low[k]
+        others[2 * k + 1, k] = (worker.low[k] + worker.high[k]) / 2
+    value, *moved = worker.values(np.vstack([at, others])).tolist()
+    still = [abs(x - value) <= _LEVEL * max(abs(x), abs(value)) for x in moved]
+    steady = {k for k in range(len(at)) if still[2 * k] and still[2 * k + 1]}
     point = {}
-    for k, v in enumerate(hunt.worker.formula.varied):
+    for k, v in enumerate(varied):
         ends = {float(v.low): v.low, float(v.high): v.high, float(v.nominal): v.nominal}
-        point[v.key] = ends.get(float(at[k]), Fraction(float(at[k])))
-    return Extreme(value, point, proved, how, frozenset(hunt.worker.formula.varied[k].key for k in hunt.free))
+        point[v.key] = v.nominal if k in steady else ends.get(float(at[k]), Fraction(float(at[k])))
+    return Extreme(value, point, proved, how, frozenset(varied[k].key for k in steady | hunt.free))
