@@ -215,7 +215,8 @@ def printed(value: float | Fraction, dimension: Dimension, figures: int = 6, lik
     """A value the way engineers print it: ``2.66463 A``, ``594.1 mΩ``; in the unit ``like`` where that fits."""
     like = UNITS.get(like, PLAIN) if isinstance(like, str) else like
     if like.dimension == dimension and not like.celsius and like.text:
-        return f"{digits(Fraction(value) / like.factor, figures)} {like.text}".replace("-", "−")
+        gap = "" if like.text == "°" else " "  # SI Brochure, 9th edition, 5.4.3
+        return f"{digits(Fraction(value) / like.factor, figures)}{gap}{like.text}".replace("-", "−")
     symbol = unit_of(dimension)
     if symbol not in UNITS or value == 0 or not math.isfinite(float(value)):
         return f"{digits(value, figures)} {symbol}".strip().replace("-", "−")

@@ -15,7 +15,7 @@ from calccheck.judge.ground import Ground
 from calccheck.judge.members import Names, Worked, work_all
 from calccheck.judge.miss import Miss
 from calccheck.judge.new_names import assume, new_name
-from calccheck.judge.phasors import PrintedPhasor, parts
+from calccheck.judge.phasors import PrintedPhasor, is_angle, nearest_turn, parts
 from calccheck.judge.rounding import Printed, deviation
 from calccheck.judge.scope import Defined, Key, Ledger, Result, define, enter
 from calccheck.judge.steps import judge_member
@@ -259,11 +259,18 @@ def _summed_up(
         claimed=shown.amount if shown else None,
         claimed_unit=shown.written_in.text if shown else "",
         computed=truth,
-        deviation=deviation(shown.amount.value, truth.value) if comparable and shown and truth else None,
+        deviation=_off(shown, truth) if comparable and shown and truth else None,
         message=first.message or next((s.message for s in steps if s.message), ""),
         steps=tuple(steps),
         cautions=tuple(dict.fromkeys(job.cautions)),
     )
+
+
+def _off(shown: Printed | PrintedPhasor, truth: Amount) -> float | None:
+    """How far the printed value is off; an angle to the truth as it comes nearest, whole turns apart."""
+    if isinstance(shown, Printed) and is_angle(shown) and not isinstance(truth.value, complex):
+        return deviation(shown.value, nearest_turn(truth.value, shown.value))
+    return deviation(shown.amount.value, truth.value)
 
 
 def _enter(
