@@ -41,11 +41,13 @@ class Meanings:
 
     ``exact``: values beside those of parts and givens of which a number must be the very value, as constants of the formula.
     ``pieces``: worked pieces of the members before it, of which it may be a right rounding, as of ``around``, the circuit's
-    own values. ``repeated``: the printed numbers of the members before it.
+    own values. ``named``: the values of the names in those members, without what is put together from them. ``repeated``: the
+    printed numbers of the members before it.
     """
 
     exact: Sequence[Amount]
     pieces: Sequence[Sized]
+    named: Sequence[Sized]
     around: Sequence[Sized]
     repeated: Sequence[Amount]
 
@@ -69,10 +71,11 @@ def _one(n: Number, meanings: Meanings, ledger: Ledger) -> Traced:
     if not exactly and _counts(n):
         return Traced(n, 0, True)
     x, room = float(size(p.value)), float(p.half)
-    rounds = _rounded_by(x, room, p.amount.dimension, meanings.pieces)
-    if exactly:
-        other = bool(n.unit.text) and any(abs(a - x) > _ALIKE * x for a in rounds)
+    if exactly:  # unless no name here has the value, and one has a value that it rounds
+        named = _rounded_by(x, room, p.amount.dimension, meanings.named) if n.unit.text else []
+        other = bool(named) and all(abs(a - x) > _ALIKE * x for a in named)
         return Traced(n, p.half if other else 0, True)
+    rounds = _rounded_by(x, room, p.amount.dimension, meanings.pieces)
     rounds += _rounded_by(x, room, p.amount.dimension, meanings.around)
     earlier = _earlier(p, ledger)
     if earlier is not None and earlier.stands:
