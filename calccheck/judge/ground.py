@@ -62,7 +62,13 @@ class Ground:
         pieces = [s for m in before for s in sizes(m.pieces)]
         repeated = [literal(n) for m in before for n in numbers(m.node)]
         changed = [v for _, _, v in self.source.key.changes if v is not None] if self.source.key else []
-        named = [s for m in before for node, a in m.pieces if isinstance(node, Reference) for s in sized(a)]
+        named = [
+            s
+            for m in before
+            for node, a in m.pieces
+            if isinstance(node, Reference)
+            for s in sized(a.value, a.dimension)
+        ]
         return Meanings([*constants, *changed, *self._ends()], pieces, named, self.circuit_values(), repeated)
 
     def _ends(self) -> list[Amount]:
