@@ -12,14 +12,26 @@ from functools import cache
 from calccheck.arithmetic import Doubt
 from calccheck.edits import stray, unmark
 from calccheck.judge.cautions import caution_findings
+from calccheck.judge.preferred import preferred_findings
 from calccheck.judge.quantities import frequencies
+from calccheck.judge.ratings import held_ratings
 from calccheck.judge.references import Find, reference_findings
 from calccheck.judge.scope import Ledger, Solve
-from calccheck.judge.sheet import judge_sheet
+from calccheck.judge.sheet import judge_sheet, ledger_of
 from calccheck.judge.slips.redo import Earlier
 from calccheck.judge.symbols import instance, points
 from calccheck.judge.working import work_out as worked_out
-from calccheck.model import Circuit, CircuitFigures, Finding, Reading, Report, Settings, Solution, WorkedQuantity
+from calccheck.model import (
+    Circuit,
+    CircuitFigures,
+    Finding,
+    RatingHeld,
+    Reading,
+    Report,
+    Settings,
+    Solution,
+    WorkedQuantity,
+)
 from calccheck.read.expression import parse
 from calccheck.read.sheet import read_sheet
 from calccheck.rules import RULES
@@ -27,6 +39,7 @@ from calccheck.signatures import signature_findings
 from calccheck.solve import Unsolvable, solve, solve_batch, tolerances, total
 from calccheck.solve.states import state_faults
 from calccheck.source import Sheet, whole
+from calccheck.toleranced import Tolerancing
 
 EarlierTexts = Callable[[], Iterable[tuple[str, str]]]
 
@@ -54,7 +67,16 @@ def check(
     elsewhere = reference_findings(reading, judged, find)
     cautions = caution_findings(reading, solutions)
     assumed = [f for c in reading.circuits if not c.symbols for f in states(c)]
-    beside = (*assumed, *_stray_marks(reading), *signature_findings(reading), *elsewhere, *cautions)
+    ratings, passed = _ratings(reading, solutions, solve_once, lambda c: _first(states(c)), over_tolerances)
+    beside = (
+        *assumed,
+        *passed,
+        *preferred_findings(reading),
+        *_stray_marks(reading),
+        *signature_findings(reading),
+        *elsewhere,
+        *cautions,
+    )
     every = sorted((*reading.findings, *beside, *faults, *findings), key=lambda f: f.span.start)
     return Report(
         reading,
@@ -62,7 +84,28 @@ def check(
         tuple(every),
         _figures(reading, solutions),
         tuple(found[0] if found else None for found in solutions),
+        ratings,
     )
+
+
+def _ratings(
+    reading: Reading,
+    solutions: Sequence[Sequence[Solution]],
+    solve_once: Solve,
+    fails: Callable[[Circuit], str],
+    over_tolerances: Callable[[], Tolerancing],
+) -> tuple[tuple[RatingHeld, ...], list[Finding]]:
+    """Every rating of the circuits that stand as drawn, the nearest to its limit first, and findings."""
+    if not any(e.ratings for c in reading.circuits for e in c.elements):
+        return (), []
+    ledger = ledger_of(reading, solve_once, points(reading.circuits)[0], fails, over_tolerances)
+    held: list[RatingHeld] = []
+    findings: list[Finding] = []
+    for k, solved in enumerate(solutions):
+        if solved and not ledger.fails(ledger.circuits[k]):
+            more, said = held_ratings(k, ledger)
+            held, findings = held + more, findings + said
+    return tuple(sorted(held, key=lambda h: -h.share)), findings
 
 
 def _circuits_of(earlier: EarlierTexts, name: str) -> Callable[[], tuple[Earlier, ...]]:

@@ -19,6 +19,18 @@ SERIES: dict[str, tuple[int, ...]] = {
 }  # fmt: skip
 
 
+def between(value: Fraction, series: str) -> tuple[Fraction, Fraction] | None:
+    """The values of a series next below and next above one that is not in it; nothing for one that is. For values above zero."""
+    digits = SERIES[series]
+    decade = _decade(value, len(str(digits[0])))
+    found = value / decade
+    if found in digits:
+        return None
+    below = max((d for d in digits if d < found), default=0)
+    above = min((d for d in digits if d > found), default=10 * digits[0])
+    return below * decade, above * decade
+
+
 def neighbours(value: Fraction) -> tuple[Fraction, ...]:
     """The next lower and next higher values in E12 and in E24, or else in E96 or E192; nothing for no preferred value."""
     found = [v for name in ("E12", "E24") for v in _beside(value, SERIES[name])]

@@ -11,7 +11,7 @@ import math
 from collections.abc import Callable, Mapping
 from dataclasses import dataclass, field
 from fractions import Fraction
-from typing import Any, Literal
+from typing import Any, Literal, Protocol
 
 from calccheck.arithmetic import Doubt, Value, literal, real, size
 from calccheck.formula import Binary, Call, Group, Node, Number, Range, Reference, Unary
@@ -93,6 +93,23 @@ class Sample:
 
 
 Spread = Literal["uniform", "normal"]
+
+
+class Tolerancing(Protocol):
+    """Works formulas over their tolerances. Raises ``Doubt`` where they have no value there."""
+
+    def extreme(self, formula: Formula, largest: bool) -> Extreme:
+        """The largest or the least value."""
+
+    def slopes(self, formula: Formula) -> Mapping[str, float]:
+        """The slope at the nominal values along every varied value, by key."""
+
+    def at_ends(self, formula: Formula) -> Mapping[str, tuple[float, float]]:
+        """The formula with one varied value at its ends, low and high, all others nominal, by key."""
+
+    def sampled(self, formula: Formula, size: int, seed: int, spread: Spread) -> Sample:
+        """Moments over random values."""
+
 
 # --- formulas worked ------------------------------------------------------------------------------------------------
 

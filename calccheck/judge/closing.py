@@ -109,7 +109,7 @@ class Closing:
         if ref.prefix == "rms":
             return self._rms(key, ref.span)
         if key.letter in ("P", "S", "Q"):
-            node = self._power(key, ref.span)
+            node = self.power(key, ref.span)
         else:
             circuit = quantities.circuit_of(key, self.ledger, ref.span)
             node = self.reading(key, quantities.frequency_of(key, circuit, self.ledger, ref.span), ref.span)
@@ -140,7 +140,7 @@ class Closing:
             terms.append(self._shared(Binary("^", size, _count(2, span), span), f, span))
         return Call("sqrt", (_added(terms, span),), span)
 
-    def _power(self, key: Key, span: Span) -> Node:
+    def power(self, key: Key, span: Span) -> Node:
         """A power as a formula of voltages and currents; of a resistor by its own resistance and current."""
         circuit = quantities.circuit_of(key, self.ledger, span)
         found = quantities.acting(key, circuit, span)

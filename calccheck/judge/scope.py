@@ -15,7 +15,7 @@ from calccheck.formula import Change, ChangeKind, Node, Reference
 from calccheck.judge.phasors import PrintedPhasor, Sized
 from calccheck.judge.rounding import Printed
 from calccheck.model import Basis, Circuit, Element, Settings, Solution, State, Tolerance, Verdict
-from calccheck.toleranced import Extreme, Formula, Sample, Spread
+from calccheck.toleranced import Tolerancing
 from calccheck.units import Dimension
 
 QUANTITY_LETTERS = {"V", "I", "P", "R", "Z", "Isc", "S", "Q"}
@@ -82,22 +82,6 @@ class Solve(Protocol):
 
     def __call__(self, circuit: Circuit, frequency: Fraction = Fraction(0)) -> Solution:
         """The solution."""
-
-
-class Tolerancing(Protocol):
-    """Works formulas over their tolerances. Raises ``Doubt`` where they have no value there."""
-
-    def extreme(self, formula: Formula, largest: bool) -> Extreme:
-        """The largest or the least value."""
-
-    def slopes(self, formula: Formula) -> Mapping[str, float]:
-        """The slope at the nominal values along every varied value, by key."""
-
-    def at_ends(self, formula: Formula) -> Mapping[str, tuple[float, float]]:
-        """The formula with one varied value at its ends, low and high, all others nominal, by key."""
-
-    def sampled(self, formula: Formula, size: int, seed: int, spread: Spread) -> Sample:
-        """Moments over random values."""
 
 
 @dataclass(slots=True)
@@ -286,6 +270,12 @@ def _case(ref: Reference, circuit: Circuit) -> tuple[Change, ...]:
             return case.changes
     known = ", ".join(c.name for c in circuit.cases) or "none"
     raise Doubt(f"there is no case {ref.qualifiers.case}; cases of this circuit: {known}", ref.span)
+
+
+def case_changes(name: str, circuit: Circuit, ledger: Ledger) -> tuple[tuple[str, ChangeKind, Amount | None], ...]:
+    """The changes of a named case, as keys hold them."""
+    case = next(c for c in circuit.cases if c.name == name)
+    return tuple((c.part, c.what, _replacement(c, ledger, circuit)) for c in case.changes)
 
 
 def _in_maths(name: str, circuit: Circuit) -> str:

@@ -11,11 +11,12 @@ from calccheck.judge.chain import judge_claim
 from calccheck.judge.miss import Miss
 from calccheck.judge.new_names import assumptions
 from calccheck.judge.rounding import Printed, fit, printed
-from calccheck.judge.scope import Ledger, Solve, Tolerancing
+from calccheck.judge.scope import Ledger, Solve
 from calccheck.judge.slips.redo import Earlier, Redo, SolveBatch
 from calccheck.judge.symbols import Point, combined, instance, points
 from calccheck.model import Circuit, Finding, Judged, Reading, Waiver
 from calccheck.rules import RULES
+from calccheck.toleranced import Tolerancing
 
 
 def judge_sheet(

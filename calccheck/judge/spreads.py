@@ -12,12 +12,12 @@ from calccheck.arithmetic import Amount, Doubt, Real, Value, plainest, size
 from calccheck.formula import Binary, Call, Node, Reference
 from calccheck.judge import quantities
 from calccheck.judge.closing import Closing, Exact
-from calccheck.judge.scope import Ledger, Tolerancing
+from calccheck.judge.scope import Ledger
 from calccheck.judge.varied import Values
 from calccheck.model import Circuit, Element
 from calccheck.printing import shown
 from calccheck.source import Span
-from calccheck.toleranced import PLAIN, Effect, Extreme, Formula, Point, worked
+from calccheck.toleranced import PLAIN, Effect, Extreme, Formula, Point, Tolerancing, worked
 from calccheck.units import NONE
 
 ERRORS = 3  # standard errors that a sampled value may be off
