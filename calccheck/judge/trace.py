@@ -76,6 +76,8 @@ def _one(n: Number, meanings: Meanings, ledger: Ledger) -> Traced:
         other = bool(named) and all(abs(a - x) > _ALIKE * x for a in named)
         return Traced(n, p.half if other else 0, True)
     rounds = _rounded_by(x, room, p.amount.dimension, meanings.pieces)
+    if rounds and all(abs(a - x) <= _ALIKE * x for a in rounds):
+        return Traced(n, 0, True)
     rounds += _rounded_by(x, room, p.amount.dimension, meanings.around)
     earlier = _earlier(p, ledger)
     if earlier is not None and earlier.stands:
