@@ -31,34 +31,32 @@ _WORDS = {WATT: "its power", VOLT: "the voltage across it", AMPERE: "its current
 
 
 def held_ratings(index: int, ledger: Ledger) -> tuple[list[RatingHeld], list[Finding]]:
-    """The ratings of one circuit's parts, and what is to be said of those that are passed or could not be checked."""
+    """The ratings of one circuit's parts, each in its worst case, and what is to be said of those passed or not checked."""
     circuit = ledger.circuits[index]
-    rated = [(e, r) for e in circuit.elements for r in e.ratings]
-    held: list[RatingHeld] = []
-    findings: list[Finding] = []
+    worst: dict[Span, tuple[RatingHeld, Element]] = {}
+    unchecked: dict[str, dict[Span, tuple[Element, str]]] = {}
     for case in ("", *(c.name for c in circuit.cases)):
         changes = case_changes(case, circuit, ledger) if case else ()
-        unchecked: dict[str, list[tuple[Element, Rating]]] = {}
-        for e, rating in rated:
+        for e, rating in ((e, r) for e in circuit.elements for r in e.ratings):
             try:
                 found = _held(e, rating, Key(index, "", (), changes=changes), case, ledger)
             except Doubt as d:
-                unchecked.setdefault(d.reason, []).append((e, rating))
+                unchecked.setdefault(d.reason, {}).setdefault(rating.span, (e, case))
                 continue
-            if found is not None:
-                held.append(found)
-                findings += _passed(found, e)
-        findings += _unchecked(unchecked, case)
-    return held, findings
+            if found is not None and (rating.span not in worst or found.share > worst[rating.span][0].share):
+                worst[rating.span] = found, e
+    findings = [f for held, e in worst.values() for f in _passed(held, e)]
+    return [held for held, _ in worst.values()], [*findings, *_unchecked(unchecked)]
 
 
-def _unchecked(found: dict[str, list[tuple[Element, Rating]]], case: str) -> Iterator[Finding]:
+def _unchecked(found: dict[str, dict[Span, tuple[Element, str]]]) -> Iterator[Finding]:
     """One finding for all ratings that could not be checked for the same reason."""
     for reason, rated in found.items():
-        names = ", ".join(dict.fromkeys(e.name for e, _ in rated))
+        names = ", ".join(dict.fromkeys(e.name for e, _ in rated.values()))
+        case = next(iter(rated.values()))[1]
         where = f" in case {case}" if case else ""
         message = f"the rating{'s' if len(rated) > 1 else ''} of {names} could not be checked{where}: {reason}"
-        yield Finding("rating", RULES["rating"].severity, message, rated[0][1].span)
+        yield Finding("rating", RULES["rating"].severity, message, next(iter(rated)))
 
 
 def _held(e: Element, rating: Rating, key: Key, case: str, ledger: Ledger) -> RatingHeld | None:
