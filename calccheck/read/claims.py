@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 import re
-from collections.abc import Iterator, Sequence
+from collections.abc import Collection, Iterator, Sequence
 from dataclasses import dataclass, field, replace
 
 from calccheck.arithmetic import Doubt
@@ -13,7 +13,7 @@ from calccheck.read.attributes import read_tolerance
 from calccheck.read.expression import parse_chain
 from calccheck.read.maths import has_relation, parse_maths, rows
 from calccheck.read.prose import prose_claims
-from calccheck.read.tables import reads_as_table, table_claims
+from calccheck.read.tables import table_claims
 from calccheck.read.waivers import read_waiver, waiver_text
 from calccheck.rules import RULES
 from calccheck.source import Piece, Span, joined
@@ -34,7 +34,7 @@ class Found:
     not_read: int = 0
 
 
-def read_claims(page: tuple[Block, ...], names: Sequence[str], given_lines: Sequence[Sequence[Piece]]) -> Found:
+def read_claims(page: tuple[Block, ...], names: Collection[str], given_lines: Sequence[Sequence[Piece]]) -> Found:
     """Every claim of a page, in the page's order.
 
     ``names``: the names of all parts and nodes, by which claims in plain prose are known. ``given_lines``: of each circuit
@@ -150,7 +150,7 @@ def _statements(lines: Sequence[Piece]) -> Iterator[tuple[list[Piece], list[Piec
 # --- text and tables ------------------------------------------------------------------------------------------------
 
 
-def _text(found: Found, block: Block, circuit: int, names: Sequence[str], first: int | None = None) -> None:
+def _text(found: Found, block: Block, circuit: int, names: Collection[str], first: int | None = None) -> None:
     """The claims in one paragraph, heading or cell, with the waivers that stand behind them.
 
     ``first``: index of the first claim that a waiver here may belong to; the block's own first where not given.
@@ -181,9 +181,9 @@ def _html(found: Found, inline: Inline, start: int) -> None:
         )
 
 
-def _table(found: Found, block: Block, circuit: int, names: Sequence[str]) -> None:
+def _table(found: Found, block: Block, circuit: int, names: Collection[str]) -> None:
     """A table of quantities, and the inline claims in the cells of any table."""
-    cell_claims = table_claims(block, circuit) if reads_as_table(block) else {}
+    cell_claims = table_claims(block, circuit)
     for cell in blocks(block.children):
         if cell.kind != "cell":
             continue

@@ -9,7 +9,6 @@ from __future__ import annotations
 
 import re
 from collections.abc import Sequence
-from dataclasses import replace
 
 from calccheck.arithmetic import Doubt
 from calccheck.model import Member
@@ -275,7 +274,7 @@ class Reader:
             self.at += 1
             return [Token("word", words + "Ω", start, self.here())]
         inner = tokens(Piece(words, [self.piece.at[min(offset, len(self.piece.text))]] * (len(words) + 1)))[:-1]
-        return [replace(t, start=start, end=self.here()) for t in inner]
+        return [Token(t.kind, t.text, start, self.here()) for t in inner]
 
 
 def _with_subscript(letter: str, subscript: str, start: int, end: int) -> Token:

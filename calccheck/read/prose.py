@@ -7,8 +7,7 @@ from __future__ import annotations
 
 import re
 from bisect import bisect_left
-from collections.abc import Sequence
-from functools import lru_cache
+from collections.abc import Collection, Iterator
 from html import unescape
 from itertools import pairwise
 
@@ -23,17 +22,13 @@ _RELATION = r"(?:~=|\\?[<>]=?|[=≈≤≥~≅≃∼]|&(?:l[te]|g[te]|leq|geq|ap|
 _ABOUT = dict.fromkeys(("~", "~=", "≅", "≃", "∼"), "≈")
 
 
-@lru_cache(maxsize=64)
-def _pattern(names: tuple[str, ...]) -> re.Pattern[str]:
-    known = "|".join(re.escape(n) for n in sorted(names, key=len, reverse=True))
-    subject = f"{_QUANTITY}|{known}" if known else _QUANTITY
-    return re.compile(
-        rf"(?<![\w.])_{{0,3}}(?P<subject>{subject})[*_]{{0,3}}\s*(?P<relation>{_RELATION})\s*(?:about\s|approx\.?\s|ca\.?\s)?"
-        rf"\s*[*_]{{0,3}}(?P<value>{_VALUE})"
-    )
+_STATED = re.compile(
+    rf"(?<![\w.])_{{0,3}}(?:(?P<quantity>{_QUANTITY})|(?P<word>(?P<sign>[+\-−]?)\w+[′″']*))[*_]{{0,3}}\s*"
+    rf"(?P<relation>{_RELATION})\s*(?:about\s|approx\.?\s|ca\.?\s)?\s*[*_]{{0,3}}(?P<value>{_VALUE})"
+)
 
 
-def prose_claims(block: Block, names: Sequence[str], circuit: int) -> list[Claim]:
+def prose_claims(block: Block, names: Collection[str], circuit: int) -> list[Claim]:
     """What reads as a claim in a block's plain text.
 
     Code, maths and HTML in it are left out, but for names in code whose relation and value stand outside: `` `V_b` = 8 V ``.
@@ -53,13 +48,30 @@ def prose_claims(block: Block, names: Sequence[str], circuit: int) -> list[Claim
             if inline.kind != "html" and not any(c in _SIGNS for c in words):
                 text[first:last] = [" " if c in "`$" else c for c in words]
     claims = []
-    for m in _pattern(tuple(names)).finditer("".join(text)):
+    for subject, m in _stated("".join(text), names):
         span = content.span(m.start(), m.end())
         sign = unescape(m["relation"].strip("\\"))
-        written = f"{m['subject'].replace(chr(92), '').strip('*_')} {_ABOUT.get(sign, sign)} {m['value']}"
+        written = f"{subject.replace(chr(92), '').strip('*_')} {_ABOUT.get(sign, sign)} {m['value']}"
         problem = Problem("a claim in plain prose: put it in code", span, f"`{written}`")
         claims.append(Claim(written, span, "prose", circuit, problem=problem))
     return claims
+
+
+def _stated(text: str, names: Collection[str]) -> Iterator[tuple[str, re.Match[str]]]:
+    """What is stated of a quantity or of a known name: the subject, and the match with relation and value."""
+    m = _STATED.search(text)
+    while m is not None:
+        subject = m["quantity"] or _known(m[0][: m.end("word") - m.start()], names)
+        if subject:
+            yield subject, m
+        m = _STATED.search(text, m.end() if subject else m.end("sign") if m["sign"] else m.end("word"))
+
+
+def _known(word: str, names: Collection[str]) -> str:
+    """The known name that a word is, up to three marks of emphasis at either end taken off."""
+    lead, trail = (min(3, len(word) - len(bare)) for bare in (word.lstrip("_"), word.rstrip("_")))
+    inner = (word[k : len(word) - j] for k in range(lead, -1, -1) for j in range(trail + 1))
+    return next((name for name in inner if name in names), "")
 
 
 def _rising(at: list[int]) -> list[int]:

@@ -74,8 +74,8 @@ def _word(fence: Block) -> str:
     return (fence.info.split() or [""])[0]
 
 
-def _names(circuits: Sequence[Circuit]) -> list[str]:
-    return [n for c in circuits for n in (*(e.name for e in c.elements), *c.nodes())]
+def _names(circuits: Sequence[Circuit]) -> set[str]:
+    return {n for c in circuits for n in (*(e.name for e in c.elements), *c.nodes())}
 
 
 def _same_names(circuits: Sequence[Circuit], sheet: Sheet) -> list[Finding]:

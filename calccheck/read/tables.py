@@ -65,21 +65,18 @@ class Subject:
 _UNNAMED = Subject(None, "", reason="no quantity in code names this value: its row or column has none at its edge")
 
 
-def reads_as_table(table: Block) -> bool:
-    """Whether an edge of the table holds quantities."""
-    head, body = table.children[0], table.children[1:]
-    return any(_subject(r.children[0]) for r in body if r.children) or any(_subject(c) for c in head.children[1:])
-
-
 def table_claims(table: Block, circuit: int) -> dict[int, Claim]:
-    """The claims of a table's cells, by the offset at which the cell begins."""
+    """The claims of a table's cells, by the offset at which the cell begins; none where no edge holds quantities."""
     head, body = table.children[0], table.children[1:]
     spare = max((len(r.children) for r in body), default=0) - len(head.children)  # cells beyond the last header
-    if any(_subject(r.children[0]) for r in body if r.children):
+    sides = {r.span.start: _subject(r.children[0]) for r in body if r.children}
+    if any(sides.values()):
         edges = [*(_edge(c) for c in head.children), *[Edge("prose", text="(none)")] * spare]
-        return _grid(body, circuit, lambda row, _: _subject(row.children[0]), lambda _, k: edges[k], edges)
-    subjects = [None, *(_subject(c) for c in head.children[1:]), *[None] * spare]
-    return _grid(body, circuit, lambda _, k: subjects[k], lambda row, _: _edge(row.children[0]), [])
+        return _grid(body, circuit, lambda row, _: sides[row.span.start], lambda _, k: edges[k], edges)
+    tops = [None, *(_subject(c) for c in head.children[1:]), *[None] * spare]
+    if any(tops):
+        return _grid(body, circuit, lambda _, k: tops[k], lambda row, _: _edge(row.children[0]), [])
+    return {}
 
 
 def _grid(

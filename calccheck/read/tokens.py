@@ -3,8 +3,7 @@
 from __future__ import annotations
 
 import re
-from dataclasses import dataclass
-from typing import Literal
+from typing import Literal, NamedTuple, cast
 
 from calccheck.arithmetic import Doubt
 from calccheck.source import Piece
@@ -29,14 +28,14 @@ _TOKEN = re.compile(
     re.VERBOSE,
 )
 _EXPONENT = re.compile(_NUMBER)  # behind ^ a number ends before a × 10³, which multiplies the power
+_TEN = re.compile(r"\s?[×*]\s?10")
 _SAME = {"//": "∥", "*": "×", "/": "÷", "~=": "≈", "<=": "≤", ">=": "≥", "...": "…", "[": "(", "]": ")"}
 _UP = str.maketrans(SUPERSCRIPTS + "⁻", "0123456789-")
 _GAPS = str.maketrans("", "", "\u2009\u202f\u00a0")
 RELATIONS = {"=", "≈", "<", "≤", ">", "≥"}
 
 
-@dataclass(frozen=True, slots=True)
-class Token:
+class Token(NamedTuple):  # a tuple, because hundreds are made for one sheet
     """``text`` is normalised (one sign for each operator, plain digits); ``start`` and ``end`` count in the piece."""
 
     kind: TokenKind
@@ -56,24 +55,23 @@ def tokens(piece: Piece) -> list[Token]:
         m = _TOKEN.match(text, at)
         if m is None:
             raise _strange(piece, text, at)
-        kind = m.lastgroup
+        kind = cast(TokenKind, m.lastgroup)
         if kind == "number" and found and found[-1].text == "^":
             m = _EXPONENT.match(text, at) or m
-        if kind == "number":
-            _refuse_comma_and_point(piece, text, m)
-            found.append(Token("number", _plain(m.group()), at, m.end()))
-        elif kind == "imaginary":
-            _refuse_comma_and_point(piece, text, m)
-            found.append(Token("imaginary", _plain(m.group()[1:]), at, m.end()))
-        elif kind == "operator":
-            found.append(Token("operator", _SAME.get(m.group(), m.group()), at, m.end()))
-        elif kind == "superscript":
-            found.append(Token("superscript", m.group().translate(_UP), at, m.end()))
-        elif kind == "braced":
-            found.append(Token("braced", m.group(), at, m.end()))
-        elif kind == "word":
-            found.append(Token("word", m.group(), at, m.end()))
-        at = m.end()
+        start, at, word = at, m.end(), m[0]
+        match kind:
+            case "number":
+                _refuse_comma_and_point(piece, text, m)
+                word = _plain(word)
+            case "imaginary":
+                _refuse_comma_and_point(piece, text, m)
+                word = _plain(word[1:])
+            case "operator":
+                word = _SAME.get(word, word)
+            case "superscript":
+                word = word.translate(_UP)
+        if m.lastgroup != "space":
+            found.append(Token(kind, word, start, at))
     found.append(Token("end", "", at, at))
     return found
 
@@ -85,13 +83,15 @@ def superscript(text: str) -> int:
 
 def _plain(text: str) -> str:
     """Digits without grouping, the exponent in one form: ``1.6×10⁻¹⁹`` is ``1.6e-19``."""
-    mantissa, ten, exponent = re.sub(r"\s?[×*]\s?10", "x", text.translate(_GAPS)).partition("x")
+    if text.isascii() and "*" not in text:
+        return text  # most are written plainly
+    mantissa, ten, exponent = _TEN.sub("x", text.translate(_GAPS)).partition("x")
     return f"{mantissa}e{exponent.translate(_UP).lstrip('^')}" if ten else mantissa
 
 
 def _refuse_comma_and_point(piece: Piece, text: str, m: re.Match[str]) -> None:
     follows = text[m.end() : m.end() + 2]
-    if len(follows) == 2 and follows[1].isdigit() and follows[0] in ",.":
+    if follows[:1] in (",", ".") and follows[1:].isdigit():
         end = m.end() + 1
         while end < len(text) and (text[end].isdigit() or text[end] in ",."):
             end += 1
