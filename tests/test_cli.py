@@ -136,6 +136,7 @@ def faulty(monkeypatch):
         return whole(sheet, *rest)
 
     monkeypatch.setattr(calccheck.pipeline, "check", check)
+    monkeypatch.delitem(sys.modules, "typst", raising=False)  # else processes begin anew, without the patch
 
 
 @pytest.mark.parametrize("jobs", ["1", "2"])

@@ -108,7 +108,8 @@ def test_a_comment_on_each_claim_to_be_mended_and_on_no_other(pdf):
     for key, annotation in found.items():
         assert annotation["/Contents"] == comment_text(wanted[key])
         assert annotation["/Subj"] == MARKS[wanted[key].kind].word
-        assert wanted[key].message in annotation["/Contents"]
+        message = wanted[key].message
+        assert message[:1].upper() + message[1:] in annotation["/Contents"]
         assert annotation["/F"] == 4  # prints (ISO 19005-3, 6.3.2)
         assert annotation["/AP"]["/N"].get_object()["/Subtype"] == "/Form"
 
@@ -132,24 +133,55 @@ def test_no_comment_where_all_is_well():
     text = EXAMPLE.replace("8.8 V", "9.0 V")
     reader = read(report_of(text, said(text, "V_b = 3 V", "agrees", place="code", basis="circuit")))
     assert not list(annotations(reader, "/Highlight"))
-    assert "All1claimsstand" in flat(text_of(reader))
+    assert "Theoneclaimstands." in flat(text_of(reader))
 
 
 def test_no_link_to_a_comment_is_left_over(pdf):
     assert not [a for _, _, a in annotations(pdf, "/Link") if str(a.get("/A", {}).get("/URI", "")).startswith("annot")]
 
 
-def test_every_mark_leads_to_the_record_and_back(pdf):
-    record = next(k for k, page in enumerate(pdf.pages) if "Checkrecord" in flat(page.extract_text()))
-    there, back = 0, 0
-    for page, _, link in annotations(pdf, "/Link"):
+def lands_on(at: float, y: float) -> bool:
+    """Whether a jump to this height shows what stands at height ``y`` as the first thing on the screen: a line below."""
+    return 8 < at - y < 18
+
+
+def jumps(reader: PdfReader) -> list[tuple[int, tuple[float, float], int, float]]:
+    """Every link inside the file: its page, the middle of its box, the page it leads to, the height there."""
+    found = []
+    for page, _, link in annotations(reader, "/Link"):
         target = link["/Dest"]
-        to = pdf.get_page_number(target[0].get_object())
-        there += page.page_number < record <= to
-        back += page.page_number >= record > to
-    placed = len(entries(example()))
-    assert there == placed
-    assert back == placed
+        assert target[1] == "/XYZ"  # a place, not a page alone (ISO 32000-1, 12.3.2.2)
+        x0, y0, x1, y1 = (float(v) for v in link["/Rect"])
+        to = reader.get_page_number(target[0].get_object())
+        assert to is not None
+        assert 0 <= float(target[3]) <= float(reader.pages[to].mediabox.height)
+        found.append((page.page_number, ((x0 + x1) / 2, (y0 + y1) / 2), to, float(target[3])))
+    return found
+
+
+def test_every_mark_leads_to_the_record_and_back(pdf):
+    """From a mark to the row of its claim, from the row's mark to the mark in the sheet, by where the links lie and land."""
+    titles = [flat(page.extract_text()) for page in pdf.pages]
+    record = next(k for k, page in enumerate(titles) if "Checkrecord" in page)
+    checker = next(k for k, page in enumerate(titles) if "Lefttothechecker" in page)
+    found = jumps(pdf)
+    there = [j for j in found if j[0] < record <= j[2] < checker]
+    back = [j for j in found if record <= j[0] < checker and j[2] < record]
+    assert len(there) == len(back) == len(entries(example()))
+    for page, (_, y), to, at in there:
+        rows = [b for b in back if b[0] == to and lands_on(at, b[1][1])]
+        assert [b[2] for b in rows if lands_on(b[3], y)] == [page]  # the row leads back to the line that led to it
+
+
+def test_the_front_and_the_checkers_page_lead_to_the_marks(pdf):
+    titles = [flat(page.extract_text()) for page in pdf.pages]
+    record = next(k for k, page in enumerate(titles) if "Checkrecord" in page)
+    marks = {(j[0], round(j[1][1])) for j in jumps(pdf) if j[0] < record <= j[2]}
+    for page in (0, len(titles) - 1):
+        inward = [j for j in jumps(pdf) if j[0] == page and j[2] < record]
+        assert inward
+        for _, _, to, at in inward:
+            assert any(to == p and lands_on(at, y) for p, y in marks)
 
 
 # --- the file -------------------------------------------------------------------------------------------------------

@@ -5,10 +5,12 @@ Both printed outputs (page and PDF) set these rows; neither words anything by it
 
 from __future__ import annotations
 
-from dataclasses import dataclass
+from collections.abc import Iterable
+from dataclasses import dataclass, field
 from fractions import Fraction
 
 from calccheck.annotate.marks import MARKS
+from calccheck.annotate.sentences import names_in, sentence
 from calccheck.arithmetic import Amount
 from calccheck.formula import Node, Number, Range, Unary, numbers
 from calccheck.model import Claim, Finding, Judged, Member, Report
@@ -41,7 +43,8 @@ class Entry:
     """One row of the record.
 
     ``key``: its anchor, unique in the sheet; ``number``: as printed beside the mark; ``kind``: a key of ``MARKS``.
-    ``size``: the deviation without its sign. ``told``: ``message`` and what else is to be said, a sentence or two each. ``cautions``: said beside a verdict that stands.
+    ``size``: the deviation without its sign. ``told``: ``message`` and what else is to be said, a phrase or two each.
+    ``cautions``: said beside a verdict that stands. ``names``: words that are names in this sheet.
     """
 
     key: str
@@ -59,6 +62,7 @@ class Entry:
     size: float = 0.0
     basis: str = ""
     echo: bool = False
+    names: frozenset[str] = field(default=frozenset(), repr=False)
 
     @property
     def beside(self) -> bool:
@@ -70,15 +74,20 @@ class Entry:
         """Whether it is commented upon, as something to be mended."""
         return not self.echo and self.kind in NOTED
 
+    def sentences(self, phrases: Iterable[str]) -> list[str]:
+        """Phrases about this entry as sentences."""
+        return [sentence(p, self.names) for p in phrases]
+
 
 def entries(report: Report) -> tuple[Entry, ...]:
     """An entry for each claim, numbered in the order of the sheet, then for each finding."""
-    claims = tuple(_claim(report, k, judged) for k, judged in enumerate(report.claims, 1))
+    names = names_in(report)
+    claims = tuple(_claim(report, k, judged, names) for k, judged in enumerate(report.claims, 1))
     said = {e.message for e in claims}
-    return claims + tuple(_finding(report, k, finding, said) for k, finding in enumerate(report.findings, 1))
+    return claims + tuple(_finding(report, k, finding, said, names) for k, finding in enumerate(report.findings, 1))
 
 
-def _claim(report: Report, k: int, judged: Judged) -> Entry:
+def _claim(report: Report, k: int, judged: Judged, names: frozenset[str]) -> Entry:
     claim = judged.claim
     told = [judged.message, *(slip.text for slip in judged.slips)]
     if claim.problem and claim.problem.suggestion and claim.problem.suggestion not in judged.message:
@@ -98,23 +107,31 @@ def _claim(report: Report, k: int, judged: Judged) -> Entry:
         deviation=_deviation(judged),
         size=abs(judged.deviation or 0.0),
         basis=judged.basis,
+        names=names,
     )
 
 
-def _finding(report: Report, k: int, finding: Finding, said: set[str]) -> Entry:
+def _finding(report: Report, k: int, finding: Finding, said: set[str], names: frozenset[str]) -> Entry:
     title = RULES[finding.kind].title if finding.kind in RULES else finding.kind
     line = report.reading.sheet.line_column(finding.span.start)[0]
     told = (finding.message, f"Write: {finding.suggestion}") if finding.suggestion else (finding.message,)
     echo = finding.message in said
-    return Entry(f"f{k}", f"F{k}", finding.severity, finding.span, line, title, finding.message, told, echo=echo)
+    return Entry(
+        f"f{k}", f"F{k}", finding.severity, finding.span, line, title, finding.message, told, echo=echo, names=names
+    )
 
 
 def note_lines(entry: Entry) -> list[str]:
-    """What a note beside a mark says; the recomputed value first, unless the message bears it."""
-    value = entry.computed if entry.kind == "differs" else ""
-    borne = value in entry.message or (entry.deviation != "" and entry.deviation in entry.message)
-    found = f"recomputed {value}" + (f" ({entry.deviation})" if entry.deviation else "")
-    return [*([] if borne else [found]), *entry.told, *entry.cautions]
+    """What a note beside a mark says, sentence by sentence; the recomputed value first, unless the message bears it."""
+    deviation = f" ({entry.deviation})" if entry.deviation else ""
+    found = [f"recomputed {entry.computed}{deviation}"] if value_apart(entry) else []
+    return entry.sentences((*found, *entry.told, *entry.cautions))
+
+
+def value_apart(entry: Entry) -> bool:
+    """Whether the recomputed value of a claim that differs is to be said besides the message, which does not bear it."""
+    borne = entry.computed in entry.message or (entry.deviation != "" and entry.deviation in entry.message)
+    return entry.kind == "differs" and not borne
 
 
 def comment_text(entry: Entry) -> str:
@@ -125,8 +142,7 @@ def comment_text(entry: Entry) -> str:
         f"{MARKS[entry.kind].label} (no. {entry.number}, line {entry.line})",
         entry.text,
         ", ".join(t for t in (found, off) if t),
-        *entry.told,
-        *entry.cautions,
+        *entry.sentences((*entry.told, *entry.cautions)),
     ]
     return "\n".join(line for line in lines if line)
 
@@ -178,14 +194,14 @@ def _deviation(judged: Judged) -> str:
     claimed, computed = (a.value if a is not None else None for a in (judged.claimed, judged.computed))
     sign = ""
     if isinstance(claimed, Fraction | float) and isinstance(computed, Fraction | float):
-        sign = "+" if claimed > computed else "−"
+        sign = "+" if judged.deviation > 0 else "−"
     return f"{sign}{digits(percent, 2 if percent < 0.1 else 3)} %"
 
 
 # --- the parts around the entries -----------------------------------------------------------------------------------
 
 
-def worst_first(rows: tuple[Entry, ...]) -> list[Entry]:
+def worst_first(rows: Iterable[Entry]) -> list[Entry]:
     """What is to be mended or to be weighed, worst first; among what differs the largest deviation first."""
     order = list(MARKS)
     wanted = [e for e in rows if e.beside or e.kind == "note"]
@@ -193,15 +209,29 @@ def worst_first(rows: tuple[Entry, ...]) -> list[Entry]:
 
 
 def headline(report: Report) -> str:
-    """The verdict in one sentence."""
+    """The verdict in one sentence; what is given is no claim that could stand or fall."""
     n = report.counts
-    total = len(report.claims)
+    total = len(report.claims) - n["given"]
     errors = sum(f.severity == "error" for f in report.findings)
-    parts = [f"{n['differs']} of {total} claims differ{'s' if n['differs'] == 1 else ''}"] if n["differs"] else []
+    parts = [f"{n['differs']} of {_claims(total)} differ{'s' if n['differs'] == 1 else ''}"] if n["differs"] else []
     if n["unchecked"]:
         parts.append(f"{n['unchecked']} could not be checked")
     if errors:
         parts.append(f"{errors} error{'s' if errors > 1 else ''} in the sheet")
-    if parts:
-        return "; ".join(parts) + "."
-    return f"All {total} claims stand." if total else "The sheet makes no claims."
+    if not parts:
+        parts.append(_standing(total, n["accepted"]))
+    if n["given"]:
+        parts.append("1 value is given" if n["given"] == 1 else f"{n['given']} values are given")
+        parts[-1] += ", checked against nothing"
+    return "; ".join(parts) + "."
+
+
+def _standing(total: int, accepted: int) -> str:
+    if not total:
+        return "The sheet makes no claims"
+    stand = "The one claim stands" if total == 1 else f"All {total} claims stand"
+    return stand + (f", {accepted} of them under a waiver" if accepted else "")
+
+
+def _claims(n: int) -> str:
+    return f"{n} claim{'' if n == 1 else 's'}"

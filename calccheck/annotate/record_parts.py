@@ -2,9 +2,11 @@
 
 from __future__ import annotations
 
+from collections.abc import Sequence
 from hashlib import sha256
 
 from calccheck.annotate.marks import MARKS
+from calccheck.annotate.record import Entry
 from calccheck.model import ROLES, CircuitFigures, Claim, Report, Settings
 from calccheck.units import digits
 
@@ -26,7 +28,12 @@ MEANINGS = {
     "given": "an assumption, checked against nothing",
 }
 
-_RAISED = str.maketrans("0123456789-", "⁰¹²³⁴⁵⁶⁷⁸⁹⁻")
+RAISED = ("hazard", "touch-voltage", "mains", "stored-energy")
+"""Kinds of finding that are cautions for people, raised by the circuit or named by the sheet: they stand in front."""
+
+TICK = "Tick what has been verified by other means."
+
+_SUPERSCRIPT = str.maketrans("0123456789-", "⁰¹²³⁴⁵⁶⁷⁸⁹⁻")
 SIGNATORIES = tuple(role.capitalize() for role in ROLES)
 
 
@@ -42,6 +49,27 @@ def counts(report: Report) -> list[tuple[str, list[int]]]:
 def digest(report: Report) -> str:
     """SHA-256 of the sheet as UTF-8, in hexadecimal."""
     return sha256(report.reading.sheet.text.encode("utf-8", "surrogatepass")).hexdigest()
+
+
+def raised(report: Report, rows: Sequence[Entry]) -> list[Entry]:
+    """The entries of the cautions that stand in front."""
+    found = zip(report.findings, rows[len(report.claims) :], strict=True)
+    return [e for finding, e in found if finding.kind in RAISED]
+
+
+def givens(report: Report, rows: Sequence[Entry]) -> list[tuple[Entry, str]]:
+    """The entries of the values that are given and checked against nothing, each with what stands behind it."""
+    found = zip(report.claims, rows, strict=False)
+    return [(e, given_notes(j.claim)) for j, e in found if j.verdict == "given"]
+
+
+def waivers(report: Report, rows: Sequence[Entry]) -> list[tuple[Entry, str, str, str]]:
+    """The entries of claims with a waiver: the waiver as written, as a line, and whether it stands."""
+    return [
+        (e, j.claim.waiver.text, waiver_line(j.claim), "stands" if j.verdict == "accepted" else "does not apply")
+        for j, e in zip(report.claims, rows, strict=False)
+        if j.claim.waiver is not None
+    ]
 
 
 def waiver_line(claim: Claim) -> str:
@@ -69,7 +97,7 @@ def _figure(value: float | None) -> str:
     if value == 0:
         return "0"
     mantissa, exponent = f"{value:.1e}".split("e")
-    return f"{mantissa} × 10{str(int(exponent)).translate(_RAISED)}"
+    return f"{mantissa} × 10{str(int(exponent)).translate(_SUPERSCRIPT)}"
 
 
 def settings_line(settings: Settings) -> str:

@@ -6,7 +6,7 @@ from collections.abc import Iterator, Sequence
 from dataclasses import dataclass, replace
 
 from calccheck.annotate.marks import MARKS
-from calccheck.annotate.record import Entry, entries, note_lines
+from calccheck.annotate.record import Entry, entries, value_apart
 from calccheck.annotate.visible import one_line
 from calccheck.model import Judged, Report
 from calccheck.rules import RULES, Rule
@@ -94,7 +94,7 @@ def _on_claim(row: Entry, judged: Judged) -> Iterator[Remark]:
         title=title,
         message=_said(row),
         entry=alone,
-        recomputed=one_line(row.computed) if note_lines(alone) != list(row.told) else "",
+        recomputed=one_line(row.computed) if value_apart(alone) else "",
         likely=tuple(one_line(slip.text) for slip in judged.slips) if judged.verdict == "differs" else (),
         write=next((one_line(t.removeprefix(WRITE)) for t in row.told if t.startswith(WRITE)), ""),
         further=tuple((s.span, one_line(s.message)) for s in failing[1:]),

@@ -21,12 +21,14 @@ from calccheck.annotate.pictures import behind
 from calccheck.annotate.places import places
 from calccheck.annotate.record import Entry, comment_text, entries
 from calccheck.annotate.record_parts import TITLE_FIELDS, digest
+from calccheck.annotate.typst_checker import checker
 from calccheck.annotate.typst_page import Setting, typeset
-from calccheck.annotate.typst_record import Words, notes, record, summary
+from calccheck.annotate.typst_record import Words, notes, record
+from calccheck.annotate.typst_summary import summary
 from calccheck.annotate.typst_text import literal
 from calccheck.model import Report
 
-_LOOK = ("sheet.typ", "record.typ")
+_LOOK = ("sheet.typ", "record.typ", "checker.typ")
 _TRIES = 3
 _NO_DATE = date(1970, 1, 1)  # an archivable file must bear a date; this one says that the sheet has none
 _NOT_SHOWN = re.compile(r"the text `\"(.*?)\"` could not be displayed")
@@ -105,7 +107,7 @@ def typst_source(report: Report, rows: tuple[Entry, ...], place_in_set: str, mis
     head = "\n".join((_marks(), *(Path(__file__).with_name(name).read_text("utf-8") for name in _LOOK)))
     return (
         f"{head}\n{_paper(words, place_in_set)}\n{_attachment(report)}\n"
-        f"{summary(words)}\n{typeset(setting, reading.page)}\n#record-pages[\n{record(words)}]\n"
+        f"{summary(words)}\n{typeset(setting, reading.page)}\n#record-pages[\n{record(words)}{checker(words)}]\n"
     )
 
 

@@ -25,7 +25,7 @@ def run_source(run: Run, body: str, below: bool = False) -> str:
 def mark_source(entry: Entry, below: bool = False) -> str:
     """The mark of an entry, linked to its row in the record."""
     sides = f"below: {'true' if below else 'false'}, beside: {'true' if entry.beside else 'false'}"
-    extra = '#label-of("caution");' if entry.cautions else ""
+    extra = '#h(0.4em)#label-of("caution");' if entry.cautions else ""
     return f"#mark({literal(entry.kind)}, {literal(entry.number)}, {literal(entry.key)}, {sides});{extra}"
 
 

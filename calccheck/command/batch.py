@@ -64,9 +64,11 @@ def _in_processes(guarded: _Guarded[Item, Done], items: Sequence[Item], jobs: in
     """The outcomes by several processes. A process that dies takes its pool along: what was left is done one by one."""
     from concurrent.futures import ProcessPoolExecutor  # late: a hook checks a few sheets in one process
     from concurrent.futures.process import BrokenProcessPool
+    from multiprocessing import get_context
 
     done = 0
-    pool = ProcessPoolExecutor(min(jobs, len(items)), initializer=_leave_interrupts_to_the_parent)
+    context = get_context("spawn") if "typst" in sys.modules else None  # the threads it has begun do not outlive a fork
+    pool = ProcessPoolExecutor(min(jobs, len(items)), context, _leave_interrupts_to_the_parent)
     try:
         for future in [pool.submit(guarded, item) for item in items]:
             yield future.result()
@@ -74,7 +76,7 @@ def _in_processes(guarded: _Guarded[Item, Done], items: Sequence[Item], jobs: in
     except BrokenProcessPool:
         for item in items[done:]:
             try:
-                with ProcessPoolExecutor(1) as alone:
+                with ProcessPoolExecutor(1, context) as alone:
                     yield alone.submit(guarded, item).result()
             except BrokenProcessPool as fault:  # killed, or out of memory
                 yield Outcome(None, internal_fault(guarded.name(item), fault))
