@@ -76,7 +76,8 @@ def judge_value(w: Worked, p: Printed, relation: Relation, ground: Ground) -> St
         return decided(w, "agrees")
     off = deviation(p.value, t)
     near = say.near(truth, p)
-    if size(p.value - t) <= p.half + ground.names.allowance(ground.source):
+    allowance = ground.names.allowance(ground.source)
+    if allowance and size(p.value - t) <= (p.half if p.digits else 0) + allowance:
         return decided(w, "agrees")
     if 0 < ground.outwards * (p.value - t) < p.unit:
         return decided(w, "rounded", f"rounded outwards (as JCGM 100, 7.2.6, allows): {near}")
