@@ -432,11 +432,22 @@ class Reading:
 
 
 @dataclass(frozen=True, slots=True)
+class Sensitivity:
+    """How a value moves a quantity. ``by_percent``: when it rises by 1 %, to first order; ``low``, ``high``: at its ends, alone."""
+
+    name: str
+    by_percent: Amount
+    low: Amount
+    high: Amount
+
+
+@dataclass(frozen=True, slots=True)
 class WorkedQuantity:
     """One quantity worked out both ways, in SI.
 
     ``rows``: each source alone with the quantity's value; ``total``: their sum; ``nodal``: the value of the whole by nodal
     analysis, ``None`` where only some of the sources act; ``gap``: of the two routes, relative to the circuit's scale.
+    ``sensitivities``: of a phasor's magnitude, the value that moves it most first.
     """
 
     quantity: str
@@ -444,6 +455,7 @@ class WorkedQuantity:
     total: Amount
     nodal: Amount | None
     gap: float
+    sensitivities: tuple[Sensitivity, ...] = ()
 
 
 @dataclass(frozen=True, slots=True)

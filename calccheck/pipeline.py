@@ -16,7 +16,7 @@ from calccheck.judge.preferred import preferred_findings
 from calccheck.judge.quantities import frequencies
 from calccheck.judge.ratings import held_ratings
 from calccheck.judge.references import Find, reference_findings
-from calccheck.judge.scope import Ledger, Solve
+from calccheck.judge.scope import Solve
 from calccheck.judge.sheet import judge_sheet, ledger_of
 from calccheck.judge.slips.redo import Earlier
 from calccheck.judge.symbols import instance, points
@@ -218,6 +218,6 @@ def work_out(sheet: Sheet, quantity: str, settings: Settings | None = None) -> W
     point = points(reading.circuits)[0]
     if point:
         raise Doubt("the circuit has free symbols: no number can be worked out")
-    ledger = Ledger(reading.circuits, solver(), reading.settings)
+    ledger = ledger_of(reading, solver(), point, lambda _: "", cache(tolerances))
     piece = whole(quantity)
     return worked_out(parse(piece), piece.span(), ledger)

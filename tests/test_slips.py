@@ -37,6 +37,7 @@ KEYS = {
     "element-shorted", "divider-complement", "series-parallel", "other-quantity", "stale", "neighbour-value", "reciprocal",
     "factor-two", "percent", "working-slip", "early-rounding", "peak-rms", "degrees-radians", "omega-frequency",
     "magnitudes-added", "conjugate", "log-ten-twenty", "line-phase", "drop-forgotten", "stage-kind",
+    "tolerance-combined",
 }  # fmt: skip
 
 

@@ -33,11 +33,12 @@ _WORDS = {WATT: "its power", VOLT: "the voltage across it", AMPERE: "its current
 def held_ratings(index: int, ledger: Ledger) -> tuple[list[RatingHeld], list[Finding]]:
     """The ratings of one circuit's parts, each in its worst case, and what is to be said of those passed or not checked."""
     circuit = ledger.circuits[index]
+    rated = [(e, r) for e in circuit.elements for r in e.ratings]
     worst: dict[Span, tuple[RatingHeld, Element]] = {}
     unchecked: dict[str, dict[Span, tuple[Element, str]]] = {}
     for case in ("", *(c.name for c in circuit.cases)):
         changes = case_changes(case, circuit, ledger) if case else ()
-        for e, rating in ((e, r) for e in circuit.elements for r in e.ratings):
+        for e, rating in rated:
             try:
                 found = _held(e, rating, Key(index, "", (), changes=changes), case, ledger)
             except Doubt as d:

@@ -20,6 +20,9 @@ from calccheck.judge.steps import judge_member
 from calccheck.model import Finding, Member, Step, Verdict
 from calccheck.units import NONE
 
+_SIDES = {
+    ("min", False): "the lower end", ("max", False): "the upper end", ("", True): "the middle", ("max", True): "the deviation",
+}  # fmt: skip
 _ORDER: tuple[Verdict, ...] = ("agrees", "rounded", "unchecked", "differs")
 
 
@@ -87,7 +90,8 @@ def _judged(member: Member, sides: Sequence[tuple[Amount, str]], source: Worked,
         one = work(Member(member.relation, node, _text(member, node), member.span), names)
         if one.amount is not None and one.amount.dimension == NONE != truth.dimension and grounds:
             truth = Amount(size(truth.value) / size(sides[0][0].value) if sides[0][0].value else 0)  # a percentage
-        behind = replace(source, node=_prefixed(source, kind), amount=truth)
+        about = f"{_SIDES[kind, member.node.centred]} of {source.member.text}"
+        behind = replace(source, member=replace(source.member, text=about), node=_prefixed(source, kind), amount=truth)
         ground = Ground(truth, "circuit", behind, (behind, one), names, names.ledger)
         grounds.append(ground)
         steps.append(judge_member(one, member.relation or "=", ground))

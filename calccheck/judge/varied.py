@@ -44,9 +44,13 @@ def tolerances_of(e: Element) -> tuple[Tolerance, ...]:
 
 @dataclass(slots=True)
 class Values:
-    """The varied values and the constants of one formula, gathered as they are met."""
+    """The varied values and the constants of one formula, gathered as they are met.
+
+    ``every``: values without a tolerance are counted as varied too, from their nominal value to itself.
+    """
 
     ledger: Ledger
+    every: bool = False
     varied: dict[str, Varied] = field(default_factory=dict)
     constants: dict[str, Value] = field(default_factory=dict)
 
@@ -87,7 +91,7 @@ class Values:
         self, key: str, label: str, nominal: Fraction, tolerances: tuple[Tolerance, ...], like: Amount, span: Span
     ) -> Node:
         low, high = within(nominal, tolerances, self.ledger.settings)
-        if low == high:
+        if low == high and not self.every:
             return self.constant(nominal, span)
         self.varied[key] = Varied(key, label, nominal, low, high, like.dimension)
         return Reference(key, span)
@@ -122,15 +126,18 @@ class Values:
 
     def _effects(self, e: Element, index: int) -> list[Effect]:
         found = []
-        for word, tolerance in e.device.tolerances if e.device is not None else ():
-            name, dimension = _DEVICE[word]
-            nominal = getattr(e.device, name)
+        stated = dict(e.device.tolerances) if e.device is not None else {}
+        for word, (name, dimension) in _DEVICE.items():
+            nominal = getattr(e.device, name) if e.device is not None else None
+            if nominal is None or not (word in stated or (self.every and nominal)):
+                continue
             key, label = f"{index} {e.name} {word}", f"{word} of {e.name}"
-            node = self._varied(key, label, nominal, (tolerance,), Amount(nominal, dimension), e.span)
+            own = (stated[word],) if word in stated else ()
+            node = self._varied(key, label, nominal, own, Amount(nominal, dimension), e.span)
             found.append(Effect(e.name, name, node))
         if e.value is None and e.phasor is None:
             return self._moving(found)
-        if tolerances_of(e) or e.worked is not None:
+        if tolerances_of(e) or e.worked is not None or self.every:
             node = self.own(e, index, e.span)
             if e.kind == "resistor" and e.stated is not None and e.stated.dimension == SIEMENS:
                 node = Binary("÷", Number(Decimal(1), e.span), node, e.span)

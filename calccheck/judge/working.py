@@ -7,6 +7,7 @@ from calccheck.formula import Node, Reference
 from calccheck.judge import hints, quantities
 from calccheck.judge.changes import TEST
 from calccheck.judge.scope import Key, Ledger, meaning
+from calccheck.judge.sensitivities import sensitivities
 from calccheck.model import WorkedQuantity
 from calccheck.source import Span
 from calccheck.units import Dimension
@@ -34,7 +35,8 @@ def work_out(node: Node, span: Span, ledger: Ledger) -> WorkedQuantity:
     total = quantities.amount(m.key, ledger, span) if solution.exact else _sum(rows, q.dimension)
     whole = q.read(solution.nodal) if len(sources) == len(solution.parts) else None
     nodal = Amount(plainest(whole), q.dimension) if whole is not None else None
-    return WorkedQuantity(node.text, rows, total, nodal, solution.gap)
+    moved_by = sensitivities(m.key, frequency, q.dimension, ledger, span)
+    return WorkedQuantity(node.text, rows, total, nodal, solution.gap, moved_by)
 
 
 def by_source(key: Key | None, ledger: Ledger, span: Span) -> tuple[tuple[str, Amount], ...]:

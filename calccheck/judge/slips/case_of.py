@@ -7,7 +7,7 @@ from collections.abc import Mapping
 from fractions import Fraction
 
 from calccheck.arithmetic import DimensionFault, Doubt, Value, decibels, evaluate, size
-from calccheck.formula import Call, Group, Node, Prefix, Reference, references
+from calccheck.formula import OVER_TOLERANCES, Call, Group, Node, Prefix, Reference, references
 from calccheck.judge.members import Names
 from calccheck.judge.miss import Miss
 from calccheck.judge.quantities import acting, frequency_of
@@ -36,9 +36,13 @@ def case_of(miss: Miss, redo: Redo) -> Case | None:
     figures = figures_of(shown, truth) if shown is not None else ()
     if shown is not None and not figures:
         return None  # a real value printed for a phasor
-    meanings = _meanings(miss)
+    node = miss.held.node
+    over = (
+        isinstance(node, Reference) and node.prefix in OVER_TOLERANCES
+    )  # then no slip with the nominal circuit explains it
+    meanings = {} if over else _meanings(miss)
     index = _index(meanings)
-    key, which = _quantity(miss.held.node, miss.ground.names, index)
+    key, which = _quantity(node, miss.ground.names, index)
     frequencies = _frequencies(key, which, miss.ground.ledger)
     written_in = shown.written_in if shown is not None else PLAIN
     return Case(

@@ -9,6 +9,7 @@ from typing import Literal
 from calccheck.judge.slips import (
     alternating,
     angles,
+    combined,
     devices,
     digits,
     elsewhere,
@@ -71,6 +72,7 @@ SLIPS: tuple[SlipKind, ...] = (
     SlipKind("line-phase", 0.8, "digits", alternating.line_phase),
     SlipKind("drop-forgotten", 1.0, "circuit", devices.drop_forgotten),
     SlipKind("stage-kind", 0.8, "circuit", devices.stage_kind),
+    SlipKind("tolerance-combined", 1.0, "circuit", combined.tolerance_combined),
     SlipKind("working-slip", 0.8, "working", working.working_slip, 1),
     SlipKind("early-rounding", 0.6, "working", working.early_rounding),
 )
