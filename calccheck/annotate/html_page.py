@@ -5,9 +5,8 @@ from __future__ import annotations
 from collections.abc import Callable, Iterator, Mapping, Sequence
 from dataclasses import dataclass, field
 from html import escape
-from itertools import groupby
 
-from calccheck.annotate.characters import code_point, unseen
+from calccheck.annotate.html_words import said, told, word_html
 from calccheck.annotate.marks import MARKS
 from calccheck.annotate.pictures import BY_SOURCE, Shown
 from calccheck.annotate.places import Places, marks_in, runs
@@ -34,39 +33,27 @@ class Setting:
     pictures: Mapping[int, Sequence[Shown]] = field(default_factory=dict)
 
 
-def said(text: str) -> str:
-    """Text of the sheet as HTML: markup escaped, unseen characters as their code points."""
-    parts = []
-    for boxed, group in groupby(text, key=unseen):
-        if boxed:
-            parts += [f'<span class="point">{code_point(c)}</span>' for c in group]
-        else:
-            parts.append(escape("".join(group)))
-    return "".join(parts)
-
-
 def blocks_html(s: Setting, children: Sequence[Block]) -> str:
     """Blocks one behind the other."""
     found = (b for b in children if b.kind in _BLOCKS)
-    return "".join(_BLOCKS[b.kind](s, b) + _figure(s.pictures.get(b.span.start, ())) for b in found)
+    return "".join(_BLOCKS[b.kind](s, b) + _figure(s, b) for b in found)
 
 
-def word_html(entry: Entry, key: str, target: str) -> str:
-    """Sign, word and number of an entry, as a link. ``key``: its own anchor, if any."""
-    anchor = f' id="{key}"' if key else ""
-    label = f"{MARKS[entry.kind].label}<sup>{escape(entry.number)}</sup>"
-    more = f' <span class="ink-caution">{MARKS["caution"].label}</span>' if entry.cautions else ""
-    return f'<a class="word ink-{entry.kind}"{anchor} href="#{target}">{label}{more}</a>'
-
-
-def _figure(shown: Sequence[Shown]) -> str:
-    """A drawing, or bars side by side, with a caption."""
+def _figure(s: Setting, b: Block) -> str:
+    """What stands behind a block: a drawing, or bars side by side, with a caption."""
+    shown = s.pictures.get(b.span.start, ())
     if not shown:
         return ""
     caption = next((p.caption for p in shown if p.caption), BY_SOURCE)
     images = "".join(p.picture.svg for p in shown if p.picture is not None)
-    scroll = f'<div class="scroll" tabindex="0" role="group" aria-label="picture">\n{images}</div>\n' if images else ""
+    scroll = _scrolling("Picture", s, b, images) if images else ""
     return f"<figure>\n{scroll}<figcaption>{said(caption)}</figcaption>\n</figure>\n"
+
+
+def _scrolling(what: str, s: Setting, b: Block, body: str) -> str:
+    """What may be wider than the screen, in a frame of its own that the keyboard reaches."""
+    label = f"{what} of line {s.sheet.line_column(b.span.start)[0]}"
+    return f'<div class="scroll" tabindex="0" role="group" aria-label="{label}">\n{body}\n</div>\n'
 
 
 # --- blocks ---------------------------------------------------------------------------------------------------------
@@ -105,7 +92,7 @@ def _table(s: Setting, b: Block) -> str:
     rows = "".join(f"<tr>{''.join(_cell(s, c, 'td') for c in row.children)}</tr>\n" for row in body)
     cells = [i for row in b.children for c in row.children for i in c.inlines]
     table = f"<table>\n<thead><tr>{heads}</tr></thead>\n<tbody>\n{rows}</tbody>\n</table>"
-    return f'<div class="scroll" tabindex="0" role="group" aria-label="table">\n{table}\n</div>\n{_notes(s, cells)}'
+    return _scrolling("Table", s, b, table) + _notes(s, cells)
 
 
 def _cell(s: Setting, c: Block, tag: str) -> str:
@@ -162,12 +149,11 @@ def _notes(s: Setting, children: Sequence[Inline]) -> str:
 
 def note_html(s: Setting, e: Entry) -> str:
     """What stands behind a block about one of its claims, with ways to the next and back to the list."""
-    told = "".join(f'<span class="told">{said(t)}</span>' for t in note_lines(e))
     label = f'<strong class="ink-{e.kind}">{MARKS[e.kind].label} {escape(e.number)}</strong>'
     onward = s.following.get(e.key)
     jumps = f'<a href="#l-{e.key}">to the list</a>'
     jumps += f' <a href="#{onward}">to the next</a>' if onward else ""
-    return f'<div class="beside ink-{e.kind}" role="note">{label} <span class="jump">{jumps}</span>{told}</div>\n'
+    return f'<div class="beside ink-{e.kind}" role="note">{label} <span class="jump">{jumps}</span>{told(note_lines(e))}</div>\n'
 
 
 # --- inlines --------------------------------------------------------------------------------------------------------

@@ -51,6 +51,12 @@ def digest(report: Report) -> str:
     return sha256(report.reading.sheet.text.encode("utf-8", "surrogatepass")).hexdigest()
 
 
+def untitled(report: Report) -> list[str]:
+    """The fields of the front matter that neither the title block nor a caution shows."""
+    shown = {*TITLE_FIELDS, *(f.kind for f in report.findings if f.kind in RAISED)}
+    return [name for name in report.reading.title if name not in shown]
+
+
 def raised(report: Report, rows: Sequence[Entry]) -> list[Entry]:
     """The entries of the cautions that stand in front."""
     found = zip(report.findings, rows[len(report.claims) :], strict=True)

@@ -5,7 +5,7 @@ from __future__ import annotations
 from collections.abc import Sequence
 
 from calccheck.annotate.record import BESIDE, Entry, headline, worst_first
-from calccheck.annotate.record_parts import MEANINGS, RAISED, TITLE_FIELDS, counts, givens, raised, waivers
+from calccheck.annotate.record_parts import MEANINGS, counts, givens, raised, untitled, waivers
 from calccheck.annotate.typst_record import Words
 from calccheck.annotate.typst_text import literal
 
@@ -37,10 +37,8 @@ def _numbers(row: Sequence[int]) -> str:
 
 
 def _others(w: Words) -> str:
-    """Front matter that neither the title block nor a caution shows."""
-    shown = {*TITLE_FIELDS, *(f.kind for f in w.report.findings if f.kind in RAISED)}
-    lines = [(k, v) for k, v in w.report.reading.title.items() if k not in shown]
-    return "".join(f"([{w.say(k)}], [{w.say(v)}])," for k, v in lines)
+    title = w.report.reading.title
+    return "".join(f"([{w.say(name)}], [{w.say(title[name])}])," for name in untitled(w.report))
 
 
 def _worst(w: Words, rows: Sequence[Entry]) -> str:
