@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 import math
-from collections.abc import Callable, Iterable, Sequence
+from collections.abc import Callable, Iterable, Mapping, Sequence
 from dataclasses import replace
 from datetime import date
 from fractions import Fraction
@@ -11,6 +11,7 @@ from functools import cache
 
 from calccheck.arithmetic import Doubt
 from calccheck.edits import stray, unmark
+from calccheck.formula import Node, Reference
 from calccheck.judge.cautions import caution_findings
 from calccheck.judge.preferred import preferred_findings
 from calccheck.judge.quantities import frequencies
@@ -38,8 +39,10 @@ from calccheck.rules import RULES
 from calccheck.signatures import signature_findings
 from calccheck.solve import Unsolvable, solve, solve_batch, tolerances, total
 from calccheck.solve.states import state_faults
+from calccheck.sought import ClosedForm, Meaning
 from calccheck.source import Sheet, whole
 from calccheck.toleranced import Tolerancing
+from calccheck.units import Dimension
 
 EarlierTexts = Callable[[], Iterable[tuple[str, str]]]
 
@@ -62,7 +65,7 @@ def check(
     over_tolerances = cache(tolerances)
     states = _states(solve_once, math.sqrt(2) if reading.settings.phasors == "rms" else 1.0)
     judged, findings = judge_sheet(
-        reading, solve_once, on, solve_batch, versions, lambda c: _first(states(c)), over_tolerances
+        reading, solve_once, on, solve_batch, versions, lambda c: _first(states(c)), over_tolerances, _closed_form
     )
     elsewhere = reference_findings(reading, judged, find)
     cautions = caution_findings(reading, solutions)
@@ -106,6 +109,14 @@ def _ratings(
             more, said = held_ratings(k, ledger)
             held, findings = held + more, findings + said
     return tuple(sorted(held, key=lambda h: -h.share)), findings
+
+
+def _closed_form(
+    node: Node, meanings: Mapping[Reference, Meaning], symbols: Mapping[str, Dimension], dimension: Dimension
+) -> ClosedForm | None:
+    from calccheck.solve.closed_form import closed_form  # late: most sheets have no formula that fails
+
+    return closed_form(node, meanings, symbols, dimension)
 
 
 def _circuits_of(earlier: EarlierTexts, name: str) -> Callable[[], tuple[Earlier, ...]]:

@@ -8,14 +8,17 @@ from datetime import date
 from fractions import Fraction
 
 from calccheck.judge.chain import judge_claim
+from calccheck.judge.dependence import depending
 from calccheck.judge.miss import Miss
 from calccheck.judge.new_names import assumptions
+from calccheck.judge.right_formula import RightFormulas
 from calccheck.judge.rounding import Printed, fit, printed
 from calccheck.judge.scope import Ledger, Solve
 from calccheck.judge.slips.redo import Earlier, Redo, SolveBatch
 from calccheck.judge.symbols import Point, combined, instance, points
 from calccheck.model import Circuit, Finding, Judged, Reading, Waiver
 from calccheck.rules import RULES
+from calccheck.sought import Close
 from calccheck.toleranced import Tolerancing
 
 
@@ -27,22 +30,28 @@ def judge_sheet(
     earlier: Callable[[], Sequence[Earlier]] = tuple,
     fails: Callable[[Circuit], str] = lambda _: "",
     tolerances: Callable[[], Tolerancing] | None = None,
+    close: Close | None = None,
 ) -> tuple[tuple[Judged, ...], tuple[Finding, ...]]:
     """The verdicts of a sheet's claims, with the slips that explain wrong ones, and the findings made on the way.
 
     ``solve`` gives the solution of a circuit or raises ``Doubt``; ``solve_batch`` the states of many, ``None`` for one that has
     none. ``on``: the day by which waivers are judged. ``earlier``: the circuits of the sheet's earlier versions, newest first;
     called only where a claim differs. ``fails``: says of a circuit why its parts cannot be in the states that the sheet assumes.
-    ``tolerances``: works formulas over them.
+    ``tolerances``: works formulas over them. ``close``: writes in symbols what a formula that fails should have been.
     """
-    ledgers = [ledger_of(reading, solve, p, fails, tolerances) for p in points(reading.circuits)]
-    symbols = sorted({name for c in reading.circuits for name, _ in c.symbols})
+    drawn = points(reading.circuits)
+    ledgers = [ledger_of(reading, solve, p, fails, tolerances) for p in drawn]
+
+    def depend_on(j: Judged) -> list[str]:
+        return depending(j, reading, ledgers[0], lambda p: ledger_of(reading, solve, p, fails, tolerances), drawn[-1])
+
     redo = Redo(solve, solve_batch, earlier)
+    right = RightFormulas(close, ledgers) if close is not None and drawn[0] else None
     judged: list[Judged] = []
     findings: list[Finding] = []
     for claim in reading.claims:
         found = [judge_claim(claim, ledger) for ledger in ledgers]
-        j = _explained(combined([f[0] for f in found], symbols), [f[2] for f in found], redo)
+        j = _explained(combined([f[0] for f in found], depend_on), [f[2] for f in found], redo, right)
         j, waived = _waived(j, on)
         judged.append(j)
         findings += [*found[0][1], *waived]
@@ -63,8 +72,11 @@ def ledger_of(
     return ledger
 
 
-def _explained(j: Judged, misses: Sequence[Miss | None], redo: Redo) -> Judged:
-    """A claim that differs with the slips that would give its number; where many would, the number does not decide."""
+def _explained(j: Judged, misses: Sequence[Miss | None], redo: Redo, right: RightFormulas | None) -> Judged:
+    """A claim that differs with the slips that would give its number; where many would, the number does not decide.
+
+    In symbols, with the right formula.
+    """
     miss = next((m for m in misses if m is not None), None)
     if j.verdict != "differs" or miss is None:
         return j
@@ -74,7 +86,8 @@ def _explained(j: Judged, misses: Sequence[Miss | None], redo: Redo) -> Judged:
     if undecided:
         told = f"{len(slips)} kinds of slip give this number, so it does not decide between them"
         j = replace(j, message=f"{j.message}; {told}")
-    return replace(j, slips=slips)
+    formula = right.said(miss) if right is not None else ""
+    return replace(j, slips=slips, message=f"{j.message}; {formula}" if formula else j.message)
 
 
 def _waived(j: Judged, on: date) -> tuple[Judged, tuple[Finding, ...]]:

@@ -6,7 +6,7 @@ Two rational functions that agree at random points of a large set are the same b
 
 from __future__ import annotations
 
-from collections.abc import Mapping, Sequence
+from collections.abc import Callable, Mapping, Sequence
 from dataclasses import replace
 from fractions import Fraction
 from hashlib import sha256
@@ -62,8 +62,8 @@ def _valued(e: Element, point: Point) -> Element:
     return replace(e, value=1 / value if stated.dimension == SIEMENS and e.control is None else value, stated=stated)
 
 
-def combined(claims: Sequence[Judged], names: Sequence[str]) -> Judged:
-    """One verdict from those at each point.
+def combined(claims: Sequence[Judged], depending: Callable[[Judged], Sequence[str]]) -> Judged:
+    """One verdict from those at each point; ``depending`` tells the symbols that a claim's truth depends on.
 
     A formula that fails at any point differs. A printed number is judged where its truth is the same at every point, that is
     where the symbols cancel; where they do not, it is unchecked.
@@ -80,8 +80,9 @@ def combined(claims: Sequence[Judged], names: Sequence[str]) -> Judged:
         return worst
     number = next((s for s in first.steps if _prints_a_number(s, first)), None)
     if number is not None:
-        held = ", ".join(names)
-        message = f"{first.quantity} depends on the free symbols {held}: no number can be held against it"
+        held = depending(first)
+        symbols = f"the free symbol{'s' if len(held) > 1 else ''} {', '.join(held)}"
+        message = f"{first.quantity} depends on {symbols}: no number can be held against it"
         return replace(first, verdict="unchecked", message=message, computed=None, deviation=None, steps=())
     if worst.verdict != "differs":
         return replace(worst, computed=None, deviation=None)
