@@ -221,7 +221,7 @@ def test_enclosures_hold_values_and_slopes(seed):
         away = np.zeros(len(step))
         away[k] = step[k]
         slopes = (worker.values(points[:20] + away) - worker.values(points[:20] - away)) / (2 * step[k])
-        rounding = 1e-9 * 10 / abs(worker.nominal[k])  # 10 V is the largest voltage
+        rounding = 1e-8 * 10 / abs(worker.nominal[k])  # 10 V is the largest voltage
         room = 1e-5 * max(np.abs(slopes).max(), abs(held.least[k]), abs(held.most[k])) + rounding
         assert (held.least[k] - room <= slopes).all() and (slopes <= held.most[k] + room).all()
 
