@@ -41,13 +41,11 @@ class Meanings:
 
     ``exact``: values beside those of parts and givens of which a number must be the very value, as constants of the formula.
     ``pieces``: worked pieces of the members before it, of which it may be a right rounding, as of ``around``, the circuit's
-    own values. ``named``: the values of the names in those members, without what is put together from them. ``repeated``: the
-    printed numbers of the members before it.
+    own values. ``repeated``: the printed numbers of the members before it.
     """
 
     exact: Sequence[Amount]
     pieces: Sequence[Sized]
-    named: Sequence[Sized]
     around: Sequence[Sized]
     repeated: Sequence[Amount]
 
@@ -71,11 +69,10 @@ def _one(n: Number, meanings: Meanings, ledger: Ledger) -> Traced:
     if not exactly and _counts(n):
         return Traced(n, 0, True)
     x, room = float(size(p.value)), float(p.half)
-    if exactly:  # unless no name here has the value, and one has a value that it rounds
-        named = _rounded_by(x, room, p.amount.dimension, meanings.named) if n.unit.text else []
-        other = bool(named) and all(abs(a - x) > _ALIKE * x for a in named)
-        return Traced(n, p.half if other else 0, True)
     rounds = _rounded_by(x, room, p.amount.dimension, meanings.pieces)
+    if exactly:  # or a piece next to it: the 4.70 Ω of 4.7 Ω ∥ 1 kΩ
+        near = [abs(a - x) for a in rounds if abs(a - x) <= ledger.settings.carry * x]
+        return Traced(n, max(near, default=0.0) * _MORE if n.unit.text else 0, True, several=True)
     if rounds and all(abs(a - x) <= _ALIKE * x for a in rounds):
         return Traced(n, 0, True)
     rounds += _rounded_by(x, room, p.amount.dimension, meanings.around)
@@ -92,6 +89,7 @@ def _one(n: Number, meanings: Meanings, ledger: Ledger) -> Traced:
 
 
 _ALIKE = 1e-12
+_MORE = 1 + 1e-9  # for what floating point loses
 
 
 def _several(values: Sequence[float]) -> bool:
