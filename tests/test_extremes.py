@@ -214,7 +214,7 @@ def test_enclosures_hold_values_and_slopes(seed):
         pytest.skip("too wide for bounds")
     points = worker.low + (worker.high - worker.low) * np.random.default_rng(seed).random((200, len(worker.low)))
     values = worker.values(points)
-    room = 1e-9 * max(abs(held.low), abs(held.high))
+    room = 1e-9 * max(abs(held.low), abs(held.high)) + 1e-15
     assert held.low - room <= values.min() and values.max() <= held.high + room
     step = 1e-6 * worker.nominal
     for k in range(len(step)):
