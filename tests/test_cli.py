@@ -467,6 +467,7 @@ def test_a_reader_that_stops_early_is_no_fault(folder):
 
 
 @pytest.mark.parametrize("jobs", ["1", "2"])
+@pytest.mark.undisturbed
 def test_an_interrupt_is_quiet(folder, jobs):
     for k in range(200):
         write(folder / f"{k}.md", WRONG * 30)
@@ -513,6 +514,7 @@ def test_colour_on_a_terminal_unless_told_otherwise(folder):
     assert b"\x1b" not in seen_on_a_terminal(["check"], {**terminal, "TERM": "dumb"})
 
 
+@pytest.mark.undisturbed
 def test_a_check_loads_nothing_that_it_does_not_use(folder):
     write(folder / "a.md", RIGHT)
     late = ["sympy", "pint", "typst", "pypdf", "json", "tomllib", "concurrent.futures", "yaml", "scipy", "multiprocessing",

@@ -369,6 +369,7 @@ def test_a_balanced_bridge_needs_no_crossing_and_sources_stand_left():
     assert xs["Vb"] < sorted(xs.values())[len(xs) // 2]
 
 
+@pytest.mark.undisturbed
 def test_the_search_ends_for_circuits_of_any_size():
     """The work allowed bounds it: twenty parts in 50 ms on a free machine, four hundred in little more."""
     made = twenty()

@@ -156,6 +156,7 @@ DEEP = {
 
 
 @pytest.mark.parametrize("page", DEEP.values(), ids=DEEP)
+@pytest.mark.undisturbed
 def test_deep_and_long_pages_are_read_in_seconds_and_nothing_is_lost(page):
     begin = time.process_time()  # other work on the machine is not counted
     tree = read_page(page)

@@ -171,6 +171,7 @@ def star(sources: int) -> str:
     ids=["table of 10,000 rows", "table of 3,000 columns", "10,000 claims", "3,000 wrong claims", "3,000 names", "3,000 substitutions",
          "1,000 nodes", "300 sources", "300 sources one by one"],
 )  # fmt: skip
+@pytest.mark.undisturbed
 def test_a_large_sheet_is_checked_in_seconds(text: str, verdict: str, count: int) -> None:
     report = answered(text)
     assert [j.verdict for j in report.claims] == [verdict] * count
@@ -181,6 +182,7 @@ def test_a_large_sheet_is_checked_in_seconds(text: str, verdict: str, count: int
     ["word " * 2_000_000, "V_b " * 2_500_000 + "= 3", "V_b" + "_" * 10_000_000, "`" + "V_b = 3 V, " * 900_000 + "`", "[" * 10_000_000, "$a " * 3_000_000],
     ids=["words", "names", "underscores", "one code", "brackets", "dollars"],
 )  # fmt: skip
+@pytest.mark.undisturbed
 def test_a_line_of_ten_megabytes_is_a_clear_limit(text: str) -> None:
     report = answered(CIRCUIT + text)
     assert [f.kind for f in report.findings] == ["limit"]
@@ -203,6 +205,7 @@ DENSE = {  # what Markdown parsers are slow at, up to the longest line that is r
 
 
 @pytest.mark.parametrize("name", DENSE)
+@pytest.mark.undisturbed
 def test_dense_mark_up_is_read_in_seconds(name: str) -> None:
     report = answered(CIRCUIT + DENSE[name] + "\n\n`V_b = 8 V`\n")
     assert "agrees" in verdicts(report)
@@ -215,6 +218,7 @@ def test_dense_mark_up_is_read_in_seconds(name: str) -> None:
      "\n".join("| `V_b` |" for _ in range(3000)), "---\n" * 3000, "x\n=\n" * 3000],
     ids=["lists", "quotes", "items in a line", "display maths", "unclosed maths", "fences", "comments", "notes", "rows", "rules", "headings"],
 )  # fmt: skip
+@pytest.mark.undisturbed
 def test_blocks_without_end_are_read_in_seconds(text: str) -> None:
     answered(CIRCUIT + text + "\n\n`V_b = 8 V`\n")
 

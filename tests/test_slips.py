@@ -312,6 +312,7 @@ def test_a_small_run_of_the_bench():
     assert scores["unexplained"].first <= 0.15 * scores["unexplained"].claims
 
 
+@pytest.mark.undisturbed
 def test_a_hundred_wrong_claims_stay_within_their_time():
     """Twenty nodes: no more than three times the time of the right claims, and 50 ms for each wrong one."""
     rng = random.Random(20)
