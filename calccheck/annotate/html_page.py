@@ -88,7 +88,7 @@ def _quote(s: Setting, b: Block) -> str:
 
 def _table(s: Setting, b: Block) -> str:
     head, *body = b.children
-    heads = "".join(_cell(s, c, "th scope=col") for c in head.children)
+    heads = "".join(_cell(s, c, "th scope=col" if c.inlines else "td") for c in head.children)  # an empty cell heads nothing
     rows = "".join(f"<tr>{''.join(_cell(s, c, 'td') for c in row.children)}</tr>\n" for row in body)
     cells = [i for row in b.children for c in row.children for i in c.inlines]
     table = f"<table>\n<thead><tr>{heads}</tr></thead>\n<tbody>\n{rows}</tbody>\n</table>"
