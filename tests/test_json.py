@@ -57,7 +57,7 @@ def test_sheets_of_the_register(path):
     record = json.loads(written, parse_constant=pytest.fail)
     assert list(record) == ["report", "program", "summary", "sheets"]
     (sheet,) = record["sheets"]
-    assert list(sheet) == ["path", "digest", "verdict", "circuits", "claims", "findings"]
+    assert list(sheet) == ["path", "digest", "verdict", "circuits", "claims", "findings", "ratings"]
     assert sheet["digest"] == "sha256:" + hashlib.sha256(path.read_bytes()).hexdigest()
     lines = text.split("\n")
     for claim, judged in zip(sheet["claims"], report.claims, strict=True):

@@ -16,6 +16,7 @@ from calccheck.annotate.record_parts import (
     digest,
     figure_cells,
     givens,
+    nearest_rating,
     raised,
     settings_line,
     signature_rows,
@@ -31,7 +32,7 @@ def record(report: Report, rows: Sequence[Entry], placed: Collection[str]) -> st
     return (
         '<section aria-labelledby="record">\n<h2 id="record">Check record</h2>\n'
         f'<p class="soft">SHA-256 of the sheet as checked: <code>{digest(report)}</code><br>\n'
-        f"Judged with {said(settings_line(report.reading.settings))}.</p>\n"
+        f"Judged with {said(settings_line(report.reading.settings))}.{_nearest(report)}</p>\n"
         + part("Claims", ("Mark", "Line", "As written", "Printed", "Recomputed", "Deviation", "Basis"), claims)
         + part("Findings", ("Mark", "Line", "Finding"), findings)
         + _glance(report, rows)
@@ -42,6 +43,11 @@ def record(report: Report, rows: Sequence[Entry], placed: Collection[str]) -> st
         )
         + "</section>\n"
     )
+
+
+def _nearest(report: Report) -> str:
+    told = nearest_rating(report)
+    return f"<br>\n{said(told)}." if told else ""
 
 
 def _claim_row(e: Entry, placed: Collection[str]) -> Row:

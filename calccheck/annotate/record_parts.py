@@ -8,6 +8,7 @@ from hashlib import sha256
 from calccheck.annotate.marks import MARKS
 from calccheck.annotate.record import Entry
 from calccheck.model import ROLES, CircuitFigures, Claim, Report, Settings
+from calccheck.printing import shown
 from calccheck.units import digits
 
 TITLE_FIELDS = {
@@ -117,9 +118,27 @@ def settings_line(settings: Settings) -> str:
     ]
     if settings.frequency:
         words.append(f"frequency {settings.frequency}")
+    if settings.temperature:
+        low, high = (digits(x, 4).replace("-", "−") for x in settings.temperature)
+        words.append(f"temperature {low} °C to {high} °C")
     if settings.on:
         words.append(f"days judged on {settings.on.isoformat()}")
     return ", ".join(words)
+
+
+def nearest_rating(report: Report) -> str:
+    """The part nearest to one of its ratings, or the furthest beyond it, as a sentence without its end; empty where none is rated."""
+    if not report.ratings:
+        return ""
+    h = report.ratings[0]
+    where = ", ".join(
+        w for w in (f"in case {h.case}" if h.case else "", h.where, "" if h.proved else "found by a search") if w
+    )
+    part = f"{h.part} of {h.circuit}" if h.circuit else h.part
+    count = len(report.ratings)
+    of = "Of one rating held" if count == 1 else f"Of {count} ratings held, each at its worst, the nearest to its limit"
+    bears = f"{shown(h.worst, figures=4)} of {shown(h.limit, figures=4)} ({digits(100 * h.share, 3)} %)"
+    return f"{of}: {part} with {bears}{f', {where}' if where else ''}"
 
 
 def signature_rows(report: Report) -> list[tuple[str, str, str, str]]:

@@ -8,8 +8,9 @@ from collections.abc import Sequence
 from hashlib import sha256
 from typing import Any
 
-from calccheck.arithmetic import Amount, Real, Value
-from calccheck.model import CircuitFigures, Finding, Judged, Report, Step
+from calccheck.arithmetic import Amount, DimensionFault, Doubt, Real, Value, evaluate, real
+from calccheck.formula import Range, Reference
+from calccheck.model import CircuitFigures, Finding, Judged, RatingHeld, Report, Step
 from calccheck.source import Sheet, Span
 from calccheck.units import Dimension, unit_of
 
@@ -57,6 +58,23 @@ def _sheet(report: Report) -> Record:
         "circuits": [_circuit(c) for c in report.figures],
         "claims": [_claim(j, sheet) for j in report.claims],
         "findings": sorted(findings, key=lambda f: (f["line"], f["column"])),
+        "ratings": [_rating(h, sheet) for h in report.ratings],
+    }
+
+
+def _rating(held: RatingHeld, sheet: Sheet) -> Record:
+    line, column = sheet.line_column(held.rating.span.start)
+    return {
+        "line": line,
+        "column": column,
+        "part": held.part,
+        "circuit": held.circuit,
+        "case": held.case,
+        "limit": _amount(held.limit),
+        "worst": _amount(held.worst),
+        "share": _number(held.share, 4),
+        "where": held.where,
+        "proved": held.proved,
     }
 
 
@@ -80,7 +98,7 @@ def _claim(judged: Judged, sheet: Sheet) -> Record:
         "basis": judged.basis,
         "verdict": judged.verdict,
         "claimed": _claimed(judged),
-        "computed": _amount(judged.computed),
+        "computed": _computed(judged),
         "deviation": _number(judged.deviation, 4),
         "message": judged.message,
         "steps": [_step(s) for s in judged.steps],
@@ -113,12 +131,43 @@ def _said_beside(judged: Judged, caution: str, sheet: Sheet) -> Record:
 
 
 def _claimed(judged: Judged) -> Record | None:
-    """The printed value; of a claim that prints none but bounds, the bound, ``None`` on its open side."""
+    """The printed value or range; of a claim that prints none but bounds, the bound, ``None`` on its open side."""
+    span = next((m.node for m in judged.claim.members if isinstance(m.node, Range)), None)
+    if span is not None and judged.low is not None:
+        return _printed_range(span, judged.low.dimension)
     limit = judged.low or judged.high
     if judged.claimed is not None or limit is None:
         return _amount(judged.claimed)
+    return _ends(judged)
+
+
+def _computed(judged: Judged) -> Record | None:
+    """The recomputed value; of a claim of two values both."""
+    ranged = any(isinstance(m.node, Range) for m in judged.claim.members)
+    return _ends(judged) if ranged and judged.low is not None else _amount(judged.computed)
+
+
+def _ends(judged: Judged) -> Record | None:
+    limit = judged.low or judged.high
     ends = {"low": judged.low, "high": judged.high}
-    return _record({k: None if a is None else _value(a.value) for k, a in ends.items()}, limit.dimension)
+    return limit and _record({k: None if a is None else _value(a.value) for k, a in ends.items()}, limit.dimension)
+
+
+def _printed_range(node: Range, dimension: Dimension) -> Record | None:
+    """The ends of a printed range, where they are plain values."""
+    try:
+        low, high = (evaluate(n, _no_names) for n in (node.low, node.high))
+        first, last = real(low.value), real(high.value)
+    except (Doubt, DimensionFault):
+        return None
+    if node.centred:
+        half = last if high.dimension == low.dimension else last * abs(first)  # a percentage
+        first, last = first - half, first + half
+    return _record({"low": _number(first), "high": _number(last)}, dimension)
+
+
+def _no_names(ref: Reference) -> Amount:
+    raise Doubt(f"{ref.word} is no printed value", ref.span)
 
 
 def _amount(amount: Amount | None) -> Record | None:

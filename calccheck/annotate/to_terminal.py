@@ -6,6 +6,7 @@ from collections.abc import Iterator, Sequence
 
 from calccheck.annotate.marks import MARKS
 from calccheck.annotate.record import LIMITS, Entry, entries
+from calccheck.annotate.record_parts import nearest_rating
 from calccheck.annotate.visible import one_line, visible
 from calccheck.model import Judged, Report, Step
 from calccheck.source import Span
@@ -36,7 +37,8 @@ def sheet_lines(report: Report, verbose: bool = False, colour: bool = False) -> 
     givens = [one_line(j.claim.text).removeprefix("given ") for j in report.claims if j.verdict == "given"]
     if givens and not verbose:
         lines.append(f"{name}: {_word('given', colour)}: {'; '.join(givens)}")
-    return lines
+    near = nearest_rating(report) if verbose else ""
+    return [*lines, f"{name}: {one_line(near)}"] if near else lines
 
 
 def _order(row: Entry) -> tuple[int, int]:

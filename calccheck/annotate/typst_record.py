@@ -8,7 +8,7 @@ from dataclasses import dataclass, field
 from calccheck.annotate.marks import MARKS
 from calccheck.annotate.pictures import Shown, totals
 from calccheck.annotate.record import Entry, note_lines
-from calccheck.annotate.record_parts import BASES, digest, figure_cells, settings_line
+from calccheck.annotate.record_parts import BASES, digest, figure_cells, nearest_rating, settings_line
 from calccheck.annotate.sentences import code_pieces
 from calccheck.annotate.typst_pictures import glance, large_drawings
 from calccheck.annotate.typst_text import literal, shown
@@ -50,8 +50,9 @@ def record(w: Words) -> str:
     """All entries, the superposition at a glance and the circuits' figures."""
     claims = "".join(_record_row(w, e) for e in w.rows if e.key[0] == "c")
     findings = "".join(_finding_row(w, e) for e in w.rows if e.key[0] == "f")
+    judged = ". ".join(t for t in (settings_line(w.report.reading.settings), nearest_rating(w.report)) if t)
     return (
-        f"#record-head({literal(digest(w.report))}, [{w.say(settings_line(w.report.reading.settings))}])\n"
+        f"#record-head({literal(digest(w.report))}, [{w.say(judged)}])\n"
         f"#record-claims(({claims}))\n#record-findings(({findings}))\n"
         f"{glance(totals(w.report, w.missing), {e.key: e.number for e in w.rows}, w.missing)}"
         f"#record-circuits(({_circuits(w)}))\n" + large_drawings(w.pictures, w.missing)
