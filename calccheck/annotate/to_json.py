@@ -157,7 +157,7 @@ def _printed_range(node: Range, dimension: Dimension) -> Record | None:
     """The ends of a printed range, where they are plain values."""
     try:
         low, high = (evaluate(n, _no_names) for n in (node.low, node.high))
-        first, last = real(low.value), real(high.value)
+        first, last = float(real(low.value)), float(real(high.value))
     except (Doubt, DimensionFault):
         return None
     if node.centred:
