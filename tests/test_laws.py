@@ -10,6 +10,7 @@ from dataclasses import replace
 from decimal import Decimal
 from fractions import Fraction
 
+import pytest
 from circuits import circuits as circuits_with_loops
 from hypothesis import assume, given, reject, settings
 from hypothesis import strategies as st
@@ -357,3 +358,47 @@ def test_a_total_that_is_the_sum_of_its_printed_parts_passes(made, data, figures
         assert verdict in ("agrees", "rounded")
     elif off > max(place, CARRY * abs(truth)):
         assert verdict == "differs"
+
+
+@pytest.mark.parametrize(("small", "verdict"), [("0.0 V", "agrees"), ("0.1 V", "differs"), ("0 V", "differs")])
+def test_a_piece_that_rounds_to_zero_stands_for_it(small, verdict):
+    """5.24 V and 0.04 V to one place."""
+    sheet = "```circuit\nV1: 5.24 V, a to gnd\nV2: 0.04 V, b to a\nR1: 1 Ω, b to gnd\n```\n"
+    assert claimed(sheet + f"`V_b = V_a + V_{{b,a}} = 5.2 V + {small} = 5.3 V`\n") == [verdict]
+
+
+# --- superposition as it is worked by hand ---------------------------------------------------------------------------
+
+OHMS = st.builds(lambda n, e: Fraction(n, 10) * Fraction(10) ** e, st.integers(10, 99), st.integers(0, 4))
+VOLTS = st.builds(Fraction, st.integers(10, 400), st.just(10))
+
+
+@few
+@given(st.lists(st.tuples(VOLTS, OHMS), min_size=2, max_size=3), OHMS, st.integers(3, 5), st.booleans(), st.data())
+def test_each_source_alone_over_the_others_side_by_side(feeds, load, figures, named, data):
+    """``V_n due to V1 = V1 × (R2 ∥ RL)/(R1 + R2 ∥ RL)`` with the parallel part rounded, then the sum."""
+    lines = [f"V{k}: {exactly(v)} V, a{k} to com\nR{k}: {exactly(r)} Ω, a{k} to n" for k, (v, r) in enumerate(feeds)]
+    sheet = "\n".join(["```circuit", "reference com", *lines, f"RL: {exactly(load)} Ω, n to com", "```", "", ""])
+    statements, shown, verdicts = [], [], []
+    wrong = data.draw(st.integers(0, len(feeds) - 1))
+    for k, (v, r) in enumerate(feeds):
+        others = [(f"R{j}", x) for j, (_, x) in enumerate(feeds) if j != k] + [("RL", load)]
+        beside = 1 / sum(1 / x for _, x in others)
+        part = to_figures(beside, figures)
+        formula, name = " ∥ ".join(n for n, _ in others), f"Rp{k}"
+        if named:
+            statements.append(f"{name} = {formula} = {spelt(part, 'Ω')}")
+            verdicts.append("agrees")
+        truth = v * beside / (r + beside)
+        shown.append(to_figures(truth, figures))
+        used = part + 9 * step(part) if k == wrong and part.adjusted() - figures + 1 == step(part).adjusted() else part
+        symbols = f"V{k} × {name}/(R{k} + {name})" if named else f"V{k} × ({formula})/(R{k} + {formula})"
+        p = spelt(used, "Ω")
+        statements.append(
+            f"V_n due to V{k} = {symbols} = {exactly(v)} V × {p}/({exactly(r)} Ω + {p}) = {spelt(shown[-1], 'V')}"
+        )
+        off = abs(v * Fraction(used) / (r + Fraction(used)) - truth)
+        room = abs(v * r / (r + beside) ** 2) * Fraction(step(part))
+        verdicts.append("differs" if off > 2 * room else "agrees" if used == part else "?")
+    found = claimed(sheet + working(*statements))
+    assert all(a == b or b == "?" for a, b in zip(found, verdicts, strict=True)), (found, verdicts, statements)

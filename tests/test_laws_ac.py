@@ -273,6 +273,33 @@ def _at(made, quantity, hertz):
     return complex(at.potentials[a] - at.potentials[b])
 
 
+# --- zeros ----------------------------------------------------------------------------------------------------------
+
+NEARLY_REAL = "```circuit\nV1: (10 + j0.002) V, a to gnd\nR1: 2 Ω, a to gnd\n```\n"  # 10.0000002 V ∠ 0.011459°
+
+
+@pytest.mark.parametrize(
+    ("claim", "verdict"),
+    [
+        ("V_a = 10.0 V ∠ 0.0°", "agrees"),
+        ("V_a = 10.0 V ∠ 0.00°", "differs"),
+        ("V_a = 10.0 V ∠ 0°", "agrees"),
+        ("V_a = 10.0 V ∠ 1°", "differs"),
+        ("V_a = (10.0 + j0.0) V", "agrees"),
+        ("V_a = (10 + j0) V", "agrees"),
+        ("V_a = (10.000 + j0.000) V", "differs"),
+        ("arg V_a = 0°", "agrees"),
+        ("im V_a = 0 V", "differs"),
+        ("V_a = R1 × I_R1 = 2 Ω × (5.00 A ∠ 0.0°) = 10.0 V ∠ 0.0°", "agrees"),
+        ("V_a = R1 × I_R1 = 2 Ω × (5.00 A ∠ 0.1°) = 10.0 V ∠ 0.0°", "differs"),
+        ("V_a = R1 × I_R1 = 2 Ω × (5.000 + j0.000) A = 10.0 V ∠ 0.0°", "differs"),
+        ("V_a = R1 × I_R1 = 2 Ω × (5.000 + j0.001) A = 10.0 V ∠ 0.0°", "agrees"),
+    ],
+)
+def test_a_zero_beside_another_figure_is_judged_by_its_place(claim, verdict):
+    assert verdicts(NEARLY_REAL + f"`{claim}`\n") == [verdict]
+
+
 # --- impedances -----------------------------------------------------------------------------------------------------
 
 

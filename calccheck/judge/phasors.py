@@ -5,6 +5,7 @@ from __future__ import annotations
 import cmath
 import math
 from dataclasses import dataclass
+from decimal import Decimal
 from fractions import Fraction
 
 from calccheck.arithmetic import Amount, Real, Value, plainest, size
@@ -106,22 +107,25 @@ def _in(p: Printed, unit: Unit) -> Printed:
 def phasor_fit(p: PrintedPhasor, truth: Value, carry: Fraction, scale: Real) -> Fit:
     """How a printed phasor stands to the truth: the worse of its two figures.
 
-    Angles are taken modulo a turn, and not at all where the magnitude is zero on the circuit's ``scale``.
+    Angles are taken modulo a turn, and not at all where the magnitude is zero on the circuit's ``scale``. A bare zero beside
+    another figure is judged by its place, as its neighbour is: ``10 V ∠ 0°``, ``(10 + j0) V``.
     """
     t = complex(truth)
     if not p.polar:
         largest = max(scale, abs(t))
-        return _worse(_part(p.first, t.real, carry, largest), _part(p.second, t.imag, carry, largest))
+        beside = p.first.digits or p.second.digits
+        return _worse(*(_part(x, y, carry, largest, beside) for x, y in ((p.first, t.real), (p.second, t.imag))))
     magnitude = fit(p.first, abs(t), carry, scale)
     if abs(t) <= SLACK * scale:
         return magnitude
-    return _worse(magnitude, fit(p.second, nearest_turn(cmath.phase(t), p.second.value), carry, _TURN))
+    return _worse(magnitude, fit(p.second, nearest_turn(cmath.phase(t), p.second.value), carry, None))
 
 
-def _part(p: Printed, truth: float, carry: Fraction, scale: Real) -> Fit:
+def _part(p: Printed, truth: float, carry: Fraction, scale: Real, beside: Decimal) -> Fit:
+    """``beside``: other than zero where a part of the value is."""
     if abs(truth) <= 1e-12 * scale:
         truth = 0.0
-    return fit(p, truth, carry, scale)
+    return fit(p, truth, carry, None if beside else scale)
 
 
 def _worse(a: Fit, b: Fit) -> Fit:

@@ -81,17 +81,17 @@ def figures(digits: Decimal) -> int:
 Fit = Literal["exact place", "cut off", "whole zeros", "no"]
 
 
-def fit(p: Printed, truth: Real, carry: Fraction, scale: Real = 0) -> Fit:
+def fit(p: Printed, truth: Real, carry: Fraction, scale: Real | None = 0) -> Fit:
     """How a printed value stands to the truth (SI, same dimension).
 
     ``exact place``: within half a unit of its last place. ``cut off``: three figures or more, cut toward zero.
     ``whole zeros``: right to the figures before the zeros at its end, and within ``carry``. ``scale``: the largest like value
-    of the circuit, against which a bare zero is held.
+    of the circuit, against which a bare zero is held; ``None`` where it is judged by its last place like any other digit.
     """
     x = p.value
     distance = size(x - truth)
     slack = SLACK * size(truth)
-    if p.digits == 0 and int(p.digits.as_tuple().exponent) >= 0:
+    if bare_zero(p) and scale is not None:
         return "exact place" if size(truth) <= SLACK * scale else "no"
     if distance <= p.half + slack:
         return "exact place"
@@ -104,6 +104,11 @@ def fit(p: Printed, truth: Real, carry: Fraction, scale: Real = 0) -> Fit:
     return "no"
 
 
+def bare_zero(p: Printed) -> bool:
+    """Whether a printed value is a zero without decimal places."""
+    return p.digits == 0 and int(p.digits.as_tuple().exponent) >= 0
+
+
 def _zeros_at_end(digits: Decimal) -> int:
     """How many zeros end a whole number written without a point or an exponent."""
     shown = digits.as_tuple()
@@ -114,8 +119,7 @@ def _zeros_at_end(digits: Decimal) -> int:
 
 def coarse(p: Printed, truth: Real) -> bool:
     """Whether the printed value says so little that half its last place exceeds 5 % of the truth."""
-    bare_zero = p.digits == 0 and int(p.digits.as_tuple().exponent) >= 0
-    return not bare_zero and p.half > COARSE * size(truth)
+    return not bare_zero(p) and p.half > COARSE * size(truth)
 
 
 def equal(a: Value, b: Value) -> bool:

@@ -7,11 +7,11 @@ from dataclasses import dataclass
 
 from calccheck.arithmetic import Amount, Doubt, Lookup, Real, Value, evaluate, literal, real, size
 from calccheck.formula import Binary, Node, Number, Reference, Unary, numbers, references, walk
-from calccheck.judge.phasors import Sized, sized
+from calccheck.judge.phasors import Sized, is_angle, sized
 from calccheck.judge.regrouped import regrouped
-from calccheck.judge.rounding import SLACK, Printed, printed
+from calccheck.judge.rounding import SLACK, Printed, bare_zero, printed
 from calccheck.judge.scope import Ledger, Result, magnitude
-from calccheck.units import NONE, Dimension
+from calccheck.units import NONE
 
 
 @dataclass(frozen=True, slots=True)
@@ -70,15 +70,15 @@ def _one(n: Number, meanings: Meanings, ledger: Ledger) -> Traced:
     exactly = magnitude(p.amount) in ledger.exact or any(_same(p, a) for a in meanings.exact)
     if not exactly and _counts(n):
         return Traced(n, 0, True)
-    x, room = float(size(p.value)), float(p.half)
+    x = float(size(p.value))
     if exactly:  # or a piece next to it: the 4.70 Ω of 4.7 Ω ∥ 1 kΩ
-        near = [abs(a - x) for a in _rounded_by(x, room, p.amount.dimension, meanings.inner)]
+        near = [abs(a - x) for a in _rounded_by(p, meanings.inner)]
         apart = max((d for d in near if d <= ledger.settings.carry * x), default=0.0)
         return Traced(n, apart * _MORE if n.unit.text else 0, True, several=True)
-    rounds = _rounded_by(x, room, p.amount.dimension, meanings.pieces)
+    rounds = _rounded_by(p, meanings.pieces)
     if rounds and all(abs(a - x) <= _ALIKE * x for a in rounds):
         return Traced(n, 0, True)
-    rounds += _rounded_by(x, room, p.amount.dimension, meanings.around)
+    rounds += _rounded_by(p, meanings.around)
     earlier = _earlier(p, ledger)
     if earlier is not None and earlier.stands:
         truth = float(size(earlier.truth.value))
@@ -88,7 +88,8 @@ def _one(n: Number, meanings: Meanings, ledger: Ledger) -> Traced:
     if earlier is not None:
         return Traced(n, 0, True, faulty=earlier)
     plain = p.amount.dimension == NONE and not n.unit.text
-    return Traced(n, 0, plain or any(_same(p, a) for a in meanings.repeated))
+    real_value = is_angle(p) and p.digits == 0  # which has no angle that could be traced
+    return Traced(n, 0, plain or real_value or any(_same(p, a) for a in meanings.repeated))
 
 
 _ALIKE = 1e-12
@@ -100,11 +101,12 @@ def _several(values: Sequence[float]) -> bool:
     return max(values) - min(values) > _ALIKE * max(values)
 
 
-def _rounded_by(x: float, room: float, dimension: Dimension, found: Sequence[Sized]) -> list[float]:
-    """The magnitudes of which a printed one is a right rounding."""
-    if x == 0:
+def _rounded_by(p: Printed, found: Sequence[Sized]) -> list[float]:
+    """The magnitudes of which a printed one is a right rounding; a zero without places is none."""
+    if bare_zero(p) and not is_angle(p):
         return []
-    return [a for d, a in found if abs(a - x) <= room + 1e-9 * a and d == dimension]
+    x, room = float(size(p.value)), float(p.half)
+    return [a for d, a in found if abs(a - x) <= room + 1e-9 * a and d == p.amount.dimension]
 
 
 def _counts(n: Number) -> bool:
@@ -154,7 +156,8 @@ def reach(node: Node, lookup: Lookup, traced: Sequence[Traced], spreads: dict[st
     rooms: dict[object, Real] = {t.key: t.room for t in traced if t.room}
     rooms |= {r.word: spreads[r.word] for r in references(node) if spreads.get(r.word)}
     middle = evaluate(node, lookup).value
-    if isinstance(middle, complex):
+    if isinstance(middle, complex) or _may_turn(node):
+        middle = complex(middle)
         shifts = [_moved(node, lookup, {key: sign * room}) for key, room in rooms.items() for sign in (1, -1)]
         pairs = zip(shifts[::2], shifts[1::2], strict=True)
         return Reach(middle, radius=sum(max(size(a - middle), size(b - middle)) for a, b in pairs) * (1 + SLACK))
@@ -167,6 +170,13 @@ def reach(node: Node, lookup: Lookup, traced: Sequence[Traced], spreads: dict[st
     down = {key: -shift for key, shift in up.items()}
     low, high = real(_moved(node, lookup, down)), real(_moved(node, lookup, up))
     return Reach(middle, min(low, middle), max(high, middle))
+
+
+def _may_turn(node: Node) -> bool:
+    """Whether printed phasors stand in a member, which may be real by rounding alone: ``10.0 A ∠ 0.0°``."""
+    return any(
+        n.operator == "∠" if isinstance(n, Binary) else isinstance(n, Reference) and n.word == "j" for n in walk(node)
+    )
 
 
 def _moved(node: Node, lookup: Lookup, shifts: dict[object, Real]) -> Value:

@@ -60,14 +60,15 @@ def judge_value(w: Worked, p: Printed, relation: Relation, ground: Ground) -> St
     """A printed value: by its last place, then cut off, then carried rounding."""
     truth, settings = ground.truth, ground.ledger.settings
     t = real(truth.value)
-    if is_angle(p) and truth.dimension == p.amount.dimension:
+    angle = is_angle(p) and truth.dimension == p.amount.dimension
+    if angle:
         t = nearest_turn(t, p.value)
         truth = replace(truth, value=t)
     if ground.source.restates and relation != "≈":
         return _restated(w, p, ground)
     zero = ICE if p.amount.point else 0
     p, t = on_scale(p, t)
-    how = fit(p, t, settings.carry, largest(ground) if p.digits == 0 else 0)
+    how = fit(p, t, settings.carry, None if angle else largest(ground) if p.digits == 0 else 0)
     if how == "exact place":
         if coarse(p, t) and not equal(p.value, t):
             ground.cautions.append(
