@@ -13,7 +13,7 @@ from calccheck.arithmetic import (
 from calccheck.formula import OVER_TOLERANCES, Number, Reference, numbers
 from calccheck.judge import quantities
 from calccheck.judge.members import Names, Worked
-from calccheck.judge.phasors import Sized, sized
+from calccheck.judge.phasors import Sized
 from calccheck.judge.scope import Ledger
 from calccheck.judge.spreads import ends
 from calccheck.judge.trace import Meanings, Traced, sizes, trace
@@ -62,8 +62,7 @@ class Ground:
         pieces = [s for m in before for s in sizes(m.pieces)]
         repeated = [literal(n) for m in before for n in numbers(m.node)]
         changed = [v for _, _, v in self.source.key.changes if v is not None] if self.source.key else []
-        inner = [s for m in before for node, a in m.pieces if node is not m.node for s in sized(a.value, a.dimension)]
-        return Meanings([*constants, *changed, *self._ends()], pieces, inner, self.circuit_values(), repeated)
+        return Meanings([*constants, *changed, *self._ends()], pieces, self.circuit_values(), repeated)
 
     def _ends(self) -> list[Amount]:
         """The ends of what varies, where the truth is one over tolerances."""

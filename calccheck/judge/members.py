@@ -205,7 +205,7 @@ def work(member: Member, names: Names) -> Worked:
         _refuse_units_that_are_names(nodes, names)
         _refuse_half_prefixed(member, found, names)
         meanings = [names.meaning(r) for r in found]
-        basis, key, restates = _basis(meanings, node), _key(node, meanings), _restates(node, meanings)
+        basis, key, restates = _basis(meanings, node), _key(node, meanings), restates_part(node, meanings)
         if value is None:
             amount = evaluate(node, names.amount, note=lambda n, a: pieces.append((n, a)))
         else:
@@ -257,7 +257,7 @@ def _key(node: Node, meanings: Sequence[Meaning | None]) -> Key | None:
 _WORKED = re.compile(r"[*×·/÷∥()^√]|^(?!.*\d)")
 
 
-def _restates(node: Node, meanings: Sequence[Meaning | None]) -> bool:
+def restates_part(node: Node, meanings: Sequence[Meaning | None]) -> bool:
     """Whether the member is a part's own value as written; one that the block works from others is rounded like any."""
     first = meanings[0] if meanings and isinstance(node, Reference) and not node.prefix else None
     if first is None or first.element is None or first.sort != "part":

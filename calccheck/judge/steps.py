@@ -19,6 +19,7 @@ from calccheck.arithmetic import (
 )
 from calccheck.formula import Binary, Node, numbers, references
 from calccheck.judge import say
+from calccheck.judge.aligned import number_by_number
 from calccheck.judge.ground import Ground, decided, subject
 from calccheck.judge.members import Worked, without_unit
 from calccheck.judge.phasors import PrintedPhasor
@@ -194,6 +195,9 @@ def _spreads(w: Worked, ground: Ground) -> dict[str, Real]:
 def _substitution(w: Worked, ground: Ground) -> Step:
     """A member with printed values in it: it reaches the truth within the rounding of its numbers."""
     assert w.amount is not None
+    if not _spreads(w, ground) and number_by_number(w, ground):
+        ground.carried = w.amount
+        return decided(w, "agrees")
     traced = ground.traced(w)
     ground.say_untraced(traced)
     truth = ground.truth.value

@@ -41,13 +41,11 @@ class Meanings:
 
     ``exact``: values beside those of parts and givens of which a number must be the very value, as constants of the formula.
     ``pieces``: worked pieces of the members before it, of which it may be a right rounding, as of ``around``, the circuit's
-    own values. ``inner``: those pieces that stand within a member as written. ``repeated``: the printed numbers of the members
-    before it.
+    own values. ``repeated``: the printed numbers of the members before it.
     """
 
     exact: Sequence[Amount]
     pieces: Sequence[Sized]
-    inner: Sequence[Sized]
     around: Sequence[Sized]
     repeated: Sequence[Amount]
 
@@ -71,10 +69,8 @@ def _one(n: Number, meanings: Meanings, ledger: Ledger) -> Traced:
     if not exactly and _counts(n):
         return Traced(n, 0, True)
     x = float(size(p.value))
-    if exactly:  # or a piece next to it: the 4.70 Ω of 4.7 Ω ∥ 1 kΩ
-        near = [abs(a - x) for a in _rounded_by(p, meanings.inner)]
-        apart = max((d for d in near if d <= ledger.settings.carry * x), default=0.0)
-        return Traced(n, apart * _MORE if n.unit.text else 0, True, several=True)
+    if exactly:
+        return Traced(n, 0, True)
     rounds = _rounded_by(p, meanings.pieces)
     if rounds and all(abs(a - x) <= _ALIKE * x for a in rounds):
         return Traced(n, 0, True)
@@ -93,7 +89,6 @@ def _one(n: Number, meanings: Meanings, ledger: Ledger) -> Traced:
 
 
 _ALIKE = 1e-12
-_MORE = 1 + 1e-9  # for what floating point loses
 
 
 def _several(values: Sequence[float]) -> bool:
