@@ -12,7 +12,7 @@ from calccheck.arithmetic import Amount, size
 from calccheck.formula import Binary, Call, Group, Node, Number, Reference, Unary
 from calccheck.judge.ground import Ground
 from calccheck.judge.members import Worked, restates_part
-from calccheck.judge.rounding import SLACK, equal, printed
+from calccheck.judge.rounding import SLACK, bare_zero, equal, printed
 
 Pairs = list[tuple[Node, Node]]  # a printed number of the member, and what stands there in the formula
 
@@ -64,7 +64,7 @@ def _right(number: Node, piece: Node, known: dict[int, Amount], ground: Ground) 
         return False
     if a.dimension != p.amount.dimension or a.point != p.amount.point or a.level != p.amount.level:
         return False
-    if _exact(piece, ground):
+    if _exact(piece, ground) or bare_zero(p):
         return equal(p.value, a.value)
     return size(p.value - a.value) <= p.half + SLACK * size(a.value)
 
