@@ -39,12 +39,15 @@ class Number:
     @cached_property
     def exact(self) -> Fraction:
         """The digits times the unit's factor, in SI; asked for many times while a claim is judged."""
-        return Fraction(self.digits) * self.unit.factor
+        over, under = self.digits.as_integer_ratio()
+        factor = self.unit.factor
+        return Fraction(over * factor.numerator, under * factor.denominator)
 
     @cached_property
     def place(self) -> Fraction:
         """The unit of the last printed place, in SI."""
-        return Fraction(10) ** int(self.digits.as_tuple().exponent) * abs(self.unit.factor)
+        exponent, factor = int(self.digits.as_tuple().exponent), abs(self.unit.factor)
+        return Fraction(factor.numerator, factor.denominator * 10**-exponent) if exponent < 0 else factor * 10**exponent
 
 
 @dataclass(frozen=True, slots=True)

@@ -84,7 +84,7 @@ def _range_claim(job: Work) -> Judged:
     ref = first.node
     assert isinstance(ref, Reference)
     truth = truth_of(ref, job.names)
-    source = Worked(first, ref, "formula", "circuit", truth.nominal)
+    source = Worked(first, ref, "formula", "circuit", truth.nominal, nodes=(ref,))
     for m in members:
         if m is first:
             continue
@@ -124,10 +124,7 @@ def _chain(job: Work) -> Judged:
             main = segments[k]
             key, printings = main.members[main.at].key, found
     _bounds(segments, job)
-    low, high = _limits(segments, main)
-    summed = _summed_up(main, printings, job, workings)
-    message = "; ".join(dict.fromkeys(t for t in (summed.message, *(f.told for f in job.names.founds.values())) if t))
-    judged = replace(summed, low=low, high=high, parts=_by_source(main, job), message=message)
+    judged = _summed_up(main, printings, job, workings, _limits(segments, main))
     _enter(judged, main, name, key, printings, job)
     return judged
 
@@ -204,8 +201,9 @@ def _judge_segment(segment: Segment, job: Work) -> tuple[Segment, list[tuple[Pri
         job.miss = Miss(ground, *against, tuple(judged))
     job.cautions += ground.cautions
     job.findings += ground.findings
-    read = replace(segment, truth=replace(segment.truth, dimension=ground.truth.dimension))
-    return read, [(w.printed, step) for w, step in judged if w.printed is not None]
+    if ground.truth.dimension != segment.truth.dimension:
+        segment = replace(segment, truth=replace(segment.truth, dimension=ground.truth.dimension))
+    return segment, [(w.printed, step) for w, step in judged if w.printed is not None]
 
 
 def _bounds(segments: Sequence[Segment], job: Work) -> None:
@@ -240,7 +238,11 @@ def _dimension_of_bound(first: Worked, job: Work) -> None:
 
 
 def _summed_up(
-    main: Segment, printings: list[tuple[Printed | PrintedPhasor, Step]], job: Work, workings: Sequence[Worked]
+    main: Segment,
+    printings: list[tuple[Printed | PrintedPhasor, Step]],
+    job: Work,
+    workings: Sequence[Worked],
+    limits: tuple[Amount | None, Amount | None],
 ) -> Judged:
     """The claim's verdict: that of its worst step; the first step of that kind gives the sentence."""
     steps = sorted(job.steps, key=lambda s: s.span.start) if job.claim.place != "table" else job.steps
@@ -251,6 +253,7 @@ def _summed_up(
     shown = next((p for p, s in printings if s.verdict == worst), printings[-1][0] if printings else None)
     truth = main.truth
     comparable = shown is not None and truth is not None and shown.amount.dimension == truth.dimension
+    message = first.message or next((s.message for s in steps if s.message), "")
     return Judged(
         claim=job.claim,
         verdict=worst,
@@ -260,9 +263,12 @@ def _summed_up(
         claimed_unit=shown.written_in.text if shown else "",
         computed=truth,
         deviation=_off(shown, truth) if comparable and shown and truth else None,
-        message=first.message or next((s.message for s in steps if s.message), ""),
+        low=limits[0],
+        high=limits[1],
+        message="; ".join(dict.fromkeys(t for t in (message, *(f.told for f in job.names.founds.values())) if t)),
         steps=tuple(steps),
         cautions=tuple(dict.fromkeys(job.cautions)),
+        parts=_by_source(main, job),
     )
 
 

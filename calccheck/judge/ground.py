@@ -10,7 +10,7 @@ from calccheck.arithmetic import (
     Amount,
     literal,
 )
-from calccheck.formula import OVER_TOLERANCES, Number, Reference, numbers
+from calccheck.formula import OVER_TOLERANCES, Number, Reference
 from calccheck.judge import quantities
 from calccheck.judge.members import Names, Worked
 from calccheck.judge.phasors import Sized
@@ -52,15 +52,15 @@ class Ground:
 
     def traced(self, w: Worked) -> list[Traced]:
         """What the printed numbers of a member stand for."""
-        return trace(w.node, self.meanings(w), self.ledger)
+        return trace(w.nodes, self.meanings(w), self.ledger)
 
     def meanings(self, w: Worked) -> Meanings:
         """What a number of this member may stand for."""
         before = [*takewhile(lambda m: m is not w, self.members)]
-        fixed = [numbers(m.node) for m in before if m is self.source or m.sort == "formula"]
+        fixed = [m.numbers for m in before if m is self.source or m.sort == "formula"]
         constants = [literal(n) for found in fixed for n in found]
         pieces = [s for m in before for s in sizes(m.pieces)]
-        repeated = [literal(n) for m in before for n in numbers(m.node)]
+        repeated = [literal(n) for m in before for n in m.numbers]
         changed = [v for _, _, v in self.source.key.changes if v is not None] if self.source.key else []
         return Meanings([*constants, *changed, *self._ends()], pieces, self.circuit_values(), repeated)
 

@@ -41,7 +41,7 @@ class Worked:
 
     ``basis``: ``circuit`` where a quantity of a circuit or a name resting on one is in it, ``working`` where only names are.
     ``key``: of a member that is one bare quantity or name. ``restates``: it is a part's own value and nothing else.
-    ``pieces``: what each piece of a formula comes to, as far as it could be worked out.
+    ``pieces``: what each piece of a formula comes to, as far as it could be worked out. ``nodes``: the node and all below it.
     """
 
     member: Member
@@ -55,11 +55,22 @@ class Worked:
     doubt: Doubt | None = None
     fault: DimensionFault | None = None
     pieces: Sequence[tuple[Node, Amount]] = ()
+    nodes: Sequence[Node] = ()
 
     @property
     def relation(self) -> Relation:
         """The relation before the member."""
         return self.member.relation
+
+    @property
+    def numbers(self) -> list[Number]:
+        """The printed numbers in the member."""
+        return [n for n in self.nodes if isinstance(n, Number)]
+
+    @property
+    def references(self) -> list[Reference]:
+        """The names and quantities in the member."""
+        return [n for n in self.nodes if isinstance(n, Reference)]
 
 
 class Names:
@@ -75,8 +86,8 @@ class Names:
 
     def meaning(self, ref: Reference) -> Meaning | None:
         """What a reference means, or nothing."""
-        found = self._meanings.get(ref) or self._meaning(ref)
-        if found is not None:
+        found = self._meanings.get(ref)
+        if found is None and (found := self._meaning(ref)) is not None:
             self._meanings[ref] = found
         return found
 
@@ -95,7 +106,7 @@ class Names:
 
     def allowance(self, w: Worked) -> Real:
         """How far a value at random that a member is, or is worked from, may be off."""
-        found = [f for r in references(w.node) if (f := self.founds.get(r)) is not None and f.allowance]
+        found = [f for r in w.references if (f := self.founds.get(r)) is not None and f.allowance]
         if not found or w.amount is None:
             return 0
         return size(w.amount.value) * max(f.allowance / size(f.amount.value) if f.amount.value else 1 for f in found)
@@ -177,7 +188,7 @@ def work_all(members: Sequence[Member], names: Names) -> list[Worked]:
     first, rest = members[0], [work(m, names) for m in members[1:]]
     word = bare_name(first.node)
     if word is not None and isinstance(first.node, Reference) and not names.known(first.node):
-        return [Worked(first, first.node, "new name"), *rest]
+        return [Worked(first, first.node, "new name", nodes=(first.node,)), *rest]
     return [work(first, names), *rest]
 
 
@@ -214,7 +225,7 @@ def work(member: Member, names: Names) -> Worked:
         doubt = d
     except DimensionFault as f:
         fault = f
-    return Worked(member, node, sort, basis, amount, value, key, restates, doubt, fault, pieces)
+    return Worked(member, node, sort, basis, amount, value, key, restates, doubt, fault, pieces, nodes)
 
 
 def _range_doubt(node: Range) -> Doubt:
@@ -295,10 +306,9 @@ def _refuse_half_prefixed(member: Member, found: Sequence[Reference], names: Nam
 
 def without_unit(w: Worked) -> bool:
     """Whether the member has numbers and none of them has a unit; exponents have none and say nothing."""
-    nodes = list(walk(w.node))
-    if any(isinstance(n, Group) and n.unit.text for n in nodes):
+    if any(isinstance(n, Group) and n.unit.text for n in w.nodes):
         return False
-    powers = [n.right for n in nodes if isinstance(n, Binary) and n.operator == "^"]
+    powers = [n.right for n in w.nodes if isinstance(n, Binary) and n.operator == "^"]
     exponents = {id(n) for power in powers for n in numbers(power)}
-    found = [n for n in nodes if isinstance(n, Number) and id(n) not in exponents]
+    found = [n for n in w.numbers if id(n) not in exponents]
     return bool(found) and all(n.unit == PLAIN for n in found)

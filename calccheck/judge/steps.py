@@ -17,7 +17,7 @@ from calccheck.arithmetic import (
     real,
     size,
 )
-from calccheck.formula import Binary, Node, numbers, references
+from calccheck.formula import Binary, Node, references
 from calccheck.judge import say
 from calccheck.judge.aligned import number_by_number
 from calccheck.judge.ground import Ground, decided, subject
@@ -66,7 +66,7 @@ def _judged(w: Worked, relation: Relation, ground: Ground) -> Step:
         return judge_value(w, w.printed, relation, ground)
     if relation == "≈":
         return _approximate_formula(w, ground)
-    if numbers(w.node) or _spreads(w, ground):
+    if w.numbers or _spreads(w, ground):
         return _substitution(w, ground)
     if equal(w.amount.value, ground.truth.value):
         return decided(w, "agrees")
@@ -185,7 +185,7 @@ def _approximate_formula(w: Worked, ground: Ground) -> Step:
 def _spreads(w: Worked, ground: Ground) -> dict[str, Real]:
     """How far the names in a member may be off: givens are rounded where the circuit knows better."""
     found: dict[str, Real] = {}
-    for r in references(w.node):
+    for r in w.references:
         d = ground.ledger.names.get(r.word)
         if d is not None and d.spread and (not d.given or ground.basis == "circuit"):
             found[r.word] = d.spread

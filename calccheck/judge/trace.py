@@ -6,7 +6,7 @@ from collections.abc import Sequence
 from dataclasses import dataclass
 
 from calccheck.arithmetic import Amount, Doubt, Lookup, Real, Value, evaluate, literal, real, size
-from calccheck.formula import Binary, Node, Number, Reference, Unary, numbers, references, walk
+from calccheck.formula import Binary, Node, Number, Reference, Unary, references, walk
 from calccheck.judge.phasors import Sized, is_angle, sized
 from calccheck.judge.regrouped import regrouped
 from calccheck.judge.rounding import SLACK, Printed, bare_zero, printed
@@ -50,15 +50,16 @@ class Meanings:
     repeated: Sequence[Amount]
 
 
-def trace(node: Node, meanings: Meanings, ledger: Ledger) -> list[Traced]:
-    """What each printed number of a member stands for."""
-    counts = _exponents(node)
-    return [Traced(n, 0, True) if n in counts else _one(n, meanings, ledger) for n in numbers(node)]
+def trace(nodes: Sequence[Node], meanings: Meanings, ledger: Ledger) -> list[Traced]:
+    """What each printed number of a member stands for. ``nodes``: all of the member's."""
+    counts = _exponents(nodes)
+    found = [n for n in nodes if isinstance(n, Number)]
+    return [Traced(n, 0, True) if n in counts else _one(n, meanings, ledger) for n in found]
 
 
-def _exponents(node: Node) -> list[Node]:
+def _exponents(nodes: Sequence[Node]) -> list[Node]:
     """The numbers that stand as exponents: they count and round nothing."""
-    raised = [b.right for b in walk(node) if isinstance(b, Binary) and b.operator == "^"]
+    raised = [b.right for b in nodes if isinstance(b, Binary) and b.operator == "^"]
     return [r.operand if isinstance(r, Unary) else r for r in raised]
 
 
@@ -149,7 +150,8 @@ def reach(node: Node, lookup: Lookup, traced: Sequence[Traced], spreads: dict[st
     alone; then all are moved at once, so that products of small moves are not lost.
     """
     rooms: dict[object, Real] = {t.key: t.room for t in traced if t.room}
-    rooms |= {r.word: spreads[r.word] for r in references(node) if spreads.get(r.word)}
+    if spreads:
+        rooms |= {r.word: spreads[r.word] for r in references(node) if spreads.get(r.word)}
     middle = evaluate(node, lookup).value
     if isinstance(middle, complex) or _may_turn(node):
         middle = complex(middle)
