@@ -150,7 +150,8 @@ def _computed(judged: Judged) -> Record | None:
 def _ends(judged: Judged) -> Record | None:
     limit = judged.low or judged.high
     ends = {"low": judged.low, "high": judged.high}
-    return limit and _record({k: None if a is None else _value(a.value) for k, a in ends.items()}, limit.dimension)
+    found = {k: None if a is None else _value(a.value) for k, a in ends.items()}
+    return None if limit is None else _record(found, limit.dimension)
 
 
 def _printed_range(node: Range, dimension: Dimension) -> Record | None:

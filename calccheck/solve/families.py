@@ -8,7 +8,7 @@ equations of nodal analysis.
 from __future__ import annotations
 
 import math
-from collections.abc import Callable, Iterator, Mapping, Sequence
+from collections.abc import Callable, Sequence
 from dataclasses import dataclass, replace
 from fractions import Fraction
 from typing import Any
@@ -19,11 +19,11 @@ from calccheck.arithmetic import Value
 from calccheck.model import Element, State
 from calccheck.solve.branches import Branch, branches_of, network_of, with_terminals
 from calccheck.solve.nodal import equations, unit_current
+from calccheck.solve.reduced import Factor, Reduced, entries
 from calccheck.solve.stamps import LAWS, Array, Layout, layout_of
 from calccheck.toleranced import PLAIN, Effect, Functions, Reading, worked
 
 _NOTHING = 1e-11  # a determinant beside the largest of its family that may as well be zero
-CHUNK = 2000  # points solved at once: these fit into the processor's cache
 
 
 @dataclass(frozen=True, slots=True)
@@ -130,8 +130,12 @@ class Family:
         Raises ``numpy.linalg.LinAlgError`` where the equations are singular at one of the points.
         """
         reduced = self._reduced(values)
-        solution = np.concatenate([np.linalg.solve(a, b[..., None])[..., 0] for a, b in reduced.chunks()])
-        return [reduced.read(solution, f) for f in functionals]
+        found: list[list[Array]] = [[] for _ in functionals]
+        for here, a, b in reduced.chunks():
+            solution = np.linalg.solve(a, b[..., None])[..., 0]
+            for reads, functional in zip(found, functionals, strict=True):
+                reads.append(reduced.read(solution, functional, here))
+        return [np.concatenate(reads) for reads in found]
 
     def at_values(self, values: Sequence[float]) -> tuple[Array, Array]:
         """The inverse of all equations at one value of every open branch, and the solution there."""
@@ -146,7 +150,7 @@ class Family:
 
     def signs(self, values: Sequence[Array]) -> Array:
         """The sign of the determinant at many points, but for a factor that is the same at all of them; 0 where rounding hides it."""
-        found = [np.linalg.slogdet(a) for a, _ in self._reduced(values).chunks()]
+        found = [np.linalg.slogdet(a) for _, a, _ in self._reduced(values).chunks()]
         signs, sizes = (np.concatenate([f[k] for f in found]) for k in (0, 1))
         return np.where(sizes < sizes.max() + math.log(_NOTHING), 0.0, signs)
 
@@ -166,7 +170,7 @@ class Family:
             taken[k] = across, 1 / ohms
             pattern = np.outer(self.matrix[keep, k], across)
             if k in where:
-                factors.append(Factor(1 / (self._unit * ohms), _entries(pattern)))
+                factors.append(Factor(1 / (self._unit * ohms), entries(pattern)))
             else:
                 matrix = matrix + pattern / (self._unit * ohms)
         for o, v in zip(self.opened, stacked, strict=True):
@@ -174,69 +178,9 @@ class Family:
                 own = keep == o.row
                 pattern = own[:, None] * o.across[keep] * columns
                 factors.append(
-                    Factor(v, _entries(pattern), [(int(i), o.source) for i in np.flatnonzero(own * o.source)])
+                    Factor(v, entries(pattern), [(int(i), o.source) for i in np.flatnonzero(own * o.source)])
                 )
         return Reduced(keep, columns, matrix, right.astype(matrix.dtype), factors, taken)
-
-
-@dataclass(frozen=True, slots=True)
-class Factor:
-    """What varies in equations: values, an array over the points, and where they stand on the left and right, times what."""
-
-    values: Array
-    entries: Sequence[tuple[int, int, Any]]
-    sources: Sequence[tuple[int, Any]] = ()
-
-
-@dataclass(frozen=True, slots=True)
-class Reduced:
-    """Equations of a family without the currents of impedances.
-
-    ``keep``: the unknowns that are left, each counted in its ``scale``. ``matrix``, ``right``: the constant part.
-    ``taken``: of each impedance taken out, how its voltage is read from the unknowns, and its admittance.
-    """
-
-    keep: Array
-    scale: Array
-    matrix: Array
-    right: Array
-    factors: Sequence[Factor]
-    taken: Mapping[int, tuple[Array, Array]]
-
-    def chunks(self) -> Iterator[tuple[Array, Array]]:
-        """Matrices and right sides, so many points at a time."""
-        points = max((len(f.values) for f in self.factors), default=1)
-        for start in range(0, points, CHUNK):
-            here = slice(start, min(points, start + CHUNK))
-            left = np.repeat(self.matrix[..., None], here.stop - start, axis=2)
-            right = np.repeat(self.right[:, None], here.stop - start, axis=1)
-            for f in self.factors:
-                for i, j, x in f.entries:
-                    _add(left[i, j], x, f.values[here])
-                for i, x in f.sources:
-                    _add(right[i], x, f.values[here])
-            yield left.transpose(2, 0, 1), right.T
-
-    def read(self, solution: Array, functional: Array) -> Array:
-        """A functional of all unknowns of the family, an array over the points."""
-        found = solution @ (functional[self.keep] * self.scale)
-        for k, (across, admittance) in self.taken.items():
-            if functional[k]:
-                found = found + functional[k] * admittance * (solution @ (across * self.scale))
-        return np.asarray(found)
-
-
-def _entries(pattern: Array) -> list[tuple[int, int, Any]]:
-    return [(i, j, pattern[i, j]) for i, j in np.argwhere(pattern).tolist()]
-
-
-def _add(to: Any, coefficient: Any, values: Array) -> None:
-    if coefficient == 1:
-        to += values
-    elif coefficient == -1:
-        to -= values
-    else:
-        to += coefficient * values
 
 
 def _one_signed(values: Any) -> bool:

@@ -53,8 +53,8 @@ class Tolerances:
         """
         values = self.values(formula, size, seed, spread)
         mean, sigma = float(values.mean()), float(values.std(ddof=1))
-        off = values - mean
-        fourth = float((off**4).mean()) - sigma**4
+        squares = np.square(values - mean)
+        fourth = float(np.square(squares).mean()) - sigma**4
         error = math.sqrt(max(fourth, 0.0) / size) / (2 * sigma) if sigma else 0.0
         return Sample(size, mean, sigma, error, float((values >= 0).mean()))
 
@@ -68,6 +68,7 @@ def _points(worker: Worker, size: int, seed: int, spread: Spread) -> Floats:
     rng = np.random.default_rng(seed)
     low, width = worker.low[:, None], (worker.high - worker.low)[:, None]
     shape = len(worker.low), size
-    if spread == "normal":
-        return np.asarray(low + width * (0.5 + rng.standard_normal(shape) / 6)).T
-    return np.asarray(low + width * rng.random(shape)).T
+    drawn = rng.random(shape) if spread == "uniform" else 0.5 + rng.standard_normal(shape) / 6
+    drawn *= width
+    drawn += low
+    return drawn.T
