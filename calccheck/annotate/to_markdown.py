@@ -55,8 +55,10 @@ def _edits(judged: Judged, entry: Entry, sheet: Sheet, around: _Surroundings) ->
     claim = judged.claim
     if claim.place in ("working", "circuit"):
         yield from _comments(judged, entry, sheet)
-    elif any(m.start <= claim.span.start and claim.span.end <= m.end for m in around.maths):
-        yield Edit(max(claim.span.start, claim.span.end - 1), escaped(claim_words(entry)), "below")
+        return
+    display = next((m for m in around.maths if m.start <= claim.span.start and claim.span.end <= m.end), None)
+    if display is not None:  # whose rows may be claims of their own: all marks stand below it
+        yield Edit(max(display.start, display.end - 1), escaped(claim_words(entry)), "below")
     else:
         yield Edit(_behind(claim.span, sheet.text, around.markup), escaped(claim_words(entry)))
 
