@@ -74,20 +74,22 @@ def _unread(found: Found, block: Block) -> None:
         found.not_read += 1
 
 
-def statement(piece: Piece, place: Place, circuit: int) -> Claim:
-    """One chain or assumption."""
+def statement(piece: Piece, place: Place, circuit: int, span: Span | None = None) -> Claim:
+    """One chain or assumption. ``span``: its place where it is more than the piece itself, as code with its ticks."""
     if _GIVEN.match(piece.text):
-        return assumption(piece, place, circuit)
+        given = assumption(piece, place, circuit)
+        return replace(given, span=span) if span else given
     piece = piece.strip()
-    claim = Claim(piece.text, piece.span(), place, circuit)
+    span = span or piece.span()
     try:
         members = parse_chain(piece)
     except Doubt as d:
-        return replace(claim, problem=Problem(d.reason, d.span or claim.span, d.suggestion))
+        problem = Problem(d.reason, d.span or piece.span(), d.suggestion)
+        return Claim(piece.text, span, place, circuit, problem=problem)
     if len(members) < 2:
         reason = "no relation here: a statement is a chain with =; a remark starts with #"
-        return replace(claim, problem=Problem(reason, claim.span))
-    return replace(claim, members=members)
+        return Claim(piece.text, span, place, circuit, problem=Problem(reason, piece.span()))
+    return Claim(piece.text, span, place, circuit, members)
 
 
 def assumption(piece: Piece, place: Place, circuit: int) -> Claim:
@@ -160,7 +162,7 @@ def _text(found: Found, block: Block, circuit: int, names: Collection[str], firs
         if inline.text is None:
             continue
         if inline.kind == "code" and RELATION.search(inline.text.text):
-            found.claims.append(replace(statement(inline.text, "code", circuit), span=inline.span))
+            found.claims.append(statement(inline.text, "code", circuit, inline.span))
         elif inline.kind == "math":
             found.claims += _maths(inline.text, inline.span, circuit)
         elif inline.kind == "html":

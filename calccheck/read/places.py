@@ -103,7 +103,7 @@ def tail(page: Page, line: int, text: str, floor: int) -> Piece:
 
 def flow(page: Page, content: str, lines: range, place: int) -> Piece:
     """A paragraph's content, which begins at ``place`` (but for blanks) and stands in ``lines``."""
-    if page.text.startswith(content, place) and "\n" not in content:
+    if page.text.startswith(content, place) and page.shifts[lines.start] == page.shifts[lines.stop - 1]:
         return piece(page, lines.start, place, place + len(content))
     texts = content.split("\n")
     line = lines.start

@@ -7,18 +7,17 @@ from __future__ import annotations
 
 import re
 from bisect import bisect_left
-from collections.abc import Collection, Iterator
+from collections.abc import Collection, Iterator, Sequence
 from html import unescape
-from itertools import pairwise
 
 from calccheck.document import Block, inlines
 from calccheck.model import Claim, Problem
-from calccheck.source import NOWHERE
 
 _SIGNS = "=≈<≤>≥≅≃∼~＝"
 _QUANTITY = r"(?:Isc|[VIPRZSQ])(?:\\?_\{[^{}]*\}|\\?_[A-Za-z0-9]\w*)|\|[VI]\\?_\w+\|"
 _VALUE = r"[-−+]?\s?(?:\d+(?:[.,]\d+)?|\.\d+)(?:\s?[a-zA-ZµμΩΩ%°][\w/·°%²³]*)?"
 _RELATION = r"(?:~=|\\?[<>]=?|[=≈≤≥~≅≃∼]|&(?:l[te]|g[te]|leq|geq|ap|asymp|approx|equals);)"
+_MAY_STATE = re.compile(r"[=≈<≤>≥~≅≃∼&]")
 _ABOUT = dict.fromkeys(("~", "~=", "≅", "≃", "∼"), "≈")
 
 
@@ -34,12 +33,10 @@ def prose_claims(block: Block, names: Collection[str], circuit: int) -> list[Cla
     Code, maths and HTML in it are left out, but for names in code whose relation and value stand outside: `` `V_b` = 8 V ``.
     """
     content = block.content
-    if content is None or not any(c in content.text for c in "=≈<≤>≥~≅≃∼&"):
+    if content is None or not _MAY_STATE.search(content.text):
         return []
     text = list(content.text)
-    at = [p if p != NOWHERE else -1 for p in content.at]
-    if any(a > b for a, b in pairwise(at)):
-        at = _rising(at)
+    at = content.at if isinstance(content.at, range) else _rising(content.at)
     for inline in inlines(block.inlines):
         if inline.kind in ("code", "math", "html"):
             first, last = bisect_left(at, inline.span.start), bisect_left(at, inline.span.end)
@@ -74,7 +71,7 @@ def _known(word: str, names: Collection[str]) -> str:
     return next((name for name in inner if name in names), "")
 
 
-def _rising(at: list[int]) -> list[int]:
+def _rising(at: Sequence[int]) -> list[int]:
     """Offsets with those of characters that stand nowhere filled in, so that they can be searched."""
     last, filled = 0, []
     for p in at:
