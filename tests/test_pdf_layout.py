@@ -5,12 +5,14 @@ from __future__ import annotations
 import re
 from itertools import pairwise
 
+import pymupdf
 import pytest
 from annotate_fixture import hostile, report_of, said
 from pdf_reading import MM, Word, annotations, flat, read, text_of, words
 from pypdf import PageObject, PdfReader
 
-from calccheck.model import Report
+from calccheck.annotate.to_pdf import to_pdf
+from calccheck.model import Report, Slip
 
 
 @pytest.fixture(scope="module")
@@ -53,7 +55,7 @@ def test_nothing_in_a_sheet_becomes_an_action(nasty):
 def test_comments_bear_hostile_words_too(nasty):
     contents = [a["/Contents"] for _, _, a in annotations(nasty, "/Highlight")]
     assert len(contents) == 4
-    assert all('no "]) #panic() <b>&amp;</b> \\ $x$ [U+202E]' in c for c in contents)
+    assert all('"]) #panic() <b>&amp;</b> \\ $x$ [U+202E]' in c for c in contents)
 
 
 def test_deep_nesting_and_endless_words_lose_nothing():
@@ -136,6 +138,51 @@ def test_long_margin_notes_stack_and_stay_on_the_page(filler):
     assert all(w.y < head + 12 for w in beside(page))
     told = flat("".join(w.text for w in beside(page)))
     assert all(f"closingword{k}." in told for k in range(1, 6))
+
+
+def twenty_in_a_row(form: str) -> Report:
+    """Twenty wrong claims in consecutive lines, each with a message and two slips of several lines in the margin."""
+    claims = [f"V_n{k} = {k}.25 V" for k in range(1, 21)]
+    rows = "\n".join({"working": "{}", "list": "- `{}`", "table": "| `{}` | b |"}[form].format(c) for c in claims)
+    around = {"working": "```working\n{}\n```", "list": "{}", "table": "| a | b |\n|---|---|\n{}"}[form]
+    text = f"# Head\n\n{around.format(rows)}\n\nThe end.\n"
+    sentence = "comes to a value that is said with some words around it, so that it fills lines of the margin"
+    slips = tuple(Slip(name, f"consistent with the {name} thing, {sentence}") for name in ("first", "second"))
+    place = {"working": "working", "list": "code", "table": "table"}[form]
+    return report_of(
+        text, *(said(text, c, "differs", place=place, message=f"{c[:5]} {sentence}", slips=slips) for c in claims)
+    )
+
+
+@pytest.mark.parametrize("form", ["working", "list", "table"])
+def test_twenty_wrong_claims_in_a_row_have_notes_that_never_touch(form):
+    """By the boxes of words and of the bars beside the notes, as a second program sees them."""
+    notes = 0
+    with pymupdf.open(stream=to_pdf(twenty_in_a_row(form))) as pdf:
+        record = next(k for k, page in enumerate(pdf) if "Check record" in page.get_text())
+        for page in list(pdf)[:record]:
+            left = page.rect.width - 56.5 * MM
+            top = next((w[1] for w in page.get_text("words") if w[4] == "Head"), 30 * MM)  # below the summary
+            boxes = [pymupdf.Rect(w[:4]) for w in page.get_text("words") if w[0] > left and w[1] > top]
+            assert all(b.x1 < page.rect.width - 10 * MM and b.y1 < page.rect.height - 12 * MM for b in boxes)
+            for k, one in enumerate(boxes):  # a box is as high as the font, some of which is white: 1.5 points
+                assert not [b for b in boxes[k + 1 :] if _both(one, b).width > 0.5 and _both(one, b).height > 1.5]
+            bars = sorted(
+                (d["rect"].y0, d["rect"].y1)
+                for d in page.get_drawings()
+                if left - 4 < d["rect"].x0 and d["rect"].y0 > top and d["rect"].width < 2 and d["rect"].height > 5
+            )
+            assert all(a[1] < b[0] for a, b in pairwise(bars))
+            notes += len(bars)
+            text = " ".join(w[4] for w in page.get_text("words") if w[0] > left)
+            notes += sum(int(n) for n in re.findall(r"(\d+) more on this page", text))
+    assert notes == 20
+
+
+def _both(a: pymupdf.Rect, b: pymupdf.Rect) -> pymupdf.Rect:
+    """What two boxes share; of no width and height where they share nothing."""
+    shared = pymupdf.Rect(max(a.x0, b.x0), max(a.y0, b.y0), min(a.x1, b.x1), min(a.y1, b.y1))
+    return shared if shared.x1 > shared.x0 and shared.y1 > shared.y0 else pymupdf.Rect()
 
 
 def test_a_long_title_block_pushes_the_text_down(full):
