@@ -7,7 +7,9 @@ mpmath's quadrature.
 from __future__ import annotations
 
 import math
+import re
 from fractions import Fraction
+from pathlib import Path
 
 import mpmath
 import pytest
@@ -17,6 +19,7 @@ from calccheck import check_text
 from calccheck.model import Settings
 from calccheck.pipeline import work_out
 from calccheck.preferred_values import between
+from calccheck.rules import RULES
 from calccheck.source import Sheet
 
 DIVIDER = """```circuit
@@ -603,3 +606,21 @@ def test_sensitivities_of_a_phasor_are_those_of_its_magnitude():
     assert float(found["C1"].by_percent.value) == pytest.approx(expected, rel=1e-6)
     assert float(found["R1"].by_percent.value) == pytest.approx(expected, rel=1e-6)
     assert Settings().samples == 100_000
+
+
+# --- the page -------------------------------------------------------------------------------------------------------
+
+PAGE = (Path(__file__).parents[1] / "docs" / "tolerances.md").read_text(encoding="utf-8")
+
+
+def test_the_example_of_the_page():
+    example = re.search(r"````markdown\n(.*?)````", PAGE, re.DOTALL)[1]
+    report = check_text("example.md", example)
+    assert report.clean, [(j.claim.text, j.verdict, j.message) for j in report.claims]
+    assert (report.counts["agrees"], report.counts["given"]) == (9, 1)
+
+
+def test_the_anchors_of_findings_stand_on_the_page():
+    heads = {head.lower().replace(" ", "-") for head in re.findall(r"^## (.*)$", PAGE, re.MULTILINE)}
+    wanted = {rule.anchor.partition("#")[2] for rule in RULES.values() if rule.anchor.startswith("tolerances.md#")}
+    assert wanted == {"ratings", "preferred-values"} and wanted <= heads
