@@ -141,7 +141,11 @@ def _leaf(token: Token, content: Piece, start: int, end: int) -> Inline:
     match kind:
         case "code" | "math" | "html":
             lead = start + (end - start - len(token.content)) // 2
-            return Inline(kind, span, Piece(token.content, content.part(lead, lead + len(token.content)).at))
+            inner = content.part(lead, lead + len(token.content))
+            at = inner.at
+            if "\n" in inner.text:  # read as a blank, which stands nowhere
+                at = [NOWHERE if c == "\n" else p for c, p in zip(f"{inner.text} ", at, strict=True)]
+            return Inline(kind, span, Piece(token.content, at))
         case "image":
             label = content.part(start + 2, start + 2 + len(token.content))
             return Inline(kind, span, None, read_inlines(token.children or (), label), str(token.attrs["src"]))

@@ -24,12 +24,14 @@ _INDENT = re.compile(r"[ \t>]*")
 @dataclass(frozen=True, slots=True)
 class Page:
     """The text as the parser is given it, the offset of each of its lines (and one behind the last), and for each line
-    what has to be added to an offset in ``text`` to get the offset in the sheet.
+    what has to be added to an offset in ``text`` to get the offset in the sheet. ``plain``: whether every line of the sheet
+    ends as the parser's do.
     """
 
     text: str
     starts: list[int]
     shifts: list[int]
+    plain: bool
 
 
 def page_from(sheet_text: str, offset: int) -> Page:
@@ -39,9 +41,9 @@ def page_from(sheet_text: str, offset: int) -> Page:
     text = text.replace("\0", "\ufffd")
     starts = list(accumulate(map(len, text.split("\n")), lambda start, length: start + length + 1, initial=0))
     if len(text) == len(source):
-        return Page(text, starts, [offset] * (len(starts) - 1))
+        return Page(text, starts, [offset] * (len(starts) - 1), "\r" not in source)
     own_starts = [0, *(end.end() for end in _LINE_END.finditer(source))]
-    return Page(text, starts, [offset + own - start for own, start in zip(own_starts, starts, strict=False)])
+    return Page(text, starts, [offset + own - start for own, start in zip(own_starts, starts, strict=False)], False)
 
 
 def piece(page: Page, line: int, start: int, end: int) -> Piece:
@@ -103,7 +105,7 @@ def tail(page: Page, line: int, text: str, floor: int) -> Piece:
 
 def flow(page: Page, content: str, lines: range, place: int) -> Piece:
     """A paragraph's content, which begins at ``place`` (but for blanks) and stands in ``lines``."""
-    if page.text.startswith(content, place) and page.shifts[lines.start] == page.shifts[lines.stop - 1]:
+    if page.text.startswith(content, place) and (page.plain or "\n" not in content):
         return piece(page, lines.start, place, place + len(content))
     texts = content.split("\n")
     line = lines.start
