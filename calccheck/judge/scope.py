@@ -4,6 +4,7 @@ from __future__ import annotations
 
 import math
 import re
+from bisect import insort
 from collections.abc import Callable, Mapping
 from dataclasses import dataclass, field, replace
 from fractions import Fraction
@@ -91,7 +92,8 @@ class Ledger:
     ``amounts``, ``variants``, ``states``, ``around`` and ``prepared`` keep what was worked out once: quantities by key, changed
     circuits by their changes, states by the sources that act, all values of a circuit, circuits to read from. ``exact``: the values of parts and givens by dimension
     and magnitude; ``standing`` and ``failing``: of those results that may be carried on and of those that may not, the last by
-    dimension and magnitude; ``of_quantity``: the former by their quantity and value, the last at the end. ``fails`` says why a circuit's parts cannot be in
+    dimension and magnitude; ``of_quantity``: the former by their quantity and value, the last at the end; ``truths``: their
+    exact magnitudes, rising. ``fails`` says why a circuit's parts cannot be in
     the states that the sheet assumes, or nothing. ``tolerances`` works formulas over them. ``assumptions``: of the whole sheet,
     for the values of parts that are worked from them.
     """
@@ -104,6 +106,7 @@ class Ledger:
     standing: dict[tuple[Dimension, Real], Result] = field(default_factory=dict)
     failing: dict[tuple[Dimension, Real], Result] = field(default_factory=dict)
     of_quantity: dict[Key, dict[Real, Result]] = field(default_factory=dict)
+    truths: dict[Dimension, list[float]] = field(default_factory=dict)
     symbols: Mapping[str, Amount] = field(default_factory=dict)
     amounts: dict[Key, Amount] = field(default_factory=dict)
     variants: dict[object, Circuit] = field(default_factory=dict)
@@ -141,6 +144,8 @@ def enter(result: Result, ledger: Ledger) -> None:
     """A printed value entered, for what stands further down."""
     where = ledger.standing if result.stands else ledger.failing
     where[magnitude(result.printed.amount)] = result
+    if result.stands:
+        insort(ledger.truths.setdefault(result.truth.dimension, []), float(size(result.truth.value)))
     if result.stands and result.key is not None:
         same = ledger.of_quantity.setdefault(result.key, {})
         finest = min(same.pop(result.printed.value, result), result, key=lambda r: r.printed.unit)

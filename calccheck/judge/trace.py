@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+from bisect import bisect_left, bisect_right
 from collections.abc import Sequence
 from dataclasses import dataclass
 
@@ -75,7 +76,7 @@ def _one(n: Number, meanings: Meanings, ledger: Ledger) -> Traced:
     rounds = _rounded_by(p, meanings.pieces)
     if rounds and all(abs(a - x) <= _ALIKE * x for a in rounds):
         return Traced(n, 0, True)
-    rounds += _rounded_by(p, meanings.around)
+    rounds += _rounded_by(p, meanings.around) + _rounded_by(p, _near(p, ledger))
     earlier = _earlier(p, ledger)
     if earlier is not None and earlier.stands:
         truth = float(size(earlier.truth.value))
@@ -112,6 +113,13 @@ def _counts(n: Number) -> bool:
 
 def _same(p: Printed, a: Amount) -> bool:
     return a.dimension == p.amount.dimension and size(a.value) == size(p.value)
+
+
+def _near(p: Printed, ledger: Ledger) -> list[Sized]:
+    """The exact values of earlier results next to a number, which may carry them on with fewer figures."""
+    truths = ledger.truths.get(p.amount.dimension, [])
+    low, high = (float(size(p.value)) * (1 + sign * 1e-8) + sign * float(p.half) for sign in (-1, 1))
+    return [(p.amount.dimension, x) for x in truths[bisect_left(truths, low) : bisect_right(truths, high)]]
 
 
 def _earlier(p: Printed, ledger: Ledger) -> Result | None:

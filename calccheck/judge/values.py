@@ -4,20 +4,15 @@ from __future__ import annotations
 
 from dataclasses import replace
 
-from calccheck.arithmetic import (
-    ICE,
-    Amount,
-    Real,
-    real,
-    size,
-)
+from calccheck.arithmetic import ICE, Amount, DimensionFault, Doubt, Real, evaluate, real, size
+from calccheck.formula import Reference
 from calccheck.judge import quantities, say
 from calccheck.judge.ground import Ground, decided, subject
 from calccheck.judge.laws import followed
 from calccheck.judge.members import Worked
 from calccheck.judge.phasors import PrintedPhasor, is_angle, nearest_turn, phasor_fit
 from calccheck.judge.rounding import SLACK, Printed, coarse, deviation, equal, fit, on_scale
-from calccheck.judge.scope import Key
+from calccheck.judge.scope import Key, Meaning
 from calccheck.judge.trace import sizes
 from calccheck.model import Relation, Step
 from calccheck.printing import shown
@@ -129,6 +124,8 @@ def _carried(p: Printed, truth: Real, ground: Ground, zero: Real) -> str:
     if any(m.sort == "substitution" for m in ground.members):
         carried = ground.carried
         return "the working before it" if carried is not None and _follows(p, real(carried.value) - zero) else ""
+    if any(_follows(p, v - zero) for m in ground.members if (v := _from_printed(m, ground)) is not None):
+        return "the formula with values printed above"
     key: Key | None = ground.source.key
     if key is None or key.circuit < 0:
         return ""
@@ -139,6 +136,37 @@ def _carried(p: Printed, truth: Real, ground: Ground, zero: Real) -> str:
     return next(
         (f"{law} with values printed above" for v, law in followed(key, ground.ledger, circuit) if _follows(p, v)), ""
     )
+
+
+def _from_printed(m: Worked, ground: Ground) -> Real | None:
+    """What a formula comes to with the values that are printed above for its names and quantities; nothing where none is."""
+    found: list[Amount] = []
+
+    def lookup(ref: Reference) -> Amount:
+        a, meaning = ground.names.amount(ref), ground.names.meaning(ref)
+        shown = _last_printed(meaning, ground)
+        if shown is None or shown.amount.dimension != a.dimension or shown.amount.point != a.point:
+            return a
+        found.append(shown.amount)
+        return replace(a, value=shown.amount.value)
+
+    if m.sort != "formula" or isinstance(m.node, Reference):
+        return None
+    try:
+        value = evaluate(m.node, lookup).value
+    except (Doubt, DimensionFault):
+        return None
+    return None if isinstance(value, complex) or not found else value
+
+
+def _last_printed(meaning: Meaning | None, ground: Ground) -> Printed | None:
+    if meaning is None:
+        return None
+    if meaning.defined is not None:
+        shown = meaning.defined.printed
+        return shown if isinstance(shown, Printed) and not meaning.defined.given else None
+    values = ground.ledger.of_quantity.get(meaning.key) if meaning.key is not None else None
+    return values[next(reversed(values))].printed if values else None
 
 
 def _follows(p: Printed, v: Real) -> bool:
