@@ -263,15 +263,15 @@ small, large = open("small.md", encoding="utf-8").read(), open("large.md", encod
 def quickest(text):
     times = []
     for _ in range(7):
-        start = time.perf_counter()
+        start = time.process_time()
         assert [j.verdict for j in check_text("sheet.md", text).claims] == ["agrees"] * text.count("V_n") , text
-        times.append(time.perf_counter() - start)
+        times.append(time.process_time() - start)
     return min(times)
 quickest(small)
 print(quickest(large) - quickest(small), *sorted({m.split(".")[0] for m in sys.modules} & {"sympy", "scipy", "pint", "pypdf", "typst"}))
 """
 MOST_SECONDS = 0.050
-SLOWER_MACHINE = 4  # the limit holds on a machine with nothing else to do
+SLOWER_MACHINE = 2  # room for a processor that is slow, or shared with other work
 
 
 @pytest.mark.undisturbed
