@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import re
 import tomllib
 from pathlib import Path
 
@@ -26,3 +27,13 @@ def test_every_folder_of_modules_is_a_package() -> None:
 
 def test_one_version() -> None:
     assert SETTINGS["project"]["version"] == __version__
+
+
+def test_the_slow_library_of_algebra_has_one_door() -> None:
+    """It is imported by name, which the import contracts do not see."""
+    users = {
+        p.name
+        for p in (PROJECT / "calccheck").rglob("*.py")
+        if re.search(r"[\"']sympy|import sympy", p.read_text("utf-8"))
+    }
+    assert users == {"symbolic.py"}
