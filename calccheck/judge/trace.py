@@ -117,7 +117,7 @@ def _same(p: Printed, a: Amount) -> bool:
 
 def _near(p: Printed, ledger: Ledger) -> list[Sized]:
     """The exact values of earlier results next to a number, which may carry them on with fewer figures."""
-    truths = ledger.truths.get(p.amount.dimension, [])
+    truths = ledger.truths.get(p.amount.dimension, []) if p.figures > 1 else []
     low, high = (float(size(p.value)) * (1 + sign * 1e-8) + sign * float(p.half) for sign in (-1, 1))
     return [(p.amount.dimension, x) for x in truths[bisect_left(truths, low) : bisect_right(truths, high)]]
 

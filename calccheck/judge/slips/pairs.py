@@ -108,8 +108,10 @@ def _other_current(case: Case) -> Iterator[Guess]:
         return
     base = case.redo.prepared(circuit, key, case.frequencies[0])
     own, joined = base.element(key.subscripts[0]), _groups(base, ("short",))
+    if own is None or own.terminals:
+        return
     for e in base.elements:
-        if own is None or e is own or e.kind not in PASSIVE:
+        if e is own or e.kind not in PASSIVE:
             continue
         alike = (joined[e.plus], joined[e.minus]) == (joined[own.plus], joined[own.minus])
         if alike or (joined[e.minus], joined[e.plus]) == (joined[own.plus], joined[own.minus]):
