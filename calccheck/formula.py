@@ -46,7 +46,7 @@ class Number:
     @cached_property
     def place(self) -> Fraction:
         """The unit of the last printed place, in SI."""
-        exponent, factor = int(self.digits.as_tuple().exponent), abs(self.unit.factor)
+        exponent, factor = int(self.digits.as_tuple().exponent), self.unit.factor
         return Fraction(factor.numerator, factor.denominator * 10**-exponent) if exponent < 0 else factor * 10**exponent
 
 

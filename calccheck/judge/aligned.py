@@ -8,13 +8,13 @@ from __future__ import annotations
 
 from itertools import takewhile
 
-from calccheck.arithmetic import Amount, size
+from calccheck.arithmetic import Amount
 from calccheck.formula import Binary, Call, Group, Node, Number, Reference, Unary
 from calccheck.judge.ground import Ground
 from calccheck.judge.members import Worked, restates_part
-from calccheck.judge.rounding import SLACK, bare_zero, equal, printed
+from calccheck.judge.rounding import Printed, bare_zero, equal, printed, within
 
-Pairs = list[tuple[Node, Node]]  # a printed number of the member, and what stands there in the formula
+Pairs = list[tuple[Printed, Node]]  # a printed number of the member, and what stands there in the formula
 
 
 def number_by_number(w: Worked, ground: Ground) -> bool:
@@ -24,15 +24,16 @@ def number_by_number(w: Worked, ground: Ground) -> bool:
             continue
         pairs: Pairs = []
         known = {id(node): a for node, a in m.pieces}
-        if _aligned(m.node, w.node, pairs) and all(_right(n, piece, known, ground) for n, piece in pairs):
+        if _aligned(m.node, w.node, pairs) and all(_right(p, piece, known, ground) for p, piece in pairs):
             return True
     return False
 
 
 def _aligned(formula: Node, member: Node, pairs: Pairs) -> bool:
     """Whether the member has the formula's form, its numbers noted with what stands in their places."""
-    if printed(member) is not None:
-        pairs.append((member, _open(formula)))
+    number = printed(member)
+    if number is not None:
+        pairs.append((number, _open(formula)))
         return True
     formula, member = _open(formula), _open(member)
     match formula, member:
@@ -57,16 +58,16 @@ def _open(node: Node) -> Node:
     return node
 
 
-def _right(number: Node, piece: Node, known: dict[int, Amount], ground: Ground) -> bool:
+def _right(p: Printed, piece: Node, known: dict[int, Amount], ground: Ground) -> bool:
     """Whether a number is the very value of a part, an assumption or a number in its place, or a right rounding of the rest."""
-    p, a = printed(number), known.get(id(piece))
-    if p is None or a is None or isinstance(a.value, complex):
+    a = known.get(id(piece))
+    if a is None or isinstance(a.value, complex):
         return False
     if a.dimension != p.amount.dimension or a.point != p.amount.point or a.level != p.amount.level:
         return False
     if _exact(piece, ground) or bare_zero(p):
         return equal(p.value, a.value)
-    return size(p.value - a.value) <= p.half + SLACK * size(a.value)
+    return within(p, a.value)
 
 
 def _exact(piece: Node, ground: Ground) -> bool:

@@ -7,7 +7,7 @@ from collections.abc import Callable, Sequence
 
 from calccheck.arithmetic import Amount, size
 from calccheck.formula import NO_QUALIFIERS, Reference
-from calccheck.judge.rounding import SLACK, Printed, coarse, equal, printed
+from calccheck.judge.rounding import Printed, coarse, equal, printed, within
 from calccheck.model import Finding, Judged, Reading, Report
 from calccheck.printing import shown
 from calccheck.rules import RULES
@@ -111,8 +111,8 @@ def _agrees(here: Judged, there: Judged) -> bool:
     truth = there.computed or b
     if p is None or p.digits == 0 or isinstance(b.value, complex) or isinstance(truth.value, complex):
         return False
-    within = all(size(p.value - v) <= p.half + SLACK * size(v) for v in (b.value, truth.value))
-    return within and not coarse(p, truth.value)
+    fits = all(within(p, v) for v in (b.value, truth.value))
+    return fits and not coarse(p, truth.value)
 
 
 def _printed(j: Judged) -> Printed | None:

@@ -6,6 +6,8 @@ leaves the choice at a tie open.
 
 from __future__ import annotations
 
+import cmath
+import math
 from dataclasses import dataclass, replace
 from decimal import Decimal
 from fractions import Fraction
@@ -17,7 +19,7 @@ from calccheck.formula import Group, Node, Number, Unary
 from calccheck.units import PLAIN, Unit
 
 SLACK = Fraction(1, 10**9)
-COARSE = Fraction(5, 100)
+COARSE = 0.05
 
 
 @dataclass(frozen=True, slots=True)
@@ -88,20 +90,28 @@ def fit(p: Printed, truth: Real, carry: Fraction, scale: Real | None = 0) -> Fit
     ``whole zeros``: right to the figures before the zeros at its end, and within ``carry``. ``scale``: the largest like value
     of the circuit, against which a bare zero is held; ``None`` where it is judged by its last place like any other digit.
     """
-    x = p.value
-    distance = size(x - truth)
-    slack = SLACK * size(truth)
     if bare_zero(p) and scale is not None:
         return "exact place" if size(truth) <= SLACK * scale else "no"
-    if distance <= p.half + slack:
+    if within(p, truth):
         return "exact place"
-    toward_zero = x * truth > 0 and size(x) < size(truth)
-    if p.figures >= 3 and toward_zero and distance < p.unit - slack:
+    x, t, unit = float(p.value), float(truth), float(p.unit)
+    distance, slack = abs(x - t), 1e-9 * abs(t)
+    toward_zero = x * t > 0 and abs(x) < abs(t)
+    if p.figures >= 3 and toward_zero and distance < unit - slack:
         return "cut off"
     zeros = 0 if p.scientific else _zeros_at_end(p.digits)
-    if zeros and distance <= carry * size(truth) and distance <= p.half * 10**zeros + slack:
+    if zeros and distance <= carry * abs(t) and distance <= unit / 2 * 10**zeros + slack:
         return "whole zeros"
     return "no"
+
+
+def within(p: Printed, value: Real) -> bool:
+    """Whether a value lies within half a unit of the printed one's last place, to 1e-9 of the value.
+
+    In floating point, whose error is far below that, because rationals would cost ten times as much.
+    """
+    v = float(value)
+    return abs(float(p.value) - v) <= float(p.unit) / 2 + 1e-9 * abs(v)
 
 
 def bare_zero(p: Printed) -> bool:
@@ -119,12 +129,14 @@ def _zeros_at_end(digits: Decimal) -> int:
 
 def coarse(p: Printed, truth: Real) -> bool:
     """Whether the printed value says so little that half its last place exceeds 5 % of the truth."""
-    return not bare_zero(p) and p.half > COARSE * size(truth)
+    return not bare_zero(p) and float(p.unit) / 2 > COARSE * abs(float(truth))
 
 
 def equal(a: Value, b: Value) -> bool:
     """Whether two worked values are the same to 1e-9."""
-    return bool(size(a - b) <= SLACK * max(size(a), size(b)))
+    if isinstance(a, complex) or isinstance(b, complex):
+        return cmath.isclose(a, b, rel_tol=1e-9)
+    return a == b or math.isclose(a, b, rel_tol=1e-9)
 
 
 def deviation(x: Value, truth: Value) -> float | None:

@@ -102,9 +102,9 @@ class Ledger:
     solve: Solve
     settings: Settings
     names: dict[str, Defined] = field(default_factory=dict)
-    exact: set[tuple[Dimension, Real]] = field(default_factory=set)
-    standing: dict[tuple[Dimension, Real], Result] = field(default_factory=dict)
-    failing: dict[tuple[Dimension, Real], Result] = field(default_factory=dict)
+    exact: set[tuple[Dimension, float]] = field(default_factory=set)
+    standing: dict[tuple[Dimension, float], Result] = field(default_factory=dict)
+    failing: dict[tuple[Dimension, float], Result] = field(default_factory=dict)
     of_quantity: dict[Key, dict[Real, Result]] = field(default_factory=dict)
     truths: dict[Dimension, list[float]] = field(default_factory=dict)
     symbols: Mapping[str, Amount] = field(default_factory=dict)
@@ -122,9 +122,9 @@ class Ledger:
         self.exact |= {magnitude(e.stated) for c in self.circuits for e in c.elements if e.stated is not None}
 
 
-def magnitude(a: Amount) -> tuple[Dimension, Real]:
-    """Dimension and magnitude, by which printed values are found again."""
-    return a.dimension, size(a.value)
+def magnitude(a: Amount) -> tuple[Dimension, float]:
+    """Dimension and magnitude, by which printed values are found again: the same digits give the same float."""
+    return a.dimension, abs(a.value if isinstance(a.value, complex) else float(a.value))
 
 
 def given(name: str, ledger: Ledger) -> Defined | None:

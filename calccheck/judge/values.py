@@ -11,7 +11,7 @@ from calccheck.judge.ground import Ground, decided, subject
 from calccheck.judge.laws import followed
 from calccheck.judge.members import Worked
 from calccheck.judge.phasors import PrintedPhasor, is_angle, nearest_turn, phasor_fit
-from calccheck.judge.rounding import SLACK, Printed, coarse, deviation, equal, fit, on_scale
+from calccheck.judge.rounding import Printed, coarse, deviation, equal, fit, on_scale, within
 from calccheck.judge.scope import Key, Meaning
 from calccheck.judge.trace import sizes
 from calccheck.model import Relation, Step
@@ -123,8 +123,8 @@ def _carried(p: Printed, truth: Real, ground: Ground, zero: Real) -> str:
         return ""
     if any(m.sort == "substitution" for m in ground.members):
         carried = ground.carried
-        return "the working before it" if carried is not None and _follows(p, real(carried.value) - zero) else ""
-    if any(_follows(p, v - zero) for m in ground.members if (v := _from_printed(m, ground)) is not None):
+        return "the working before it" if carried is not None and within(p, real(carried.value) - zero) else ""
+    if any(within(p, v - zero) for m in ground.members if (v := _from_printed(m, ground)) is not None):
         return "the formula with values printed above"
     key: Key | None = ground.source.key
     if key is None or key.circuit < 0:
@@ -134,7 +134,7 @@ def _carried(p: Printed, truth: Real, ground: Ground, zero: Real) -> str:
         return "the same value printed above"
     circuit = quantities.circuit_of(key, ground.ledger, ground.source.member.span)
     return next(
-        (f"{law} with values printed above" for v, law in followed(key, ground.ledger, circuit) if _follows(p, v)), ""
+        (f"{law} with values printed above" for v, law in followed(key, ground.ledger, circuit) if within(p, v)), ""
     )
 
 
@@ -167,7 +167,3 @@ def _last_printed(meaning: Meaning | None, ground: Ground) -> Printed | None:
         return shown if isinstance(shown, Printed) and not meaning.defined.given else None
     values = ground.ledger.of_quantity.get(meaning.key) if meaning.key is not None else None
     return values[next(reversed(values))].printed if values else None
-
-
-def _follows(p: Printed, v: Real) -> bool:
-    return size(p.value - v) <= p.half + SLACK * size(v)
