@@ -17,6 +17,7 @@ from pdf_reading import annotations, flat, read, text_of, words
 from pypdf import PdfReader
 from pypdf.generic import DictionaryObject
 
+from calccheck import check_text
 from calccheck.annotate.marks import MARKS
 from calccheck.annotate.record import LIMITS, comment_text, entries
 from calccheck.annotate.record_parts import SIGNATORIES
@@ -252,3 +253,45 @@ def test_a_sheet_without_a_date_bears_none_of_its_own(nasty):
 def test_a_circuit_is_listed_with_the_sheets_line_numbers(pdf):
     line = next(k for k, s in enumerate(EXAMPLE.splitlines(), 1) if s.startswith("R1:"))
     assert flat(f"{line} R1: 6 Ω,   a to b") in flat(text_of(pdf))
+
+
+# --- dollar maths ---------------------------------------------------------------------------------------------------
+
+MATHS = r"""---
+sheet: EX-8
+---
+
+# Maths
+
+```circuit
+reference com
+V1: 5 V,    a to com
+R1: 10 kΩ,  a to b
+R2: 10 kΩ,  b to com
+```
+
+$$
+\begin{aligned}
+V_\mathrm{b} \text{ due to V1} &= \frac{V_1 R_2}{R_1 + R_2} \\
+ &= \frac{5\,\mathrm{V} \cdot 10\,\mathrm{k\Omega}}{20\,\mathrm{k\Omega}} = 2.5\,\mathrm{V} \\
+I_{R_1} &= 0.30\,\mathrm{mA}
+\end{aligned}
+$$
+
+Within a line $V_\mathrm{b} = 2.5\,\mathrm{V}$ stands, and $a_1 + \frac{b}{c}$ claims nothing.
+"""
+
+
+def test_dollar_maths_is_set_as_it_was_read():
+    """No markup of a claim is left, every line bears its number and its mark; what claims nothing stands as written."""
+    report = check_text("maths.md", MATHS)
+    assert [j.verdict for j in report.claims] == ["agrees", "differs", "agrees"]  # 5 V / 20 kΩ is 0.25 mA
+    reader = read(report)
+    shown = flat(text_of(reader))
+    assert [m for m in re.findall(r"\\[a-zA-Z]+", shown) if m != r"\frac"] == []
+    assert r"a_1+\frac{b}{c}" in shown
+    for piece in ("2.5V", "0.30mA", "10kΩ", "dueto V1", "✓ agrees1", "✗ differs2", "✓ agrees3"):
+        assert flat(piece) in shown
+    assert [a["/NM"] for _, _, a in annotations(reader, "/Highlight")] == ["c2"]
+    row = next(e for e in entries(report) if e.key == "c2")
+    assert (row.printed, row.computed) == ("0.30 mA", "0.25 mA")

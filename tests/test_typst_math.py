@@ -17,6 +17,7 @@ from calccheck.annotate.record import entries
 from calccheck.annotate.to_pdf import typst_source
 from calccheck.annotate.typst_math import mathematics
 from calccheck.read.expression import parse_value
+from calccheck.read.maths import parse_maths
 from calccheck.source import whole
 
 
@@ -55,6 +56,21 @@ def made(text: str) -> str:
 )
 def test_each_form(written, source):
     assert made(written) == source
+
+
+@pytest.mark.parametrize(
+    ("written", "source"),
+    [
+        (r"V_\mathrm{b} = 2\,\mathrm{V}", 'attach(#slanted("V"), b: #upright("b"))'),
+        (r"V_b \text{ due to S1} = 1", 'attach(#slanted("V"), b: #upright("b")) thin #upright("due to S1")'),
+        (r"\frac{a}{b} = 1", 'frac(#leaning("a"), #leaning("b"))'),  # the bar groups: no brackets of its own
+        (r"\left( a + b \right) c = 1", '(#leaning("a") + #leaning("b")) thin #leaning("c")'),
+        (r"\min ( V_a - V_b ) = 1",
+         '#upright("min") thin (attach(#slanted("V"), b: #upright("a")) minus attach(#slanted("V"), b: #upright("b")))'),
+    ],
+)  # fmt: skip
+def test_each_form_of_dollar_maths(written, source):
+    assert mathematics(parse_maths(whole(written))[0].node, written) == source
 
 
 ATOMS = st.sampled_from(["R1", "Rb", "x′", "4.70 kΩ", "12 V", "0.010", "V_bus", "I_{R1,a}", "3.0e-3 A", "π"])

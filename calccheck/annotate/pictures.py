@@ -9,6 +9,7 @@ from calccheck.annotate import bars
 from calccheck.annotate.drawing import picture
 from calccheck.annotate.drawing.svg import Picture
 from calccheck.annotate.drawing.words import at
+from calccheck.annotate.maths_words import plain
 from calccheck.document import Block, blocks
 from calccheck.judge.quantities import LARGEST_GAP
 from calccheck.model import Circuit, Judged, Report, Solution
@@ -99,7 +100,7 @@ def _charts(claims: Iterator[tuple[str, Judged]], missing: Collection[str]) -> l
             found.setdefault((j.claim.circuit, j.quantity), []).append((key, j))
     return [
         Shown(
-            bars.picture(group[0][1].quantity, group[0][1].parts, group[0][1].claimed_unit, missing),
+            bars.picture(plain(group[0][1].quantity), group[0][1].parts, group[0][1].claimed_unit, missing),
             claims=tuple(key for key, _ in group),
         )
         for group in found.values()

@@ -7,17 +7,14 @@ from __future__ import annotations
 
 from collections.abc import Iterable
 from dataclasses import dataclass, field
-from fractions import Fraction
 
 from calccheck.annotate.marks import MARKS
+from calccheck.annotate.maths_words import plain
+from calccheck.annotate.record_values import computed_value, deviation_text, printed_value
 from calccheck.annotate.sentences import names_in, sentence
-from calccheck.arithmetic import Amount
-from calccheck.formula import Node, Number, Range, Unary, numbers
-from calccheck.model import Claim, Finding, Judged, Member, Report
-from calccheck.printing import shown
+from calccheck.model import Finding, Judged, Report
 from calccheck.rules import RULES
 from calccheck.source import Span
-from calccheck.units import PLAIN, UNITS, Unit, digits
 
 NOTED = ("differs", "unchecked", "error")  # what is to be mended: margin note and comment
 BESIDE = (*NOTED, "caution", "accepted")  # what a reviewer should see where it stands
@@ -76,7 +73,7 @@ class Entry:
 
     def sentences(self, phrases: Iterable[str]) -> list[str]:
         """Phrases about this entry as sentences."""
-        return [sentence(p, self.names) for p in phrases]
+        return [sentence(plain(p) if "\\" in self.text else p, self.names) for p in phrases]
 
 
 def entries(report: Report) -> tuple[Entry, ...]:
@@ -102,9 +99,9 @@ def _claim(report: Report, k: int, judged: Judged, names: frozenset[str]) -> Ent
         message=judged.message,
         told=tuple(t for t in told if t),
         cautions=judged.cautions,
-        printed=_printed(judged),
-        computed=_computed(judged),
-        deviation=_deviation(judged),
+        printed=printed_value(judged),
+        computed=computed_value(judged),
+        deviation=deviation_text(judged),
         size=abs(judged.deviation or 0.0),
         basis=judged.basis,
         names=names,
@@ -145,57 +142,6 @@ def comment_text(entry: Entry) -> str:
         *entry.sentences((*entry.told, *entry.cautions)),
     ]
     return "\n".join(line for line in lines if line)
-
-
-def _value_member(claim: Claim) -> Member | None:
-    """The member that prints the claim's value: the last literal behind ``=`` or ``≈``, else the last behind a bound."""
-    tail = [m for m in claim.members if _is_value(m.node)]
-    stated = [m for m in tail if m.relation in ("=", "≈")]
-    chosen = stated or tail
-    return chosen[-1] if chosen else None
-
-
-def _is_value(node: Node) -> bool:
-    return isinstance(node, Number | Range) or (isinstance(node, Unary) and isinstance(node.operand, Number))
-
-
-def _printed(judged: Judged) -> str:
-    member = _value_member(judged.claim)
-    if member is not None:
-        return member.text if member.relation in ("", "=") else f"{member.relation} {member.text}"
-    return _amount(judged.claimed, _unit(judged))
-
-
-def _computed(judged: Judged) -> str:
-    unit = _unit(judged)
-    if judged.low is not None and judged.high is not None:
-        return f"{_amount(judged.low, unit)} … {_amount(judged.high, unit)}"
-    return _amount(judged.computed or judged.low or judged.high, unit)
-
-
-def _unit(judged: Judged) -> Unit:
-    """The unit that the claim's value is printed in."""
-    member = _value_member(judged.claim)
-    found = numbers(member.node) if member else []
-    return found[-1].unit if found else UNITS.get(judged.claimed_unit, PLAIN)
-
-
-def _amount(amount: Amount | None, unit: Unit) -> str:
-    return "" if amount is None else shown(amount, unit)
-
-
-def _deviation(judged: Judged) -> str:
-    """Printed minus recomputed in percent of the recomputed value's size; without a sign where it is not known."""
-    if judged.deviation is None:
-        return ""
-    percent = abs(judged.deviation) * 100
-    if percent < 5e-4:
-        return "0 %" if percent == 0 else "< 0.001 %"
-    claimed, computed = (a.value if a is not None else None for a in (judged.claimed, judged.computed))
-    sign = ""
-    if isinstance(claimed, Fraction | float) and isinstance(computed, Fraction | float):
-        sign = "+" if judged.deviation > 0 else "−"
-    return f"{sign}{digits(percent, 2 if percent < 0.1 else 3)} %"
 
 
 # --- the parts around the entries -----------------------------------------------------------------------------------

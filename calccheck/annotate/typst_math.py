@@ -22,6 +22,7 @@ _NUMBER = re.compile(
     r"(?:[eE](?P<e>[-+−]?\d+)|\s*[×·*]\s*10(?:(?P<up>[⁺⁻]?[⁰¹²³⁴-⁹]+)|\^\(?(?P<hat>[-+−]?\d+)\)?))?"
 )
 _LOWERED = str.maketrans("⁰¹²³⁴⁵⁶⁷⁸⁹⁺⁻−", "0123456789+--")
+_WORDS = re.compile(r"\\text\{([^{}]*)\}")  # the words behind a quantity in dollar maths
 _RAISED = str.maketrans("0123456789-", "⁰¹²³⁴⁵⁶⁷⁸⁹⁻")
 
 
@@ -39,7 +40,7 @@ def mathematics(node: Node, sheet: str, bars: int = 0) -> str:
         case Number():
             return _upright(_number(node, sheet))
         case Reference():
-            return _name(node)
+            return _over(node, sheet, bars) if node.bracket else _name(node)
         case Unary(sign="√"):
             return f"sqrt({mathematics(_bare(node.operand), sheet, bars)})"
         case Unary():
@@ -48,7 +49,8 @@ def mathematics(node: Node, sheet: str, bars: int = 0) -> str:
             return _binary(node, sheet, bars)
         case Group():
             unit = f" thin {_upright(node.unit.text)}" if node.unit.text else ""
-            return f"({mathematics(node.inner, sheet, bars)}){unit}"
+            inner = mathematics(node.inner, sheet, bars)
+            return f"({inner}){unit}" if unit or bars >= _MOST_BARS or _is_bracket(node, sheet) else inner
         case Call():
             return _call(node, sheet, bars)
         case Range():
@@ -104,12 +106,25 @@ def _upright(text: str) -> str:
     return f"#upright({literal(told(text))})"
 
 
+def _is_bracket(node: Group, sheet: str) -> bool:
+    r"""Whether a group stands in brackets in the sheet: the bar of ``\frac`` groups without any."""
+    return not sheet.startswith(("\\frac", "\\dfrac", "\\tfrac", "\\cfrac"), node.span.start)
+
+
+def _over(node: Reference, sheet: str, bars: int) -> str:
+    """A word over a bracket, such as ``max (V_adc / Vref)``."""
+    inner = " ".join(f"{relation(sign)} {mathematics(part, sheet, bars)}".strip() for sign, part in node.bracket)
+    return f"{_upright(node.prefix)} thin ({inner})"
+
+
 def _name(node: Reference) -> str:
     """A name in italics with its subscript lowered, its prefix before it and its qualifiers behind it in upright words."""
     before, _, behind = node.text.partition(node.word)
+    if node.maths:
+        before, behind = node.prefix, " ".join(_WORDS.findall(node.text))
     if node.letter and node.subscripts:
         core = f"attach(#slanted({literal(told(node.letter))}), b: {_upright(','.join(node.subscripts))})"
     else:
         core = f"#leaning({literal(told(node.word))})"
-    words = [_upright(w.strip()) if w.strip() else "" for w in (before, behind)]
+    words = [_upright(" ".join(w.split())) if w.strip() else "" for w in (before, behind)]
     return " thin ".join(part for part in (words[0], core, words[1]) if part)

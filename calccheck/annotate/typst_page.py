@@ -4,19 +4,22 @@ from __future__ import annotations
 
 from collections.abc import Callable, Iterator, Mapping, Sequence
 from dataclasses import dataclass, field, replace
+from itertools import zip_longest
 
 from calccheck.annotate.pictures import Shown
 from calccheck.annotate.places import Places, marks_in, runs
 from calccheck.annotate.typst_marks import commented, line_number, mark_source, run_source
 from calccheck.annotate.typst_pictures import figure
 from calccheck.annotate.typst_text import literal, shown
-from calccheck.annotate.typst_working import math_row
+from calccheck.annotate.typst_working import inline_formula, math_rows
 from calccheck.document import Block, Inline
 from calccheck.model import Judged
 from calccheck.source import Piece, Sheet
 
 _DEEPEST = 8  # lists and quotes nested deeper keep their words but gain no further indent
 _LONG_CELL = 900  # characters; a row with such a cell may break across pages, any other stands on one
+_LED_UP_TO = ("fence", "math", "table")
+_FEW_LINES = 240  # characters of a paragraph that stays with such a block behind it
 _ONE_PAGE = 22  # lines of a fence that is not parted by a page's end
 _CODE_SIZE, _SMALLEST = 8.2, 6.4  # points
 _CODE_ROOM, _ROOM_BESIDE_MARKS = 545.0, 455.0  # points of size times characters that a fence's line has room for
@@ -46,7 +49,17 @@ class Setting:
 
 def typeset(s: Setting, children: Sequence[Block]) -> str:
     """Blocks one behind the other."""
-    return "".join(_BLOCKS[b.kind](s, b) + _pictures(s, b) for b in children if b.kind in _BLOCKS)
+    found = [b for b in children if b.kind in _BLOCKS]
+    set_out = ""
+    for b, following in zip_longest(found, found[1:]):
+        source = _BLOCKS[b.kind](s, b)
+        leads_on = b.kind == "paragraph" and following is not None and following.kind in _LED_UP_TO and _is_short(b)
+        set_out += (f"#leading-on[{source}]" if leads_on else source) + _pictures(s, b)
+    return set_out
+
+
+def _is_short(b: Block) -> bool:
+    return b.span.end - b.span.start < _FEW_LINES
 
 
 def _pictures(s: Setting, b: Block) -> str:
@@ -112,7 +125,7 @@ def _fence(s: Setting, b: Block) -> str:
 
 
 def _working(s: Setting, b: Block) -> str:
-    rows = "".join(math_row(s.sheet, s.where, s.judged, s.missing, line) for line in b.lines)
+    rows = math_rows(s.sheet, s.where, s.judged, s.missing, b.lines)
     return f"\n\n#working({_whole(b)}, ({rows}))\n\n" if rows else ""
 
 
@@ -183,6 +196,8 @@ def _inline(s: Setting, i: Inline) -> str:
     match i.kind:
         case "text":
             return _runs(s, i.text) if i.text else ""
+        case "math" if i.text and (set_as_read := inline_formula(s.sheet, s.where, s.judged, i.text)):
+            return set_as_read
         case "code" | "math" | "html":
             return f"#code[{_runs(s, i.text)}];" if i.text else ""
         case "emphasis" | "strong" | "strike" if s.deep < _DEEPEST:

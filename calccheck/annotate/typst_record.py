@@ -12,6 +12,7 @@ from calccheck.annotate.record_parts import BASES, digest, figure_cells, nearest
 from calccheck.annotate.sentences import code_pieces
 from calccheck.annotate.typst_pictures import glance, large_drawings
 from calccheck.annotate.typst_text import literal, shown
+from calccheck.annotate.typst_working import formula
 from calccheck.model import Report
 
 
@@ -37,6 +38,13 @@ class Words:
     def told(self, entry: Entry, phrases: Iterable[str]) -> str:
         """Phrases about an entry as a list of sentences in markup."""
         return "".join(f"[{self.tell(t)}]," for t in entry.sentences(phrases))
+
+    def written(self, entry: Entry) -> str:
+        """A claim as written; one in dollar maths as the formula that was read, which is what its markup means."""
+        k = int(entry.key[1:]) - 1
+        members = self.report.claims[k].claim.members if entry.key[0] == "c" and "\\" in entry.text else ()
+        read = formula(self.report.reading.sheet, members)
+        return f"#as-read[{read}];" if read else f"#code[{self.say(entry.text)}];"
 
     def target(self, entry: Entry) -> str:
         """The label of an entry's mark on the page, or else of its row in the record."""
@@ -65,7 +73,7 @@ def _record_row(w: Words, e: Entry) -> str:
     basis = BASES.get(e.basis, e.basis)
     return (
         f"({literal(e.key)}, {_bool(e.key in w.placed)}, {literal(e.kind)}, {literal(e.number)}, {literal(str(e.line))}, "
-        f"[{w.say(e.text)}], [{w.say(e.printed)}], [{w.say(e.computed)}], [{w.say(e.deviation)}], {literal(basis)}, "
+        f"[{w.written(e)}], [{w.say(e.printed)}], [{w.say(e.computed)}], [{w.say(e.deviation)}], {literal(basis)}, "
         f"({told}), ({cautions})),"
     )
 

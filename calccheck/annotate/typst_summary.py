@@ -50,7 +50,7 @@ def _worst(w: Words, rows: Sequence[Entry]) -> str:
 
 def _worst_row(w: Words, e: Entry) -> str:
     kind = "caution" if e.cautions and e.kind not in BESIDE else e.kind
-    words = f"#code[{w.say(e.text)}]" if e.key[0] == "c" else w.say(e.text)
+    words = w.written(e) if e.key[0] == "c" else w.say(e.text)
     told = e.sentences([e.message] if e.message else e.cautions[:1])
     return (
         f"({literal(kind)}, {literal(e.number)}, {w.target(e)}, {literal(str(e.line))}, [{words}], "
@@ -60,7 +60,7 @@ def _worst_row(w: Words, e: Entry) -> str:
 
 def _waived(w: Words) -> str:
     rows = "".join(
-        f"({literal(e.kind)}, {literal(e.number)}, {w.target(e)}, {literal(str(e.line))}, [#code[{w.say(e.text)}]], "
+        f"({literal(e.kind)}, {literal(e.number)}, {w.target(e)}, {literal(str(e.line))}, [{w.written(e)}], "
         f"[{w.say(e.computed)}], [{w.say(e.deviation)}], [{w.say(line)}.], [{state}]),"
         for e, _, line, state in waivers(w.report, w.rows)
     )

@@ -6,12 +6,12 @@ A line whose claim could not be read stands as written, in monospace.
 from __future__ import annotations
 
 import re
-from collections.abc import Iterable
+from collections.abc import Iterable, Mapping, Sequence
 
 from calccheck.annotate.characters import told
 from calccheck.annotate.marks import MARKS
 from calccheck.annotate.places import Places, marks_in, runs
-from calccheck.annotate.record import NOTED
+from calccheck.annotate.record import NOTED, Entry
 from calccheck.annotate.typst_marks import commented, line_number, mark_source, run_source
 from calccheck.annotate.typst_math import mathematics, relation
 from calccheck.annotate.typst_text import literal, shown
@@ -20,14 +20,34 @@ from calccheck.model import Judged, Member
 from calccheck.source import NOWHERE, Piece, Sheet
 
 _RELATION_AT_END = re.compile(r"\s*(?:[=≈<≤>≥]|~=|<=|>=|&)+\s*$")
+_MARKUP = re.compile(r"\s*\\(?:begin|end)\{\w+\*?\}\s*")  # of rows of dollar maths
+_ROW_END = re.compile(r"^\s*\\\\(?:\[[^\]]*\])?\s*$")
 _LONGEST_HEAD = 30  # characters
 _UNBROKEN = 24  # characters
 
 
-def math_row(sheet: Sheet, where: Places, judged: dict[str, Judged], missing: frozenset[str], line: Piece) -> str:
-    """One line as a row of typst's grid ``working``."""
+def math_rows(
+    sheet: Sheet, where: Places, judged: Mapping[str, Judged], missing: frozenset[str], lines: Sequence[Piece]
+) -> str:
+    """Lines as rows of typst's grid ``working``; the marks of lines that hold nothing but markup go to the one before."""
+    kept: list[tuple[Piece, list[Entry]]] = []
+    for line in lines:
+        if not _MARKUP.fullmatch(line.text):
+            kept.append((line, marks_in(where, [line])))
+        elif kept:
+            kept[-1][1].extend(marks_in(where, [line]))
+    return "".join(_math_row(sheet, where, judged, missing, line, marks) for line, marks in kept)
+
+
+def _math_row(
+    sheet: Sheet,
+    where: Places,
+    judged: Mapping[str, Judged],
+    missing: frozenset[str],
+    line: Piece,
+    marks: Sequence[Entry],
+) -> str:
     number = literal(line_number(sheet, line))
-    marks = marks_in(where, [line])
     owners = {run.entry.key: run.entry for run in runs(where, line) if run.entry is not None}
     entry = next(iter(owners.values()), None)
     members = _members_on(line, judged[entry.key]) if entry is not None and entry.key in judged else []
@@ -38,11 +58,23 @@ def math_row(sheet: Sheet, where: Places, judged: dict[str, Judged], missing: fr
     before, behind = _around(line, members, missing)
     to_mend = [e.key for e in marks if e.to_mend]
     head = members[:1] if _is_head(members[0]) else []
-    left = before + _formula(sheet, head)
-    right = commented(to_mend, _formula(sheet, members[len(head) :])) + behind
+    left = before + formula(sheet, head)
+    right = commented(to_mend, formula(sheet, members[len(head) :])) + behind
     if not head and not members[0].relation:
         return f"..wide-row({number}, {literal(entry.kind)}, [{left}{right}], [{beside}]),"
     return f"..formula-row({number}, {literal(entry.kind)}, [{left}], [{right}], [{beside}]),"
+
+
+def inline_formula(sheet: Sheet, where: Places, judged: Mapping[str, Judged], piece: Piece) -> str:
+    """Dollar maths within a line that is one claim as read; nothing where it is not that."""
+    found = runs(where, piece)
+    entry = found[0].entry if len(found) == 1 else None
+    members = judged[entry.key].claim.members if entry is not None and entry.key in judged else ()
+    if entry is None or not members:
+        return ""
+    to_mend = [e.key for e in found[0].ends if e.to_mend]
+    body = commented(to_mend, f"#tint({literal(entry.kind)})[{formula(sheet, members)}];")
+    return body + "".join(mark_source(e) for e in found[0].ends)
 
 
 def _is_head(member: Member) -> bool:
@@ -67,14 +99,14 @@ def _around(line: Piece, members: list[Member], missing: frozenset[str]) -> tupl
     before = line.text[: cut[0]] if cut else ""
     behind = line.text[end[0] :] if end else ""
     before = _RELATION_AT_END.sub("", before).strip() if members[0].relation else before.strip()
-    behind = behind.strip()
+    behind = _ROW_END.sub("", behind).strip()
     return (
         f"{shown(before, missing)}#h(0.4em);" if before else "",
         f"#h(0.8em);#aside[{shown(behind, missing)}];" if behind else "",
     )
 
 
-def _formula(sheet: Sheet, members: Iterable[Member]) -> str:
+def formula(sheet: Sheet, members: Iterable[Member]) -> str:
     """Each member with its relation as one equation, so that a chain breaks before its relations, a short one never within.
 
     The sheet's own characters are the alternative text.
