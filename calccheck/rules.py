@@ -8,7 +8,20 @@ from __future__ import annotations
 from dataclasses import dataclass
 from typing import Literal
 
+from calccheck.source import Span
+
 Severity = Literal["error", "caution", "note"]
+
+
+@dataclass(frozen=True, slots=True)
+class Finding:
+    """Something to be said about the sheet that is not the verdict of a claim. ``kind``: a key of ``RULES``."""
+
+    kind: str
+    severity: Severity
+    message: str
+    span: Span
+    suggestion: str = ""
 
 
 @dataclass(frozen=True, slots=True)
