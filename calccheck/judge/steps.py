@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+from collections.abc import Sequence
 from dataclasses import replace
 from fractions import Fraction
 
@@ -17,14 +18,14 @@ from calccheck.arithmetic import (
     real,
     size,
 )
-from calccheck.formula import Binary, Node, references
+from calccheck.formula import Binary, Node, Number, numbers, references
 from calccheck.judge import say
 from calccheck.judge.aligned import number_by_number
 from calccheck.judge.ground import Ground, decided, subject
 from calccheck.judge.members import Worked, without_unit
 from calccheck.judge.phasors import PrintedPhasor
-from calccheck.judge.rounding import Printed, deviation, equal
-from calccheck.judge.trace import Reach, reach
+from calccheck.judge.rounding import Printed, deviation, equal, printed
+from calccheck.judge.trace import Reach, Traced, reach
 from calccheck.judge.values import judge_phasor, judge_value, largest
 from calccheck.model import Finding, Relation, Step
 from calccheck.printing import shown
@@ -154,13 +155,17 @@ def _bare_fits(w: Worked, relation: Relation, ground: Ground) -> Step:
     assert w.amount is not None
     if isinstance(w.printed, Printed) and not isinstance(ground.truth.value, complex):
         return judge_value(w, w.printed, relation, ground)
-    distance = size(w.amount.value - ground.truth.value)
-    if distance <= ground.ledger.settings.carry * size(
-        ground.truth.value
-    ):  # its numbers cannot be traced without units
+    traced = [Traced(n, _bare_room(n), True, several=True) for n in numbers(w.node)]
+    if _reached(w, traced, {}, ground).holds(ground.truth.value):
         ground.carried = w.amount
         return decided(w, "agrees")
     return decided(w, "differs", f"it comes to {shown(w.amount)}, not {shown(ground.truth)}")
+
+
+def _bare_room(n: Number) -> Real:
+    """How far a number without a unit may be from what it stands for, which cannot be traced: a short whole one counts."""
+    p = printed(n)
+    return 0 if p is None or (n.digits.as_tuple().exponent == 0 and p.figures < 3) else p.half
 
 
 # --- formulas and substitutions -------------------------------------------------------------------------------------
@@ -192,6 +197,14 @@ def _spreads(w: Worked, ground: Ground) -> dict[str, Real]:
     return found
 
 
+def _reached(w: Worked, traced: Sequence[Traced], spreads: dict[str, Real], ground: Ground) -> Reach:
+    assert w.amount is not None
+    try:
+        return reach(w.node, ground.names.amount, traced, spreads)
+    except (Doubt, DimensionFault):
+        return Reach(w.amount.value, *(real(w.amount.value),) * 2)
+
+
 def _substitution(w: Worked, ground: Ground) -> Step:
     """A member with printed values in it: it reaches the truth within the rounding of its numbers."""
     assert w.amount is not None
@@ -201,10 +214,7 @@ def _substitution(w: Worked, ground: Ground) -> Step:
     traced = ground.traced(w)
     ground.say_untraced(traced)
     truth = ground.truth.value
-    try:
-        reached = reach(w.node, ground.names.amount, traced, _spreads(w, ground))
-    except (Doubt, DimensionFault):
-        reached = Reach(w.amount.value, *(real(w.amount.value),) * 2)
+    reached = _reached(w, traced, _spreads(w, ground), ground)
     if reached.holds(truth):
         ground.carried = w.amount
         return decided(w, "agrees")
