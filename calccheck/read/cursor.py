@@ -49,7 +49,8 @@ class Cursor:
 
     def is_operator(self, *texts: str) -> bool:
         """Whether the next token is one of these operators."""
-        return self.now.kind == "operator" and self.now.text in texts
+        t = self.seen[self.at]
+        return t.kind == "operator" and t.text in texts
 
     def close(self, sign: str, opened: Token) -> None:
         """Take the closing sign."""

@@ -44,6 +44,7 @@ TALLEST = 220  # levels of operations, which are worked out one within the other
 
 _BINDING = {"+": 10, "-": 10, "×": 20, "·": 20, "÷": 20, "∥": 30, "^": 50, "∠": 45}
 _JUXTAPOSED = 40
+_NO_FACTORS = RESERVED - FUNCTIONS - {"e"}  # words behind which no product goes on
 _SIGN = 25  # −R1 ∥ R2 is −(R1 ∥ R2)
 
 
@@ -192,7 +193,7 @@ def power_behind(c: Cursor) -> Node:
 def juxtaposed(c: Cursor, left: Node, start: int, above: int) -> Node | None:
     """``2 R1``, ``2(R1 + R2)``: a product without a sign."""
     t = c.now
-    if t.kind == "word" and t.text in RESERVED - FUNCTIONS - {"e"}:
+    if t.kind == "word" and t.text in _NO_FACTORS:
         return None
     if above >= _JUXTAPOSED:
         return None

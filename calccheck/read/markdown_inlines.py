@@ -158,6 +158,8 @@ def _leaf(token: Token, content: Piece, start: int, end: int) -> Inline:
 def _span(content: Piece, start: int, end: int) -> Span:
     """The place of ``content[start:end]``; a line's break reaches from the end of the text before it to the text behind."""
     at = content.at
+    if isinstance(at, range):
+        return Span(at[start], at[end])
     first = at[start] if at[start] != NOWHERE or start == 0 else at[start - 1] + 1
     last = at[end - 1] + 1 if at[end - 1] != NOWHERE else at[end]
     return Span(first, last) if NOWHERE < first <= last else content.span(start, end)

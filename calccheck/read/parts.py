@@ -60,7 +60,9 @@ def _alternating(e: Element, part: PartLine, value: Value) -> Element:
             raise Doubt(f"a frequency belongs to a source; {part.name} is none", part.frequency.span())
         return e
     frequency = part.hertz or (UNSTATED if value.alternating else None)
-    if frequency is None or e.value is None:
+    if frequency is None:
+        return e
+    if e.value is None:
         return replace(e, frequency=frequency)
     return replace(e, frequency=frequency, value=None, phasor=complex(e.value))
 

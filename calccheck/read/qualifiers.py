@@ -5,7 +5,7 @@ from __future__ import annotations
 from dataclasses import replace
 from fractions import Fraction
 
-from calccheck.formula import Change, Node, Qualifiers, Reference
+from calccheck.formula import NO_QUALIFIERS, Change, Node, Qualifiers, Reference
 from calccheck.read.cursor import Cursor
 from calccheck.read.numbers_with_units import hertz, number_at
 from calccheck.read.tokens import Token
@@ -15,7 +15,7 @@ from calccheck.units import UNITS
 
 def qualifiers(c: Cursor) -> Qualifiers:
     """``due to Vb and Ia``, ``without RL``, ``with RL as 10 kΩ``, ``in case hot``, ``at 50 Hz``, ``of bridge``."""
-    found = Qualifiers()
+    found = NO_QUALIFIERS
     while c.now.kind == "word" and c.now.text in QUALIFIER_WORDS:
         t = c.take()
         if t.text == "due":

@@ -111,8 +111,8 @@ def _given_pieces(page: tuple[Block, ...]) -> list[Piece]:
         if block.kind == "fence" and _word(block) == "circuit":
             found += given_lines(block)
         elif block.kind == "fence" and _word(block) == "working":
-            lines = [line.part(0, len(line.text.partition("#")[0])).strip() for line in block.lines]
-            found += [line for line in lines if line.text.startswith("given ")]
+            stated = [line for line in block.lines if line.text.lstrip().startswith("given ")]
+            found += [line.part(0, len(line.text.partition("#")[0])).strip() for line in stated]
         elif block.inlines:
             codes = [i.text for i in inlines(block.inlines) if i.kind == "code" and i.text is not None]
             found += [c for c in codes if c.text.lstrip().startswith("given ")]

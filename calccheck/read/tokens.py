@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 import re
-from typing import Literal, NamedTuple, cast
+from typing import Literal, NamedTuple, get_args
 
 from calccheck.arithmetic import Doubt
 from calccheck.source import Piece
@@ -27,6 +27,7 @@ _TOKEN = re.compile(
     |(?P<operator>//|~=|<=|>=|\.\.\.|[-+×·*/÷^√∥()\[\]|=≈<≤>≥,±∠…°%])""",
     re.VERBOSE,
 )
+_KINDS: dict[str | None, TokenKind | None] = {"space": None, **{kind: kind for kind in get_args(TokenKind)}}
 _EXPONENT = re.compile(_NUMBER)  # behind ^ a number ends before a × 10³, which multiplies the power
 _TEN = re.compile(r"\s?[×*]\s?10")
 _SAME = {"//": "∥", "*": "×", "/": "÷", "~=": "≈", "<=": "≤", ">=": "≥", "...": "…", "[": "(", "]": ")"}
@@ -55,22 +56,19 @@ def tokens(piece: Piece) -> list[Token]:
         m = _TOKEN.match(text, at)
         if m is None:
             raise _strange(piece, text, at)
-        kind = cast(TokenKind, m.lastgroup)
+        kind, word = _KINDS[m.lastgroup], m[0]
         if kind == "number" and found and found[-1].text == "^":
             m = _EXPONENT.match(text, at) or m
-        start, at, word = at, m.end(), m[0]
-        match kind:
-            case "number":
-                _refuse_comma_and_point(piece, text, m)
-                word = _plain(word)
-            case "imaginary":
-                _refuse_comma_and_point(piece, text, m)
-                word = _plain(word[1:])
-            case "operator":
-                word = _SAME.get(word, word)
-            case "superscript":
-                word = word.translate(_UP)
-        if m.lastgroup != "space":
+            word = m[0]
+        start, at = at, m.end()
+        if kind == "operator":
+            word = _SAME.get(word, word)
+        elif kind == "superscript":
+            word = word.translate(_UP)
+        elif kind in ("number", "imaginary"):
+            _refuse_comma_and_point(piece, text, m)
+            word = _plain(word.removeprefix("j"))
+        if kind:
             found.append(Token(kind, word, start, at))
     found.append(Token("end", "", at, at))
     return found
