@@ -52,7 +52,7 @@ RULES: dict[str, Rule] = {
     "waiver": Rule("error", "A waiver that cannot be read, has lapsed, or waives nothing", "sheet-language.md#waivers"),
     "waiver-idle": Rule("caution", "A waiver whose claim stands without it", "sheet-language.md#waivers"),
     "limit": Rule("error", "More than the program reads", "limits.md#sizes"),
-    "fence": Rule("error", "A fence is not closed", "sheet-language.md#a-sheet"),
+    "fence": Rule("error", "A fence is not closed, or called almost as one that is read", "sheet-language.md#a-sheet"),
     "signature": Rule("error", "A signature cannot be read or is void", "reviewing.md#signatures"),
     "reference": Rule(
         "error", "A value from another sheet does not stand there", "reviewing.md#values-from-other-sheets"

@@ -18,7 +18,7 @@ from calccheck.arithmetic import (
     real,
     size,
 )
-from calccheck.formula import Binary, Node, Number, numbers, references
+from calccheck.formula import Binary, Node, Number, references
 from calccheck.judge import say
 from calccheck.judge.aligned import number_by_number
 from calccheck.judge.ground import Ground, decided, subject
@@ -155,7 +155,7 @@ def _bare_fits(w: Worked, relation: Relation, ground: Ground) -> Step:
     assert w.amount is not None
     if isinstance(w.printed, Printed) and not isinstance(ground.truth.value, complex):
         return judge_value(w, w.printed, relation, ground)
-    traced = [Traced(n, _bare_room(n), True, several=True) for n in numbers(w.node)]
+    traced = [Traced(n, _bare_room(n), True, several=True) for n in w.numbers]
     if _reached(w, traced, {}, ground).holds(ground.truth.value):
         ground.carried = w.amount
         return decided(w, "agrees")

@@ -33,8 +33,9 @@ def read_sheet(sheet: Sheet, repository: Settings) -> Reading:
     stated = title.pop("signatures", None) is not None
     fences = [b for b in blocks(page) if b.kind == "fence"]
     circuit_fences = [f for f in fences if _word(f) == "circuit"]
+    misnamed = _misnamed(fences)
     is_calc = bool(circuit_fences) or any(_word(f) == "working" for f in fences) or "sheet" in title
-    if not is_calc:
+    if not (is_calc or misnamed):
         return Reading(sheet, page, False, title, settings, (), (), ())
     givens = _givens(page)
     circuits: list[Circuit] = []
@@ -44,10 +45,32 @@ def read_sheet(sheet: Sheet, repository: Settings) -> Reading:
         findings = (*findings, *reading.findings)
     found = read_claims(page, _names(circuits), [given_lines(f) for f in circuit_fences])
     signatures, faults = read_signatures(front, stated) if front else ((), ())
-    every = sorted((*findings, *faults, *_same_names(circuits, sheet), *found.findings), key=lambda f: f.span.start)
+    told = (*findings, *faults, *misnamed, *_same_names(circuits, sheet), *found.findings)
+    every = sorted(told, key=lambda f: f.span.start)
     return Reading(
         sheet, page, True, title, settings, tuple(circuits), tuple(found.claims), tuple(every), found.not_read, signatures
     )  # fmt: skip
+
+
+def _misnamed(fences: Sequence[Block]) -> list[Finding]:
+    """Fences called almost circuit or working: what stands in them would be passed over in silence."""
+    found = []
+    for word, fence in ((_word(f), f) for f in fences):
+        plain = re.sub(r"[^a-z]", "", word.lower())
+        near = [w for w in ("circuit", "working") if word != w and plain[:1] == w[0] and _alike(plain, w)]
+        if near:
+            message = f"a fence called {word} is not read; is {near[0]} meant?"
+            found.append(Finding("fence", RULES["fence"].severity, message, fence.span, f"```{near[0]}"))
+    return found
+
+
+def _alike(word: str, wanted: str) -> bool:
+    """Whether a word is another but for a letter or two."""
+    if word in (wanted, wanted + "s") or abs(len(word) - len(wanted)) > 1:
+        return word in (wanted, wanted + "s")
+    from difflib import SequenceMatcher  # late: few fences are called so
+
+    return SequenceMatcher(None, word, wanted).ratio() > 0.84
 
 
 _MAY_BE_A_SHEET = re.compile(r"^(?:[ \t>]*(?:`{3,}|~{3,})\s*(?:circuit|working)\b|sheet:)", re.MULTILINE)
