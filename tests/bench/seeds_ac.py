@@ -51,6 +51,10 @@ class AcSeed:
             worst = max(worst, distance)
         return worst
 
+    def place(self):
+        """The unit of the last place of the first figure."""
+        return hand_ac.texts_of(self.truth if self.texts else self.value, self.form, self.figures, self.unit)[2][0]
+
 
 class AcBench:
     """One circuit to draw seeds from."""

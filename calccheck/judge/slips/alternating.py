@@ -122,7 +122,7 @@ def _without_turn(node: Node, names: Names) -> Iterator[Rewriting]:
     if any(r.word == "π" for r in references(node)):
         half = Number(Decimal("0.5"), node.span)
         yield everywhere(node, lambda n: half if _is_pi(n) else None), told[0], told[1]
-    elif isinstance(node, Reference) and dimension_of(node, names) == HERTZ:
+    elif isinstance(node, Reference | Number) and dimension_of(node, names) == HERTZ:
         turn = Number(Decimal(_TURN), node.span)
         yield Group(Binary("÷", node, turn, node.span), node.span), *told
         yield Group(Binary("×", node, turn, node.span), node.span), told[1], told[0]

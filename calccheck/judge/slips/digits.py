@@ -16,8 +16,13 @@ _TIMES = {3: "a thousand", 6: "a million", 9: "10⁹", 1: "ten", 2: "a hundred"}
 
 
 def sign(case: Case) -> Iterator[Guess]:
-    """The negative of the truth; of an angle half a turn, of a phasor by its parts the real one alone too."""
+    """The negative of the truth; of an angle half a turn, of a phasor by its parts the real one alone too.
+
+    Of a reactive power or an imaginary part that is another slip: the conjugate.
+    """
     what = "the reference direction or polarity turned round"
+    if case.which == "im" or (case.key is not None and case.key.letter == "Q"):
+        return
     if case.which == "arg":
         yield Guess(what, case.truth + math.pi)
         return

@@ -5,6 +5,7 @@ from __future__ import annotations
 import math
 from collections.abc import Iterator
 from dataclasses import replace
+from decimal import Decimal
 from fractions import Fraction
 from functools import lru_cache
 
@@ -112,7 +113,8 @@ def _by_source(case: Case) -> Sums:
     shares = [again.value(Guess("", terms=((1, *part),))) for part in parts.values()]
     if None not in shares:
         a = [float(size(x)) for x in shares if x is not None]
-        yield "the magnitudes of the parts of each source added without their angles", sum(a)
+        how = "in place of their squares" if case.which == "rms" else "without their angles"
+        yield f"the magnitudes of the parts of each source added {how}", sum(a)
         if len(a) == 2:
             yield "the magnitudes of the two parts taken from each other without their angles", abs(a[0] - a[1])
 
@@ -144,8 +146,12 @@ def _plain(e: Element, frequency: Fraction, sign: int) -> Element:
 
 
 def _without_angles(node: Node, names: Names) -> Iterator[Rewriting]:
-    """``√(a² + b²)`` made a + b, and ``|a + b|`` made |a| + |b|."""
+    """``√(a² + b²)`` made a + b, and ``|a + b|`` made |a| + |b|; a + b mended to √(a² + b²)."""
     added = "magnitudes added without their angles"
+    if isinstance(node, Binary) and node.operator == "+":
+        two = Number(Decimal(2), node.span)
+        a, b = (Binary("^", Group(x, node.span), two, node.span) for x in (node.left, node.right))
+        yield Unary("√", Group(Binary("+", a, b, node.span), node.span), node.span), "", added
     inside = node.operand if isinstance(node, Unary) and node.sign == "√" else None
     if isinstance(node, Call) and node.function in ("sqrt", "abs"):
         inside = node.arguments[0]

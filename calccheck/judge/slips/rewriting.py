@@ -12,7 +12,7 @@ from calccheck.judge.rounding import equal
 from calccheck.judge.slips.case import Case, Guess
 from calccheck.units import Dimension
 
-Rewriting = tuple[Node, str, str]  # the rewritten expression, the slip that writes it, the slip that it mends
+Rewriting = tuple[Node, str, str]  # the rewritten expression, the slip that writes it (or none), the slip that it mends
 Rule = Callable[[Node, Names], Iterator[Rewriting]]
 
 
@@ -30,9 +30,9 @@ def in_formulas(case: Case, rule: Rule) -> Iterator[Guess]:
             if value.dimension != case.miss.truth.dimension:
                 continue
             shown = value.value if value.level else case.log(value.value)
-            if w not in wrong:
+            if w not in wrong and made:
                 yield Guess(f"{made} in the working", shown)
-            elif _right(w.sort, shown, case):
+            elif w in wrong and _right(w.sort, shown, case):
                 yield Guess(f"{mended} in {w.member.text}", certain=True)
 
 
