@@ -5,17 +5,22 @@ The parser is the standard library's; contrast is worked by the formula of WCAG 
 
 from __future__ import annotations
 
+import os
 import re
+import subprocess
+import sys
 from base64 import b64encode
 from dataclasses import dataclass, field, replace
 from datetime import date
 from hashlib import sha256
 from html.parser import HTMLParser
 from itertools import pairwise
+from pathlib import Path
 
 import pytest
 from annotate_fixture import EXAMPLE, HOSTILE, example, hostile, report_of, said
 
+from calccheck import check_text
 from calccheck.annotate.marks import MARKS
 from calccheck.annotate.record import LIMITS, entries
 from calccheck.annotate.to_html import to_html
@@ -288,6 +293,35 @@ def test_same_report_same_page():
     assert HOSTILE.splitlines()[1] not in to_html(hostile())  # never unescaped
 
 
+@pytest.mark.parametrize(("seed", "zone"), [("7", "Asia/Tokyo"), ("0", "America/St_Johns")])
+def test_same_sheet_same_bytes_in_another_process_and_folder(tmp_path, seed, zone):
+    """A sheet read and judged anew there, under another seed for sets and dictionaries, in another time zone and language."""
+    whole = Path(__file__).parent.parent / "sheets"
+    (sheet,) = whole.glob("for-review/TS-111*.md")
+    (tmp_path / "elsewhere").mkdir()
+    here = to_html(check_text("TS-111.md", sheet.read_text("utf-8")))
+    code = (
+        "import sys; from calccheck import check_text; from calccheck.annotate.to_html import to_html; "
+        "sheet = open(sys.argv[1], encoding='utf-8').read(); "
+        "sys.stdout.buffer.write(to_html(check_text('TS-111.md', sheet)).encode())"
+    )
+    environment = {**os.environ, "PYTHONHASHSEED": seed, "TZ": zone, "LC_ALL": "C", "TMPDIR": str(tmp_path)}
+    ran = subprocess.run(
+        [sys.executable, "-c", code, str(sheet)],
+        cwd=tmp_path / "elsewhere", env=environment, capture_output=True, check=True,
+    )  # fmt: skip
+    assert ran.stdout == here.encode()
+
+
+def test_the_day_of_the_check_is_told_only_where_something_hangs_on_it():
+    """A sheet without waivers is the same page on every day; one whose waiver runs out says by which day it was judged."""
+    sheets = Path(__file__).parent.parent / "sheets"
+    plain, waived = ((next(sheets.glob(f"{name}*.md"))).read_text("utf-8") for name in ("TS-101", "TS-107"))
+    one, other = (Settings(on=date(2026, month, 4)) for month in (1, 7))
+    assert to_html(check_text("a.md", plain, one)) == to_html(check_text("a.md", plain, other))
+    assert "days judged on 2026-07-04" in to_html(check_text("a.md", waived, other))
+
+
 def test_settings_and_signatures_stand_in_the_record():
     report = example()
     holds = Signature("originator", "A <b>", date(2026, 3, 4), 1, "0", {}, Span(0, 3))
@@ -295,6 +329,6 @@ def test_settings_and_signatures_stand_in_the_record():
     void = Finding("signature", "error", "the checker's signature is void", doubted.span)
     reading = replace(report.reading, signatures=(holds, doubted), settings=Settings(on=date(2026, 4, 1)))
     shown = flat(parsed(to_html(replace(report, reading=reading, findings=(void,)))).text())
-    assert "carry 0.5 %, approx 5 %, phasors rms, derate 1, preferred none, days judged on 2026-04-01" in shown
+    assert "carry 0.5 %, approx 5 %, phasors rms, derate 1, preferred none." in shown
     assert "originatorA <b>2026-03-04holds" in shown
     assert "checkerC D2026-03-05see the findings" in shown

@@ -32,7 +32,7 @@ def record(report: Report, rows: Sequence[Entry], placed: Collection[str]) -> st
     return (
         '<section aria-labelledby="record">\n<h2 id="record">Check record</h2>\n'
         f'<p class="soft">SHA-256 of the sheet as checked: <code>{digest(report)}</code><br>\n'
-        f"Judged with {said(settings_line(report.reading.settings))}.{_nearest(report)}</p>\n"
+        f"Judged with {said(settings_line(report))}.{_nearest(report)}</p>\n"
         + part("Claims", ("Mark", "Line", "As written", "Printed", "Recomputed", "Deviation", "Basis"), claims)
         + part("Findings", ("Mark", "Line", "Finding"), findings)
         + _glance(report, rows)

@@ -7,7 +7,7 @@ from hashlib import sha256
 
 from calccheck.annotate.marks import MARKS
 from calccheck.annotate.record import Entry
-from calccheck.model import ROLES, CircuitFigures, Claim, Report, Settings
+from calccheck.model import ROLES, CircuitFigures, Claim, Report
 from calccheck.printing import shown
 from calccheck.units import digits
 
@@ -107,8 +107,9 @@ def _figure(value: float | None) -> str:
     return f"{mantissa} × 10{str(int(exponent)).translate(_SUPERSCRIPT)}"
 
 
-def settings_line(settings: Settings) -> str:
-    """The settings that the sheet was judged with, as one line."""
+def settings_line(report: Report) -> str:
+    """The settings that the sheet was judged with, as one line; the day of the check where a waiver runs out on a day."""
+    settings = report.reading.settings
     words = [
         f"carry {digits(100 * settings.carry, 3)} %",
         f"approx {digits(100 * settings.approx, 3)} %",
@@ -121,7 +122,7 @@ def settings_line(settings: Settings) -> str:
     if settings.temperature:
         low, high = (digits(x, 4).replace("-", "−") for x in settings.temperature)
         words.append(f"temperature {low} °C to {high} °C")
-    if settings.on:
+    if settings.on and any(j.claim.waiver is not None and j.claim.waiver.until for j in report.claims):
         words.append(f"days judged on {settings.on.isoformat()}")
     return ", ".join(words)
 

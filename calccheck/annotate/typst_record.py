@@ -58,7 +58,7 @@ def record(w: Words) -> str:
     """All entries, the superposition at a glance and the circuits' figures."""
     claims = "".join(_record_row(w, e) for e in w.rows if e.key[0] == "c")
     findings = "".join(_finding_row(w, e) for e in w.rows if e.key[0] == "f")
-    judged = ". ".join(t for t in (settings_line(w.report.reading.settings), nearest_rating(w.report)) if t)
+    judged = ". ".join(t for t in (settings_line(w.report), nearest_rating(w.report)) if t)
     return (
         f"#record-head({literal(digest(w.report))}, [{w.say(judged)}])\n"
         f"#record-claims(({claims}))\n#record-findings(({findings}))\n"
