@@ -83,6 +83,24 @@ def test_tables_of_keys_are_complete() -> None:
     assert {s.key for s in SLIPS} <= set(re.findall(r"^\| `([\w-]+)` \|", TEXTS["docs/slips.md"], re.MULTILINE))
 
 
+def test_the_sizes_stated_are_those_of_the_program() -> None:
+    from calccheck.annotate.pictures import MOST_PARTS
+    from calccheck.command.history import LOOK_BACK
+    from calccheck.read import expression, markdown_inlines, part_lines, sheet, titleblock, tokens
+    from calccheck.solve.superposition import EXACT_NODES, EXACT_NODES_AC
+
+    stated = (
+        f"a sheet | {sheet.LONGEST_SHEET:,} characters", f"a line | {sheet.LONGEST_LINE:,} characters",
+        f"front matter | {titleblock.LARGEST // 1024} K characters, nested {titleblock.DEEPEST} deep",
+        f"in one another | {markdown_inlines.DEEPEST} |", f"circuit block | {part_lines.LONGEST_LINE} characters",
+        f"a statement | {tokens.LONGEST:,} characters", f"a chain | {expression.LONGEST_CHAIN} members",
+        f"{expression.LONGEST_SUM} operations in a row, {expression.TALLEST} within one another, brackets {expression.DEEPEST} deep",
+        f"exact up to {EXACT_NODES} nodes at DC and {EXACT_NODES_AC} at AC", f"in a drawing | {MOST_PARTS} |",
+        f"the last {LOOK_BACK},",
+    )  # fmt: skip
+    assert [s for s in stated if s not in TEXTS["docs/limits.md"]] == []
+
+
 # --- commands -------------------------------------------------------------------------------------------------------
 
 
