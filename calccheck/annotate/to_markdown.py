@@ -117,8 +117,14 @@ def claim_words(entry: Entry) -> str:
     if entry.computed and not said:
         said.append(f"recomputed {entry.computed}")
     said += [f"{MARKS['caution'].label}: {c}" for c in entry.cautions]
+    said = [_begun(s) if k else s for k, s in enumerate(said)]
     sentences = [s if s.endswith((".", "!", "?")) or s == said[-1] else f"{s}." for s in said if s]
     return one_line(f"{MARKS[entry.kind].label}{': ' if sentences else ''}{' '.join(sentences)}")
+
+
+def _begun(said: str) -> str:
+    """A slip as a sentence of its own; what begins with a name keeps its letter."""
+    return said[0].upper() + said[1:] if said.startswith("consistent with ") else said
 
 
 def _closing(report: Report, findings: tuple[Entry, ...]) -> list[str]:
