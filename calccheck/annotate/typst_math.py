@@ -6,10 +6,9 @@ root or exponent gives way to the bar, the root sign or the raising.
 
 from __future__ import annotations
 
-import re
-from decimal import Decimal, InvalidOperation
-
 from calccheck.annotate.characters import told
+from calccheck.annotate.maths_lines import around_name, is_bracket
+from calccheck.annotate.numbers_written import number_written
 from calccheck.annotate.typst_text import literal
 from calccheck.formula import Binary, Call, Group, Node, Number, Range, Reference, Unary
 
@@ -17,13 +16,6 @@ _RELATIONS = {"=": "=", "≈": "approx", "<": "<", "≤": "lt.eq", ">": ">", "�
 _OPERATORS = {"+": "+", "-": "minus", "×": "times", "∥": "parallel", "·": "thin"}
 _SIGNS = {"+": "#positive;", "-": "#negative;"}  # no operators: nothing stands before them to be added to
 _MOST_BARS = 2  # a fraction within a fraction within a fraction is set with a slash
-_NUMBER = re.compile(
-    r"(?P<digits>(?:\d[\d\u00a0\u2009\u202f]*)?\.?\d*)"
-    r"(?:[eE](?P<e>[-+−]?\d+)|\s*[×·*]\s*10(?:(?P<up>[⁺⁻]?[⁰¹²³⁴-⁹]+)|\^\(?(?P<hat>[-+−]?\d+)\)?))?"
-)
-_LOWERED = str.maketrans("⁰¹²³⁴⁵⁶⁷⁸⁹⁺⁻−", "0123456789+--")
-_WORDS = re.compile(r"\\text\{([^{}]*)\}")  # the words behind a quantity in dollar maths
-_RAISED = str.maketrans("0123456789-", "⁰¹²³⁴⁵⁶⁷⁸⁹⁻")
 
 
 def relation(sign: str) -> str:
@@ -38,7 +30,7 @@ def mathematics(node: Node, sheet: str, bars: int = 0) -> str:
     """
     match node:
         case Number():
-            return _upright(_number(node, sheet))
+            return _upright(number_written(node, sheet))
         case Reference():
             return _over(node, sheet, bars) if node.bracket else _name(node)
         case Unary(sign="√"):
@@ -50,7 +42,7 @@ def mathematics(node: Node, sheet: str, bars: int = 0) -> str:
         case Group():
             unit = f" thin {_upright(node.unit.text)}" if node.unit.text else ""
             inner = mathematics(node.inner, sheet, bars)
-            return f"({inner}){unit}" if unit or bars >= _MOST_BARS or _is_bracket(node, sheet) else inner
+            return f"({inner}){unit}" if unit or bars >= _MOST_BARS or is_bracket(node, sheet) else inner
         case Call():
             return _call(node, sheet, bars)
         case Range():
@@ -78,25 +70,6 @@ def _call(node: Call, sheet: str, bars: int) -> str:
     return f"op({literal(node.function)}) ({inner})"
 
 
-def _number(node: Number, sheet: str) -> str:
-    """Digits as written, where the sheet has them at the number's place, and the unit."""
-    m = _NUMBER.match(sheet, node.span.start, node.span.end)
-    digits = (_as_written(m, node.digits) if m else None) or str(node.digits)
-    return digits + ("" if node.unit.text in ("", "°") else " ") + node.unit.text
-
-
-def _as_written(m: re.Match[str], value: Decimal) -> str | None:
-    """The matched digits with the exponent raised, if that is the number indeed."""
-    power = (m["e"] or m["up"] or m["hat"] or "").translate(_LOWERED)
-    try:
-        plain = Decimal(re.sub(r"[\u00a0\u2009\u202f]", "", m["digits"])).scaleb(int(power or 0))
-    except InvalidOperation:
-        return None
-    if plain != value:
-        return None
-    return m["digits"] + (f" × 10{str(int(power)).translate(_RAISED)}" if power else "")
-
-
 def _bare(node: Node) -> Node:
     """The inside of a plain bracket."""
     return node.inner if isinstance(node, Group) and not node.unit.text else node
@@ -104,11 +77,6 @@ def _bare(node: Node) -> Node:
 
 def _upright(text: str) -> str:
     return f"#upright({literal(told(text))})"
-
-
-def _is_bracket(node: Group, sheet: str) -> bool:
-    r"""Whether a group stands in brackets in the sheet: the bar of ``\frac`` groups without any."""
-    return not sheet.startswith(("\\frac", "\\dfrac", "\\tfrac", "\\cfrac"), node.span.start)
 
 
 def _over(node: Reference, sheet: str, bars: int) -> str:
@@ -119,12 +87,10 @@ def _over(node: Reference, sheet: str, bars: int) -> str:
 
 def _name(node: Reference) -> str:
     """A name in italics with its subscript lowered, its prefix before it and its qualifiers behind it in upright words."""
-    before, _, behind = node.text.partition(node.word)
-    if node.maths:
-        before, behind = node.prefix, " ".join(_WORDS.findall(node.text))
+    before, behind = around_name(node)
     if node.letter and node.subscripts:
         core = f"attach(#slanted({literal(told(node.letter))}), b: {_upright(','.join(node.subscripts))})"
     else:
         core = f"#leaning({literal(told(node.word))})"
-    words = [_upright(" ".join(w.split())) if w.strip() else "" for w in (before, behind)]
+    words = [_upright(w) if w else "" for w in (before, behind)]
     return " thin ".join(part for part in (words[0], core, words[1]) if part)

@@ -10,7 +10,8 @@ from collections.abc import Iterable, Mapping, Sequence
 
 from calccheck.annotate.characters import told
 from calccheck.annotate.marks import MARKS
-from calccheck.annotate.places import Places, marks_in, runs
+from calccheck.annotate.maths_lines import members_on, one_claim, places_of, without_markup
+from calccheck.annotate.places import Places, runs
 from calccheck.annotate.record import NOTED, Entry
 from calccheck.annotate.typst_marks import commented, line_number, mark_source, run_source
 from calccheck.annotate.typst_math import mathematics, relation
@@ -20,7 +21,6 @@ from calccheck.model import Judged, Member
 from calccheck.source import NOWHERE, Piece, Sheet
 
 _RELATION_AT_END = re.compile(r"\s*(?:[=≈<≤>≥]|~=|<=|>=|&)+\s*$")
-_MARKUP = re.compile(r"\s*\\(?:begin|end)\{\w+\*?\}\s*")  # of rows of dollar maths
 _ROW_END = re.compile(r"^\s*\\\\(?:\[[^\]]*\])?\s*$")
 _LONGEST_HEAD = 30  # characters
 _UNBROKEN = 24  # characters
@@ -29,14 +29,10 @@ _UNBROKEN = 24  # characters
 def math_rows(
     sheet: Sheet, where: Places, judged: Mapping[str, Judged], missing: frozenset[str], lines: Sequence[Piece]
 ) -> str:
-    """Lines as rows of typst's grid ``working``; the marks of lines that hold nothing but markup go to the one before."""
-    kept: list[tuple[Piece, list[Entry]]] = []
-    for line in lines:
-        if not _MARKUP.fullmatch(line.text):
-            kept.append((line, marks_in(where, [line])))
-        elif kept:
-            kept[-1][1].extend(marks_in(where, [line]))
-    return "".join(_math_row(sheet, where, judged, missing, line, marks) for line, marks in kept)
+    """Lines as rows of typst's grid ``working``."""
+    return "".join(
+        _math_row(sheet, where, judged, missing, line, marks) for line, marks in without_markup(where, lines)
+    )
 
 
 def _math_row(
@@ -50,7 +46,7 @@ def _math_row(
     number = literal(line_number(sheet, line))
     owners = {run.entry.key: run.entry for run in runs(where, line) if run.entry is not None}
     entry = next(iter(owners.values()), None)
-    members = _members_on(line, judged[entry.key]) if entry is not None and entry.key in judged else []
+    members = members_on(line, judged[entry.key]) if entry is not None and entry.key in judged else []
     if entry is None or len(owners) > 1 or not members:
         body = "".join(run_source(run, shown(run.text, missing)) for run in runs(where, line))
         return f'..wide-row({number}, "", [#code[{body}]], []),'
@@ -67,29 +63,17 @@ def _math_row(
 
 def inline_formula(sheet: Sheet, where: Places, judged: Mapping[str, Judged], piece: Piece) -> str:
     """Dollar maths within a line that is one claim as read; nothing where it is not that."""
-    found = runs(where, piece)
-    entry = found[0].entry if len(found) == 1 else None
-    members = judged[entry.key].claim.members if entry is not None and entry.key in judged else ()
-    if entry is None or not members:
+    read = one_claim(where, judged, piece)
+    if read is None:
         return ""
-    to_mend = [e.key for e in found[0].ends if e.to_mend]
-    body = commented(to_mend, f"#tint({literal(entry.kind)})[{formula(sheet, members)}];")
-    return body + "".join(mark_source(e) for e in found[0].ends)
+    entry, members, ends = read
+    body = commented([e.key for e in ends if e.to_mend], f"#tint({literal(entry.kind)})[{formula(sheet, members)}];")
+    return body + "".join(mark_source(e) for e in ends)
 
 
 def _is_head(member: Member) -> bool:
     """Whether a member stands left of the column of relations: a short name that begins its chain."""
     return not member.relation and isinstance(member.node, Reference) and len(member.text) <= _LONGEST_HEAD
-
-
-def _places(line: Piece) -> list[int]:
-    return [at for at in line.at[: len(line.text)] if at != NOWHERE]
-
-
-def _members_on(line: Piece, judged: Judged) -> list[Member]:
-    """The members of a claim that begin on a line."""
-    on = _places(line)
-    return [m for m in judged.claim.members if on and on[0] <= m.span.start <= on[-1]]
 
 
 def _around(line: Piece, members: list[Member], missing: frozenset[str]) -> tuple[str, str]:
@@ -122,7 +106,7 @@ def _equation(sheet: Sheet, m: Member) -> str:
 
 def _step_mark(line: Piece, judged: Judged) -> str:
     """A mark at a step that fails above the line where its chain's own mark stands."""
-    on = _places(line)
+    on = places_of(line)
     for step in judged.steps:
         if step.verdict in NOTED and step.verdict in MARKS and on[0] <= step.span.start <= on[-1]:
             return f"#step-mark({literal(step.verdict)});"
