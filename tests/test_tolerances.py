@@ -557,6 +557,18 @@ RL:  10 kΩ,       o to gnd
     assert "could not be checked" in found[-1].message and "op-amp" in found[-1].message
 
 
+def test_ratings_with_free_symbols_are_not_checked():
+    report, found = ratings("```circuit\nV1: V V, a to gnd\nR1: 1 kΩ, a to gnd, max 1 W\n```\n")
+    assert [f.message for f in found] == ["the rating of R1 could not be checked: it may depend on the free symbols V"]
+    assert report.ratings == ()
+
+
+def test_an_assumption_has_a_tolerance_of_its_own_kind():
+    report = check_text("sheet.md", "---\nsheet: TS-199\n---\n`given Vmax = 15 V ±0.1 A` `given T = 40 °C ±5 %`\n")
+    assert [j.verdict for j in report.claims] == ["unchecked", "unchecked"]
+    assert "the value a voltage" in report.claims[0].message and "where degrees count from" in report.claims[1].message
+
+
 def test_a_circuit_that_does_not_stand_is_not_rated_twice():
     report = check_text("sheet.md", "```circuit\nV1: 1 V, a to gnd, max 1 mA\nV2: 2 V, a to gnd\n```\n")
     assert [f.kind for f in report.findings] == ["structure"] and report.ratings == ()

@@ -34,6 +34,9 @@ def held_ratings(index: int, ledger: Ledger) -> tuple[list[RatingHeld], list[Fin
     """The ratings of one circuit's parts, each in its worst case, and what is to be said of those passed or not checked."""
     circuit = ledger.circuits[index]
     rated = [(e, r) for e in circuit.elements for r in e.ratings]
+    if circuit.symbols and rated:
+        reason = f"it may depend on the free symbols {', '.join(name for name, _ in circuit.symbols)}"
+        return [], [*_unchecked({reason: {r.span: (e, "") for e, r in rated}})]
     worst: dict[Span, tuple[RatingHeld, Element]] = {}
     unchecked: dict[str, dict[Span, tuple[Element, str]]] = {}
     for case in ("", *(c.name for c in circuit.cases)):

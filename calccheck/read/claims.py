@@ -6,8 +6,9 @@ import re
 from collections.abc import Collection, Iterator, Sequence
 from dataclasses import dataclass, field, replace
 
-from calccheck.arithmetic import Doubt
+from calccheck.arithmetic import DimensionFault, Doubt
 from calccheck.document import Block, Inline, blocks, inlines
+from calccheck.formula import Node, Number, Unary
 from calccheck.model import Claim, Finding, Place, Problem, Waiver
 from calccheck.read.attributes import read_tolerance
 from calccheck.read.expression import parse_chain
@@ -17,6 +18,7 @@ from calccheck.read.tables import table_claims
 from calccheck.read.waivers import read_waiver, waiver_text
 from calccheck.rules import RULES
 from calccheck.source import Piece, Span, joined
+from calccheck.units import Dimension
 
 RELATION = re.compile(r"[=≈<≤>≥≅≃∼＝]|~=|~\s?[-−+]?[\d.]")
 _LEADS = re.compile(r"\s*(?:[=≈<≤>≥]|~=)")
@@ -103,17 +105,25 @@ def assumption(piece: Piece, place: Place, circuit: int) -> Claim:
         claim = replace(claim, from_sheet=source[1])
         body = body.part(0, source.start())
     more = _MORE.search(body.text)
+    behind = body.part(more.end(), len(body.text)) if more else None
     try:
-        if more:
-            claim = replace(claim, tolerance=read_tolerance(body.part(more.end(), len(body.text))))
-            body = body.part(0, more.start())
-        members = parse_chain(body.strip())
+        members = parse_chain((body.part(0, more.start()) if more else body).strip())
+        if behind is not None:
+            claim = replace(claim, tolerance=read_tolerance(behind, _dimension(members[-1].node)))
     except Doubt as d:
         return replace(claim, problem=Problem(d.reason, d.span or claim.span, d.suggestion))
+    except DimensionFault as f:
+        return replace(claim, problem=Problem(f.reason, f.span))
     if len(members) < 2 or members[1].relation != "=":
         reason = "an assumption gives a name a value"
         return replace(claim, problem=Problem(reason, claim.span, "given NAME = VALUE UNIT"))
     return replace(claim, members=members)
+
+
+def _dimension(node: Node) -> Dimension | None:
+    """The dimension of a printed value; nothing of anything else."""
+    inner = node.operand if isinstance(node, Unary) else node
+    return inner.unit.dimension if isinstance(inner, Number) else None
 
 
 # --- working fences -------------------------------------------------------------------------------------------------
