@@ -18,7 +18,7 @@ from calccheck.arithmetic import (
     real,
     size,
 )
-from calccheck.formula import Binary, Node, Number, references
+from calccheck.formula import Binary, Node, Number, Reference, references
 from calccheck.judge import say
 from calccheck.judge.aligned import number_by_number
 from calccheck.judge.ground import Ground, decided, subject
@@ -67,6 +67,8 @@ def _judged(w: Worked, relation: Relation, ground: Ground) -> Step:
         return judge_value(w, w.printed, relation, ground)
     if relation == "≈":
         return _approximate_formula(w, ground)
+    if w.sort == "substitution" and without_unit(w) and _has_units(ground):
+        return _bare(w, relation, ground, bare_member=True)
     if w.numbers or _spreads(w, ground):
         return _substitution(w, ground)
     if equal(w.amount.value, ground.truth.value):
@@ -128,6 +130,12 @@ def _other_dimension(w: Worked, relation: Relation, ground: Ground) -> Step:
 
 
 _COHERENT = {*COHERENT, WATT}
+
+
+def _has_units(ground: Ground) -> bool:
+    """Whether the formula that gives the truth has names with units, so that numbers put for them lack theirs."""
+    named = [a for n, a in ground.source.pieces if isinstance(n, Reference) and n is not ground.source.node]
+    return any(a.dimension != NONE for a in named)
 
 
 def _bare(w: Worked, relation: Relation, ground: Ground, bare_member: bool) -> Step:
