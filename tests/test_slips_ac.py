@@ -12,6 +12,8 @@ from pathlib import Path
 import pytest
 
 from calccheck import check_text
+from calccheck.annotate.to_markdown import to_markdown
+from calccheck.judge.say import percent
 from calccheck.model import Settings
 from calccheck.pipeline import check
 from calccheck.source import Sheet
@@ -223,3 +225,17 @@ def sheet_of(net, wanted, factor):
         texts, unit, _ = hand_ac.texts_of(worth(q, net) * factor, q.form, 4, hand_ac.UNITS[q.letter])
         claims.append(f"`{q.text()} = {hand_ac.joined(texts, unit, q.form)}`")
     return Sheet("large.md", "\n\n".join([hand_ac.circuit_block(net), *claims]))
+
+
+# --- as it is said --------------------------------------------------------------------------------------------------
+
+
+def test_slips_are_sentences_in_a_marked_copy():
+    marked = to_markdown(check_text("s.md", RC + "`V_b = 8.467 V ∠ 32.14°`"))
+    assert "of its magnitude). Consistent with the angle, or the imaginary part, with the other sign" in marked
+
+
+@pytest.mark.parametrize(("deviation", "said"), [(999.0, "a factor of 1000"), (99.0, "a factor of 100"), (1e9, "a factor of 1.00e+09"),
+                                                 (0.111, "+11.1 %"), (-0.0017, "−0.17 %")])  # fmt: skip
+def test_a_large_deviation_is_a_factor(deviation, said):
+    assert percent(deviation) == said

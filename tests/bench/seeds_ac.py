@@ -1,102 +1,14 @@
-"""The seeds of alternating current by kind: claims with the slip put in the way it is made. Each function gives one, or nothing."""
+"""The seeds of alternating current in the figures and in the working, right claims and unexplained ones."""
 
 from __future__ import annotations
 
 import cmath
 import math
-from dataclasses import dataclass, field, replace
 
 import hand
 import hand_ac
-from hand_ac import UNITS, Phasor, as_claimed, whole, worth
-from seeds import beside
-
-
-@dataclass(frozen=True)
-class AcSeed:
-    """``before``: the claim up to the printed value; ``value``, ``truth``: what is printed and what should be, as the form shows it.
-
-    ``texts``: the printed figures where the slip is in their digits; ``earlier``: the circuit of the version before.
-    ``carry``: how far off, relatively, a working may end.
-    """
-
-    before: str
-    form: str
-    value: complex
-    truth: complex
-    unit: str
-    figures: int
-    texts: list[str] = field(default_factory=list)
-    earlier: hand_ac.Net | None = None
-    carry: float = 0.0
-
-    def claim(self):
-        texts, unit, _ = hand_ac.texts_of(self.value, self.form, self.figures, self.unit)
-        return f"{self.before} = {hand_ac.joined(self.texts or texts, unit, self.form)}"
-
-    def off(self):
-        """By how many units of its last place the worst figure is off."""
-        texts, _, places = hand_ac.texts_of(
-            self.truth if self.texts else self.value, self.form, self.figures, self.unit
-        )
-        right = hand_ac.figures_of(self.truth, self.form)
-        worst = 0.0
-        for k, (text, r, place) in enumerate(zip(self.texts or texts, right, places, strict=True)):
-            decimals = len(text.partition(".")[2])
-            x = float(text.replace("−", "-"))
-            if self.form == "arg" or (self.form == "polar" and k == 1):
-                distance = abs((x - r + 180) % 360 - 180) * 10.0**decimals
-            else:
-                distance = abs(x * 10.0**decimals - r / place)
-            worst = max(worst, distance)
-        return worst
-
-    def place(self):
-        """The unit of the last place of the first figure."""
-        return hand_ac.texts_of(self.truth if self.texts else self.value, self.form, self.figures, self.unit)[2][0]
-
-
-class AcBench:
-    """One circuit to draw seeds from."""
-
-    def __init__(self, net, rng, figures):
-        self.net, self.rng, self.figures = net, rng, figures
-        volts, amperes = hand.solved(net.parts, net.omega)
-        self.scales = {"V": max(map(abs, volts.values())), "I": max(map(abs, amperes.values()))}
-        self.scales |= dict.fromkeys("PQS", self.scales["V"] * self.scales["I"]) | {"Z": 0.0}
-
-    def pick(
-        self, letters="VVVIIIPQ", forms=("polar", "polar", "rect", "mag", "mag", "arg"), due=True, fits=lambda q: True
-    ):
-        """A quantity that is no rounding error, with what it should show."""
-        nodes = sorted({n for p in self.net.parts for n in (p.plus, p.minus)} - {"com"})
-        names = [p.name for p in self.net.parts if p.kind not in "U"]
-        for _ in range(30):
-            letter = self.rng.choice(letters)
-            form = "real" if letter in "PQ" else self.rng.choice(forms)
-            subs = (self.rng.choice([*nodes, *names] if letter == "V" else names),)
-            sources = hand.sources(self.net.parts)
-            due_to = (self.rng.choice(sources),) if due and letter in "VI" and self.rng.random() < 0.3 else ()
-            q = Phasor(letter, subs, form, due_to)
-            value = whole(q, self.net)
-            shown = as_claimed(value, q)
-            if value is None or not fits(q) or abs(value) < 1e-4 * self.scales[letter]:
-                continue
-            if min(map(abs, hand_ac.figures_of(shown, form))) > 1e-3 * abs(value) * (form in ("rect", "real")):
-                return q, shown
-        return None, 0.0
-
-    def seed(self, q, value, truth, **more):
-        if q is None or value is None or min(abs(value), abs(truth)) < 1e-11:
-            return None
-        return AcSeed(q.text(), q.form, value, truth, UNITS[q.letter], self.figures, **more)
-
-    def seen(self, forms=("polar", "rect", "mag")):
-        nodes = sorted({n for p in self.net.parts for n in (p.plus, p.minus)})
-        q = Phasor("Z", tuple(self.rng.sample(nodes, 2)), self.rng.choice(forms))
-        value = worth(q, self.net)
-        good = value is not None and min(map(abs, hand_ac.figures_of(value, q.form))) > 1e-3 * max(abs(value), 1e-3)
-        return (q, value) if good else (None, 0.0)
+from hand_ac import UNITS, Phasor, whole, worth
+from seeding_ac import AcSeed, redone
 
 
 def right(b):
@@ -224,7 +136,7 @@ def degrees_radians(b):
 def conjugate(b):
     if b.rng.random() < 0.3 and b.net.kind("LC"):  # the reactance of one part
         p = b.rng.choice(b.net.kind("LC"))
-        return _in(b, b.net.put(p.name, value=-p.value))
+        return redone(b, b.net.put(p.name, value=-p.value))
     q, t = b.pick(letters="VI", forms=("polar", "rect", "arg"))
     return b.seed(q, -t if q.form == "arg" else t.conjugate(), t) if q else None
 
@@ -238,172 +150,6 @@ def line_phase(b):
         return None
     q, t = b.pick(letters="VIP", forms=("polar", "mag"), due=False)
     return b.seed(q, t * math.sqrt(3) ** b.rng.choice((1, -1)), t)
-
-
-# --- with the sources and the circuit -------------------------------------------------------------------------------
-
-
-def _sum(b, weight):
-    names = hand.sources(b.net.parts)
-    q, t = b.pick(letters="VI", due=False)
-    if q is None or len(names) < 2:
-        return None
-    shares = {n: whole(replace(q, due_to=(n,)), b.net) for n in names}
-    odd, total = b.rng.choice(names), sum(shares.values())
-    if abs(shares[odd]) < 1e-6 * abs(total) or abs(shares[odd] - total) < 1e-6 * abs(total):
-        return None
-    return b.seed(q, as_claimed(total + (weight - 1) * shares[odd], q), t)
-
-
-def source_missing(b):
-    return _sum(b, 0)
-
-
-def source_reversed(b):
-    return _sum(b, -1)
-
-
-def source_twice(b):
-    return _sum(b, 2)
-
-
-def power_superposed(b):
-    names = hand.sources(b.net.parts)
-    q, t = b.pick(letters="PQ", due=False)
-    if q is None or len(names) < 2:
-        return None
-    return b.seed(q, sum(worth(replace(q, due_to=(n,)), b.net) for n in names), t)
-
-
-def source_zeroed_wrongly(b):
-    names = hand.sources(b.net.parts)
-    if len(names) < 2:
-        return None
-    own, other = b.rng.sample(names, 2)
-    kind = next(p.kind for p in b.net.parts if p.name == other)
-    odd = b.net.put(other, kind="-" if kind == "V" else "=", value=0.0)
-    q, t = b.pick(letters="VI", fits=lambda q: q.due_to == (own,))
-    return b.seed(q, worth(q, odd), t) if q else None
-
-
-def controlled_source_zeroed(b):
-    steered = b.net.kind("G")
-    return _in(b, b.net.put(steered[0].name, kind="-", value=0.0)) if steered else None
-
-
-def _in(b, net, **more):
-    q, t = b.pick()
-    return b.seed(q, worth(q, net), t, **more) if q else None
-
-
-def omega_frequency(b):
-    parts = b.net.kind("LC")
-    factor = b.rng.choice((2 * math.pi, 1 / (2 * math.pi)))
-    net = b.net
-    for p in parts if b.rng.random() < 0.7 else parts[:1]:
-        net = net.put(p.name, value=p.value * factor)
-    return _in(b, net) if parts else None
-
-
-def magnitudes_added(b):
-    """|Z| as R + X; a voltage along two parts, or the circuit, worked with magnitudes alone."""
-    how = b.rng.randrange(3)
-    if how == 0:
-        q, t = b.seen(("mag",))
-        z = whole(q, b.net) if q else 0
-        return b.seed(q, abs(z.real) + abs(z.imag), t) if q and z.real > 0 else None
-    if how == 1:
-        net = b.net
-        for p in b.net.kind("LC"):
-            ohms = b.net.omega * p.value if p.kind == "L" else 1 / (b.net.omega * p.value)
-            net = net.put(p.name, kind="R", value=ohms)
-        q, t = b.pick(letters="VI", forms=("mag",))
-        return b.seed(q, worth(q, net), t) if q else None
-    pairs = [(x, y) for x in b.net.kind("RLC") for y in b.net.kind("RLC") if x.minus == y.plus and x.plus != y.minus]
-    if not pairs:
-        return None
-    x, y = b.rng.choice(pairs)
-    a, c = (abs(whole(Phasor("V", (p.name,), "mag"), b.net)) for p in (x, y))
-    q = Phasor("V", (x.plus, y.minus), "mag") if y.minus != "com" else Phasor("V", (x.plus,), "mag")
-    t = worth(q, b.net)
-    return b.seed(q, a + c, t) if min(a, c, t) > 1e-4 * b.scales["V"] else None
-
-
-def swapped_values(b):
-    a, c = b.rng.sample(b.net.kind("RLC"), 2)
-    if a.kind != c.kind or a.value == c.value:
-        return None
-    return _in(b, b.net.put(a.name, value=c.value).put(c.name, value=a.value))
-
-
-def element_absent(b):
-    return _in(b, b.net.put(b.rng.choice(b.net.kind("RLC")).name, kind="-", value=0.0))
-
-
-def element_shorted(b):
-    return _in(b, b.net.put(b.rng.choice(b.net.kind("RLC")).name, kind="=", value=0.0))
-
-
-def neighbour_value(b):
-    p = b.rng.choice(b.net.kind("RLC"))
-    value = beside(p.value * 1e12, b.rng.choice((hand.E24, hand.E24[::2])), b.rng.choice((-1, 1)))
-    return _in(b, b.net.put(p.name, value=value / 1e12)) if value else None
-
-
-def stale(b):
-    p = b.rng.choice(b.net.kind("RLCVI"))
-    old = b.net.put(p.name, value=p.value * b.rng.choice((0.5, 0.68, 0.82, 1.2, 1.5, 2.2)))
-    return _in(b, old, earlier=old)
-
-
-def divider_complement(b):
-    fed = [
-        (v, z) for v in b.net.kind("V") if v.minus == "com" for z in b.net.kind("RLC") if v.plus in (z.plus, z.minus)
-    ]
-    if not fed:
-        return None
-    source, upper = b.rng.choice(fed)
-    tap = upper.minus if upper.plus == source.plus else upper.plus
-    q = Phasor("V", (tap,), b.rng.choice(("polar", "rect", "mag")))
-    t = whole(q, b.net) if tap != "com" else 0
-    return b.seed(q, as_claimed(source.value - t, q), as_claimed(t, q)) if abs(t) > 1e-3 * b.scales["V"] else None
-
-
-def series_parallel(b):
-    """Two like parts side by side worked as if in a row, or the reverse."""
-    a, c = b.rng.sample(b.net.kind("RLC"), 2)
-    if a.kind != c.kind:
-        return None
-    less, more = a.value * c.value / (a.value + c.value), a.value + c.value
-    side, row = (less, more) if a.kind != "C" else (more, less)
-    if {a.plus, a.minus} == {c.plus, c.minus}:
-        return _in(b, b.net.put(a.name, value=row).put(c.name, kind="-", value=0.0))
-    joint = {a.plus, a.minus} & {c.plus, c.minus} - {"com"}
-    if not joint or len([p for p in b.net.parts if joint & {p.plus, p.minus, *p.by}]) != 2:
-        return None
-    odd = b.net.put(a.name, value=side).put(c.name, kind="=", value=0.0)
-    q, t = b.pick(letters="VI", fits=lambda q: not joint & set(q.subs))
-    return b.seed(q, worth(q, odd), t) if q else None
-
-
-def other_quantity(b):
-    q, t = b.pick(letters="VI", forms=("polar", "rect", "mag"))
-    o, _ = b.pick(letters=q.letter, forms=(q.form,), due=False) if q else (None, 0)
-    if o is None or o.subs == q.subs:
-        return None
-    value = worth(replace(o, due_to=q.due_to), b.net)
-    return b.seed(q, value, t) if abs(value + t) > 1e-6 * abs(t) else None  # the same current the other way is a sign
-
-
-def stage_kind(b):
-    amps = b.net.kind("U")
-    if not amps:
-        return None
-    first = next(p for p in b.net.parts if p.name == "R1")
-    odd = b.net.put("R1", plus=amps[0].by[0]).put("U1", by=(first.plus, "m"))
-    q, t = b.pick(letters="VI", due=False)
-    value = worth(q, odd) if q else 0.0
-    return b.seed(q, value, t) if q and abs(value + t) > 1e-6 * abs(t) else None  # turned round it is a sign
 
 
 # --- in the working -------------------------------------------------------------------------------------------------

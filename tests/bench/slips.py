@@ -24,9 +24,11 @@ import hand_ac
 import hand_models
 import seeds
 import seeds_ac
+import seeds_ac_circuit
 import seeds_symbols
 import seeds_working
 from seeding import Bench
+from seeding_ac import AcBench
 
 from calccheck.model import Settings
 from calccheck.pipeline import check
@@ -122,10 +124,11 @@ class AlternatingCurrent:
         rng = self.rng
         special = {3: hand_ac.stage, 7: hand_ac.three_phases}.get(turn % 8)
         net = special(rng) if special else hand_ac.random_net(rng, turn % 4 == 1)
-        return seeds_ac.AcBench(net, rng, figures), hand_ac.circuit_block(net)
+        return AcBench(net, rng, figures), hand_ac.circuit_block(net)
 
     def seed(self, kind, bench):
-        return getattr(seeds_ac, kind.replace("-", "_"))(bench)
+        name = kind.replace("-", "_")
+        return next(getattr(m, name) for m in (seeds_ac, seeds_ac_circuit) if hasattr(m, name))(bench)
 
     def wrong(self, seed):
         """Whether a figure is off by more than its last place, and no rounding of a whole number with zeros at its end."""
