@@ -24,8 +24,9 @@ from calccheck import check_text
 from calccheck.annotate.marks import MARKS
 from calccheck.annotate.record import LIMITS, entries
 from calccheck.annotate.to_html import to_html
-from calccheck.model import Finding, Settings, Signature
-from calccheck.source import Span
+from calccheck.model import Claim, Finding, Judged, Settings, Signature
+from calccheck.read.maths import parse_maths
+from calccheck.source import Span, whole
 
 VOID = {"meta", "br", "hr"}  # of the elements without an end (HTML Living Standard, 13.1.2) those that the page uses
 TAGS = frozenset(
@@ -259,6 +260,24 @@ def test_maths_stands_as_written():
     shown = parsed(to_html(report_of(text))).text("code")
     assert "$ a_1 + \\frac{b}{c} $" in shown
     assert "x = \\sqrt{2} < 3" in shown
+
+
+MATHS_TAGS = {"math", "mrow", "mi", "mo", "mtext", "mfrac", "msub", "msup", "msqrt", "mspace"}  # of MathML Core
+
+
+def test_claims_in_maths_are_set_as_they_were_read():
+    text = "# Head\n\nThen $V_\\mathrm{b} = \\frac{a < c}{2\\,\\mathrm{V}}$ and $V_\\mathrm{b} = \\frac{6}{2}\\,\\mathrm{V} = 3\\,\\mathrm{V}$.\n"
+    claim = "V_\\mathrm{b} = \\frac{6}{2}\\,\\mathrm{V} = 3\\,\\mathrm{V}"
+    span = Span(text.index(claim), text.index(claim) + len(claim))
+    read = Claim(claim, span, "math", 0, parse_maths(whole(claim, span.start)))
+    page = parsed(to_html(report_of(text, Judged(read, "differs", message="said"))))
+    assert page.faults == []
+    assert MATHS_TAGS >= {t for t, _ in page.starts} - TAGS >= {"math", "mfrac", "msub"}
+    assert "3\xa0V✗ differs1" in page.text("main")
+    assert "$ V_\\mathrm{b} = \\frac{a < c}" in page.text("code")  # what claims nothing stands as written
+    formulas = [t for t, path in page.texts if "math" in path]
+    assert not [t for t in formulas if "\\" in t]
+    assert formulas[:3] == ["V", "b", "="]
 
 
 def test_hostile_text_is_shown_as_text(nasty):

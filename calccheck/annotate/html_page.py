@@ -6,12 +6,15 @@ from collections.abc import Callable, Iterator, Mapping, Sequence
 from dataclasses import dataclass, field
 from html import escape
 
+from calccheck.annotate.html_math import formula_html
 from calccheck.annotate.html_words import said, told, word_html
 from calccheck.annotate.marks import MARKS
+from calccheck.annotate.maths_lines import members_on, one_claim, without_markup
 from calccheck.annotate.pictures import BY_SOURCE, Shown
 from calccheck.annotate.places import Places, marks_in, runs
 from calccheck.annotate.record import Entry, note_lines
 from calccheck.document import Block, Inline, inlines
+from calccheck.model import Judged
 from calccheck.source import NOWHERE, Piece, Sheet
 
 _SAFE_LINKS = ("http://", "https://", "mailto:")
@@ -23,13 +26,14 @@ class Setting:
     """What the walk needs at every step.
 
     ``levels``: of each heading by its offset. ``following``: of each listed entry, the one after it in the sheet.
-    ``pictures``: behind blocks, by their offset.
+    ``judged``: the judged claims by entry key. ``pictures``: behind blocks, by their offset.
     """
 
     sheet: Sheet
     where: Places
     levels: dict[int, int]
     following: dict[str, str]
+    judged: Mapping[str, Judged]
     pictures: Mapping[int, Sequence[Shown]] = field(default_factory=dict)
 
 
@@ -88,7 +92,9 @@ def _quote(s: Setting, b: Block) -> str:
 
 def _table(s: Setting, b: Block) -> str:
     head, *body = b.children
-    heads = "".join(_cell(s, c, "th scope=col" if c.inlines else "td") for c in head.children)  # an empty cell heads nothing
+    heads = "".join(
+        _cell(s, c, "th scope=col" if c.inlines else "td") for c in head.children
+    )  # an empty cell heads nothing
     rows = "".join(f"<tr>{''.join(_cell(s, c, 'td') for c in row.children)}</tr>\n" for row in body)
     cells = [i for row in b.children for c in row.children for i in c.inlines]
     table = f"<table>\n<thead><tr>{heads}</tr></thead>\n<tbody>\n{rows}</tbody>\n</table>"
@@ -108,6 +114,27 @@ def _lines(s: Setting, b: Block) -> str:
     )
     notes = "".join(note_html(s, e) for e in marks_in(s.where, b.lines) if e.beside)
     return f"<pre><code>{caption}{lines}</code></pre>\n{notes}" if b.lines or caption else ""
+
+
+def _maths(s: Setting, b: Block) -> str:
+    """Lines of dollar maths, what was read of them as formulas."""
+    kept = without_markup(s.where, b.lines)
+    rows = "".join(
+        f'<span class="line" data-line="{_line_number(s.sheet, line)}">{_maths_line(s, line, marks)}</span>'
+        for line, marks in kept
+    )
+    notes = "".join(note_html(s, e) for _, marks in kept for e in marks if e.beside)
+    return _scrolling("Maths", s, b, f'<div class="maths">{rows}</div>') + notes if rows else ""
+
+
+def _maths_line(s: Setting, line: Piece, marks: Sequence[Entry]) -> str:
+    owners = {run.entry.key: run.entry for run in runs(s.where, line) if run.entry is not None}
+    entry = next(iter(owners.values()), None)
+    members = members_on(line, s.judged[entry.key]) if entry is not None and entry.key in s.judged else []
+    if entry is None or len(owners) > 1 or not members:
+        return f"<code>{_runs(s, line)}</code>"
+    body = f'<mark class="tint-{entry.kind}">{formula_html(s.sheet.text, members)}</mark>'
+    return body + "".join(word_html(e, e.key, f"r-{e.key}") for e in marks)
 
 
 def _line_number(sheet: Sheet, line: Piece) -> str:
@@ -132,7 +159,7 @@ _BLOCKS: dict[str, Callable[[Setting, Block], str]] = {
     "table": _table,
     "fence": _lines,
     "code": _lines,
-    "math": _lines,
+    "math": _maths,
     "html": _lines,
     "rule": _rule,
     "note": _note,
@@ -170,7 +197,7 @@ def _inline(s: Setting, i: Inline) -> str:
         case "code" | "html":
             return f"<code>{_runs(s, i.text)}</code>" if i.text else ""
         case "math":
-            return f"<code>$ {_runs(s, i.text)} $</code>" if i.text else ""
+            return _inline_maths(s, i.text) if i.text else ""
         case "emphasis" | "strong" | "strike":
             return f"<{_TAGS[i.kind]}>{_inlines(s, i.children)}</{_TAGS[i.kind]}>"
         case "link" | "image":
@@ -182,6 +209,15 @@ def _inline(s: Setting, i: Inline) -> str:
         case "note":
             return f"<sup>[{said(i.target)}]</sup>"
     return _inlines(s, i.children)
+
+
+def _inline_maths(s: Setting, piece: Piece) -> str:
+    read = one_claim(s.where, s.judged, piece)
+    if read is None:
+        return f"<code>$ {_runs(s, piece)} $</code>"
+    entry, members, ends = read
+    words = "".join(word_html(e, e.key, f"r-{e.key}") for e in ends)
+    return f'<mark class="tint-{entry.kind}">{formula_html(s.sheet.text, members)}</mark>{words}'
 
 
 def _link(s: Setting, i: Inline) -> str:

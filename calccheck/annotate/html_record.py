@@ -5,6 +5,7 @@ from __future__ import annotations
 from collections.abc import Collection, Sequence
 
 from calccheck import __version__
+from calccheck.annotate.html_math import written
 from calccheck.annotate.html_tables import TICK_BOX, Row, part, to_tick
 from calccheck.annotate.html_words import code, in_record, said, tell, to_mark, told
 from calccheck.annotate.marks import MARKS
@@ -27,7 +28,7 @@ from calccheck.model import Report
 
 def record(report: Report, rows: Sequence[Entry], placed: Collection[str]) -> str:
     """Every claim and finding, the superposition at a glance, the circuits' figures."""
-    claims = [_claim_row(e, placed) for e in rows if e.key[0] == "c"]
+    claims = [_claim_row(report, e, placed) for e in rows if e.key[0] == "c"]
     findings = [_finding_row(e, placed) for e in rows if e.key[0] == "f"]
     return (
         '<section aria-labelledby="record">\n<h2 id="record">Check record</h2>\n'
@@ -50,7 +51,7 @@ def _nearest(report: Report) -> str:
     return f"<br>\n{said(told)}." if told else ""
 
 
-def _claim_row(e: Entry, placed: Collection[str]) -> Row:
+def _claim_row(report: Report, e: Entry, placed: Collection[str]) -> Row:
     about = told(e.sentences(e.told)) if e.kind != "given" else ""
     about += "".join(
         f'<span class="told"><strong class="ink-caution">{MARKS["caution"].label}</strong> {tell(t)}</span>'
@@ -58,7 +59,7 @@ def _claim_row(e: Entry, placed: Collection[str]) -> Row:
     )
     values = (said(e.printed), said(e.computed), said(e.deviation), BASES.get(e.basis, e.basis))
     spoken = [f'<span class="value">{v}</span>' for v in values]
-    return f"r-{e.key}", (in_record(e, placed), str(e.line), code(e.text) + about, *spoken)
+    return f"r-{e.key}", (in_record(e, placed), str(e.line), written(report, e) + about, *spoken)
 
 
 def _finding_row(e: Entry, placed: Collection[str]) -> Row:

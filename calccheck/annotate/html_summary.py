@@ -4,6 +4,7 @@ from __future__ import annotations
 
 from collections.abc import Collection, Sequence
 
+from calccheck.annotate.html_math import written
 from calccheck.annotate.html_tables import part, table
 from calccheck.annotate.html_words import code, said, tell, to_mark, told
 from calccheck.annotate.marks import MARKS
@@ -91,15 +92,15 @@ def _assumed(found: Sequence[Entry]) -> str:
 # --- the list of findings -------------------------------------------------------------------------------------------
 
 
-def listing(listed: Sequence[Entry], placed: Collection[str]) -> str:
+def listing(report: Report, listed: Sequence[Entry], placed: Collection[str]) -> str:
     """What is to be mended or weighed, each with a way to its place."""
-    items = "".join(_listed(e, placed) for e in listed)
+    items = "".join(_listed(report, e, placed) for e in listed)
     body = f'<ol class="findings">\n{items}</ol>' if items else "<p>Nothing is to be mended.</p>"
     return f'<nav aria-labelledby="findings">\n<h2 id="findings">{_LIST}</h2>\n{body}\n</nav>\n'
 
 
-def _listed(e: Entry, placed: Collection[str]) -> str:
-    what = code(e.text) if e.key[0] == "c" else said(e.text)
+def _listed(report: Report, e: Entry, placed: Collection[str]) -> str:
+    what = written(report, e) if e.key[0] == "c" else said(e.text)
     line = f'<span class="soft">line {e.line}</span>'
     return (
         f'<li id="l-{e.key}" class="ink-{e.kind}">{to_mark(e, placed)} <span class="plain">{what}</span> {line}'

@@ -34,13 +34,14 @@ def to_html(report: Report) -> str:
     placed = where.placed()
     order = sorted(worst_first(rows), key=lambda e: e.span.start)
     following = {a.key: b.key for a, b in pairwise(order)}
-    setting = Setting(reading.sheet, where, heading_levels(reading.page), following, behind(report))
+    judged = dict(zip((e.key for e in rows), report.claims, strict=False))
+    setting = Setting(reading.sheet, where, heading_levels(reading.page), following, judged, behind(report))
     title = reading.title.get("subject") or reading.title.get("sheet") or reading.sheet.name
     in_front = raised(report, rows)
     return (
         f"{_opening(report, title)}"
         f"{head(report, title)}{summary(report, rows, placed)}"
-        f"{listing(worst_first(e for e in rows if e not in in_front), placed)}"
+        f"{listing(report, worst_first(e for e in rows if e not in in_front), placed)}"
         f'<main id="sheet" class="sheet">\n{blocks_html(setting, reading.page)}</main>\n'
         f"{record(report, rows, placed)}{checker(report, rows, placed)}</body>\n</html>\n"
     )
