@@ -9,7 +9,6 @@ import cmath
 from dataclasses import dataclass
 from fractions import Fraction
 
-from calccheck.formula import Number
 from calccheck.source import Span
 from calccheck.units import NONE, Dimension
 
@@ -82,10 +81,3 @@ def trimmed(value: Value) -> Value:
     if not cmath.isfinite(value):
         raise Doubt("the value does not fit a floating-point number")
     return value
-
-
-def literal(number: Number) -> Amount:
-    """A printed number in SI."""
-    if number.unit.celsius:
-        return Amount(number.exact + ICE, number.unit.dimension, point=True)
-    return Amount(number.exact, number.unit.dimension, level=number.unit.text == "dB")

@@ -16,7 +16,6 @@ from calccheck.amounts import (
     Doubt,
     Real,
     Value,
-    literal,
     plainest,
     real,
     size,
@@ -52,6 +51,11 @@ __all__ = [
 Lookup = Callable[[Reference], Amount]
 Literal = Callable[[Number], Amount]
 Note = Callable[[Node, Amount], None]
+
+
+def literal(number: Number) -> Amount:
+    """A printed number in SI."""
+    return number.amount
 
 
 def evaluate(node: Node, lookup: Lookup, number: Literal = literal, note: Note | None = None) -> Amount:

@@ -12,6 +12,7 @@ from fractions import Fraction
 from functools import cached_property
 from typing import Literal
 
+from calccheck.amounts import ICE, Amount
 from calccheck.source import Span
 from calccheck.units import PLAIN, Unit
 
@@ -37,11 +38,13 @@ class Number:
     scientific: bool = False
 
     @cached_property
-    def exact(self) -> Fraction:
-        """The digits times the unit's factor, in SI; asked for many times while a claim is judged."""
-        over, under = self.digits.as_integer_ratio()
-        factor = self.unit.factor
-        return Fraction(over * factor.numerator, under * factor.denominator)
+    def amount(self) -> Amount:
+        """What is printed, in SI; worked out once, because a claim's judgement asks for it many times."""
+        unit, (over, under) = self.unit, self.digits.as_integer_ratio()
+        value = Fraction(over * unit.factor.numerator, under * unit.factor.denominator)
+        if unit.celsius:
+            return Amount(value + ICE, unit.dimension, point=True)
+        return Amount(value, unit.dimension, level=unit.text == "dB")
 
     @cached_property
     def place(self) -> Fraction:
@@ -97,6 +100,10 @@ class Reference:
     text: str = ""
     maths: bool = False
     bracket: tuple[tuple[str, Node], ...] = ()
+
+    def __hash__(self) -> int:
+        """Word and place tell references apart well enough; hashing all fields costs more than looking one up."""
+        return hash((self.word, self.span.start))
 
 
 @dataclass(frozen=True, slots=True)

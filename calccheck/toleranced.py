@@ -13,7 +13,7 @@ from dataclasses import dataclass, field
 from fractions import Fraction
 from typing import Any, Literal, Protocol
 
-from calccheck.arithmetic import Doubt, Value, literal, real, size
+from calccheck.arithmetic import Doubt, Value, real, size
 from calccheck.formula import Binary, Call, Group, Node, Number, Range, Reference, Unary
 from calccheck.model import Circuit, State
 from calccheck.units import NONE, Dimension
@@ -143,7 +143,7 @@ def worked(node: Node, leaf: Callable[[str], Any], number: Callable[[Fraction], 
     def work(n: Node) -> Any:
         match n:
             case Number():
-                return number(Fraction(real(literal(n).value)))
+                return number(Fraction(real(n.amount.value)))
             case Reference():
                 return leaf(n.word)
             case Unary(sign="√"):

@@ -8,7 +8,6 @@ from itertools import takewhile
 
 from calccheck.arithmetic import (
     Amount,
-    literal,
 )
 from calccheck.formula import OVER_TOLERANCES, Number, Reference
 from calccheck.judge import quantities
@@ -58,9 +57,9 @@ class Ground:
         """What a number of this member may stand for."""
         before = [*takewhile(lambda m: m is not w, self.members)]
         fixed = [m.numbers for m in before if m is self.source or m.sort == "formula"]
-        constants = [literal(n) for found in fixed for n in found]
+        constants = [n.amount for found in fixed for n in found]
         pieces = [s for m in before for s in sizes(m.pieces)]
-        repeated = [literal(n) for m in before for n in m.numbers]
+        repeated = [n.amount for m in before for n in m.numbers]
         changed = [v for _, _, v in self.source.key.changes if v is not None] if self.source.key else []
         return Meanings([*constants, *changed, *self._ends()], pieces, self.circuit_values(), repeated)
 

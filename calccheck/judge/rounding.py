@@ -14,7 +14,7 @@ from fractions import Fraction
 from itertools import takewhile
 from typing import Literal
 
-from calccheck.arithmetic import ICE, Amount, Real, Value, literal, real, size
+from calccheck.arithmetic import ICE, Amount, Real, Value, real, size
 from calccheck.formula import Group, Node, Number, Unary
 from calccheck.units import PLAIN, Unit
 
@@ -65,7 +65,7 @@ def printed(node: Node) -> Printed | None:
     if not isinstance(node, Number):
         return None
     signed = node if sign > 0 else Number(node.digits.copy_negate(), node.span, node.unit)
-    return Printed(literal(signed), node.place, figures(node.digits), signed.digits, node.unit, node.scientific)
+    return Printed(signed.amount, node.place, figures(node.digits), signed.digits, node.unit, node.scientific)
 
 
 def on_scale(p: Printed, truth: Real) -> tuple[Printed, Real]:

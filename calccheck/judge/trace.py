@@ -6,7 +6,7 @@ from bisect import bisect_left, bisect_right
 from collections.abc import Sequence
 from dataclasses import dataclass
 
-from calccheck.arithmetic import Amount, Doubt, Lookup, Real, Value, evaluate, literal, real, size
+from calccheck.arithmetic import Amount, Doubt, Lookup, Real, Value, evaluate, real, size
 from calccheck.formula import Binary, Node, Number, Reference, Unary, references, walk
 from calccheck.judge.phasors import Sized, is_angle, sized
 from calccheck.judge.regrouped import regrouped
@@ -188,7 +188,7 @@ def _moved(node: Node, lookup: Lookup, shifts: dict[object, Real]) -> Value:
     """The member with some of its numbers moved, in floating point: their rooms are far larger than its error."""
 
     def number(n: Number) -> Amount:
-        a = literal(n)
+        a = n.amount
         shift = shifts.get(n.span) or shifts.get((n.digits, n.unit.text), 0)
         return Amount(float(real(a.value)) + float(shift), a.dimension, a.point, level=a.level)
 

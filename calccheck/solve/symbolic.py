@@ -12,7 +12,6 @@ from fractions import Fraction
 from importlib import import_module
 from typing import Any
 
-from calccheck.arithmetic import literal
 from calccheck.formula import Binary, Group, Node, Number, Reference, Unary
 from calccheck.model import Element
 from calccheck.units import SIEMENS, Dimension
@@ -110,7 +109,7 @@ def rational(node: Node, algebra: Algebra, lookup: Callable[[Reference], Ratio])
     def work(n: Node) -> Ratio:
         match n:
             case Number():
-                amount = literal(n)
+                amount = n.amount
                 if amount.point or amount.level or not isinstance(amount.value, Fraction):
                     raise TooMuch
                 return Ratio(algebra.number(amount.value), algebra.one)
