@@ -67,7 +67,8 @@ def _judged(w: Worked, relation: Relation, ground: Ground) -> Step:
         return judge_value(w, w.printed, relation, ground)
     if relation == "≈":
         return _approximate_formula(w, ground)
-    if w.sort == "substitution" and without_unit(w) and _has_units(ground):
+    decimals = any(n.digits.as_tuple().exponent != 0 for n in w.numbers)
+    if w.sort == "substitution" and decimals and without_unit(w) and _has_units(ground):
         return _bare(w, relation, ground, bare_member=True)
     if w.numbers or _spreads(w, ground):
         return _substitution(w, ground)
@@ -133,7 +134,7 @@ _COHERENT = {*COHERENT, WATT}
 
 
 def _has_units(ground: Ground) -> bool:
-    """Whether the formula that gives the truth has names with units, so that numbers put for them lack theirs."""
+    """Whether the formula that gives the truth has names with units, so that decimals put for them lack theirs."""
     named = [a for n, a in ground.source.pieces if isinstance(n, Reference) and n is not ground.source.node]
     return any(a.dimension != NONE for a in named)
 
