@@ -12,7 +12,7 @@ from calccheck.formula import Reference
 from calccheck.judge import say
 from calccheck.judge.bounds import BOUNDS, at_worst, judge_bound
 from calccheck.judge.ground import Ground
-from calccheck.judge.members import Names, Worked, work_all
+from calccheck.judge.members import Names, Worked, work, work_all
 from calccheck.judge.miss import Miss
 from calccheck.judge.new_names import assume, new_name
 from calccheck.judge.phasors import PrintedPhasor, is_angle, nearest_turn, parts
@@ -84,7 +84,8 @@ def _range_claim(job: Work) -> Judged:
     ref = first.node
     assert isinstance(ref, Reference)
     truth = truth_of(ref, job.names)
-    source = Worked(first, ref, "formula", "circuit", truth.nominal, nodes=(ref,))
+    basis = work(first, job.names).basis or "working"
+    source = Worked(first, ref, "formula", basis, truth.nominal, nodes=(ref,))
     for m in members:
         if m is first:
             continue
@@ -99,7 +100,7 @@ def _range_claim(job: Work) -> Judged:
     told = "; ".join(t for t in (worst.message, truth.told) if t)
     cautions = tuple(dict.fromkeys(job.cautions))
     return Judged(
-        job.claim, worst.verdict, "circuit", ref.text, computed=truth.nominal, low=truth.low, high=truth.high,
+        job.claim, worst.verdict, basis, ref.text, computed=truth.nominal, low=truth.low, high=truth.high,
         message=told, steps=tuple(job.steps), cautions=cautions,
     )  # fmt: skip
 

@@ -92,7 +92,7 @@ def _judged(member: Member, sides: Sequence[tuple[Amount, str]], source: Worked,
             truth = Amount(size(truth.value) / size(sides[0][0].value) if sides[0][0].value else 0)  # a percentage
         about = f"{_SIDES[kind, member.node.centred]} of {source.member.text}"
         behind = replace(source, member=replace(source.member, text=about), node=_prefixed(source, kind), amount=truth)
-        ground = Ground(truth, "circuit", behind, (behind, one), names, names.ledger)
+        ground = Ground(truth, source.basis or "working", behind, (behind, one), names, names.ledger)
         grounds.append(ground)
         steps.append(judge_member(one, member.relation or "=", ground))
     worst = max(range(2), key=lambda k: _ORDER.index(steps[k].verdict))

@@ -75,7 +75,7 @@ def judge_value(w: Worked, p: Printed, relation: Relation, ground: Ground) -> St
     allowance = ground.names.allowance(ground.source)
     if allowance and size(p.value - t) <= (p.half if p.digits else 0) + allowance:
         return decided(w, "agrees")
-    if 0 < ground.outwards * (p.value - t) < p.unit:
+    if p.figures >= 2 and 0 < ground.outwards * (p.value - t) < p.unit:
         return decided(w, "rounded", f"rounded outwards (as JCGM 100, 7.2.6, allows): {near}")
     law = _carried(p, t, ground, zero)
     if law:

@@ -18,6 +18,7 @@ from calccheck.formula import (
     Number,
     Prefix,
     Qualifiers,
+    Range,
     Reference,
     Unary,
     references,
@@ -151,6 +152,8 @@ def _with_unit(node: Node, text: str) -> Node:
             return replace(node, unit=unit.unit, unit_words=unit.unit_words)
         case Unary():
             return replace(node, operand=_with_unit(node.operand, text))
+        case Range():
+            return replace(node, low=_with_unit(node.low, text), high=_with_unit(node.high, text))
     return node
 
 
