@@ -18,7 +18,7 @@ from calccheck.model import Circuit, Element
 from calccheck.printing import shown
 from calccheck.source import Span
 from calccheck.toleranced import PLAIN, Effect, Extreme, Formula, Point, Tolerancing, worked
-from calccheck.units import NONE
+from calccheck.units import AMPERE, NONE, VOLT, WATT, Dimension
 
 ERRORS = 3  # standard errors that a sampled value may be off
 _NAMED = 8  # values that a sentence names
@@ -90,12 +90,19 @@ def extreme(node: Node, nominal: Amount, largest: bool, s: Spreading, scale: Rea
     _refuse_steady(formula, node.span)
     found = s.tolerances.extreme(formula, largest)
     value = value_at(formula, closing, found.point, s.ledger, node.span)
-    like = max(size(value), size(found.value), size(nominal.value), scale)
+    like = max(size(value), size(found.value), size(nominal.value), scale, _scale(formula, nominal.dimension, s.ledger))
     if isinstance(value, complex) or size(value - found.value) > _SAME * like:
         raise Doubt("the extreme found and its solution by two routes do not agree", node.span)
     where = place(found, formula)
     told = f"the {'largest' if largest else 'least'} within tolerances, {where}; {found.how}"
     return Found(replace(nominal, value=value), told, 0, where, found.how, found.point)
+
+
+def _scale(formula: Formula, dimension: Dimension, ledger: Ledger) -> Real:
+    """The largest like value of the circuits that are read: where things cancel, rounding is still of the order of what cancels."""
+    largest = {VOLT: "volts", AMPERE: "amperes", WATT: "watts"}.get(dimension)
+    found = [ledger.solve(r.circuit, r.frequency) for r in formula.readings.values()] if largest else []
+    return max((getattr(solution, largest) for solution in found if largest), default=0)
 
 
 def _refuse_steady(formula: Formula, span: Span) -> None:
