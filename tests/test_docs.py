@@ -72,8 +72,9 @@ def test_every_document_can_be_reached_from_the_readme() -> None:
 # --- what the documents may say -------------------------------------------------------------------------------------
 
 
-def test_the_picture_is_small() -> None:
-    picture = (DOCS / "images" / "marked-page.png").read_bytes()
+@pytest.mark.parametrize("name", ["marked-page.png", "marked-screen.png"])
+def test_the_picture_is_small(name: str) -> None:
+    picture = (DOCS / "images" / name).read_bytes()
     assert picture.startswith(b"\x89PNG") and len(picture) < 200_000
 
 
