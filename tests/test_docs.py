@@ -35,7 +35,7 @@ STANDS = {
     "QUANTITY": "V_bus",
     "--on DATE": "--on 2026-12-01",
 }
-INSTALLS = re.compile(r"python3? -m venv|pip install|pre-commit|pytest|ruff|pymupdf")
+INSTALLS = re.compile(r"python3? -m venv|pip install|pre-commit|pytest|ruff|images/make")
 
 
 # --- links ----------------------------------------------------------------------------------------------------------
