@@ -4,7 +4,7 @@ from __future__ import annotations
 
 import cmath
 import math
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 from decimal import Decimal
 from fractions import Fraction
 
@@ -46,10 +46,16 @@ def printed_phasor(node: Node) -> PrintedPhasor | None:
     """``3.2 V ∠ −41.3°``, ``(2.4 − j2.1) V``, ``−j2.1 Ω``; nothing for what is no printed phasor."""
     if isinstance(node, Binary) and node.operator == "∠":
         magnitude, angle = printed(node.left), printed(node.right)
-        return PrintedPhasor(magnitude, angle, True) if magnitude and angle else None
-    if isinstance(node, Unary) and node.sign == "-" and isinstance(node.operand, Group):
+        if magnitude is None or angle is None:
+            return None
+        return _half_turned(magnitude, angle) if magnitude.value < 0 else PrintedPhasor(magnitude, angle, True)
+    if isinstance(node, Unary) and node.sign == "-" and isinstance(node.operand, Group | Binary):
         inner = printed_phasor(node.operand)
-        return PrintedPhasor(_turned(inner.first), _turned(inner.second), False) if inner and not inner.polar else None
+        if inner is not None and inner.polar:
+            return _half_turned(_turned(inner.first), inner.second)
+        if inner is not None and isinstance(node.operand, Group):
+            return PrintedPhasor(_turned(inner.first), _turned(inner.second), False)
+        return None
     unit = PLAIN
     while isinstance(node, Group):
         unit, node = (node.unit if node.unit.text else unit), node.inner
@@ -63,6 +69,12 @@ def printed_phasor(node: Node) -> PrintedPhasor | None:
         if same
         else None
     )
+
+
+def _half_turned(magnitude: Printed, angle: Printed) -> PrintedPhasor:
+    """``−7.7 V ∠ −40°`` is 7.7 V half a turn further."""
+    further = replace(angle, amount=replace(angle.amount, value=float(angle.value) + math.pi))
+    return PrintedPhasor(_turned(magnitude), further, True)
 
 
 def _rectangular(node: Node) -> tuple[Printed, Printed] | None:
