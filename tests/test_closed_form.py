@@ -217,12 +217,13 @@ def test_what_nobody_would_read_is_not_written():
     assert closed(ladder(4), "V_n4", "Vin/2") == ("", "")
 
 
+@pytest.mark.undisturbed
 def test_the_work_is_bounded():
     sheet = ladder(10) + "\n\n".join(f"`V_n{k} = Vin/{k + 1}`" for k in range(1, 11))
     check_text("s.md", sheet)
-    start = time.perf_counter()
+    start = time.process_time()
     report = check_text("s.md", sheet)
-    assert time.perf_counter() - start < 4.0
+    assert time.process_time() - start < 4.0
     assert report.counts["differs"] == 10
     algebra = Algebra({f"R{k}": OHM for k in range(12)})
     total = sum(algebra.generators.values(), algebra.zero)
@@ -233,13 +234,14 @@ def test_the_work_is_bounded():
     assert algebra.spent < MOST_WORK + len(power) * len(total) + 2
 
 
+@pytest.mark.undisturbed
 def test_a_sheet_with_many_wrong_formulas_gives_up_soon():
     """Of closed forms too long to read no more than a few are worked before the rest go without."""
     circuit = ladder(4)
     wrong = "\n\n".join(f"`V_n4 = Vin/{k}`" for k in range(2, 42))
-    start = time.perf_counter()
+    start = time.process_time()
     assert check_text("s.md", circuit + wrong).counts["differs"] == 40
-    assert time.perf_counter() - start < 5.0
+    assert time.process_time() - start < 5.0
 
 
 @pytest.mark.parametrize(

@@ -390,7 +390,7 @@ ANY = st.one_of(SOUP, st.text(max_size=60), st.text("()+-^√|∥ 1R", max_size=
 def test_any_text_gives_nodes_within_it_or_a_doubt_within_it(text: str, offset: int) -> None:
     piece, ends = whole(text, offset), (offset, offset + len(text))
     for reader in (parse, parse_value, parse_chain, parse_qualifiers):
-        began = time.perf_counter()
+        began = time.process_time()
         try:
             read_as = reader(piece)
         except Doubt as d:
@@ -398,7 +398,7 @@ def test_any_text_gives_nodes_within_it_or_a_doubt_within_it(text: str, offset: 
             assert d.span is None or _within(d.span, ends)
             continue
         finally:
-            assert time.perf_counter() - began < 5
+            assert time.process_time() - began < 5
         if reader is parse_chain:
             for m in read_as:
                 assert _within(m.span, ends)

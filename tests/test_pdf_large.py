@@ -61,6 +61,7 @@ def test_every_claim_of_the_large_sheet_is_marked_and_recorded(large):
     assert all(f"PAGE{k}of{len(pages)}" in page for k, page in enumerate(pages, 1))
 
 
+@pytest.mark.undisturbed
 def test_time_grows_with_the_sheet_and_memory_is_bounded(large, tmp_path):
     """Four times the sheet takes four times as long; six times, and something in it grows faster than the sheet."""
     whole, _ = large

@@ -201,6 +201,7 @@ def large_net(rng):
     return Net([*hand_ac.named(parts), *sources, hand.Part("I", "Ia", "com", "n12", 0.01)], 400)
 
 
+@pytest.mark.undisturbed
 def test_a_hundred_wrong_claims_stay_within_their_time():
     """Twenty nodes: no more than three times the time of the right claims, and 50 ms for each wrong one."""
     rng = random.Random(20)
@@ -210,11 +211,11 @@ def test_a_hundred_wrong_claims_stay_within_their_time():
     wanted = rng.sample([q for q in quantities if abs(worth(q, net)) > 1e-9], 100)
     right, wrong = (sheet_of(net, wanted, factor) for factor in (1.0, 1.07))
     check(right, Settings())
-    start = time.perf_counter()
+    start = time.process_time()
     standing = check(right, Settings())
-    middle = time.perf_counter()
+    middle = time.process_time()
     failing = check(wrong, Settings())
-    end = time.perf_counter()
+    end = time.process_time()
     assert (standing.counts["agrees"], failing.counts["differs"]) == (100, 100)
     assert end - middle <= 3 * (middle - start) + 0.05 * failing.counts["differs"]
 
