@@ -47,8 +47,13 @@ def sentence(text: str, names: frozenset[str] = frozenset()) -> str:
     return text if not text or text.endswith(_ENDS) else f"{text}."
 
 
+def unparted(text: str) -> str:
+    """The text with values kept on one line with their units, by no-break spaces."""
+    return _VALUE.sub("\u00a0", text)
+
+
 def code_pieces(text: str) -> Iterator[tuple[bool, str]]:
     """The text in pieces, each with whether it stood between backticks, which are left out; values kept with their units."""
-    for k, piece in enumerate(_CODE.split(_VALUE.sub("\u00a0", text))):
+    for k, piece in enumerate(_CODE.split(unparted(text))):
         if piece:
             yield k % 2 == 1, piece

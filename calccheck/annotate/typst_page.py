@@ -8,6 +8,7 @@ from itertools import zip_longest
 
 from calccheck.annotate.pictures import Shown
 from calccheck.annotate.places import Places, marks_in, runs
+from calccheck.annotate.sentences import unparted
 from calccheck.annotate.typst_marks import commented, line_number, mark_source, run_source
 from calccheck.annotate.typst_pictures import figure
 from calccheck.annotate.typst_text import literal, shown
@@ -222,4 +223,5 @@ def _link(s: Setting, i: Inline) -> str:
 
 
 def _runs(s: Setting, piece: Piece) -> str:
-    return "".join(run_source(run, shown(run.text, s.missing), s.below) for run in runs(s.where, piece))
+    found = runs(s.where, piece)
+    return "".join(run_source(run, shown(unparted(run.text), s.missing), s.below) for run in found)
