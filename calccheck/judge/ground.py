@@ -84,7 +84,7 @@ class Ground:
             which = " and ".join(dict.fromkeys(_shown(n) for n in lost))
             verb = "stands" if len({_shown(n) for n in lost}) == 1 else "stand"
             self.cautions.append(
-                f"untraced: {which} {verb} for no part, given, earlier value or piece of the formula; taken as exact"
+                f"untraced: {which} {verb} for no part, given, earlier value or piece of the formula; taken as printed"
             )
 
 

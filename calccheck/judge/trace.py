@@ -87,7 +87,9 @@ def _one(n: Number, meanings: Meanings, ledger: Ledger) -> Traced:
         return Traced(n, 0, True, faulty=earlier)
     plain = p.amount.dimension == NONE and not n.unit.text
     real_value = is_angle(p) and p.digits == 0  # which has no angle that could be traced
-    return Traced(n, 0, plain or real_value or any(_same(p, a) for a in meanings.repeated))
+    found = plain or real_value or any(_same(p, a) for a in meanings.repeated)
+    worked = not found and bool(n.unit.text) and p.figures >= 3  # a result whose working the sheet leaves out
+    return Traced(n, p.half if worked else 0, found)
 
 
 _ALIKE = 1e-12
