@@ -8,6 +8,7 @@ from dataclasses import replace
 from datetime import date
 from fractions import Fraction
 from functools import cache
+from typing import TYPE_CHECKING
 
 from calccheck.arithmetic import Doubt
 from calccheck.edits import stray, unmark
@@ -15,11 +16,9 @@ from calccheck.formula import Node, Reference
 from calccheck.judge.cautions import caution_findings
 from calccheck.judge.preferred import preferred_findings
 from calccheck.judge.quantities import frequencies
-from calccheck.judge.ratings import held_ratings
 from calccheck.judge.references import Find, reference_findings
 from calccheck.judge.scope import Solve
 from calccheck.judge.sheet import judge_sheet, ledger_of
-from calccheck.judge.slips.redo import Earlier
 from calccheck.judge.symbols import instance, points
 from calccheck.judge.working import work_out as worked_out
 from calccheck.model import (
@@ -43,6 +42,9 @@ from calccheck.sought import ClosedForm, Meaning
 from calccheck.source import Sheet, whole
 from calccheck.toleranced import Tolerancing
 from calccheck.units import Dimension
+
+if TYPE_CHECKING:
+    from calccheck.judge.slips.redo import Earlier
 
 EarlierTexts = Callable[[], Iterable[tuple[str, str]]]
 
@@ -101,6 +103,8 @@ def _ratings(
     """Every rating of the circuits that stand as drawn, the nearest to its limit first, and findings."""
     if not any(e.ratings for c in reading.circuits for e in c.elements):
         return (), []
+    from calccheck.judge.ratings import held_ratings  # late: many circuits state no ratings
+
     ledger = ledger_of(reading, solve_once, points(reading.circuits)[0], fails, over_tolerances)
     held: list[RatingHeld] = []
     findings: list[Finding] = []
@@ -124,6 +128,8 @@ def _circuits_of(earlier: EarlierTexts, name: str) -> Callable[[], tuple[Earlier
 
     @cache
     def read() -> tuple[Earlier, ...]:
+        from calccheck.judge.slips.redo import Earlier  # late: only where a claim differs
+
         texts = ((label, Sheet(name, unmark(text))) for label, text in earlier())
         return tuple(Earlier(label, read_sheet(sheet, Settings()).circuits) for label, sheet in texts)
 

@@ -3,7 +3,6 @@
 from __future__ import annotations
 
 from collections.abc import Sequence
-from hashlib import sha256
 
 from calccheck.annotate.marks import MARKS
 from calccheck.annotate.record import Entry
@@ -49,6 +48,8 @@ def counts(report: Report) -> list[tuple[str, list[int]]]:
 
 def digest(report: Report) -> str:
     """SHA-256 of the sheet as UTF-8, in hexadecimal."""
+    from hashlib import sha256  # late: the terminal shows none
+
     return sha256(report.reading.sheet.text.encode("utf-8", "surrogatepass")).hexdigest()
 
 

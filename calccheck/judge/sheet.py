@@ -6,20 +6,23 @@ from collections.abc import Callable, Sequence
 from dataclasses import replace
 from datetime import date
 from fractions import Fraction
+from functools import cache
+from typing import TYPE_CHECKING
 
 from calccheck.judge.chain import judge_claim
-from calccheck.judge.dependence import depending
 from calccheck.judge.miss import Miss
 from calccheck.judge.new_names import assumptions
-from calccheck.judge.right_formula import RightFormulas
 from calccheck.judge.rounding import Printed, fit, printed
 from calccheck.judge.scope import Ledger, Solve
-from calccheck.judge.slips.redo import Earlier, Redo, SolveBatch
 from calccheck.judge.symbols import Point, combined, instance, points
 from calccheck.model import Circuit, Finding, Judged, Reading, Waiver
 from calccheck.rules import RULES
 from calccheck.sought import Close
 from calccheck.toleranced import Tolerancing
+
+if TYPE_CHECKING:  # late, where they are used: most sheets have no claim that differs, and no free symbols
+    from calccheck.judge.right_formula import RightFormulas
+    from calccheck.judge.slips.redo import Earlier, Redo, SolveBatch
 
 
 def judge_sheet(
@@ -43,10 +46,22 @@ def judge_sheet(
     ledgers = [ledger_of(reading, solve, p, fails, tolerances) for p in drawn]
 
     def depend_on(j: Judged) -> list[str]:
+        from calccheck.judge.dependence import depending
+
         return depending(j, reading, ledgers[0], lambda p: ledger_of(reading, solve, p, fails, tolerances), drawn[-1])
 
-    redo = Redo(solve, solve_batch, earlier)
-    right = RightFormulas(close, ledgers) if close is not None and drawn[0] else None
+    @cache
+    def redo() -> Redo:
+        from calccheck.judge.slips.redo import Redo
+
+        return Redo(solve, solve_batch, earlier)
+
+    @cache
+    def right() -> RightFormulas | None:
+        from calccheck.judge.right_formula import RightFormulas
+
+        return RightFormulas(close, ledgers) if close is not None and drawn[0] else None
+
     judged: list[Judged] = []
     findings: list[Finding] = []
     for claim in reading.claims:
@@ -72,7 +87,9 @@ def ledger_of(
     return ledger
 
 
-def _explained(j: Judged, misses: Sequence[Miss | None], redo: Redo, right: RightFormulas | None) -> Judged:
+def _explained(
+    j: Judged, misses: Sequence[Miss | None], redo: Callable[[], Redo], right: Callable[[], RightFormulas | None]
+) -> Judged:
     """A claim that differs with the slips that would give its number; where many would, the number does not decide.
 
     In symbols, with the right formula.
@@ -80,13 +97,14 @@ def _explained(j: Judged, misses: Sequence[Miss | None], redo: Redo, right: Righ
     miss = next((m for m in misses if m is not None), None)
     if j.verdict != "differs" or miss is None:
         return j
-    from calccheck.judge.slips.naming import name_slips  # late: most sheets have no claim that differs
+    from calccheck.judge.slips.naming import name_slips
 
-    slips, undecided = name_slips(miss, redo)
+    slips, undecided = name_slips(miss, redo())
     if undecided:
         told = f"{len(slips)} kinds of slip give this number, so it does not decide between them"
         j = replace(j, message=f"{j.message}; {told}")
-    formula = right.said(miss) if right is not None else ""
+    formulas = right()
+    formula = formulas.said(miss) if formulas is not None else ""
     return replace(j, slips=slips, message=f"{j.message}; {formula}" if formula else j.message)
 
 

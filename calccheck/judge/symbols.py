@@ -9,7 +9,6 @@ from __future__ import annotations
 from collections.abc import Callable, Mapping, Sequence
 from dataclasses import replace
 from fractions import Fraction
-from hashlib import sha256
 
 from calccheck.arithmetic import Amount, Doubt, evaluate, real
 from calccheck.formula import Reference
@@ -32,6 +31,8 @@ def points(circuits: Sequence[Circuit]) -> tuple[Point, ...]:
 
 
 def _drawn(name: str, k: int) -> Fraction:
+    from hashlib import sha256  # late: most circuits have no free symbols
+
     number = int.from_bytes(sha256(f"{name} {k}".encode()).digest()[:8], "big")
     return Fraction(1, 2) + Fraction(number % (7 * _SPREAD), 2 * _SPREAD)
 

@@ -5,7 +5,6 @@ from __future__ import annotations
 import re
 from collections.abc import Collection, Iterable, Sequence
 from dataclasses import dataclass
-from difflib import get_close_matches
 
 from calccheck.model import Finding
 from calccheck.read.tokens import SUPERSCRIPTS
@@ -56,6 +55,8 @@ def listed(names: Sequence[str], joint: str = "and") -> str:
 
 def nearest(name: str, known: Collection[str]) -> str:
     """The known name that looks most like a mistyped one; empty where none does, and among too many to look through."""
+    from difflib import get_close_matches  # late: only for a name that is unknown
+
     near = get_close_matches(name, list(known), 1) if len(known) <= _MANY else []
     return near[0] if near else ""
 

@@ -5,7 +5,6 @@ from __future__ import annotations
 import re
 from collections.abc import Callable, Mapping
 from dataclasses import replace
-from difflib import get_close_matches
 from fractions import Fraction
 from typing import Any
 
@@ -28,6 +27,8 @@ def with_setting(settings: Settings, key: str, value: str) -> Settings:
     """The settings with one of them set from text: ``carry``, ``0.5 %``. Raises ``SettingFault``."""
     read = _READERS.get(key)
     if read is None:
+        from difflib import get_close_matches  # late: only for a setting that is unknown
+
         near = get_close_matches(key, list(_READERS), 1)
         hint = f"is {near[0]} meant?" if near else f"known are {', '.join(_READERS)}"
         raise SettingFault(f"there is no setting {key}; {hint}")
