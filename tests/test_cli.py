@@ -516,14 +516,37 @@ def test_colour_on_a_terminal_unless_told_otherwise(folder):
 
 @pytest.mark.undisturbed
 def test_a_check_loads_nothing_that_it_does_not_use(folder):
+    """Each module here would cost a plain sheet milliseconds; what is below a name counts with it."""
     write(folder / "a.md", RIGHT)
-    late = ["sympy", "pint", "typst", "pypdf", "json", "tomllib", "concurrent.futures", "yaml", "scipy", "multiprocessing",
-            "importlib.metadata", "subprocess", "tempfile", "calccheck.annotate.to_markdown"]  # fmt: skip
-    code = f"import sys; from calccheck.cli import main; main(['check', 'a.md']); print([m for m in {late} if m in sys.modules])"
+    late = {
+        "sympy", "mpmath", "scipy", "pint", "pypdf", "typst", "yaml", "mdit_py_plugins", "pygls", "lsprotocol", "json", "tomllib",
+        "subprocess", "tempfile", "multiprocessing", "concurrent", "asyncio", "socket", "ssl", "http", "email", "xml", "hashlib",
+        "difflib", "random", "statistics", "unittest", "importlib.metadata", "numpy.random", "numpy.fft", "numpy.ma",
+        "calccheck.annotate.to_markdown", "calccheck.annotate.to_json", "calccheck.judge.slips", "calccheck.judge.ratings",
+        "calccheck.judge.right_formula", "calccheck.solve.tolerance", "calccheck.solve.symbolic", "calccheck.read.mending",
+    }  # fmt: skip
+    code = (  # what the two libraries load themselves is their affair
+        "import sys, numpy, markdown_it; before = set(sys.modules); "
+        "from calccheck.cli import main; main(['check', 'a.md']); print(*set(sys.modules) - before)"
+    )
     done = subprocess.run(
         [sys.executable, "-c", code], capture_output=True, text=True, env={**os.environ, "PYTHONUTF8": "1"}
     )
-    assert done.stdout.endswith("\n[]\n"), done.stdout
+    loaded = done.stdout.splitlines()[-1].split()
+    assert "calccheck.solve.nodal" in loaded, done.stdout + done.stderr
+    assert [m for m in loaded if any(m == name or m.startswith(f"{name}.") for name in late)] == []
+
+
+def test_linear_algebra_starts_no_threads_but_where_they_are_asked_for(folder):
+    write(folder / "a.md", RIGHT)
+    code = (
+        "import os, sys; os._exit = lambda status: print(status, os.environ['OMP_NUM_THREADS']); "
+        "sys.argv = ['calccheck', 'check', 'a.md']; from calccheck.cli import entry; entry()"
+    )
+    for told, found in (({}, "0 1"), ({"OMP_NUM_THREADS": "3"}, "0 3")):
+        environment = {k: v for k, v in os.environ.items() if k != "OMP_NUM_THREADS"} | {"PYTHONUTF8": "1"} | told
+        done = subprocess.run([sys.executable, "-c", code], capture_output=True, text=True, env=environment)
+        assert done.stdout.splitlines()[-1] == found, done.stdout + done.stderr
 
 
 @pytest.mark.parametrize(("typed", "offered"), [("calccheck ch", "check"), ("calccheck mark --to ", "md html pdf")])
