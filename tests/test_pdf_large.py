@@ -62,6 +62,7 @@ def test_every_claim_of_the_large_sheet_is_marked_and_recorded(large):
 
 
 @pytest.mark.undisturbed
+@pytest.mark.undisturbed
 def test_time_grows_with_the_sheet_and_memory_is_bounded(large, tmp_path):
     """Four times the sheet takes four times as long; six times, and something in it grows faster than the sheet."""
     whole, _ = large
