@@ -176,11 +176,12 @@ def _notes(s: Setting, children: Sequence[Inline]) -> str:
 
 def note_html(s: Setting, e: Entry) -> str:
     """What stands behind a block about one of its claims, with ways to the next and back to the list."""
-    label = f'<strong class="ink-{e.kind}">{MARKS[e.kind].label} {escape(e.number)}</strong>'
+    kind = e.note_kind
+    label = f'<strong class="ink-{kind}">{MARKS[kind].label} {escape(e.number)}</strong>'
     onward = s.following.get(e.key)
     jumps = f'<a href="#l-{e.key}">to the list</a>'
     jumps += f' <a href="#{onward}">to the next</a>' if onward else ""
-    return f'<div class="beside ink-{e.kind}" role="note">{label} <span class="jump">{jumps}</span>{told(note_lines(e))}</div>\n'
+    return f'<div class="beside ink-{kind}" role="note">{label} <span class="jump">{jumps}</span>{told(note_lines(e))}</div>\n'
 
 
 # --- inlines --------------------------------------------------------------------------------------------------------

@@ -103,6 +103,6 @@ def _listed(report: Report, e: Entry, placed: Collection[str]) -> str:
     what = written(report, e) if e.key[0] == "c" else said(e.text)
     line = f'<span class="soft">line {e.line}</span>'
     return (
-        f'<li id="l-{e.key}" class="ink-{e.kind}">{to_mark(e, placed)} <span class="plain">{what}</span> {line}'
+        f'<li id="l-{e.key}" class="ink-{e.note_kind}">{to_mark(e, placed)} <span class="plain">{what}</span> {line}'
         f"{told(note_lines(e))}</li>\n"
     )

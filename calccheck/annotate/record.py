@@ -71,6 +71,11 @@ class Entry:
         """Whether it is commented upon, as something to be mended."""
         return not self.echo and self.kind in NOTED
 
+    @property
+    def note_kind(self) -> str:
+        """What its note says: a caution beside a verdict that stands is a caution."""
+        return "caution" if self.cautions and self.kind not in BESIDE else self.kind
+
     def sentences(self, phrases: Iterable[str]) -> list[str]:
         """Phrases about this entry as sentences."""
         return [sentence(plain(p) if "\\" in self.text else p, self.names) for p in phrases]

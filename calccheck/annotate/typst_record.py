@@ -5,7 +5,6 @@ from __future__ import annotations
 from collections.abc import Iterable, Mapping, Sequence
 from dataclasses import dataclass, field
 
-from calccheck.annotate.marks import MARKS
 from calccheck.annotate.pictures import Shown, totals
 from calccheck.annotate.record import Entry, note_lines
 from calccheck.annotate.record_parts import BASES, digest, figure_cells, nearest_rating, settings_line
@@ -105,7 +104,6 @@ def notes(w: Words) -> str:
 
 
 def _note(w: Words, e: Entry) -> str:
-    kind = e.kind if e.kind in MARKS else "note"
     said = "".join(f"[{w.tell(t)}]," for t in note_lines(e))
     brief = e.computed or e.deviation or f"line {e.line}"
-    return f"{literal(e.key)}: (kind: {literal(kind)}, number: {literal(e.number)}, brief: [{w.say(brief)}], lines: ({said})),"
+    return f"{literal(e.key)}: (kind: {literal(e.note_kind)}, number: {literal(e.number)}, brief: [{w.say(brief)}], lines: ({said})),"

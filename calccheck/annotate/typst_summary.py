@@ -4,7 +4,7 @@ from __future__ import annotations
 
 from collections.abc import Sequence
 
-from calccheck.annotate.record import BESIDE, Entry, headline, worst_first
+from calccheck.annotate.record import Entry, headline, worst_first
 from calccheck.annotate.record_parts import MEANINGS, counts, givens, raised, untitled, waivers
 from calccheck.annotate.typst_record import Words
 from calccheck.annotate.typst_text import literal
@@ -49,11 +49,10 @@ def _worst(w: Words, rows: Sequence[Entry]) -> str:
 
 
 def _worst_row(w: Words, e: Entry) -> str:
-    kind = "caution" if e.cautions and e.kind not in BESIDE else e.kind
     words = w.written(e) if e.key[0] == "c" else w.say(e.text)
     told = e.sentences([e.message] if e.message else e.cautions[:1])
     return (
-        f"({literal(kind)}, {literal(e.number)}, {w.target(e)}, {literal(str(e.line))}, [{words}], "
+        f"({literal(e.note_kind)}, {literal(e.number)}, {w.target(e)}, {literal(str(e.line))}, [{words}], "
         f"[{w.say(e.computed)}], [{w.say(e.deviation)}], [{w.tell(' '.join(told))}]),"
     )
 
