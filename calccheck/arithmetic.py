@@ -67,35 +67,30 @@ def evaluate(node: Node, lookup: Lookup, number: Literal = literal, note: Note |
     ``DimensionFault`` for sums of unlike dimensions.
     """
 
-    def plain(n: Node) -> Amount:
+    def work(n: Node) -> Amount:
         match n:
             case Number():
-                return number(n)
+                a = number(n)
             case Reference():
-                return lookup(n)
-            case Unary():
-                return _unary(n, work(n.operand))
-            case Group():
-                inner = work(n.inner)
-                if not n.unit.text:
-                    return inner
-                return _product(inner, Amount(n.unit.factor, n.unit.dimension), n.span)
+                a = lookup(n)
             case Binary():
-                return _binary(n, work(n.left), work(n.right))
+                a = _binary(n, work(n.left), work(n.right))
+            case Group():
+                a = work(n.inner)
+                if n.unit.text:
+                    a = _product(a, Amount(n.unit.factor, n.unit.dimension), n.span)
+            case Unary():
+                a = _unary(n, work(n.operand))
             case Call(function="dB"):
-                return decibels(n.arguments[0], work)
+                a = decibels(n.arguments[0], work)
             case Call():
-                return _call(n, [work(a) for a in n.arguments])
+                a = _call(n, [work(inner) for inner in n.arguments])
             case Range():
                 raise Doubt("a range stands only as the value of a claim", n.span)
-
-    def noted(n: Node) -> Amount:
-        a = plain(n)
         if note is not None:
             note(n, a)
         return a
 
-    work = plain if note is None else noted
     return work(node)
 
 
@@ -202,6 +197,8 @@ def power(a: Amount, b: Amount, span: Span) -> Amount:
     if a.point:
         raise Doubt("a temperature in °C is raised to a power", span)
     raised = real(b.value, span)
+    if raised == 2 and isinstance(a.value, Fraction):  # by far the most
+        return Amount(trimmed(a.value * a.value), tuple(2 * x for x in a.dimension), frequency=a.frequency)
     exponent = Fraction(raised).limit_denominator(1000)
     if a.dimension != NONE and abs(float(exponent) - float(raised)) > 1e-12:
         raise Doubt("a quantity with a unit is raised to a power that is no simple fraction", span)

@@ -82,6 +82,8 @@ def whole(text: str, offset: int = 0) -> Piece:
 
 def joined(pieces: Sequence[Piece], joint: str = "\n") -> Piece:
     """Pieces one behind the other, ``joint`` (which stands nowhere) between them."""
+    if len(pieces) == 1:
+        return pieces[0]
     text, at, last = "", [], 0
     for k, piece in enumerate(pieces):
         if k:

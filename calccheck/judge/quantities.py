@@ -34,6 +34,13 @@ class Linear:
 
 def amount(key: Key, ledger: Ledger, span: Span) -> Amount:
     """The value of a quantity. Raises ``Doubt`` where its circuit cannot be solved or it has no value."""
+    found = ledger.amounts.get(key)
+    if found is None:
+        found = ledger.amounts[key] = _worked_out(key, ledger, span)
+    return found
+
+
+def _worked_out(key: Key, ledger: Ledger, span: Span) -> Amount:
     circuit = circuit_of(key, ledger, span)
     if key.letter in ("P", "S", "Q"):
         return _power(key, circuit, ledger, span)

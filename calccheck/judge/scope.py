@@ -12,7 +12,7 @@ from typing import Literal, Protocol
 
 from calccheck.arithmetic import Amount, Doubt, Real, evaluate, size
 from calccheck.component_code import component_code
-from calccheck.formula import Change, ChangeKind, Node, Reference
+from calccheck.formula import NO_QUALIFIERS, Change, ChangeKind, Node, Reference
 from calccheck.judge.phasors import PrintedPhasor, Sized
 from calccheck.judge.rounding import Printed
 from calccheck.model import Basis, Circuit, Element, Settings, Solution, State, Tolerance, Verdict
@@ -260,6 +260,8 @@ def quantity_key(ref: Reference, index: int, circuit: Circuit, ledger: Ledger) -
     if not fits:
         return None
     q = ref.qualifiers
+    if q == NO_QUALIFIERS:
+        return Key(index, ref.letter, subs)
     due_to = frozenset(_in_maths(s, circuit) for s in q.due_to) if ref.maths else frozenset(q.due_to)
     told = [*_case(ref, circuit), *q.changes] if q.case else q.changes
     changes = tuple(

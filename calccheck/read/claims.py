@@ -178,7 +178,8 @@ def _text(found: Found, block: Block, circuit: int, names: Collection[str], firs
         elif inline.kind == "html":
             _html(found, inline, start)
     found.claims += prose_claims(block, names, circuit)
-    found.claims[start:] = sorted(found.claims[start:], key=lambda c: c.span.start)
+    if len(found.claims) > start + 1:
+        found.claims[start:] = sorted(found.claims[start:], key=lambda c: c.span.start)
 
 
 def _html(found: Found, inline: Inline, start: int) -> None:

@@ -122,17 +122,18 @@ def _claim(cell: Block, subject: Subject, edge: Edge, unit: str, circuit: int) -
     shown = f"{piece.text} {unit}" if unit and not re.search(r"[^\W\d]|[%°]", piece.text) else piece.text
     about = f"({subject.text})" if edge.prefix and isinstance(subject.node, Binary) else subject.text
     text = " ".join(f"{edge.prefix} {about} {edge.text} {relation} {shown}".split())
-    claim = Claim(text, cell.span, "table", circuit)
     if subject.node is None or edge.role == "doubt":
-        reason = subject.reason or edge.reason
-        return replace(claim, problem=Problem(reason, cell.span, subject.suggestion))
+        problem = Problem(subject.reason or edge.reason, cell.span, subject.suggestion)
+        return Claim(text, cell.span, "table", circuit, problem=problem)
+    label = text.partition(f" {relation} ")[0]
     try:
-        first = _prefixed(_qualified(subject.node, edge), edge, text.partition(f" {relation} ")[0])
+        first = _prefixed(_qualified(subject.node, edge), edge, label)
         value = _with_unit(parse_value(piece), unit)
     except Doubt as d:
-        return replace(claim, problem=Problem(d.reason, d.span or cell.span, d.suggestion))
-    label = text.partition(f" {relation} ")[0]
-    return replace(claim, members=(Member("", first, label, cell.span), Member(relation, value, shown, cell.span)))
+        problem = Problem(d.reason, d.span or cell.span, d.suggestion)
+        return Claim(text, cell.span, "table", circuit, problem=problem)
+    members = (Member("", first, label, cell.span), Member(relation, value, shown, cell.span))
+    return Claim(text, cell.span, "table", circuit, members)
 
 
 def _is_claim(cell: Block) -> bool:
@@ -184,6 +185,8 @@ def _qualified(node: Node, edge: Edge) -> Node:
 
 def _reference(node: Reference, edge: Edge) -> Reference:
     mine, more = node.qualifiers, edge.qualifiers
+    if more == NO_QUALIFIERS:
+        return node
     both = [mine.due_to and more.due_to, mine.case and more.case, mine.circuit and more.circuit]
     if any(both) or (mine.frequency is not None and more.frequency is not None):
         raise Doubt("both edges of the table give the same qualifier", node.span)
