@@ -146,6 +146,16 @@ class Slip:
 
 
 @dataclass(frozen=True, slots=True)
+class Sensitivity:
+    """How a value moves a quantity. ``by_percent``: when it rises by 1 %, to first order; ``low``, ``high``: at its ends, alone."""
+
+    name: str
+    by_percent: Amount
+    low: Amount
+    high: Amount
+
+
+@dataclass(frozen=True, slots=True)
 class Judged:
     """A claim with its verdict.
 
@@ -153,6 +163,7 @@ class Judged:
     in. ``computed``: the truth in SI. ``low``, ``high``: of a bound or range. ``deviation``: relative to the truth.
     ``message``: one sentence. ``cautions``: said beside a verdict that stands. ``parts``: of a voltage or current that several
     independent sources bring about, what each brings, by its name in the order of the block; their sum is the truth.
+    ``moves``: of one that is claimed over its tolerances, what moves it, largest first.
     """
 
     claim: Claim
@@ -170,6 +181,7 @@ class Judged:
     cautions: tuple[str, ...] = ()
     slips: tuple[Slip, ...] = ()
     parts: tuple[tuple[str, Amount], ...] = ()
+    moves: tuple[Sensitivity, ...] = ()
 
 
 # --- findings and reports -------------------------------------------------------------------------------------------
@@ -257,16 +269,6 @@ class Reading:
     findings: tuple[Finding, ...]
     not_read: int = 0
     signatures: tuple[Signature, ...] = ()
-
-
-@dataclass(frozen=True, slots=True)
-class Sensitivity:
-    """How a value moves a quantity. ``by_percent``: when it rises by 1 %, to first order; ``low``, ``high``: at its ends, alone."""
-
-    name: str
-    by_percent: Amount
-    low: Amount
-    high: Amount
 
 
 @dataclass(frozen=True, slots=True)

@@ -42,11 +42,11 @@ def picture(
 ) -> svg.Picture:
     """The image and its size. Parts at AC are listed by magnitude and angle. ``missing``: characters that no font shows."""
     found = rows(parts, unit)
-    names = [_cut(svg.visible(bar.name, missing), _LONGEST_NAME) for bar in found]
+    names = [cut(svg.visible(bar.name, missing), _LONGEST_NAME) for bar in found]
     left = _EDGE + max(map(svg.width, names)) + _APART
     right = left + (_LENGTH + _APART if found[-1].end is not None else 0.0)
     right += max(svg.width(bar.value) for bar in found)
-    head = _cut(svg.visible(quantity, missing), _LONGEST_QUANTITY)
+    head = cut(svg.visible(quantity, missing), _LONGEST_QUANTITY)
     body = [svg.text(_EDGE, _EDGE + svg.ascent(), head, bold=True)]
     for k, (bar, name) in enumerate(zip(found, names, strict=True)):
         last = k == len(found) - 1
@@ -72,16 +72,18 @@ def rows(parts: Sequence[tuple[str, Amount]], unit: str = "") -> list[Bar]:
     low, high = min(0.0, *ends), max(0.0, *ends)
     places = [(x - low) / ((high - low) or 1.0) for x in (0.0, *ends)]
     reach = pairwise(places)
-    found = [Bar(name, _signed(a, unit), a0, a1) for (name, a), (a0, a1) in zip(parts, reach, strict=True)]
+    found = [Bar(name, signed(a, unit), a0, a1) for (name, a), (a0, a1) in zip(parts, reach, strict=True)]
     return [*found, Bar("total", shown(total, unit, _FIGURES), places[0], places[-1])]
 
 
-def _signed(a: Amount, unit: str) -> str:
+def signed(a: Amount, unit: str) -> str:
+    """A change with its sign."""
     text = shown(a, unit, _FIGURES)
     return text if text.startswith("−") or not a.value else f"+{text}"
 
 
-def _cut(text: str, longest: int) -> str:
+def cut(text: str, longest: int) -> str:
+    """A text of at most so many characters."""
     return text if len(text) <= longest else text[: longest - 1] + "…"
 
 
@@ -106,7 +108,7 @@ def _bar(bar: Bar, total: Bar, left: float, y: float) -> list[str]:
     if high - low < 0.5:
         return [axis, onward]
     side = svg.rectangle(low, top, high - low, _THICK, 0.8)
-    return [axis, onward, side, *_hatching(low, high, top, b > a), _tip(a, b, top)]
+    return [axis, onward, side, *hatching(low, high, top, b > a), _tip(a, b, top)]
 
 
 def _outline(low: float, high: float, top: float, height: float) -> str:
@@ -114,7 +116,7 @@ def _outline(low: float, high: float, top: float, height: float) -> str:
     return f"M{x1} {svg.number(top)}H{x2}V{svg.number(top + height)}H{x1}z"
 
 
-def _hatching(low: float, high: float, top: float, rising: bool) -> list[str]:
+def hatching(low: float, high: float, top: float, rising: bool) -> list[str]:
     """Slanting lines inside a bar: rising to the right where a part adds, falling where it takes off."""
     lines, x = "", low - _THICK + _HATCH
     while x < high:

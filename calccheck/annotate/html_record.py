@@ -2,14 +2,14 @@
 
 from __future__ import annotations
 
-from collections.abc import Collection, Sequence
+from collections.abc import Collection, Mapping, Sequence
 
 from calccheck import __version__
 from calccheck.annotate.html_math import written
 from calccheck.annotate.html_tables import TICK_BOX, Row, part, to_tick
 from calccheck.annotate.html_words import code, in_record, said, tell, to_mark, told
 from calccheck.annotate.marks import MARKS
-from calccheck.annotate.pictures import BY_SOURCE, totals
+from calccheck.annotate.pictures import BY_SOURCE, MOVED, Shown, moved, totals
 from calccheck.annotate.record import LIMITS, Entry
 from calccheck.annotate.record_parts import (
     BASES,
@@ -67,21 +67,26 @@ def _finding_row(e: Entry, placed: Collection[str]) -> Row:
 
 
 def _glance(report: Report, rows: Sequence[Entry]) -> str:
-    """Bars for every claimed total, each with links to its claims."""
+    """Bars for every claimed total, and of what moves what is claimed over its tolerances, each with links to its claims."""
     number = {e.key: e.number for e in rows}
+    parts = (("Superposition at a glance", BY_SOURCE, totals(report)), ("What moves it", MOVED, moved(report)))
+    return "".join(_pictures(head, words, shown, number) for head, words, shown in parts)
+
+
+def _pictures(head: str, words: str, shown: Sequence[Shown], number: Mapping[str, str]) -> str:
     charts = "".join(
         f"<figure>\n{p.picture.svg}<figcaption>"
         + ("Claim " if len(p.claims) == 1 else "Claims ")
         + ", ".join(f'<a href="#r-{key}">{number[key]}</a>' for key in p.claims)
         + "</figcaption>\n</figure>\n"
-        for p in totals(report)
+        for p in shown
         if p.picture is not None
     )
     if not charts:
         return ""
     return (
-        f'<h3>Superposition at a glance</h3>\n<p class="soft">{BY_SOURCE}</p>\n'
-        f'<div class="charts scroll" tabindex="0" role="group" aria-label="Superposition at a glance">\n{charts}</div>\n'
+        f'<h3>{head}</h3>\n<p class="soft">{words}</p>\n'
+        f'<div class="charts scroll" tabindex="0" role="group" aria-label="{head}">\n{charts}</div>\n'
     )
 
 

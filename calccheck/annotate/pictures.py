@@ -5,7 +5,7 @@ from __future__ import annotations
 from collections.abc import Collection, Iterator
 from dataclasses import dataclass
 
-from calccheck.annotate import bars
+from calccheck.annotate import bars, moves
 from calccheck.annotate.drawing import picture
 from calccheck.annotate.drawing.svg import Picture
 from calccheck.annotate.drawing.words import at
@@ -14,6 +14,7 @@ from calccheck.document import Block, blocks
 from calccheck.judge.quantities import LARGEST_GAP
 from calccheck.model import Circuit, Judged, Report, Solution
 
+MOVED = "What each value changes at the lower end of its tolerance (falling lines) and at the upper end (rising), alone; largest first."
 MOST_PARTS = 60  # of a circuit that is drawn: more are not legible on any paper
 BY_SOURCE = "Each source's part from where the one before it ends; the total from zero."
 
@@ -105,3 +106,27 @@ def _charts(claims: Iterator[tuple[str, Judged]], missing: Collection[str]) -> l
         )
         for group in found.values()
     ]
+
+
+# --- tolerances -----------------------------------------------------------------------------------------------------
+
+
+def moved(report: Report, missing: Collection[str] = ()) -> list[Shown]:
+    """Bars of what moves each quantity that is claimed over its tolerances, once each, in the sheet's order."""
+    found: dict[tuple[object, ...], list[tuple[str, Judged]]] = {}
+    for k, j in enumerate(report.claims, 1):
+        if any(m.low.value or m.high.value for m in j.moves):
+            found.setdefault((j.claim.circuit, j.moves), []).append((f"c{k}", j))
+    return [
+        Shown(
+            moves.picture(_bare(plain(group[0][1].quantity)), group[0][1].moves, group[0][1].claimed_unit, missing),
+            claims=tuple(key for key, _ in group),
+        )
+        for group in found.values()
+    ]
+
+
+def _bare(quantity: str) -> str:
+    """A quantity without the word that asks for its spread."""
+    first, _, rest = quantity.partition(" ")
+    return rest if first in ("min", "max", "worst", "rss", "sigma") and rest else quantity

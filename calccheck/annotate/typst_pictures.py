@@ -5,7 +5,7 @@ from __future__ import annotations
 from collections.abc import Mapping, Sequence
 
 from calccheck.annotate.drawing.svg import Picture
-from calccheck.annotate.pictures import BY_SOURCE, Shown
+from calccheck.annotate.pictures import BY_SOURCE, MOVED, Shown
 from calccheck.annotate.typst_text import literal, shown
 
 _NATURAL, _CHART = 0.7, 0.6  # points for a unit: lettering of 7 points, 6 in bars
@@ -47,7 +47,13 @@ def _is_large(p: Shown) -> bool:
 def glance(charts: Sequence[Shown], numbers: Mapping[str, str], missing: frozenset[str]) -> str:
     """The record's part with the bars of every claimed total, each with links to its claims."""
     rows = "".join(_chart(p, numbers) for p in charts)
-    return f"#record-glance([{shown(BY_SOURCE, missing)}], ({rows}))\n" if rows else ""
+    return f"#record-glance([Superposition at a glance], [{shown(BY_SOURCE, missing)}], ({rows}))\n" if rows else ""
+
+
+def sensitivities(charts: Sequence[Shown], numbers: Mapping[str, str], missing: frozenset[str]) -> str:
+    """The record's part with what moves each quantity claimed over its tolerances."""
+    rows = "".join(_chart(p, numbers) for p in charts)
+    return f"#record-glance([What moves it], [{shown(MOVED, missing)}], ({rows}))\n" if rows else ""
 
 
 def _label(offset: int) -> str:

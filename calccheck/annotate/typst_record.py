@@ -5,11 +5,11 @@ from __future__ import annotations
 from collections.abc import Iterable, Mapping, Sequence
 from dataclasses import dataclass, field
 
-from calccheck.annotate.pictures import Shown, totals
+from calccheck.annotate.pictures import Shown, moved, totals
 from calccheck.annotate.record import Entry, note_lines
 from calccheck.annotate.record_parts import BASES, digest, figure_cells, nearest_rating, settings_line
 from calccheck.annotate.sentences import code_pieces
-from calccheck.annotate.typst_pictures import glance, large_drawings
+from calccheck.annotate.typst_pictures import glance, large_drawings, sensitivities
 from calccheck.annotate.typst_text import literal, shown
 from calccheck.annotate.typst_working import formula
 from calccheck.model import Report
@@ -62,6 +62,7 @@ def record(w: Words) -> str:
         f"#record-head({literal(digest(w.report))}, [{w.say(judged)}])\n"
         f"#record-claims(({claims}))\n#record-findings(({findings}))\n"
         f"{glance(totals(w.report, w.missing), {e.key: e.number for e in w.rows}, w.missing)}"
+        f"{sensitivities(moved(w.report, w.missing), {e.key: e.number for e in w.rows}, w.missing)}"
         f"#record-circuits(({_circuits(w)}))\n" + large_drawings(w.pictures, w.missing)
     )
 

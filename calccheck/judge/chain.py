@@ -8,7 +8,7 @@ from fractions import Fraction
 from itertools import pairwise
 
 from calccheck.arithmetic import Amount, DimensionFault, Doubt
-from calccheck.formula import Reference
+from calccheck.formula import OVER_TOLERANCES, Node, Reference
 from calccheck.judge import say
 from calccheck.judge.bounds import BOUNDS, at_worst, judge_bound
 from calccheck.judge.ground import Ground
@@ -20,8 +20,8 @@ from calccheck.judge.rounding import Printed, deviation
 from calccheck.judge.scope import Defined, Key, Ledger, Result, define, enter
 from calccheck.judge.steps import judge_member
 from calccheck.judge.two_sided import is_two_sided, judge_range, truth_of
-from calccheck.judge.working import by_source
-from calccheck.model import Basis, Claim, Finding, Judged, Step, Verdict
+from calccheck.judge.working import by_source, moves_of
+from calccheck.model import Basis, Claim, Finding, Judged, Sensitivity, Step, Verdict
 from calccheck.rules import RULES
 
 _ORDER: dict[Verdict, int] = {"agrees": 0, "given": 0, "rounded": 1, "accepted": 2, "unchecked": 3, "differs": 4}
@@ -101,7 +101,7 @@ def _range_claim(job: Work) -> Judged:
     cautions = tuple(dict.fromkeys(job.cautions))
     return Judged(
         job.claim, worst.verdict, basis, ref.text, computed=truth.nominal, low=truth.low, high=truth.high,
-        message=told, steps=tuple(job.steps), cautions=cautions,
+        message=told, steps=tuple(job.steps), cautions=cautions, moves=_moves(ref, job),
     )  # fmt: skip
 
 
@@ -135,6 +135,16 @@ def _by_source(main: Segment, job: Work) -> tuple[tuple[str, Amount], ...]:
     w = main.members[main.at]
     whole = isinstance(w.node, Reference) and not w.node.prefix and not job.ledger.symbols
     return by_source(w.key, job.ledger, w.member.span) if whole else ()
+
+
+def _moves(node: Node, job: Work) -> tuple[Sensitivity, ...]:
+    """What moves a voltage, current or resistance that is claimed over its tolerances."""
+    if not isinstance(node, Reference) or node.prefix not in OVER_TOLERANCES or node.bracket or job.ledger.symbols:
+        return ()
+    meant = job.names.meaning(node)
+    if meant is None or meant.key is None or meant.key.letter not in ("V", "I", "R", "Isc"):
+        return ()
+    return moves_of(meant.key, job.ledger, node.span)
 
 
 def _parted(workings: Sequence[Worked]) -> list[list[Worked]]:
@@ -270,6 +280,7 @@ def _summed_up(
         steps=tuple(steps),
         cautions=tuple(dict.fromkeys(job.cautions)),
         parts=_by_source(main, job),
+        moves=_moves(main.members[main.at].node, job),
     )
 
 

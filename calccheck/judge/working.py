@@ -8,7 +8,7 @@ from calccheck.judge import hints, quantities
 from calccheck.judge.changes import TEST
 from calccheck.judge.scope import Key, Ledger, meaning
 from calccheck.judge.sensitivities import sensitivities
-from calccheck.model import WorkedQuantity
+from calccheck.model import Sensitivity, WorkedQuantity
 from calccheck.source import Span
 from calccheck.units import Dimension
 
@@ -61,3 +61,14 @@ def _label(source: str) -> str:
 
 def _sum(rows: tuple[tuple[str, Amount], ...], dimension: Dimension) -> Amount:
     return Amount(plainest(sum(complex(a.value) for _, a in rows)), dimension)
+
+
+def moves_of(key: Key, ledger: Ledger, span: Span) -> tuple[Sensitivity, ...]:
+    """What moves a voltage, current or resistance, largest over its tolerance first; nothing where that cannot be worked."""
+    try:
+        circuit = quantities.circuit_of(key, ledger, span)
+        frequency = quantities.frequency_of(key, circuit, ledger, span)
+        dimension = quantities.linear(key, circuit, span, frequency).dimension
+    except Doubt:
+        return ()
+    return sensitivities(key, frequency, dimension, ledger, span)
