@@ -18,16 +18,17 @@ _WORD = rf"{_LETTER}(?:[^\W{SUPERSCRIPTS}])*[′″']*"
 _GROUPS = "[\u2009\u202f\u00a0]"
 _NUMBER = rf"(?:\d{{1,3}}(?:{_GROUPS}\d{{3}})+(?!\d)|\d+)(?:\.\d+(?:{_GROUPS}\d{{3}}(?!\d))*)?|\.\d+"
 _TOKEN = re.compile(
-    rf"""(?P<space>\s+)
-    |(?P<number>(?:{_NUMBER})(?:[eE][+-]?\d+|\s?[×*]\s?10(?:⁻?[{SUPERSCRIPTS}]+|\^[+-]?\d+))?)
-    |(?P<imaginary>j(?:{_NUMBER})(?:[eE][+-]?\d+)?)
-    |(?P<braced>{_LETTER}[^\W_{SUPERSCRIPTS}]*_\{{[^{{}}]*\}})
+    rf"""\s*(?:(?P<imaginary>j(?:{_NUMBER})(?:[eE][+-]?\d+)?)
     |(?P<word>°C(?!\w)|{_WORD})
+    |(?P<operator>//|~=|<=|>=|\.\.\.|[-+×·*/÷^√∥()\[\]|=≈<≤>≥,±∠…°%])
+    |(?P<number>(?:{_NUMBER})(?:[eE][+-]?\d+|\s?[×*]\s?10(?:⁻?[{SUPERSCRIPTS}]+|\^[+-]?\d+))?)
     |(?P<superscript>⁻?[{SUPERSCRIPTS}]+)
-    |(?P<operator>//|~=|<=|>=|\.\.\.|[-+×·*/÷^√∥()\[\]|=≈<≤>≥,±∠…°%])""",
+    |(?P<end>\Z))""",
     re.VERBOSE,
 )
-_KINDS: dict[str | None, TokenKind | None] = {"space": None, **{kind: kind for kind in get_args(TokenKind)}}
+_LOOKALIKE = re.compile(f"[{''.join(map(chr, LOOKALIKES))}]")  # to find one is quicker than to put them right
+_BRACED = re.compile(rf"{_LETTER}[^\W_{SUPERSCRIPTS}]*_\{{[^{{}}]*\}}")
+_KINDS: dict[str | None, TokenKind] = {kind: kind for kind in get_args(TokenKind)}
 _EXPONENT = re.compile(_NUMBER)  # behind ^ a number ends before a × 10³, which multiplies the power
 _TEN = re.compile(r"\s?[×*]\s?10")
 _SAME = {"//": "∥", "*": "×", "/": "÷", "~=": "≈", "<=": "≤", ">=": "≥", "...": "…", "[": "(", "]": ")"}
@@ -47,30 +48,31 @@ class Token(NamedTuple):  # a tuple, because hundreds are made for one sheet
 
 def tokens(piece: Piece) -> list[Token]:
     """The tokens of a statement, an ``end`` token last. Raises ``Doubt`` at the first character that means nothing."""
-    text = piece.text.translate(LOOKALIKES)
+    text = piece.text.translate(LOOKALIKES) if _LOOKALIKE.search(piece.text) else piece.text
     if len(text) > LONGEST:
         raise Doubt(f"longer than {LONGEST} characters; part it", piece.span(0, 40))
     found: list[Token] = []
     at = 0
-    while at < len(text):
+    kind: TokenKind | None = None
+    while kind != "end":
         m = _TOKEN.match(text, at)
         if m is None:
             raise _strange(piece, text, at)
-        kind, word = _KINDS[m.lastgroup], m[0]
-        if kind == "number" and found and found[-1].text == "^":
-            m = _EXPONENT.match(text, at) or m
-            word = m[0]
-        start, at = at, m.end()
+        kind = _KINDS[m.lastgroup]
+        start, at = m.span(kind)
+        if kind == "word" and text.startswith("{", at) and (braced := _BRACED.match(text, start)):
+            kind, at = "braced", braced.end()
+        elif kind == "number" and found and found[-1].text == "^":
+            at = (_EXPONENT.match(text, start) or m).end()
+        word = text[start:at]
         if kind == "operator":
             word = _SAME.get(word, word)
         elif kind == "superscript":
             word = word.translate(_UP)
         elif kind in ("number", "imaginary"):
-            _refuse_comma_and_point(piece, text, m)
+            _refuse_comma_and_point(piece, text, start, at)
             word = _plain(word.removeprefix("j"))
-        if kind:
-            found.append(Token(kind, word, start, at))
-    found.append(Token("end", "", at, at))
+        found.append(Token(kind, word, start, at))
     return found
 
 
@@ -87,25 +89,24 @@ def _plain(text: str) -> str:
     return f"{mantissa}e{exponent.translate(_UP).lstrip('^')}" if ten else mantissa
 
 
-def _refuse_comma_and_point(piece: Piece, text: str, m: re.Match[str]) -> None:
-    follows = text[m.end() : m.end() + 2]
+def _refuse_comma_and_point(piece: Piece, text: str, start: int, end: int) -> None:
+    follows = text[end : end + 2]
     if follows[:1] in (",", ".") and follows[1:].isdigit():
-        end = m.end() + 1
+        end += 1
         while end < len(text) and (text[end].isdigit() or text[end] in ",."):
             end += 1
-        written = text[m.start() : end]
+        written = text[start:end]
         if follows[0] == "," and written.count(",") == 1:
             raise Doubt(
                 f"{written} has a decimal comma; a number is written with a point",
-                piece.span(m.start(), end),
-                piece.text[: m.start()] + written.replace(",", ".") + piece.text[end:],
+                piece.span(start, end),
+                piece.text[:start] + written.replace(",", ".") + piece.text[end:],
             )
-        raise Doubt(
-            f"{written} is no number: at most one point, groups parted by thin spaces", piece.span(m.start(), end)
-        )
+        raise Doubt(f"{written} is no number: at most one point, groups parted by thin spaces", piece.span(start, end))
 
 
 def _strange(piece: Piece, text: str, at: int) -> Doubt:
+    at = len(text) - len(text[at:].lstrip())
     c = text[at]
     if c in "–—":
         return Doubt("a dash: write − for minus, or a range as 3.2 … 3.4", piece.span(at, at + 1))
