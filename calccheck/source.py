@@ -51,8 +51,10 @@ class Piece:
     def span(self, start: int = 0, end: int | None = None) -> Span:
         """The span in the sheet of ``text[start:end]``, skipping characters that stand nowhere."""
         stop = len(self.text) if end is None else end
-        if start < stop and NOWHERE not in (first := self.at[start], last := self.at[stop - 1]):
-            return Span(first, last + 1)
+        if start < stop:
+            first, last = self.at[start], self.at[stop - 1]
+            if first != NOWHERE and last != NOWHERE:
+                return Span(first, last + 1)
         placed = [p for p in self.at[start:stop] if p != NOWHERE]
         if not placed:
             here = next((p for p in self.at[stop:] if p != NOWHERE), 0)

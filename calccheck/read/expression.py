@@ -140,6 +140,8 @@ def expression(c: Cursor, above: int = 0) -> Node:
 def operation(c: Cursor, left: Node, start: int, above: int) -> Node | None:
     """``left`` and the next operator with its operand, or nothing when none binds tighter than ``above``."""
     t = c.now
+    if t.kind == "end":
+        return None
     if t.kind == "superscript":
         c.take()
         if len(t.text) > 4:

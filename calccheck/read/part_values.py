@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import math
 import re
 from dataclasses import dataclass, replace
 from fractions import Fraction
@@ -22,7 +23,7 @@ from calccheck.units import AMPERE, LOOKALIKES, NONE, PLAIN, SIEMENS, UNITS, VOL
 
 SOURCES: tuple[Kind, ...] = ("voltage source", "current source")
 _CONTROLLED: dict[Dimension, Kind] = {VOLT: "controlled voltage source", AMPERE: "controlled current source"}
-_RANGE = (Fraction(10) ** -300, Fraction(10) ** 300)
+_RANGE = (1e-300, 1e300)
 _EXPECTED = "a part is given in ohms, siemens, volts, amperes, farads or henries"
 _UNIT_BEHIND_NAME = re.compile(
     r"(?P<expression>(?:.*[^\w.])?[^\W\d_](?:\w*[′″']*|[^\W_]*_\{[^{}]*\}))\s+(?P<unit>[^\W\d_]+)", re.DOTALL
@@ -67,6 +68,8 @@ def write(what: Piece, name: str, scope: Scope) -> Written:
         raise Doubt(f"{what.text}: a prefix and its unit are one word", what.span())
     expression, unit = _unit_behind_name(what, scope)
     node = parse(expression)
+    if isinstance(node, Number):  # nearly always: no name in it, no angle
+        return Written(what, node, lookup, unit)
     alternating = any(isinstance(n, Binary) and n.operator == "∠" for n in walk(node))
     alternating = alternating or any(r.word == "j" and "j" not in scope.givens for r in references(node))
     steered_by = tuple(r for r in references(node) if is_control(r, scope))
@@ -130,7 +133,8 @@ def read_value(written: Written, scope: Scope) -> Value:
     node = closed(written.node, written.symbols, written.at)
     amount, node = _in_unit(amount, node, written)
     if written.control is None:
-        return replace(_sorted(amount, node, written), worked=worked)
+        value = _sorted(amount, node, written)
+        return value if worked is None else replace(value, worked=worked)
     check_proportional(written, scope.symbols)
     kind = _CONTROLLED.get(amount.dimension)
     if kind is None:
@@ -244,6 +248,10 @@ def _valued(kind: Kind, amount: Amount, node: Node, w: Written) -> Value:
 def _in_range(value: arithmetic.Value, what: Piece) -> Fraction | complex:
     """A value that fits floating-point numbers, a real one as a rational."""
     exact = value if isinstance(value, complex) else Fraction(value)
-    if exact and not _RANGE[0] <= arithmetic.size(exact) <= _RANGE[1]:
+    try:
+        magnitude = abs(complex(exact))
+    except OverflowError:
+        magnitude = math.inf
+    if exact and not _RANGE[0] <= magnitude <= _RANGE[1]:
         raise Doubt(f"{what.text}: the value does not fit a floating-point number", what.span())
     return exact

@@ -13,7 +13,7 @@ from html import unescape
 from calccheck.document import Block, inlines
 from calccheck.model import Claim, Problem
 
-_SIGNS = "=≈<≤>≥≅≃∼~＝"
+_SIGN = re.compile("[=≈<≤>≥≅≃∼~＝]")
 _QUANTITY = r"(?:Isc|[VIPRZSQ])(?:\\?_\{[^{}]*\}|\\?_[A-Za-z0-9]\w*)|\|[VI]\\?_\w+\|"
 _VALUE = r"[-−+]?\s?(?:\d+(?:[.,]\d+)?|\.\d+)(?:\s?[a-zA-ZµμΩΩ%°][\w/·°%²³]*)?"
 _RELATION = r"(?:~=|\\?[<>]=?|[=≈≤≥~≅≃∼]|&(?:l[te]|g[te]|leq|geq|ap|asymp|approx|equals);)"
@@ -42,7 +42,7 @@ def prose_claims(block: Block, names: Collection[str], circuit: int) -> list[Cla
             first, last = bisect_left(at, inline.span.start), bisect_left(at, inline.span.end)
             words = text[first:last]
             text[first:last] = " " * (last - first)
-            if inline.kind != "html" and not any(c in _SIGNS for c in words):
+            if inline.kind != "html" and not _SIGN.search(content.text, first, last):
                 text[first:last] = [" " if c in "`$" else c for c in words]
     claims = []
     for subject, m in _stated("".join(text), names):
