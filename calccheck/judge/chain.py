@@ -26,6 +26,8 @@ from calccheck.rules import RULES
 
 _ORDER: dict[Verdict, int] = {"agrees": 0, "given": 0, "rounded": 1, "accepted": 2, "unchecked": 3, "differs": 4}
 
+_RANK = {"formula": 1, "substitution": 2, "value": 3, "range": 4, "new name": 9}  # what gives a chain its truth
+
 
 @dataclass(slots=True)
 class Work:
@@ -160,11 +162,9 @@ def _segment(members: Sequence[Worked]) -> Segment:
     """The segment with its truth: the first circuit quantity, else the first formula, else the first working in numbers."""
 
     def rank(w: Worked) -> int:
-        if w.sort == "new name":
-            return 9
         if w.basis == "circuit":
             return 0
-        return {"formula": 1, "substitution": 2, "value": 3, "range": 4}.get(w.sort, 5)
+        return _RANK.get(w.sort, 5)
 
     at = min(range(len(members)), key=lambda k: (rank(members[k]), k))
     return Segment(tuple(members), at, members[at].amount)

@@ -204,10 +204,13 @@ def work(member: Member, names: Names) -> Worked:
     node = with_loose_units(member.node, names.known)
     if isinstance(node, Range):
         return Worked(member, node, "range", doubt=_range_doubt(node))
-    value = printed(node) or printed_phasor(node)
     nodes = [*walk(node)]
+    value = printed(node)
+    if value is not None:
+        return _printed_value(member, node, nodes, value, names)
+    phasor = printed_phasor(node)
     found = [n for n in nodes if isinstance(n, Reference)]
-    sort: Sort = "value" if value is not None else "substitution" if _has_printed(nodes, found) else "formula"
+    sort: Sort = "value" if phasor is not None else "substitution" if _has_printed(nodes, found) else "formula"
     basis: Basis = ""
     key = amount = doubt = fault = None
     restates = False
@@ -217,15 +220,24 @@ def work(member: Member, names: Names) -> Worked:
         _refuse_half_prefixed(member, found, names)
         meanings = [names.meaning(r) for r in found]
         basis, key, restates = _basis(meanings, node), _key(node, meanings), restates_part(node, meanings)
-        if value is None:
+        if phasor is None:
             amount = evaluate(node, names.amount, note=lambda n, a: pieces.append((n, a)))
         else:
-            amount, pieces = value.amount, [(node, value.amount)]
+            amount, pieces = phasor.amount, [(node, phasor.amount)]
     except Doubt as d:
         doubt = d
     except DimensionFault as f:
         fault = f
-    return Worked(member, node, sort, basis, amount, value, key, restates, doubt, fault, pieces, nodes)
+    return Worked(member, node, sort, basis, amount, phasor, key, restates, doubt, fault, pieces, nodes)
+
+
+def _printed_value(member: Member, node: Node, nodes: Sequence[Node], value: Printed, names: Names) -> Worked:
+    """A member that is a printed real value and nothing else, as most are."""
+    try:
+        _refuse_units_that_are_names(nodes, names)
+    except Doubt as d:
+        return Worked(member, node, "value", printed=value, doubt=d, nodes=nodes)
+    return Worked(member, node, "value", "", value.amount, value, pieces=[(node, value.amount)], nodes=nodes)
 
 
 def _range_doubt(node: Range) -> Doubt:

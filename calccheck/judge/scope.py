@@ -147,9 +147,9 @@ def enter(result: Result, ledger: Ledger) -> None:
     if result.stands:
         insort(ledger.truths.setdefault(result.truth.dimension, []), float(size(result.truth.value)))
     if result.stands and result.key is not None:
-        same = ledger.of_quantity.setdefault(result.key, {})
-        finest = min(same.pop(result.printed.value, result), result, key=lambda r: r.printed.unit)
-        same[result.printed.value] = finest
+        same, value = ledger.of_quantity.setdefault(result.key, {}), result.printed.value
+        before = same.pop(value, None)
+        same[value] = before if before is not None and before.printed.unit <= result.printed.unit else result
 
 
 Sort = Literal["quantity", "part", "name", "constant", "bracket"]
