@@ -1,9 +1,8 @@
-"""How time grows with the number of sheets, claims, nodes and sources: a table each, and the exponent of the growth.
+"""How time grows with the number of sheets, claims, nodes and sources.
 
     python tests/bench/growth.py
 
-prints seconds by number as JSON. ``exponent`` fits ``seconds = c·number^k`` to the larger half of the numbers, where the number
-outweighs what every sheet costs.
+prints seconds by number as JSON; ``run.py`` fits the exponents.
 """
 
 from __future__ import annotations
@@ -80,14 +79,6 @@ MEASURED = {
     "nodes": (nodes, (5, 10, 20, 40, 80, 160, 300)),
     "sources": (sources, (1, 2, 4, 8, 11, 16, 32, 64)),
 }
-
-
-def exponent(points):
-    """The slope of the logarithms over the larger half of the points, by least squares."""
-    half = points[len(points) // 2 :] if len(points) > 3 else points
-    xs, ys = [math.log(n) for n, _ in half], [math.log(s) for _, s in half]
-    x, y = sum(xs) / len(xs), sum(ys) / len(ys)
-    return sum((a - x) * (b - y) for a, b in zip(xs, ys, strict=True)) / sum((a - x) ** 2 for a in xs)
 
 
 def main():
