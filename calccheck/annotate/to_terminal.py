@@ -5,7 +5,7 @@ from __future__ import annotations
 from collections.abc import Iterator, Sequence
 
 from calccheck.annotate.marks import MARKS
-from calccheck.annotate.record import LIMITS, Entry, entries
+from calccheck.annotate.record import BESIDE, LIMITS, Entry, entries
 from calccheck.annotate.record_parts import nearest_rating
 from calccheck.annotate.visible import one_line, visible
 from calccheck.model import Judged, Report, Step
@@ -32,7 +32,9 @@ def sheet_lines(report: Report, verbose: bool = False, colour: bool = False) -> 
     name = visible(report.reading.sheet.name)
     if not report.reading.is_calc:
         return [f"{name}: not a calc sheet"] if verbose else []
-    shown = [r for r in entries(report) if verbose or (r.kind != "given" and r.beside) or r.kind == "note"]
+    said = bool(report.findings) or any(j.cautions or j.verdict in BESIDE for j in report.claims)
+    rows = entries(report) if said or verbose else ()  # most sheets of a register have nothing to be said
+    shown = [r for r in rows if verbose or (r.kind != "given" and r.beside) or r.kind == "note"]
     lines = [line for row in sorted(shown, key=_order) for line in _entry_lines(row, report, verbose, colour)]
     givens = [one_line(j.claim.text).removeprefix("given ") for j in report.claims if j.verdict == "given"]
     if givens and not verbose:

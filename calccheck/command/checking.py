@@ -10,7 +10,7 @@ from functools import partial
 from calccheck import __version__
 from calccheck.command.batch import run
 from calccheck.command.files import Source
-from calccheck.command.reports import brief_report_on, gathered, run_of
+from calccheck.command.reports import findings_report_on, gathered, run_of
 from calccheck.command.terminal import complain, in_colour, speak_utf8, status
 from calccheck.model import Report
 
@@ -19,7 +19,7 @@ def check(options: argparse.Namespace) -> int:
     """The command; its exit status: findings on standard output, problems with files on standard error."""
     found, problems = gathered(options.paths)
     reports = []
-    for outcome in run(partial(brief_report_on, within=run_of(options)), found, _name, options.jobs):
+    for outcome in run(partial(findings_report_on, within=run_of(options)), found, _name, options.jobs):
         if outcome.value is not None:
             reports.append(outcome.value)
         else:

@@ -10,7 +10,8 @@ from functools import partial
 from calccheck.command.citing import Run, find_sheets
 from calccheck.command.files import Source, Unusable, sources
 from calccheck.command.sheets import brief, settings_for, sheet_of, standard_input
-from calccheck.model import Report
+from calccheck.formula import Range, references
+from calccheck.model import Member, Report
 
 
 def gathered(paths: Sequence[str]) -> tuple[list[Source], list[str]]:
@@ -43,3 +44,16 @@ def report_on(source: Source, within: Run) -> Report:
 def brief_report_on(source: Source, within: Run) -> Report:
     """The report without its page and solutions, for outputs that walk neither: so it travels light between processes."""
     return brief(report_on(source, within))
+
+
+def findings_report_on(source: Source, within: Run) -> Report:
+    """The brief report without the formulas in its claims, most of what it weighs, for outputs that only say what was found."""
+    report = brief_report_on(source, within)
+    claims = {id(c): replace(c, members=tuple(m for m in c.members if _is_shown(m))) for c in report.reading.claims}
+    judged = tuple(replace(j, claim=claims.get(id(j.claim), j.claim)) for j in report.claims)
+    return replace(report, reading=replace(report.reading, claims=tuple(claims.values())), claims=judged)
+
+
+def _is_shown(member: Member) -> bool:
+    """Whether a member is a printed value or a range."""
+    return isinstance(member.node, Range) or not references(member.node)
