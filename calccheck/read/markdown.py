@@ -30,7 +30,9 @@ def read_page(text: str) -> tuple[Block, ...]:
     """The page as a tree; offsets are code points of ``text`` as given (CR LF kept, a byte order mark counted)."""
     front = _front_matter(text)
     page = page_from(text, front.span.end if front else int(text.startswith("\ufeff")))
-    parser = _parser("$" in page.text, "[^" in page.text)
+    parser = _parser(
+        "$" in page.text, "[^" in page.text, frozenset(mark for mark in _RULES_OF if mark not in page.text)
+    )
     begins: dict[int, int] = {}
     notes: dict[str, object] = {"begins": begins}
     tokens = parser.parse(page.text, notes)
@@ -62,9 +64,19 @@ _BlockRule = Callable[[StateBlock, int, int, bool], bool]
 _InlineRule = Callable[[StateInline, bool], bool]
 
 
+_RULES_OF = {
+    "<": ("html_block", "html_inline", "autolink"), "&": ("entity",), "\\": ("escape",), "~~": ("strikethrough",),
+    "[": ("link",), "![": ("image",), "]:": ("reference",), ">": ("blockquote",), "|": ("table",),
+}  # fmt: skip
+"""What without which none of these rules finds anything."""
+
+
 @cache
-def _parser(maths: bool, footnotes: bool) -> MarkdownIt:
-    """A parser with only the plug-ins a page needs, because each costs time to import and at every character."""
+def _parser(maths: bool, footnotes: bool, absent: frozenset[str]) -> MarkdownIt:
+    """A parser with only the plug-ins and rules that a page needs, because each costs time to import and at every character.
+
+    ``absent``: marks that do not stand in the page.
+    """
     parser = MarkdownIt("commonmark", {"maxNesting": DEEPEST + 2}).enable(["table", "strikethrough"])
     parser.disable(["normalize", "text_join", "fragments_join"])  # pages are normalized; runs of text are joined here
     parser.block.ruler.before("table", "begin", _begin)
@@ -81,7 +93,7 @@ def _parser(maths: bool, footnotes: bool) -> MarkdownIt:
         from mdit_py_plugins.footnote import footnote_plugin
 
         parser.use(footnote_plugin, inline=False, move_to_end=False)
-    return parser
+    return parser.disable([rule for mark in absent for rule in _RULES_OF[mark]])
 
 
 def _begin(state: StateBlock, first: int, last: int, silent: bool) -> bool:
