@@ -466,13 +466,18 @@ def test_a_reader_that_stops_early_is_no_fault(folder):
         assert p.stderr.read() == b""
 
 
+def heed_interrupts() -> None:
+    """Jobs in the background of a shell, and all that they start, ignore them."""
+    signal.signal(signal.SIGINT, signal.SIG_DFL)
+
+
 @pytest.mark.parametrize("jobs", ["1", "2"])
 @pytest.mark.undisturbed
 def test_an_interrupt_is_quiet(folder, jobs):
     for k in range(200):
         write(folder / f"{k}.md", WRONG * 30)
     command = [sys.executable, "-m", "calccheck", "check", "--jobs", jobs]
-    pipes = {"stdout": subprocess.PIPE, "stderr": subprocess.PIPE}
+    pipes = {"stdout": subprocess.PIPE, "stderr": subprocess.PIPE, "preexec_fn": heed_interrupts}
     with subprocess.Popen(command, start_new_session=True, env={**os.environ, "PYTHONUTF8": "1"}, **pipes) as p:
         time.sleep(1.5)
         os.killpg(p.pid, signal.SIGINT)  # as a terminal does: the whole group
