@@ -124,12 +124,11 @@ def _complete(parser: argparse.ArgumentParser) -> None:
 
 def arguments() -> argparse.ArgumentParser:
     """The commands and their options."""
-    layout = argparse.RawDescriptionHelpFormatter
-    parser = argparse.ArgumentParser("calccheck", description=_ABOUT, epilog=_STATUS, formatter_class=layout)
+    parser = argparse.ArgumentParser("calccheck", description=_ABOUT, epilog=_STATUS, formatter_class=_as_written)
     parser.add_argument("--version", action="version", version=f"calccheck {__version__}", help="print the version")
     commands = parser.add_subparsers(dest="command", metavar="COMMAND", required=True)
     one = commands.add_parser(
-        "check", help="recompute every claim and print what is to be mended", epilog=_STATUS, formatter_class=layout,
+        "check", help="recompute every claim and print what is to be mended", epilog=_STATUS, formatter_class=_as_written,
         description="Recompute every claim of the sheets and print what is to be mended. Writes no file.",
     )  # fmt: skip
     _paths(one, "sheets, or folders to search for *.md (default: this folder); - is standard input")
@@ -142,7 +141,7 @@ def arguments() -> argparse.ArgumentParser:
     )
     _common(one)
     two = commands.add_parser(
-        "mark", help="write the sheets with every claim marked where it stands", epilog=_STATUS, formatter_class=layout,
+        "mark", help="write the sheets with every claim marked where it stands", epilog=_STATUS, formatter_class=_as_written,
         description=_MARK,
     )  # fmt: skip
     _paths(two, "sheets, or folders to search for *.md (default: this folder)")
@@ -156,7 +155,7 @@ def arguments() -> argparse.ArgumentParser:
     two.add_argument("--replace", action="store_true", help="replace copies that exist")
     _common(two)
     three = commands.add_parser(
-        "working", help="show the independent working of one quantity",
+        "working", help="show the independent working of one quantity", formatter_class=_filled,
         description="Show the independent working of one quantity: each source alone, their sum, the nodal value, and the "
         "gap between the two routes.",
     )  # fmt: skip
@@ -165,23 +164,40 @@ def arguments() -> argparse.ArgumentParser:
     _sign_arguments(commands)
     _register_arguments(commands)
     six = commands.add_parser(
-        "blank", help="print empty tables for a sheet that holds its circuit",
+        "blank", help="print empty tables for a sheet that holds its circuit", formatter_class=_filled,
         description="Print the superposition table and the list of quantities of a sheet's circuits in the sheet's own language, "
         "with empty cells to fill in by hand. It never fills in a value. Writes no file.",
     )  # fmt: skip
     six.add_argument("sheet", metavar="SHEET", help="the sheet; - is standard input")
     commands.add_parser(
-        "editor", help="serve an editor: findings while writing, working under the pointer",
+        "editor", help="serve an editor: findings while writing, working under the pointer", formatter_class=_filled,
         description="Serve an editor by the Language Server Protocol over standard input and output. Started by the editor, not "
         "by hand. Writes no file.",
     )  # fmt: skip
     return parser
 
 
+def _as_written(prog: str) -> argparse.HelpFormatter:
+    return argparse.RawDescriptionHelpFormatter(prog, width=_width())
+
+
+def _filled(prog: str) -> argparse.HelpFormatter:
+    return argparse.HelpFormatter(prog, width=_width())
+
+
+def _width() -> int:
+    """Columns for help, two less than the terminal has, as argparse takes them; to ask, it would load shutil at every start."""
+    try:
+        columns = int(os.environ.get("COLUMNS", "0")) or os.get_terminal_size(sys.stdout.fileno()).columns
+    except (AttributeError, ValueError, OSError):  # no output, or one that is no terminal
+        columns = 0
+    return (columns or 80) - 2
+
+
 def _register_arguments(commands: argparse._SubParsersAction[argparse.ArgumentParser]) -> None:
     five = commands.add_parser(
         "register", help="list the sheets: verdict, signatures, what is to be mended, what is open", epilog=_STATUS,
-        formatter_class=argparse.RawDescriptionHelpFormatter,
+        formatter_class=_as_written,
         description="List the calc sheets with their verdicts and signatures, what is to be mended (claims, void signatures,\n"
         "numbers given twice, gaps in title blocks) and what is open (signatures missing, assumptions without a source).\n"
         "What is open does not count for the exit status. Writes no file.",
@@ -195,7 +211,7 @@ def _register_arguments(commands: argparse._SubParsersAction[argparse.ArgumentPa
 
 def _sign_arguments(commands: argparse._SubParsersAction[argparse.ArgumentParser]) -> None:
     four = commands.add_parser(
-        "sign", help="sign a sheet that stands", epilog=_STATUS, formatter_class=argparse.RawDescriptionHelpFormatter,
+        "sign", help="sign a sheet that stands", epilog=_STATUS, formatter_class=_as_written,
         description="Put a signature into a sheet's front matter. A sheet that is not clean is not signed. What changes in its\n"
         "circuit, claims, givens, waivers or settings later voids the signature.",
     )  # fmt: skip

@@ -38,13 +38,13 @@ from calccheck.rules import RULES
 from calccheck.signatures import signature_findings
 from calccheck.solve import Unsolvable, solve, solve_batch, tolerances, total
 from calccheck.solve.states import state_faults
-from calccheck.sought import ClosedForm, Meaning
 from calccheck.source import Sheet, whole
-from calccheck.toleranced import Tolerancing
 from calccheck.units import Dimension
 
 if TYPE_CHECKING:
     from calccheck.judge.slips.redo import Earlier
+    from calccheck.sought import ClosedForm, Meaning
+    from calccheck.toleranced import Tolerancing
 
 EarlierTexts = Callable[[], Iterable[tuple[str, str]]]
 

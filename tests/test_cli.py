@@ -528,7 +528,8 @@ def test_a_check_loads_nothing_that_it_does_not_use(folder):
         "subprocess", "tempfile", "multiprocessing", "concurrent", "asyncio", "socket", "ssl", "http", "email", "xml", "hashlib",
         "difflib", "random", "statistics", "unittest", "importlib.metadata", "numpy.random", "numpy.fft", "numpy.ma",
         "calccheck.annotate.to_markdown", "calccheck.annotate.to_json", "calccheck.judge.slips", "calccheck.judge.ratings",
-        "calccheck.judge.right_formula", "calccheck.solve.tolerance", "calccheck.solve.symbolic", "calccheck.read.mending",
+        "calccheck.judge.right_formula", "calccheck.judge.spreads", "calccheck.judge.two_sided", "calccheck.toleranced",
+        "calccheck.sought", "calccheck.read.maths", "calccheck.read.cases", "calccheck.command.history", "shutil", "calccheck.solve.tolerance", "calccheck.solve.symbolic", "calccheck.read.mending",
     }  # fmt: skip
     code = (  # what the two libraries load themselves is their affair
         "import sys, numpy, markdown_it; before = set(sys.modules); "

@@ -6,6 +6,7 @@ import argparse
 from collections.abc import Sequence
 from dataclasses import replace
 from functools import partial
+from pathlib import Path
 
 from calccheck.command.citing import Run, find_sheets
 from calccheck.command.files import Source, Unusable, sources
@@ -33,12 +34,17 @@ def run_of(options: argparse.Namespace) -> Run:
 
 def report_on(source: Source, within: Run) -> Report:
     """The report on one sheet. Raises ``Unusable`` where a sheet or its repository's settings cannot be read."""
-    from calccheck.command.history import earlier_versions  # late: as the next
     from calccheck.pipeline import check as checked  # late: --help and --version need no solver
 
     find = partial(find_sheets, citing=source.path, run=within)
-    history = partial(earlier_versions, source.path) if source.text is None else tuple
+    history = partial(_earlier_versions, source.path) if source.text is None else tuple
     return checked(sheet_of(source), replace(settings_for(source), on=within.on), find, history)
+
+
+def _earlier_versions(path: Path) -> list[tuple[str, str]]:
+    from calccheck.command.history import earlier_versions  # late: called only where a claim differs
+
+    return earlier_versions(path)
 
 
 def brief_report_on(source: Source, within: Run) -> Report:

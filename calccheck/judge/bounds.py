@@ -9,7 +9,6 @@ from calccheck.formula import Binary
 from calccheck.judge import say
 from calccheck.judge.members import Names, Worked
 from calccheck.judge.rounding import SLACK
-from calccheck.judge.spreads import NothingVaries, at, extreme
 from calccheck.model import Relation, Step
 from calccheck.printing import shown
 from calccheck.units import PLAIN
@@ -56,6 +55,8 @@ def at_worst(step: Step, left: Worked, right: Worked, limit_right: bool, names: 
     """
     if step.verdict != "agrees" or left.amount is None or right.amount is None:
         return step
+    from calccheck.judge.spreads import NothingVaries, at, extreme  # late: many sheets state no bounds
+
     below = step.relation in ("<", "≤")
     low, high = (left, right) if below else (right, left)
     q, limit = (left, right) if limit_right else (right, left)

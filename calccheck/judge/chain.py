@@ -19,7 +19,6 @@ from calccheck.judge.phasors import PrintedPhasor, is_angle, nearest_turn, parts
 from calccheck.judge.rounding import Printed, deviation
 from calccheck.judge.scope import Defined, Key, Ledger, Result, define, enter
 from calccheck.judge.steps import judge_member
-from calccheck.judge.two_sided import is_two_sided, judge_range, truth_of
 from calccheck.judge.working import by_source, moves_of
 from calccheck.model import Basis, Claim, Finding, Judged, Sensitivity, Step, Verdict
 from calccheck.rules import RULES
@@ -81,6 +80,8 @@ def judge_claim(claim: Claim, ledger: Ledger) -> tuple[Judged, tuple[Finding, ..
 
 def _range_claim(job: Work) -> Judged:
     """A claim about both extremes, or about a middle and a deviation."""
+    from calccheck.judge.two_sided import judge_range, truth_of  # late: few sheets claim any
+
     members = job.claim.members
     first = next(m for m in members if isinstance(m.node, Reference) and m.node.prefix in ("worst", "rss"))
     ref = first.node
@@ -108,7 +109,7 @@ def _range_claim(job: Work) -> Judged:
 
 
 def _chain(job: Work) -> Judged:
-    if is_two_sided(job.claim.members):
+    if any(isinstance(m.node, Reference) and m.node.prefix in ("worst", "rss") for m in job.claim.members):
         return _range_claim(job)
     workings = work_all(job.claim.members, job.names)
     name = new_name(workings, job.claim, job.ledger)

@@ -14,7 +14,6 @@ from calccheck.judge import quantities
 from calccheck.judge.members import Names, Worked
 from calccheck.judge.phasors import Sized
 from calccheck.judge.scope import Ledger
-from calccheck.judge.spreads import ends
 from calccheck.judge.trace import Meanings, Traced, sizes, trace
 from calccheck.model import Basis, Finding, Step, Verdict
 
@@ -68,6 +67,8 @@ class Ground:
         node = self.source.node
         if not isinstance(node, Reference) or node.prefix not in OVER_TOLERANCES:
             return []
+        from calccheck.judge.spreads import ends  # late: few sheets state tolerances
+
         return ends(self.ledger)
 
     def circuit_values(self) -> list[Sized]:

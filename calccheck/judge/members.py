@@ -7,7 +7,7 @@ import re
 from collections.abc import Sequence
 from dataclasses import dataclass, replace
 from fractions import Fraction
-from typing import Literal
+from typing import TYPE_CHECKING, Literal
 
 from calccheck.arithmetic import Amount, DimensionFault, Doubt, Real, evaluate, size
 from calccheck.formula import (
@@ -27,10 +27,12 @@ from calccheck.judge import hints, quantities
 from calccheck.judge.phasors import PrintedPhasor, printed_phasor
 from calccheck.judge.rounding import SLACK, Printed, printed
 from calccheck.judge.scope import Key, Ledger, Meaning, circuit_index, is_taken, meaning, quantity_key
-from calccheck.judge.spreads import Found, Spreading, over
 from calccheck.loose_units import with_loose_units
 from calccheck.model import Basis, Element, Member, Relation
 from calccheck.units import PLAIN
+
+if TYPE_CHECKING:  # loaded late: few sheets state tolerances
+    from calccheck.judge.spreads import Found, Spreading
 
 Sort = Literal["value", "formula", "substitution", "range", "new name"]
 
@@ -100,6 +102,8 @@ class Names:
     @property
     def spreading(self) -> Spreading:
         """For expressions of this claim over their tolerances."""
+        from calccheck.judge.spreads import Spreading
+
         return Spreading(
             self.nearest, self.ledger, lambda r, n: (self if n == self.nearest else Names(n, self.ledger)).amount(r)
         )
@@ -127,6 +131,8 @@ class Names:
 
     def _work(self, ref: Reference) -> Amount:
         if ref.prefix in OVER_TOLERANCES:
+            from calccheck.judge.spreads import over
+
             self.founds[ref] = over(ref, lambda n: evaluate(n, self.amount), self.spreading)
             return self.founds[ref].amount
         m = self.meaning(ref)

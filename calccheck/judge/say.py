@@ -3,13 +3,16 @@
 from __future__ import annotations
 
 from fractions import Fraction
+from typing import TYPE_CHECKING
 
 from calccheck.arithmetic import Amount, Real, real, size
 from calccheck.judge.phasors import PrintedPhasor, is_angle, nearest_turn
 from calccheck.judge.rounding import Printed
-from calccheck.judge.spreads import Found
 from calccheck.printing import shown
 from calccheck.units import PLAIN, Unit, digits, printed, words
+
+if TYPE_CHECKING:  # loaded late: few sheets state tolerances
+    from calccheck.judge.spreads import Found
 
 
 def near(a: Amount, p: Printed | PrintedPhasor) -> str:

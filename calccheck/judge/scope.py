@@ -8,7 +8,7 @@ from bisect import insort
 from collections.abc import Callable, Mapping
 from dataclasses import dataclass, field, replace
 from fractions import Fraction
-from typing import Literal, Protocol
+from typing import TYPE_CHECKING, Literal, Protocol
 
 from calccheck.arithmetic import Amount, Doubt, Real, evaluate, size
 from calccheck.component_code import component_code
@@ -16,8 +16,10 @@ from calccheck.formula import NO_QUALIFIERS, Change, ChangeKind, Node, Reference
 from calccheck.judge.phasors import PrintedPhasor, Sized
 from calccheck.judge.rounding import Printed
 from calccheck.model import Basis, Circuit, Element, Settings, Solution, State, Tolerance, Verdict
-from calccheck.toleranced import Tolerancing
 from calccheck.units import Dimension
+
+if TYPE_CHECKING:  # loaded late: few sheets state tolerances
+    from calccheck.toleranced import Tolerancing
 
 QUANTITY_LETTERS = {"V", "I", "P", "R", "Z", "Isc", "S", "Q"}
 _TWO_NODES = {"R", "Z", "Isc"}

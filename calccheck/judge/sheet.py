@@ -17,12 +17,12 @@ from calccheck.judge.scope import Ledger, Solve
 from calccheck.judge.symbols import Point, combined, instance, points
 from calccheck.model import Circuit, Finding, Judged, Reading, Waiver
 from calccheck.rules import RULES
-from calccheck.sought import Close
-from calccheck.toleranced import Tolerancing
 
 if TYPE_CHECKING:  # late, where they are used: most sheets have no claim that differs, and no free symbols
     from calccheck.judge.right_formula import RightFormulas
     from calccheck.judge.slips.redo import Earlier, Redo, SolveBatch
+    from calccheck.sought import Close
+    from calccheck.toleranced import Tolerancing
 
 
 def judge_sheet(

@@ -46,11 +46,6 @@ class Sided:
     miss: Miss | None
 
 
-def is_two_sided(members: Sequence[Member]) -> bool:
-    """Whether a chain is about two values."""
-    return any(isinstance(m.node, Reference) and m.node.prefix in ("worst", "rss") for m in members)
-
-
 def truth_of(ref: Reference, names: Names) -> TwoSided:
     """The nominal value and the ends of what stands behind ``worst`` or ``rss``. Raises ``Doubt``."""
     node = spreads.inner(ref)

@@ -7,7 +7,6 @@ from calccheck.formula import Node, Reference
 from calccheck.judge import hints, quantities
 from calccheck.judge.changes import TEST
 from calccheck.judge.scope import Key, Ledger, meaning
-from calccheck.judge.sensitivities import sensitivities
 from calccheck.model import Sensitivity, WorkedQuantity
 from calccheck.source import Span
 from calccheck.units import Dimension
@@ -35,6 +34,8 @@ def work_out(node: Node, span: Span, ledger: Ledger) -> WorkedQuantity:
     total = quantities.amount(m.key, ledger, span) if solution.exact else _sum(rows, q.dimension)
     whole = q.read(solution.nodal) if len(sources) == len(solution.parts) else None
     nodal = Amount(plainest(whole), q.dimension) if whole is not None else None
+    from calccheck.judge.sensitivities import sensitivities  # late, here and below: few sheets state tolerances
+
     moved_by = sensitivities(m.key, frequency, q.dimension, ledger, span)
     return WorkedQuantity(node.text, rows, total, nodal, solution.gap, moved_by)
 
@@ -71,4 +72,6 @@ def moves_of(key: Key, ledger: Ledger, span: Span) -> tuple[Sensitivity, ...]:
         dimension = quantities.linear(key, circuit, span, frequency).dimension
     except Doubt:
         return ()
+    from calccheck.judge.sensitivities import sensitivities
+
     return sensitivities(key, frequency, dimension, ledger, span)

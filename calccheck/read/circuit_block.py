@@ -12,7 +12,6 @@ from calccheck.arithmetic import Amount, DimensionFault, Doubt
 from calccheck.document import Block
 from calccheck.formula import references
 from calccheck.model import Case, Circuit, Element, Finding
-from calccheck.read.cases import read_case
 from calccheck.read.frequencies import with_frequencies
 from calccheck.read.names import WORD, Named, check_names, nearest, plain_name
 from calccheck.read.part_lines import PartLine, split_line
@@ -188,6 +187,10 @@ def _stated_reference(s: Statement, nodes: Counter[str], found: list[Finding], c
 def _cases(
     statements: Sequence[Statement], elements: Sequence[Element], scope: Scope, found: list[Finding], complete: bool
 ) -> tuple[Case, ...]:
+    if not any(s.word == "case" for s in statements):
+        return ()
+    from calccheck.read.cases import read_case  # late: few circuits have cases
+
     cases: dict[str, Case] = {}
     named = {e.name: e for e in reversed(elements)}
     for s in statements:

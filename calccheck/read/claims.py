@@ -12,7 +12,6 @@ from calccheck.formula import Node, Number, Unary
 from calccheck.model import Claim, Finding, Place, Problem, Waiver
 from calccheck.read.attributes import read_tolerance
 from calccheck.read.expression import parse_chain
-from calccheck.read.maths import has_relation, parse_maths, rows
 from calccheck.read.prose import prose_claims
 from calccheck.read.tables import table_claims
 from calccheck.read.waivers import read_waiver, waiver_text
@@ -209,6 +208,8 @@ def _table(found: Found, block: Block, circuit: int, names: Collection[str]) -> 
 
 def _maths(text: Piece, span: Span, circuit: int) -> list[Claim]:
     """Dollar maths with a relation: a claim a statement."""
+    from calccheck.read.maths import has_relation, rows  # late: many sheets hold no dollar maths
+
     if not has_relation(text.text):
         return []
     found = rows(text)
@@ -217,6 +218,8 @@ def _maths(text: Piece, span: Span, circuit: int) -> list[Claim]:
 
 def _formula(piece: Piece, span: Span, circuit: int) -> Claim:
     claim = Claim(" ".join(piece.text.split()), span, "math", circuit)
+    from calccheck.read.maths import parse_maths
+
     try:
         return replace(claim, members=parse_maths(piece))
     except Doubt as d:
